@@ -1,0 +1,5 @@
+//! The `groupsmith` command: everything lives in the library.
+
+fn main() -> std::process::ExitCode {
+    groupsmith::cli::main()
+}

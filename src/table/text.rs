@@ -1,0 +1,301 @@
+//! The table text and its typed cells.
+
+use super::TableError;
+
+const REQUIRED_FACTS: [&str; 4] = ["title", "source", "transcribed", "checked"];
+
+/// A table file, split into head, columns and rows; nothing is interpreted yet.
+#[derive(Clone, Debug)]
+pub struct Table {
+    file: String,
+    facts: Vec<(String, String)>,
+    columns: Vec<String>,
+    units: Vec<String>,
+    heads_line: u64,
+    rows: Vec<(u64, Vec<String>)>,
+}
+
+/// The position of a column, looked up once by name.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Column(usize);
+
+/// One data row of a [`Table`].
+#[derive(Clone, Copy, Debug)]
+pub struct Row<'a> {
+    table: &'a Table,
+    line: u64,
+    cells: &'a [String],
+}
+
+impl Table {
+    /// Splits the text of a table file; `file` is the name used in messages.
+    ///
+    /// # Errors
+    ///
+    /// A missing fact in the head, a duplicate column, a row of another length.
+    pub fn read(file: &str, text: &str) -> Result<Self, TableError> {
+        let text = text.strip_prefix('\u{feff}').unwrap_or(text);
+        let mut facts = Vec::new();
+        let mut head_lines = 0;
+        let mut body_start = 0;
+        for line in text.split_inclusive('\n') {
+            let Some(comment) = line.strip_prefix('#') else {
+                break;
+            };
+            if let Some((key, value)) = comment.split_once(':') {
+                facts.push((key.trim().to_owned(), value.trim().to_owned()));
+            }
+            head_lines += 1;
+            body_start += line.len();
+        }
+        for fact in REQUIRED_FACTS {
+            if !facts
+                .iter()
+                .any(|(key, value)| key == fact && !value.is_empty())
+            {
+                return Err(TableError::MissingFact {
+                    file: file.to_owned(),
+                    fact,
+                });
+            }
+        }
+
+        let mut reader = csv::ReaderBuilder::new()
+            .has_headers(false)
+            .flexible(false)
+            .trim(csv::Trim::All)
+            .from_reader(&text.as_bytes()[body_start..]);
+        let mut records = Vec::new();
+        for record in reader.records() {
+            let record = record.map_err(|error| TableError::Csv {
+                file: file.to_owned(),
+                line: head_lines + error.position().map_or(0, csv::Position::line),
+                reason: error.to_string(),
+            })?;
+            let line = head_lines + record.position().map_or(0, csv::Position::line);
+            records.push((line, record.iter().map(str::to_owned).collect::<Vec<_>>()));
+        }
+        let mut records = records.into_iter();
+        let mut next_row = |what: &'static str| {
+            records.next().ok_or_else(|| TableError::Column {
+                file: file.to_owned(),
+                line: head_lines + 1,
+                column: what.to_owned(),
+                fault: "row is missing",
+            })
+        };
+        let (heads_line, columns) = next_row("column names")?;
+        let (_, units) = next_row("units")?;
+        for (position, column) in columns.iter().enumerate() {
+            if columns[..position].contains(column) {
+                return Err(TableError::Column {
+                    file: file.to_owned(),
+                    line: heads_line,
+                    column: column.clone(),
+                    fault: "stands twice",
+                });
+            }
+        }
+        Ok(Self {
+            file: file.to_owned(),
+            facts,
+            columns,
+            units,
+            heads_line,
+            rows: records.collect(),
+        })
+    }
+
+    /// The file name used in messages.
+    pub fn file(&self) -> &str {
+        &self.file
+    }
+
+    /// Every value of a fact of the head, in order (`source` may repeat).
+    pub fn facts<'a>(&'a self, key: &'a str) -> impl Iterator<Item = &'a str> {
+        self.facts
+            .iter()
+            .filter(move |(name, _)| name == key)
+            .map(|(_, value)| value.as_str())
+    }
+
+    /// The first value of a fact of the head.
+    pub fn fact<'a>(&'a self, key: &'a str) -> Option<&'a str> {
+        self.facts(key).next()
+    }
+
+    /// The column of this name.
+    ///
+    /// # Errors
+    ///
+    /// [`TableError::Column`] if there is none.
+    pub fn column(&self, name: &str) -> Result<Column, TableError> {
+        self.columns
+            .iter()
+            .position(|column| column == name)
+            .map(Column)
+            .ok_or_else(|| TableError::Column {
+                file: self.file.clone(),
+                line: self.heads_line,
+                column: name.to_owned(),
+                fault: "is missing",
+            })
+    }
+
+    /// The column of this name if the table has it.
+    pub fn optional_column(&self, name: &str) -> Option<Column> {
+        self.columns
+            .iter()
+            .position(|column| column == name)
+            .map(Column)
+    }
+
+    /// The column of this name, which has to be given in `unit`.
+    ///
+    /// # Errors
+    ///
+    /// No such column, or another unit in the units row.
+    pub fn column_in(&self, name: &str, unit: &str) -> Result<Column, TableError> {
+        let column = self.column(name)?;
+        if self.units[column.0] == unit {
+            Ok(column)
+        } else {
+            Err(TableError::Unit {
+                file: self.file.clone(),
+                line: self.heads_line + 1,
+                column: name.to_owned(),
+                found: self.units[column.0].clone(),
+                expected: unit.to_owned(),
+            })
+        }
+    }
+
+    /// The unit of a column as written in the units row.
+    pub fn unit(&self, column: Column) -> &str {
+        &self.units[column.0]
+    }
+
+    /// The names of all columns, in order.
+    pub fn columns(&self) -> &[String] {
+        &self.columns
+    }
+
+    /// The data rows, in order.
+    pub fn rows(&self) -> impl ExactSizeIterator<Item = Row<'_>> {
+        self.rows.iter().map(|(line, cells)| Row {
+            table: self,
+            line: *line,
+            cells,
+        })
+    }
+}
+
+impl<'a> Row<'a> {
+    /// Line of the row in its file, from 1.
+    pub fn line(self) -> u64 {
+        self.line
+    }
+
+    /// The cell as text, possibly empty.
+    pub fn text(self, column: Column) -> &'a str {
+        &self.cells[column.0]
+    }
+
+    /// The cell as text that may not be empty.
+    ///
+    /// # Errors
+    ///
+    /// [`TableError::Cell`] if it is blank.
+    pub fn required_text(self, column: Column) -> Result<&'a str, TableError> {
+        match self.text(column) {
+            "" => Err(self.fault(column, "is blank")),
+            text => Ok(text),
+        }
+    }
+
+    /// The cell as a finite number, `None` where it is blank.
+    ///
+    /// # Errors
+    ///
+    /// [`TableError::Cell`] if it is something else.
+    pub fn number(self, column: Column) -> Result<Option<f64>, TableError> {
+        let text = self.text(column);
+        if text.is_empty() {
+            return Ok(None);
+        }
+        match text.parse::<f64>() {
+            Ok(value) if value.is_finite() => Ok(Some(value)),
+            _ => Err(self.fault(column, "is not a finite number")),
+        }
+    }
+
+    /// The cell as a finite number that may not be blank.
+    ///
+    /// # Errors
+    ///
+    /// [`TableError::Cell`] if it is blank or not a number.
+    pub fn required_number(self, column: Column) -> Result<f64, TableError> {
+        self.number(column)?
+            .ok_or_else(|| self.fault(column, "is blank"))
+    }
+
+    /// The cell as a whole number from 0 to 65535 that may not be blank.
+    ///
+    /// # Errors
+    ///
+    /// [`TableError::Cell`] if it is anything else.
+    pub fn required_integer(self, column: Column) -> Result<u16, TableError> {
+        self.text(column)
+            .parse()
+            .map_err(|_| self.fault(column, "is not a whole number from 0 to 65535"))
+    }
+
+    /// A fault at a cell of this row, for checks of the caller's own.
+    pub fn fault(self, column: Column, fault: impl Into<String>) -> TableError {
+        TableError::Cell {
+            file: self.table.file.clone(),
+            line: self.line,
+            column: self.table.columns[column.0].clone(),
+            found: self.cells[column.0].clone(),
+            fault: fault.into(),
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    const HEAD: &str = "# title: t\n# source: s\n# transcribed: d\n# checked: c\n";
+
+    #[test]
+    fn cells_know_their_line_and_column() {
+        let text = format!("{HEAD}number,r\n-,m\n1,0.5\n2,x\n");
+        let table = Table::read("a.csv", &text).unwrap();
+        let r = table.column_in("r", "m").unwrap();
+        let rows: Vec<_> = table.rows().collect();
+        assert_eq!(rows[0].required_number(r), Ok(0.5));
+        assert_eq!(
+            rows[1].required_number(r).unwrap_err().to_string(),
+            "a.csv:8: column `r`: is not a finite number (found `x`)"
+        );
+    }
+
+    #[test]
+    fn a_table_without_a_source_is_refused() {
+        let error = Table::read("a.csv", "# title: t\nnumber\n-\n").unwrap_err();
+        assert_eq!(
+            error,
+            TableError::MissingFact {
+                file: "a.csv".into(),
+                fact: "source"
+            }
+        );
+    }
+
+    #[test]
+    fn duplicate_columns_and_short_rows_are_refused() {
+        assert!(Table::read("a.csv", &format!("{HEAD}n,n\n-,-\n")).is_err());
+        assert!(Table::read("a.csv", &format!("{HEAD}n,m\n-,-\n1\n")).is_err());
+    }
+}
