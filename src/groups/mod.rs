@@ -1,7 +1,19 @@
 //! Group sets, the pattern language, and the breakdown of a molecule into groups.
 //!
 //! Does no thermodynamics and no file work: table texts come in as strings.
+//! Entry points: [`GroupSet::read`], [`Breaker`], [`Pattern::compile`].
 
+mod breakdown;
 mod counts;
+mod cover;
+mod describe;
+mod error;
+mod features;
+pub mod pattern;
+mod set;
 
+pub use breakdown::{ATOM_LIMIT, Breakdown, Breaker, Coverage, Piece};
 pub use counts::GroupCounts;
+pub use error::GroupsError;
+pub use pattern::Pattern;
+pub use set::{Group, GroupSet};

@@ -1,0 +1,8 @@
+#![doc = include_str!("reference.md")]
+
+mod error;
+mod program;
+mod syntax;
+
+pub use error::{PatternFault, PatternFaultKind};
+pub use program::Pattern;

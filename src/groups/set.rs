@@ -1,0 +1,266 @@
+//! A group set: its groups and the patterns that find them.
+
+use std::sync::Arc;
+
+use super::error::GroupsError;
+use super::features::KEYS;
+use super::{GroupCounts, Pattern};
+use crate::chem::{Composition, Element};
+use crate::table::{Row, Table};
+
+/// A group of a set, as published.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Group {
+    /// Published number.
+    pub number: u16,
+    /// Formula as the paper prints it.
+    pub formula: Arc<str>,
+    /// Atoms it stands for, doubled: some groups hold half an atom.
+    pub doubled_composition: Composition,
+}
+
+/// A pattern with what it gives.
+#[derive(Clone, Debug)]
+pub(super) struct GroupPattern {
+    pub(super) gives: GroupCounts,
+    pub(super) pattern: Pattern,
+    pub(super) rank: u16,
+    pub(super) text: String,
+    pub(super) example: Option<String>,
+    pub(super) line: u64,
+}
+
+/// A published group set with our patterns for it.
+#[derive(Clone, Debug)]
+pub struct GroupSet {
+    id: &'static str,
+    groups: Vec<Group>,
+    pub(super) patterns: Vec<GroupPattern>,
+    /// Patterns whose first step may be at an atom with this key:
+    /// `filed[starts[key]..starts[key + 1]]`.
+    filed: Vec<u16>,
+    starts: [u32; KEYS + 1],
+}
+
+impl GroupSet {
+    /// Reads a set from the texts of its group table (columns `number`,
+    /// `formula`, `composition`) and its pattern table; each text comes with
+    /// the file name for messages.
+    ///
+    /// # Errors
+    ///
+    /// A table fault, a duplicate or unknown group number, a composition that
+    /// is no formula, a pattern that does not compile: each with its place.
+    pub fn read(
+        id: &'static str,
+        groups: (&str, &str),
+        patterns: (&str, &str),
+    ) -> Result<Self, GroupsError> {
+        let groups = read_groups(&Table::read(groups.0, groups.1)?)?;
+        let patterns = read_patterns(&Table::read(patterns.0, patterns.1)?, &groups)?;
+        let mut filed = Vec::new();
+        let mut starts = [0; KEYS + 1];
+        for key in 0..KEYS {
+            for (index, pattern) in patterns.iter().enumerate() {
+                if pattern.pattern.may_start_at(key) {
+                    filed.push(index as u16);
+                }
+            }
+            starts[key + 1] = filed.len() as u32;
+        }
+        Ok(Self {
+            id,
+            groups,
+            patterns,
+            filed,
+            starts,
+        })
+    }
+
+    /// Identifier of the set, as in the `set` column.
+    pub fn id(&self) -> &'static str {
+        self.id
+    }
+
+    /// The groups, ascending by number.
+    pub fn groups(&self) -> &[Group] {
+        &self.groups
+    }
+
+    /// The group with this published number.
+    pub fn group(&self, number: u16) -> Option<&Group> {
+        let at = self
+            .groups
+            .binary_search_by_key(&number, |group| group.number)
+            .ok()?;
+        Some(&self.groups[at])
+    }
+
+    /// Every pattern as (what it gives, its text, an example molecule, its line).
+    pub fn patterns(
+        &self,
+    ) -> impl ExactSizeIterator<Item = (&GroupCounts, &str, Option<&str>, u64)> {
+        self.patterns.iter().map(|pattern| {
+            (
+                &pattern.gives,
+                pattern.text.as_str(),
+                pattern.example.as_deref(),
+                pattern.line,
+            )
+        })
+    }
+
+    /// The compiled pattern at a position of [`patterns`](Self::patterns).
+    pub fn pattern(&self, index: usize) -> &Pattern {
+        &self.patterns[index].pattern
+    }
+
+    /// Counts in words: `2 CH3, 1 CH2`.
+    pub fn describe(&self, counts: &GroupCounts) -> String {
+        counts
+            .iter()
+            .map(|(number, count)| match self.group(number) {
+                Some(group) => format!("{count} {}", group.formula),
+                None => format!("{count} of unknown group {number}"),
+            })
+            .collect::<Vec<_>>()
+            .join(", ")
+    }
+
+    /// Whether the groups' formulas add up to the composition of the molecule.
+    pub fn conserves(&self, counts: &GroupCounts, composition: &Composition) -> bool {
+        let mut doubled = Composition::default();
+        for (number, count) in counts.iter() {
+            match self.group(number) {
+                Some(group) => doubled.add_times(&group.doubled_composition, count),
+                None => return false,
+            }
+        }
+        Element::ALL
+            .into_iter()
+            .all(|element| doubled.count(element) == 2 * composition.count(element))
+    }
+
+    pub(super) fn filed_under(&self, key: u8) -> &[u16] {
+        let key = usize::from(key);
+        &self.filed[self.starts[key] as usize..self.starts[key + 1] as usize]
+    }
+}
+
+fn read_groups(table: &Table) -> Result<Vec<Group>, GroupsError> {
+    let number = table.column("number")?;
+    let formula = table.column("formula")?;
+    let composition = table.column("composition")?;
+    let mut groups: Vec<Group> = Vec::with_capacity(table.rows().len());
+    for row in table.rows() {
+        let group = Group {
+            number: row.required_integer(number)?,
+            formula: row.required_text(formula)?.into(),
+            doubled_composition: doubled_composition(row.required_text(composition)?)
+                .ok_or_else(|| row.fault(composition, "is no formula of whole or half atoms"))?,
+        };
+        match groups.binary_search_by_key(&group.number, |known| known.number) {
+            Ok(_) => return Err(row.fault(number, "stands twice").into()),
+            Err(at) => groups.insert(at, group),
+        }
+    }
+    Ok(groups)
+}
+
+fn read_patterns(table: &Table, groups: &[Group]) -> Result<Vec<GroupPattern>, GroupsError> {
+    let gives = table.column("gives")?;
+    let pattern = table.column("pattern")?;
+    let rank = table.column("rank")?;
+    let example = table.column("example")?;
+    let mut patterns = Vec::with_capacity(table.rows().len());
+    for row in table.rows() {
+        let counts = read_gives(row, gives, groups)?;
+        let text = row.required_text(pattern)?;
+        let compiled = Pattern::compile(text).map_err(|faults| GroupsError::Pattern {
+            file: table.file().to_owned(),
+            line: row.line(),
+            pattern: text.to_owned(),
+            faults,
+        })?;
+        patterns.push(GroupPattern {
+            gives: counts,
+            pattern: compiled,
+            rank: if row.text(rank).is_empty() {
+                0
+            } else {
+                row.required_integer(rank)?
+            },
+            text: text.to_owned(),
+            example: Some(row.text(example))
+                .filter(|text| !text.is_empty())
+                .map(str::to_owned),
+            line: row.line(),
+        });
+    }
+    Ok(patterns)
+}
+
+fn read_gives(
+    row: Row<'_>,
+    column: crate::table::Column,
+    groups: &[Group],
+) -> Result<GroupCounts, GroupsError> {
+    let counts = GroupCounts::from_text(row.required_text(column)?)
+        .ok_or_else(|| row.fault(column, "is not of the form `number:count`"))?;
+    for (number, _) in counts.iter() {
+        if groups
+            .binary_search_by_key(&number, |group| group.number)
+            .is_err()
+        {
+            return Err(row
+                .fault(column, format!("group {number} is not in the set"))
+                .into());
+        }
+    }
+    Ok(counts)
+}
+
+/// Twice the atoms of a formula whose counts may end in `.5`.
+fn doubled_composition(text: &str) -> Option<Composition> {
+    let mut doubled = Composition::default();
+    let mut rest = text;
+    while !rest.is_empty() {
+        let length = if rest[1..].starts_with(|next: char| next.is_ascii_lowercase()) {
+            2
+        } else {
+            1
+        };
+        let element = Element::from_symbol(rest.get(..length)?)?;
+        rest = &rest[length..];
+        let digits = rest
+            .find(|next: char| !next.is_ascii_digit() && next != '.')
+            .unwrap_or(rest.len());
+        let atoms: f64 = if digits == 0 {
+            1.0
+        } else {
+            rest[..digits].parse().ok()?
+        };
+        rest = &rest[digits..];
+        let twice = 2.0 * atoms;
+        if twice.fract() != 0.0 || !(0.0..=2000.0).contains(&twice) {
+            return None;
+        }
+        doubled.add(element, twice as u16);
+    }
+    Some(doubled)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn half_atoms_are_read() {
+        let doubled = doubled_composition("C1.5H3O").unwrap();
+        assert_eq!(doubled.count(Element::C), 3);
+        assert_eq!(doubled.count(Element::H), 6);
+        assert_eq!(doubled.count(Element::O), 2);
+        assert_eq!(doubled_composition("C0.3"), None);
+        assert_eq!(doubled_composition("é"), None);
+    }
+}
