@@ -225,11 +225,12 @@ fn doubled_composition(text: &str) -> Option<Composition> {
     let mut doubled = Composition::default();
     let mut rest = text;
     while !rest.is_empty() {
-        let length = if rest[1..].starts_with(|next: char| next.is_ascii_lowercase()) {
-            2
-        } else {
-            1
-        };
+        let letters = rest
+            .chars()
+            .skip(1)
+            .take_while(char::is_ascii_lowercase)
+            .count();
+        let length = 1 + letters.min(1);
         let element = Element::from_symbol(rest.get(..length)?)?;
         rest = &rest[length..];
         let digits = rest
