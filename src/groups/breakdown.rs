@@ -4,6 +4,7 @@ use std::cmp::Ordering;
 
 use super::cover::{Candidate, Cover, NoCover, contains, insert, members};
 use super::features::{self, FeatureWord};
+use super::pattern::Search;
 use super::{GroupCounts, GroupSet, describe};
 use crate::chem::Molecule;
 
@@ -56,7 +57,8 @@ pub struct Breaker {
     words: Vec<FeatureWord>,
     keys: Vec<u8>,
     walk: Vec<u32>,
-    seen: Vec<bool>,
+    visited: Vec<bool>,
+    seen: Vec<u8>,
     small: Cover<1>,
     medium: Cover<4>,
     large: Cover<16>,
@@ -87,12 +89,12 @@ impl Breaker {
     fn walk_along_bonds(&mut self, molecule: &Molecule) {
         let atoms = molecule.atoms().len();
         self.walk.clear();
-        self.seen.clear();
-        self.seen.resize(atoms, false);
+        self.visited.clear();
+        self.visited.resize(atoms, false);
         let start = (0..atoms as u32).min_by_key(|&atom| molecule.neighbors(atom).len());
         let mut stack: Vec<u32> = start.into_iter().collect();
         while let Some(atom) = stack.pop() {
-            if std::mem::replace(&mut self.seen[atom as usize], true) {
+            if std::mem::replace(&mut self.visited[atom as usize], true) {
                 continue;
             }
             self.walk.push(atom);
@@ -117,11 +119,13 @@ impl Breaker {
         set: &GroupSet,
         counts: &mut GroupCounts,
     ) -> Coverage {
-        let (words, keys, walk) = (&self.words, &self.keys, &self.walk);
+        let seen = &mut self.seen;
+        let mut search = Search::new(molecule, &self.words, &set.environments, seen);
+        let (keys, walk) = (&self.keys, &self.walk);
         match molecule.atoms().len() {
-            0..=64 => cover(&mut self.small, words, keys, walk, molecule, set, counts),
-            65..=256 => cover(&mut self.medium, words, keys, walk, molecule, set, counts),
-            257..=ATOM_LIMIT => cover(&mut self.large, words, keys, walk, molecule, set, counts),
+            0..=64 => cover(&mut self.small, &mut search, keys, walk, set, counts),
+            65..=256 => cover(&mut self.medium, &mut search, keys, walk, set, counts),
+            257..=ATOM_LIMIT => cover(&mut self.large, &mut search, keys, walk, set, counts),
             _ => {
                 counts.clear();
                 Coverage::TooAmbiguous
@@ -150,41 +154,37 @@ impl Breaker {
 
 fn cover<const W: usize>(
     cover: &mut Cover<W>,
-    words: &[FeatureWord],
+    search: &mut Search<'_>,
     keys: &[u8],
     walk: &[u32],
-    molecule: &Molecule,
     set: &GroupSet,
     counts: &mut GroupCounts,
 ) -> Coverage {
     counts.clear();
     cover.clear();
     for (atom, &key) in keys.iter().enumerate() {
-        let first = cover.candidates.len();
         for &index in set.filed_under(key) {
             let pattern = &set.patterns[usize::from(index)];
-            pattern
-                .pattern
-                .find_at(molecule, words, atom as u32, &mut |place| {
-                    let mut atoms = [0; W];
-                    for &atom in place {
-                        insert(&mut atoms, atom);
-                    }
-                    let groups = pattern.gives.total() as u16;
-                    let found = Candidate {
+            pattern.program.find_at(search, atom as u32, &mut |place| {
+                let mut atoms = [0; W];
+                for &atom in place {
+                    insert(&mut atoms, atom);
+                }
+                // Symmetric places, and patterns that say the same of the same atoms.
+                let known = cover
+                    .candidates
+                    .iter()
+                    .any(|other| other.pattern == pattern.like && other.atoms == atoms);
+                if !known {
+                    cover.candidates.push(Candidate {
                         atoms,
-                        pattern: index,
-                        groups,
+                        pattern: pattern.like,
+                        groups: pattern.groups,
                         rank: pattern.rank,
-                    };
-                    let known = cover.candidates[first..]
-                        .iter()
-                        .any(|other| other.pattern == index && other.atoms == atoms);
-                    if !known {
-                        cover.candidates.push(found);
-                    }
-                    true
-                });
+                    });
+                }
+                true
+            });
         }
     }
     let counts_of = |patterns: &[u16]| {
@@ -205,7 +205,7 @@ fn cover<const W: usize>(
     }
     if !cover.uncovered.is_empty() {
         Coverage::Partial
-    } else if set.conserves(counts, &molecule.composition()) {
+    } else if set.conserves(counts, &search.molecule.composition()) {
         Coverage::Complete
     } else {
         Coverage::Unbalanced

@@ -4,6 +4,7 @@
 //! Entry points: [`GroupSet::read`], [`Breaker`], [`Pattern::compile`].
 
 mod breakdown;
+mod built_in;
 mod counts;
 mod cover;
 mod describe;
@@ -13,6 +14,7 @@ pub mod pattern;
 mod set;
 
 pub use breakdown::{ATOM_LIMIT, Breakdown, Breaker, Coverage, Piece};
+pub use built_in::{SetId, SetTexts};
 pub use counts::GroupCounts;
 pub use error::GroupsError;
 pub use pattern::Pattern;

@@ -2,9 +2,10 @@
 
 use std::sync::Arc;
 
+use super::GroupCounts;
 use super::error::GroupsError;
 use super::features::KEYS;
-use super::{GroupCounts, Pattern};
+use super::pattern::{Environments, Program};
 use crate::chem::{Composition, Element};
 use crate::table::{Row, Table};
 
@@ -23,7 +24,11 @@ pub struct Group {
 #[derive(Clone, Debug)]
 pub(super) struct GroupPattern {
     pub(super) gives: GroupCounts,
-    pub(super) pattern: Pattern,
+    /// How many groups that is.
+    pub(super) groups: u16,
+    /// The first pattern that gives the same at the same rank.
+    pub(super) like: u16,
+    pub(super) program: Program,
     pub(super) rank: u16,
     pub(super) text: String,
     pub(super) example: Option<String>,
@@ -36,6 +41,7 @@ pub struct GroupSet {
     id: &'static str,
     groups: Vec<Group>,
     pub(super) patterns: Vec<GroupPattern>,
+    pub(super) environments: Environments,
     /// Patterns whose first step may be at an atom with this key:
     /// `filed[starts[key]..starts[key + 1]]`.
     filed: Vec<u16>,
@@ -57,12 +63,13 @@ impl GroupSet {
         patterns: (&str, &str),
     ) -> Result<Self, GroupsError> {
         let groups = read_groups(&Table::read(groups.0, groups.1)?)?;
-        let patterns = read_patterns(&Table::read(patterns.0, patterns.1)?, &groups)?;
+        let (patterns, environments) =
+            read_patterns(&Table::read(patterns.0, patterns.1)?, &groups)?;
         let mut filed = Vec::new();
         let mut starts = [0; KEYS + 1];
         for key in 0..KEYS {
             for (index, pattern) in patterns.iter().enumerate() {
-                if pattern.pattern.may_start_at(key) {
+                if pattern.program.may_start_at(key) {
                     filed.push(index as u16);
                 }
             }
@@ -72,6 +79,7 @@ impl GroupSet {
             id,
             groups,
             patterns,
+            environments,
             filed,
             starts,
         })
@@ -108,11 +116,6 @@ impl GroupSet {
                 pattern.line,
             )
         })
-    }
-
-    /// The compiled pattern at a position of [`patterns`](Self::patterns).
-    pub fn pattern(&self, index: usize) -> &Pattern {
-        &self.patterns[index].pattern
     }
 
     /// Counts in words: `2 CH3, 1 CH2`.
@@ -167,29 +170,41 @@ fn read_groups(table: &Table) -> Result<Vec<Group>, GroupsError> {
     Ok(groups)
 }
 
-fn read_patterns(table: &Table, groups: &[Group]) -> Result<Vec<GroupPattern>, GroupsError> {
+fn read_patterns(
+    table: &Table,
+    groups: &[Group],
+) -> Result<(Vec<GroupPattern>, Environments), GroupsError> {
+    let mut environments = Environments::default();
     let gives = table.column("gives")?;
     let pattern = table.column("pattern")?;
     let rank = table.column("rank")?;
     let example = table.column("example")?;
-    let mut patterns = Vec::with_capacity(table.rows().len());
+    let mut patterns: Vec<GroupPattern> = Vec::with_capacity(table.rows().len());
     for row in table.rows() {
         let counts = read_gives(row, gives, groups)?;
         let text = row.required_text(pattern)?;
-        let compiled = Pattern::compile(text).map_err(|faults| GroupsError::Pattern {
-            file: table.file().to_owned(),
-            line: row.line(),
-            pattern: text.to_owned(),
-            faults,
-        })?;
+        let program =
+            Program::compile(text, &mut environments).map_err(|faults| GroupsError::Pattern {
+                file: table.file().to_owned(),
+                line: row.line(),
+                pattern: text.to_owned(),
+                faults,
+            })?;
+        let rank = if row.text(rank).is_empty() {
+            0
+        } else {
+            row.required_integer(rank)?
+        };
+        let like = patterns
+            .iter()
+            .position(|other| other.gives == counts && other.rank == rank)
+            .unwrap_or(patterns.len());
         patterns.push(GroupPattern {
+            groups: counts.total() as u16,
             gives: counts,
-            pattern: compiled,
-            rank: if row.text(rank).is_empty() {
-                0
-            } else {
-                row.required_integer(rank)?
-            },
+            like: like as u16,
+            program,
+            rank,
             text: text.to_owned(),
             example: Some(row.text(example))
                 .filter(|text| !text.is_empty())
@@ -197,7 +212,7 @@ fn read_patterns(table: &Table, groups: &[Group]) -> Result<Vec<GroupPattern>, G
             line: row.line(),
         });
     }
-    Ok(patterns)
+    Ok((patterns, environments))
 }
 
 fn read_gives(

@@ -6,3 +6,4 @@ mod syntax;
 
 pub use error::{PatternFault, PatternFaultKind};
 pub use program::Pattern;
+pub(super) use program::{Environments, Program, Search};

@@ -11,8 +11,15 @@ use crate::groups::features::{self, FeatureWord};
 struct Clause {
     allowed: FeatureWord,
     required: FeatureWord,
-    /// Environments (index into [`Pattern::environments`]) and whether each has to be found.
+    /// Positions in [`Environments`] and whether each has to be found.
     environments: Vec<(usize, bool)>,
+}
+
+impl Clause {
+    fn allows_key(&self, key: usize) -> bool {
+        let word = features::key_word(key);
+        word & !self.allowed == 0 && self.required & features::KEY_FIELDS & !word == 0
+    }
 }
 
 /// One atom of the pattern in the order in which it is looked for.
@@ -27,17 +34,73 @@ struct Step {
     closures: Vec<(usize, BondMask)>,
 }
 
-/// A compiled pattern.
+/// A pattern compiled against a table of [`Environments`].
 #[derive(Clone, Debug)]
-pub struct Pattern {
+pub(in crate::groups) struct Program {
     /// Covered atoms first, then context.
     steps: Vec<Step>,
     covered: usize,
-    environments: Vec<Pattern>,
+}
+
+/// The `$(…)` of one or more patterns; equal ones are kept once.
+#[derive(Clone, Debug, Default)]
+pub(in crate::groups) struct Environments {
+    texts: Vec<String>,
+    programs: Vec<Program>,
+}
+
+/// What is known of a molecule while patterns are looked for in it.
+pub(in crate::groups) struct Search<'a> {
+    pub(in crate::groups) molecule: &'a Molecule,
+    pub(in crate::groups) words: &'a [FeatureWord],
+    environments: &'a Environments,
+    /// One for each environment and atom: 0 not looked at yet, 1 is not there, 2 is there.
+    seen: &'a mut Vec<u8>,
+}
+
+impl<'a> Search<'a> {
+    /// A search that has looked at nothing yet; `seen` is scratch memory.
+    pub(in crate::groups) fn new(
+        molecule: &'a Molecule,
+        words: &'a [FeatureWord],
+        environments: &'a Environments,
+        seen: &'a mut Vec<u8>,
+    ) -> Self {
+        seen.clear();
+        seen.resize(environments.programs.len() * words.len(), 0);
+        Self {
+            molecule,
+            words,
+            environments,
+            seen,
+        }
+    }
+
+    /// Whether an atom is the first atom of an environment.
+    fn holds(&mut self, environment: usize, atom: u32) -> bool {
+        let at = environment * self.words.len() + atom as usize;
+        if self.seen[at] == 0 {
+            let environments = self.environments;
+            let mut there = false;
+            environments.programs[environment].find_at(self, atom, &mut |_| {
+                there = true;
+                false
+            });
+            self.seen[at] = 1 + u8::from(there);
+        }
+        self.seen[at] == 2
+    }
+}
+
+/// A compiled pattern that stands alone.
+#[derive(Clone, Debug)]
+pub struct Pattern {
+    program: Program,
+    environments: Environments,
 }
 
 /// The molecule atoms of the covered pattern atoms, in step order.
-pub(in crate::groups) type Place = [u32; ATOM_LIMIT];
+type Place = [u32; ATOM_LIMIT];
 
 impl Pattern {
     /// Compiles a pattern.
@@ -46,19 +109,11 @@ impl Pattern {
     ///
     /// Every fault that can be told apart, each with its place and remedy.
     pub fn compile(text: &str) -> Result<Self, Vec<PatternFault>> {
-        Self::from_tree(&parse(text)?, None)
-    }
-
-    /// How many atoms a place of the pattern covers.
-    pub fn covered_atoms(&self) -> usize {
-        self.covered
-    }
-
-    /// Whether an atom with this key (see [`features::key`]) can be the first one looked for.
-    pub(in crate::groups) fn may_start_at(&self, key: usize) -> bool {
-        self.steps[0].clauses.iter().any(|clause| {
-            let word = features::key_word(key);
-            word & !clause.allowed == 0 && clause.required & features::KEY_FIELDS & !word == 0
+        let mut environments = Environments::default();
+        let program = Program::compile(text, &mut environments)?;
+        Ok(Self {
+            program,
+            environments,
         })
     }
 
@@ -74,9 +129,11 @@ impl Pattern {
         let words: Vec<_> = (0..atoms)
             .map(|atom| features::word(molecule, atom))
             .collect();
+        let mut seen = Vec::new();
+        let mut search = Search::new(molecule, &words, &self.environments, &mut seen);
         let mut places: Vec<Vec<u32>> = Vec::new();
         for atom in 0..atoms {
-            self.find_at(molecule, &words, atom, &mut |place| {
+            self.program.find_at(&mut search, atom, &mut |place| {
                 let mut place = place.to_vec();
                 place.sort_unstable();
                 if !places.contains(&place) {
@@ -90,46 +147,58 @@ impl Pattern {
         }
         places.len()
     }
+}
+
+impl Program {
+    /// Compiles a pattern whose environments go to (or are already in) a table.
+    pub(in crate::groups) fn compile(
+        text: &str,
+        environments: &mut Environments,
+    ) -> Result<Self, Vec<PatternFault>> {
+        Self::from_tree(&parse(text)?, None, environments)
+    }
+
+    /// Whether an atom with this key (see [`features::key`]) can be the first one looked for.
+    pub(in crate::groups) fn may_start_at(&self, key: usize) -> bool {
+        self.steps[0]
+            .clauses
+            .iter()
+            .any(|clause| clause.allows_key(key))
+    }
 
     /// Calls `found` with the covered atoms of every place whose first step is
     /// at `atom`; symmetric places repeat. Stops when `found` returns false.
     pub(in crate::groups) fn find_at(
         &self,
-        molecule: &Molecule,
-        words: &[FeatureWord],
+        search: &mut Search<'_>,
         atom: u32,
         found: &mut impl FnMut(&[u32]) -> bool,
     ) {
-        if !self.passes(0, molecule, words, atom) {
+        if !self.passes(0, search, atom) {
             return;
         }
         let mut place = [0; ATOM_LIMIT];
         place[0] = atom;
-        if self.steps.len() == 1 {
-            found(&place[..1]);
-        } else {
-            self.extend(1, molecule, words, &mut place, found);
-        }
+        self.extend(1, search, &mut place, found);
     }
 
     /// Looks for the covered steps from `step` on; false when the caller is to stop.
     fn extend(
         &self,
         step: usize,
-        molecule: &Molecule,
-        words: &[FeatureWord],
+        search: &mut Search<'_>,
         place: &mut Place,
         found: &mut impl FnMut(&[u32]) -> bool,
     ) -> bool {
         if step == self.covered {
-            return !self.has_context(step, molecule, words, place)
-                || found(&place[..self.covered]);
+            return !self.has_context(step, search, place) || found(&place[..self.covered]);
         }
+        let molecule = search.molecule;
         let parent = place[self.steps[step].parent];
         for neighbor in molecule.neighbors(parent) {
-            if self.fits(step, molecule, words, place, neighbor) {
+            if self.fits(step, search, place, neighbor) {
                 place[step] = neighbor.atom;
-                if !self.extend(step + 1, molecule, words, place, found) {
+                if !self.extend(step + 1, search, place, found) {
                     return false;
                 }
             }
@@ -138,21 +207,16 @@ impl Pattern {
     }
 
     /// Whether the context steps from `step` on can be placed.
-    fn has_context(
-        &self,
-        step: usize,
-        molecule: &Molecule,
-        words: &[FeatureWord],
-        place: &mut Place,
-    ) -> bool {
+    fn has_context(&self, step: usize, search: &mut Search<'_>, place: &mut Place) -> bool {
         if step == self.steps.len() {
             return true;
         }
+        let molecule = search.molecule;
         let parent = place[self.steps[step].parent];
         molecule.neighbors(parent).iter().any(|neighbor| {
-            self.fits(step, molecule, words, place, neighbor) && {
+            self.fits(step, search, place, neighbor) && {
                 place[step] = neighbor.atom;
-                self.has_context(step + 1, molecule, words, place)
+                self.has_context(step + 1, search, place)
             }
         })
     }
@@ -160,48 +224,47 @@ impl Pattern {
     fn fits(
         &self,
         step: usize,
-        molecule: &Molecule,
-        words: &[FeatureWord],
+        search: &mut Search<'_>,
         place: &Place,
         neighbor: &Neighbor,
     ) -> bool {
         let wanted = &self.steps[step];
+        let molecule = search.molecule;
         passes_bond(neighbor, wanted.bond)
             && !place[..step].contains(&neighbor.atom)
-            && self.passes(step, molecule, words, neighbor.atom)
             && wanted.closures.iter().all(|&(other, mask)| {
                 molecule
                     .neighbors(neighbor.atom)
                     .iter()
                     .any(|bond| bond.atom == place[other] && passes_bond(bond, mask))
             })
+            && self.passes(step, search, neighbor.atom)
     }
 
-    fn passes(&self, step: usize, molecule: &Molecule, words: &[FeatureWord], atom: u32) -> bool {
-        let word = words[atom as usize];
+    fn passes(&self, step: usize, search: &mut Search<'_>, atom: u32) -> bool {
+        let word = search.words[atom as usize];
         self.steps[step].clauses.iter().any(|clause| {
             word & !clause.allowed == 0
                 && word & clause.required == clause.required
-                && clause.environments.iter().all(|&(environment, wanted)| {
-                    let mut seen = false;
-                    self.environments[environment].find_at(molecule, words, atom, &mut |_| {
-                        seen = true;
-                        false
-                    });
-                    seen == wanted
-                })
+                && clause
+                    .environments
+                    .iter()
+                    .all(|&(environment, wanted)| search.holds(environment, atom) == wanted)
         })
     }
 
     /// Lays the steps out; `first` forces the first atom of the text to come
     /// first (environments are found from there), otherwise the covered atom
     /// that fewest atoms pass.
-    fn from_tree(tree: &Tree, first: Option<usize>) -> Result<Self, Vec<PatternFault>> {
-        let mut environments = Vec::new();
+    fn from_tree(
+        tree: &Tree,
+        first: Option<usize>,
+        environments: &mut Environments,
+    ) -> Result<Self, Vec<PatternFault>> {
         let mut clauses = Vec::with_capacity(tree.atoms.len());
         let mut faults = Vec::new();
         for atom in &tree.atoms {
-            let found = normal_form(&atom.tests, true, &mut environments, &mut faults);
+            let found = normal_form(&atom.tests, true, environments, &mut faults);
             if found.is_empty() && faults.is_empty() {
                 faults.push(PatternFault {
                     span: atom.span.clone(),
@@ -217,11 +280,9 @@ impl Pattern {
         let selectivity = |atom: usize| -> usize {
             let keys = (0..features::KEYS)
                 .filter(|&key| {
-                    clauses[atom].iter().any(|clause: &Clause| {
-                        let word = features::key_word(key);
-                        word & !clause.allowed == 0
-                            && clause.required & features::KEY_FIELDS & !word == 0
-                    })
+                    clauses[atom]
+                        .iter()
+                        .any(|clause: &Clause| clause.allows_key(key))
                 })
                 .count();
             // Carbon is common: look for anything else first.
@@ -280,7 +341,6 @@ impl Pattern {
         Ok(Self {
             steps,
             covered: covered.len(),
-            environments,
         })
     }
 }
@@ -305,22 +365,30 @@ fn passes_bond(bond: &Neighbor, mask: BondMask) -> bool {
 fn normal_form(
     expression: &Expression,
     wanted: bool,
-    environments: &mut Vec<Pattern>,
+    environments: &mut Environments,
     faults: &mut Vec<PatternFault>,
 ) -> Vec<Clause> {
     match expression {
-        Expression::Is(Test::Environment(tree)) => {
-            match Pattern::from_tree(tree, Some(0)) {
-                Ok(pattern) => environments.push(pattern),
-                Err(more) => {
-                    faults.extend(more);
-                    return Vec::new();
-                }
-            }
+        Expression::Is(Test::Environment(text, tree)) => {
+            let known = environments.texts.iter().position(|other| other == text);
+            let environment = match known {
+                Some(environment) => environment,
+                None => match Program::from_tree(tree, Some(0), environments) {
+                    Ok(program) => {
+                        environments.texts.push(text.clone());
+                        environments.programs.push(program);
+                        environments.programs.len() - 1
+                    }
+                    Err(more) => {
+                        faults.extend(more);
+                        return Vec::new();
+                    }
+                },
+            };
             vec![Clause {
                 allowed: features::ALL,
                 required: 0,
-                environments: vec![(environments.len() - 1, wanted)],
+                environments: vec![(environment, wanted)],
             }]
         }
         Expression::Is(test) => plain(test, wanted),
@@ -426,6 +494,6 @@ fn plain(test: &Test, wanted: bool) -> Vec<Clause> {
                 }
             }]
         }
-        Test::Environment(_) => unreachable!("handled by the caller"),
+        Test::Environment(..) => unreachable!("handled by the caller"),
     }
 }

@@ -35,7 +35,8 @@ pub(super) enum Test {
     RingSize(u8),
     /// Sign of the charge.
     Charge(i8),
-    Environment(Box<Tree>),
+    /// Its text, by which equal environments are known, and its tree.
+    Environment(String, Box<Tree>),
 }
 
 /// Tests joined by and, or, not.
@@ -405,12 +406,14 @@ impl Parser<'_> {
                 if depth == DEPTH_LIMIT {
                     self.fault(start..self.at, Kind::TooDeep);
                 }
+                let inside = self.at;
                 let tree = self.pattern(depth + 1);
+                let text = String::from_utf8_lossy(&self.text[inside..self.at]).into_owned();
                 if !self.take(b')') {
                     self.fault(start..start + 2, Kind::Unclosed);
                     return None;
                 }
-                Some(Test::Environment(Box::new(tree)))
+                Some(Test::Environment(text, Box::new(tree)))
             }
             b'C' if next_is(self.text, b'l') => self.two_letter(Element::Cl),
             b'B' if next_is(self.text, b'r') => self.two_letter(Element::Br),
