@@ -1,5 +1,7 @@
 //! The elements a molecule may hold.
 
+use std::fmt;
+
 /// An element that Groupsmith reads.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
 #[repr(u8)]
@@ -57,10 +59,34 @@ impl Element {
         ][self as usize]
     }
 
+    /// The English name, lower case.
+    pub const fn name(self) -> &'static str {
+        [
+            "hydrogen",
+            "boron",
+            "carbon",
+            "nitrogen",
+            "oxygen",
+            "fluorine",
+            "silicon",
+            "phosphorus",
+            "sulfur",
+            "chlorine",
+            "bromine",
+            "iodine",
+        ][self as usize]
+    }
+
     /// The element with this symbol, if it is one of ours.
     pub fn from_symbol(symbol: &str) -> Option<Self> {
         Self::ALL
             .into_iter()
             .find(|element| element.symbol() == symbol)
+    }
+}
+
+impl fmt::Display for Element {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(self.symbol())
     }
 }

@@ -1,9 +1,9 @@
 //! The molecule in its flat form.
 
-use super::{Composition, Element};
+use super::{Composition, Element, Reader, SmilesError};
 
 /// An atom that is not folded into a neighbor: every heavy atom, and hydrogen
-/// only in H2.
+/// only in H2, which is one hydrogen atom with one hydrogen bound to it.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct Atom {
     /// Element.
@@ -23,6 +23,9 @@ pub struct Atom {
     /// Member of any ring.
     pub in_ring: bool,
     /// Sizes of the smallest rings through it: bit n set for an n-ring, 3 ≤ n ≤ 15.
+    ///
+    /// One ring size for each ring bond of the atom: that of the shortest ring
+    /// through the bond.
     pub ring_sizes: u16,
 }
 
@@ -66,6 +69,28 @@ pub struct Neighbor {
     pub in_ring: bool,
 }
 
+/// A tetrahedral mark.
+///
+/// Seen from the first ligand, the other three run counterclockwise.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) struct Center {
+    pub(super) atom: u32,
+    /// Neighbors; the hydrogen or lone pair is [`super::smiles::NONE`].
+    pub(super) ligands: [u32; 4],
+}
+
+/// A double bond with known geometry.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) struct Geometry {
+    pub(super) bond: u32,
+    /// The two ends, lower index first.
+    pub(super) ends: [u32; 2],
+    /// One neighbor of each end; the hydrogen is [`super::smiles::NONE`].
+    pub(super) ligands: [u32; 2],
+    /// Whether the two ligands lie on the same side.
+    pub(super) same_side: bool,
+}
+
 /// A neutral one-component molecule, atoms in the order of the line.
 #[derive(Clone, Debug, Default)]
 pub struct Molecule {
@@ -73,9 +98,29 @@ pub struct Molecule {
     pub(super) bonds: Vec<Bond>,
     pub(super) neighbor_starts: Vec<u32>,
     pub(super) neighbors: Vec<Neighbor>,
+    pub(super) centers: Vec<Center>,
+    pub(super) geometries: Vec<Geometry>,
 }
 
 impl Molecule {
+    /// Reads one line of SMILES; use a [`Reader`] for many.
+    ///
+    /// # Errors
+    ///
+    /// Those of [`Reader::read_into`].
+    ///
+    /// # Example
+    ///
+    /// ```
+    /// use groupsmith::chem::Molecule;
+    ///
+    /// let toluene = Molecule::from_smiles("Cc1ccccc1").unwrap();
+    /// assert_eq!(toluene.composition().to_string(), "C7H8");
+    /// ```
+    pub fn from_smiles(text: &str) -> Result<Self, SmilesError> {
+        Reader::new().read(text)
+    }
+
     /// The atoms.
     pub fn atoms(&self) -> &[Atom] {
         &self.atoms
@@ -98,6 +143,21 @@ impl Molecule {
         (self.bonds.len() + 1).saturating_sub(self.atoms.len())
     }
 
+    /// Number of atoms that are not hydrogen.
+    pub fn heavy_atoms(&self) -> usize {
+        match self.atoms.first() {
+            Some(atom) if atom.element == Element::H => 0,
+            _ => self.atoms.len(),
+        }
+    }
+
+    /// Whether isotopes are stated anywhere.
+    pub fn is_isotopic(&self) -> bool {
+        self.atoms
+            .iter()
+            .any(|atom| atom.isotope.is_some() || atom.deuterium > 0 || atom.tritium > 0)
+    }
+
     /// Element counts, hydrogens included.
     pub fn composition(&self) -> Composition {
         let mut composition = Composition::default();
@@ -106,5 +166,65 @@ impl Molecule {
             composition.add(Element::H, u16::from(atom.hydrogens));
         }
         composition
+    }
+
+    pub(super) fn clear(&mut self) {
+        self.atoms.clear();
+        self.bonds.clear();
+        self.neighbor_starts.clear();
+        self.neighbors.clear();
+        self.centers.clear();
+        self.geometries.clear();
+    }
+
+    pub(super) fn degree(&self, atom: u32) -> usize {
+        (self.neighbor_starts[atom as usize + 1] - self.neighbor_starts[atom as usize]) as usize
+    }
+
+    /// Builds the neighbor lists from the bonds; `cursor` is scratch.
+    pub(super) fn link(&mut self, cursor: &mut Vec<u32>) {
+        let atoms = self.atoms.len();
+        self.neighbor_starts.clear();
+        self.neighbor_starts.resize(atoms + 1, 0);
+        for bond in &self.bonds {
+            self.neighbor_starts[bond.atoms[0] as usize + 1] += 1;
+            self.neighbor_starts[bond.atoms[1] as usize + 1] += 1;
+        }
+        for atom in 0..atoms {
+            self.neighbor_starts[atom + 1] += self.neighbor_starts[atom];
+        }
+        cursor.clear();
+        cursor.extend_from_slice(&self.neighbor_starts[..atoms]);
+        self.neighbors.clear();
+        self.neighbors.resize(
+            2 * self.bonds.len(),
+            Neighbor {
+                atom: 0,
+                bond: 0,
+                order: BondOrder::Single,
+                in_ring: false,
+            },
+        );
+        for (index, bond) in self.bonds.iter().enumerate() {
+            for (here, there) in [(0, 1), (1, 0)] {
+                let slot = &mut cursor[bond.atoms[here] as usize];
+                self.neighbors[*slot as usize] = Neighbor {
+                    atom: bond.atoms[there],
+                    bond: index as u32,
+                    order: bond.order,
+                    in_ring: bond.in_ring,
+                };
+                *slot += 1;
+            }
+        }
+    }
+
+    /// Copies order and ring membership of the bonds into the neighbor lists.
+    pub(super) fn refresh_neighbors(&mut self) {
+        for neighbor in &mut self.neighbors {
+            let bond = &self.bonds[neighbor.bond as usize];
+            neighbor.order = bond.order;
+            neighbor.in_ring = bond.in_ring;
+        }
     }
 }
