@@ -1,1 +1,25 @@
-//! TODO room.
+//! Activity models and phase equilibrium of liquid mixtures.
+//!
+//! Works on component records (group counts turned into `r`, `q` and group
+//! areas) and a state; never on a molecule, a file or a vapor-pressure method:
+//! table texts come in as strings and vapor pressures as a function of the
+//! caller. Mole fractions are used as given and never renormalised in silence.
+//!
+//! Entry points: [`ActivityModel`] (the registry), [`Unifac`] and its
+//! [`Component`]s, [`UnifacMixture`] with its [`UnifacState`] (ln γ and its
+//! derivatives), [`Liquid`] (what every model offers to phase equilibrium).
+
+mod error;
+mod excess;
+mod liquid;
+mod model;
+mod unifac;
+
+pub use error::{MixtureError, PairGap};
+pub use excess::Excess;
+pub use liquid::{IdealState, Liquid};
+pub use model::{ActivityModel, ModelStatus, RESERVED_MODELS};
+pub use unifac::{
+    Component, Coverage, Interaction, MainGroup, Override, PairRecord, Slip, Slips, Subgroup,
+    TableFile, Unifac, UnifacMixture, UnifacOverlay, UnifacState, UnifacTables, UnifacTexts,
+};
