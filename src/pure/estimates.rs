@@ -1,0 +1,322 @@
+//! All properties of one molecule, in the order in which they rest on one another.
+
+use super::StructureFacts;
+use super::corresponding_states::{
+    Constants, LiquidDensityCurve, LiquidDensityInput, LiquidDensityMethod, VaporPressureCurve,
+    VaporPressureMethod,
+};
+use super::joback::{self, Contributions, LinearSums, State};
+use crate::groups::GroupCounts;
+use crate::quantity::{Absent, Estimate, Flag, Flags, Outcome, Property, Status};
+
+/// One outcome for each property; indexed by [`Property`] `as usize`.
+pub type Estimates = [Outcome; Property::COUNT];
+
+/// Reduced temperature below which a vapor pressure is flagged: no data were
+/// looked at there.
+const VAPOR_PRESSURE_TR_LOW: f64 = 0.5;
+
+/// How near two temperatures have to be to count as the same, K.
+const SAME_TEMPERATURE_K: f64 = 1e-6;
+
+/// The tables and the choice of methods; made once, shared by all.
+#[derive(Clone, Debug)]
+pub struct PureMethods {
+    /// Contributions of Joback and Reid.
+    pub joback: Contributions,
+    /// Vapor pressure, and the acentric factor that goes with it.
+    pub vapor_pressure: VaporPressureMethod,
+    /// Density of the saturated liquid.
+    pub liquid_density: LiquidDensityMethod,
+}
+
+impl PureMethods {
+    /// The built-in table and the default methods.
+    pub fn built_in() -> Self {
+        Self {
+            joback: Contributions::built_in(),
+            vapor_pressure: VaporPressureMethod::default(),
+            liquid_density: LiquidDensityMethod::default(),
+        }
+    }
+}
+
+/// Values that replace what a method would say, measured ones as a rule.
+///
+/// A given value is handed on as it stands and used by every method that
+/// starts from it. One that depends on temperature replaces the estimate only
+/// at its own temperature; a density is carried to other temperatures.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Given<'a>(pub &'a [(Property, Estimate)]);
+
+impl<'a> Given<'a> {
+    fn get(self, property: Property) -> Option<&'a Estimate> {
+        self.0
+            .iter()
+            .find(|(given, _)| *given == property)
+            .map(|(_, estimate)| estimate)
+    }
+
+    fn at(self, property: Property, temperature_k: f64) -> Option<&'a Estimate> {
+        self.get(property).filter(|estimate| {
+            !property.depends_on_temperature()
+                || estimate
+                    .temperature_k
+                    .is_some_and(|t| (t - temperature_k).abs() <= SAME_TEMPERATURE_K)
+        })
+    }
+}
+
+/// Every property of one molecule at a temperature.
+///
+/// `counts` are groups of Joback and Reid, or the reason why there are none:
+/// then all that rests on groups is absent for that reason, and the rest is
+/// computed from `given` where it suffices.
+///
+/// # Units and shapes
+///
+/// Temperature in K; values in the SI unit of each property, indexed by
+/// [`Property`] `as usize`.
+///
+/// # Complexity
+///
+/// No allocation; two dozen transcendental functions.
+pub fn estimate_all(
+    methods: &PureMethods,
+    counts: Result<&GroupCounts, &Absent>,
+    facts: &StructureFacts,
+    given: Given<'_>,
+    temperature_k: f64,
+) -> Estimates {
+    let sums = match counts {
+        Ok(counts) => methods.joback.sums(counts),
+        Err(absent) => Err(absent.clone()),
+    };
+    let molecule = Molecule {
+        methods,
+        sums: &sums,
+        facts,
+        given,
+        temperature_k,
+    };
+    let mut all: Estimates = [const { Err(Absent::NoMethod) }; Property::COUNT];
+    let mut put = |property: Property, outcome: Outcome| all[property as usize] = outcome;
+
+    let boiling_point = molecule.additive(Property::BoilingPoint, State::at(temperature_k));
+    let critical_temperature = molecule.critical_temperature(&boiling_point);
+    let state = State {
+        temperature_k,
+        boiling_point_k: boiling_point.as_ref().ok().map(|tb| tb.value),
+        critical_temperature_k: critical_temperature.as_ref().ok().map(|tc| tc.value),
+    };
+    let critical_pressure = molecule.additive(Property::CriticalPressure, state);
+    let critical_volume = molecule.additive(Property::CriticalVolume, state);
+    for property in [
+        Property::MeltingPoint,
+        Property::EnthalpyOfVaporization,
+        Property::EnthalpyOfFusion,
+        Property::IdealGasEnthalpyOfFormation,
+        Property::IdealGasGibbsEnergyOfFormation,
+        Property::IdealGasHeatCapacity,
+        Property::LiquidViscosity,
+    ] {
+        put(property, molecule.additive(property, state));
+    }
+
+    let curve = molecule.curve(&boiling_point, &critical_temperature, &critical_pressure);
+    let acentric_factor = molecule.acentric_factor(&curve);
+    put(Property::VaporPressure, molecule.vapor_pressure(&curve));
+    put(
+        Property::LiquidDensity,
+        molecule.liquid_density(
+            &curve,
+            &critical_temperature,
+            &critical_volume,
+            &acentric_factor,
+        ),
+    );
+    put(
+        Property::MolarMass,
+        Ok(Estimate::new(
+            facts.molar_mass_kg_per_mol,
+            "standard-atomic-weights",
+        )),
+    );
+    put(Property::BoilingPoint, boiling_point);
+    put(Property::CriticalTemperature, critical_temperature);
+    put(Property::CriticalPressure, critical_pressure);
+    put(Property::CriticalVolume, critical_volume);
+    put(Property::AcentricFactor, acentric_factor);
+    for property in [
+        Property::SurfaceTension,
+        Property::FlashPoint,
+        Property::HansenDispersion,
+        Property::HansenPolar,
+        Property::HansenHydrogenBonding,
+        Property::LogPOctanolWater,
+    ] {
+        if let Some(known) = given.at(property, temperature_k) {
+            put(property, Ok(known.clone()));
+        }
+    }
+
+    mark_disorder(&mut all, Property::MeltingPoint, Property::BoilingPoint);
+    mark_disorder(
+        &mut all,
+        Property::BoilingPoint,
+        Property::CriticalTemperature,
+    );
+    all
+}
+
+struct Molecule<'a> {
+    methods: &'a PureMethods,
+    sums: &'a Result<LinearSums, Absent>,
+    facts: &'a StructureFacts,
+    given: Given<'a>,
+    temperature_k: f64,
+}
+
+/// A vapor pressure curve and whether it rests on an estimate.
+type Curve = Result<(VaporPressureCurve, Flags), Absent>;
+
+impl Molecule<'_> {
+    fn additive(&self, property: Property, state: State) -> Outcome {
+        if let Some(known) = self.given.at(property, self.temperature_k) {
+            return Ok(known.clone());
+        }
+        let sums = self.sums.as_ref().map_err(Absent::clone)?;
+        joback::close(property, &self.methods.joback, sums, self.facts, state)
+    }
+
+    fn critical_temperature(&self, boiling_point: &Outcome) -> Outcome {
+        if let Some(known) = self.given.get(Property::CriticalTemperature) {
+            return Ok(known.clone());
+        }
+        let tb = value(boiling_point)?;
+        let state = State {
+            boiling_point_k: Some(tb.value),
+            ..State::at(self.temperature_k)
+        };
+        Ok(self
+            .additive(Property::CriticalTemperature, state)?
+            .flagged(rests_on(tb)))
+    }
+
+    fn curve(&self, tb: &Outcome, tc: &Outcome, pc: &Outcome) -> Curve {
+        let tb = value(tb)?;
+        let tc = value(tc)?;
+        let pc = value(pc)?;
+        let method = self.methods.vapor_pressure;
+        let constants = Constants::new(tb.value, tc.value, pc.value, method.id())?;
+        let flags = rests_on(tb).union(rests_on(tc)).union(rests_on(pc));
+        Ok((
+            VaporPressureCurve::through_boiling_point(method, constants)?,
+            flags,
+        ))
+    }
+
+    fn acentric_factor(&self, curve: &Curve) -> Outcome {
+        if let Some(known) = self.given.get(Property::AcentricFactor) {
+            return Ok(known.clone());
+        }
+        let (curve, flags) = curve.as_ref().map_err(Absent::clone)?;
+        Ok(
+            Estimate::new(curve.acentric_factor(), self.methods.vapor_pressure.id())
+                .flagged(*flags),
+        )
+    }
+
+    fn vapor_pressure(&self, curve: &Curve) -> Outcome {
+        if let Some(known) = self.given.at(Property::VaporPressure, self.temperature_k) {
+            return Ok(known.clone());
+        }
+        let &(ref curve, mut flags) = curve.as_ref().map_err(Absent::clone)?;
+        let pressure_pa = curve.pressure_pa(self.temperature_k)?;
+        if curve.constants().reduced(self.temperature_k) < VAPOR_PRESSURE_TR_LOW {
+            flags = flags.with(Flag::OutsideTemperatureRange);
+        }
+        Ok(Estimate::new(pressure_pa, self.methods.vapor_pressure.id())
+            .at(self.temperature_k)
+            .flagged(flags))
+    }
+
+    fn liquid_density(
+        &self,
+        curve: &Curve,
+        tc: &Outcome,
+        vc: &Outcome,
+        omega: &Outcome,
+    ) -> Outcome {
+        if let Some(known) = self.given.at(Property::LiquidDensity, self.temperature_k) {
+            return Ok(known.clone());
+        }
+        let omega = value(omega)?;
+        let anchor = self
+            .given
+            .get(Property::LiquidDensity)
+            .and_then(|known| Some((known, known.temperature_k?)));
+        let (density_curve, flags) = if let Some((known, at_k)) = anchor {
+            let tc = value(tc)?;
+            let curve = LiquidDensityCurve::through_density(
+                known.value,
+                at_k,
+                tc.value,
+                omega.value,
+                self.facts.molar_mass_kg_per_mol,
+            )?;
+            (curve, rests_on(tc).union(rests_on(omega)))
+        } else {
+            let (curve, flags) = curve.as_ref().map_err(Absent::clone)?;
+            let method = self.methods.liquid_density;
+            let (volume, volume_flags) = if method.needs_critical_volume() {
+                let vc = value(vc)?;
+                (vc.value, rests_on(vc))
+            } else {
+                (f64::INFINITY, Flags::NONE)
+            };
+            let input = LiquidDensityInput {
+                constants: *curve.constants(),
+                critical_volume_m3_per_mol: volume,
+                acentric_factor: omega.value,
+                molar_mass_kg_per_mol: self.facts.molar_mass_kg_per_mol,
+            };
+            (
+                LiquidDensityCurve::new(method, &input)?,
+                flags.union(volume_flags),
+            )
+        };
+        let density = density_curve.density_kg_per_m3(self.temperature_k)?;
+        Ok(Estimate::new(density, density_curve.method())
+            .at(self.temperature_k)
+            .flagged(flags))
+    }
+}
+
+/// The value, or the reason why it is absent: the reader wants the first
+/// cause, not the chain of properties that leads to it.
+fn value(outcome: &Outcome) -> Result<&Estimate, Absent> {
+    outcome.as_ref().map_err(Absent::clone)
+}
+
+fn rests_on(input: &Estimate) -> Flags {
+    match input.status {
+        Status::Estimated => Flags::NONE.with(Flag::RestsOnEstimate),
+        Status::Measured => Flags::NONE,
+    }
+}
+
+/// Flags both temperatures where the lower one is not below the upper one.
+fn mark_disorder(all: &mut Estimates, lower: Property, upper: Property) {
+    let (Ok(low), Ok(high)) = (&all[lower as usize], &all[upper as usize]) else {
+        return;
+    };
+    if low.value < high.value {
+        return;
+    }
+    for property in [lower, upper] {
+        if let Ok(estimate) = &mut all[property as usize] {
+            estimate.flags = estimate.flags.with(Flag::Inconsistent);
+        }
+    }
+}

@@ -1,0 +1,44 @@
+//! What a method needs to know of a molecule beyond its group counts.
+
+use crate::chem::Composition;
+
+/// Structure facts that travel with the group counts of a molecule.
+///
+/// Filled by whoever knows the structure; a group assembly fills it from the
+/// compositions of its groups.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct StructureFacts {
+    /// Molar mass in kg/mol.
+    pub molar_mass_kg_per_mol: f64,
+    /// Atoms by element, hydrogens included.
+    pub composition: Composition,
+    /// Atoms, hydrogens included.
+    pub atoms: u32,
+    /// Atoms that are not hydrogen.
+    pub heavy_atoms: u32,
+    /// Independent rings (bonds − atoms + 1).
+    pub rings: u32,
+    /// Carboxylic acid groups: their vapor associates.
+    pub carboxyl_groups: u32,
+    /// Whether the substance is water, which no group set describes.
+    pub is_water: bool,
+}
+
+impl StructureFacts {
+    /// Facts of a molecule of this composition; atoms are counted from it.
+    pub fn new(composition: Composition, molar_mass_kg_per_mol: f64, rings: u32) -> Self {
+        let heavy_atoms = u32::from(composition.heavy_atoms());
+        let hydrogens = u32::from(composition.count(crate::chem::Element::H));
+        Self {
+            molar_mass_kg_per_mol,
+            composition,
+            atoms: heavy_atoms + hydrogens,
+            heavy_atoms,
+            rings,
+            carboxyl_groups: 0,
+            is_water: heavy_atoms == 1
+                && hydrogens == 2
+                && composition.count(crate::chem::Element::O) == 1,
+        }
+    }
+}
