@@ -5,6 +5,7 @@
 //! [`Estimate`], [`Absent`], and [`unit::parse`] for text with a unit.
 
 mod estimate;
+pub mod number;
 mod property;
 pub mod unit;
 

@@ -1,0 +1,163 @@
+//! The checked brief.
+
+use std::path::{Path, PathBuf};
+use std::sync::Arc;
+
+use super::place::Located;
+use super::structure::Structure;
+use super::target::Target;
+
+/// How many candidates are kept in the ranking unless the brief says otherwise.
+pub const DEFAULT_KEEP_BEST: usize = 1_000;
+
+/// The most candidates a brief may ask to keep.
+pub const LARGEST_KEEP_BEST: usize = 1_000_000;
+
+/// What the brief is read for; decides which of its parts have to be there.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Job {
+    /// Ranking a pool: needs `[pool]` and a target.
+    Screen,
+    /// Searching assemblies: needs a target.
+    Assemble,
+    /// Computing one mixture: needs `[mixture]`.
+    Mixture,
+    /// Looking at the brief itself: needs a target or a mixture.
+    Check,
+}
+
+/// What fractions and ratios count.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Basis {
+    /// Amount of substance.
+    #[default]
+    Mole,
+    /// Mass.
+    Mass,
+    /// Volume of the pure liquids before mixing.
+    Volume,
+}
+
+impl Basis {
+    /// Every basis.
+    pub const ALL: [Self; 3] = [Self::Mole, Self::Mass, Self::Volume];
+
+    /// The word of briefs and the command line.
+    pub const fn id(self) -> &'static str {
+        match self {
+            Self::Mole => "mole",
+            Self::Mass => "mass",
+            Self::Volume => "volume",
+        }
+    }
+
+    /// The basis of this name.
+    pub fn from_id(id: &str) -> Option<Self> {
+        Self::ALL.into_iter().find(|basis| basis.id() == id)
+    }
+}
+
+/// How much solvent is added to the feed.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct SolventToFeed {
+    /// Amount of solvent over amount of feed, above 0.
+    pub ratio: f64,
+    /// What the amounts count: mole or mass.
+    pub basis: Basis,
+}
+
+/// The `[mixture]` table.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub struct Mixture {
+    /// Names or SMILES as written, at least one, no text twice.
+    pub components: Vec<Located<String>>,
+    /// The two key components, positions in `components` from 0; `None` when
+    /// there is only one component.
+    pub keys: Option<Located<[usize; 2]>>,
+    /// Fractions in component order, adding up to 1.
+    pub fractions: Option<Located<Vec<f64>>>,
+    /// What the fractions count.
+    pub basis: Basis,
+    /// Temperature in K.
+    pub temperature_k: Option<Located<f64>>,
+    /// Pressure in Pa.
+    pub pressure_pa: Option<Located<f64>>,
+    /// Activity models by their names in the catalog; empty: the default.
+    pub models: Vec<Located<&'static str>>,
+    /// Solvent added to the feed.
+    pub solvent_to_feed: Option<Located<SolventToFeed>>,
+    /// Whether estimated vapor pressures of the keys may stand in for measured
+    /// ones; false unless the brief says so.
+    pub estimates_for_keys: bool,
+}
+
+/// The `[pool]` table.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub struct Pool {
+    /// The candidate list as written: relative to the brief, `-` for standard input.
+    pub file: Located<String>,
+    /// Name of the column of names, where it is not `name`.
+    pub name_column: Option<Located<String>>,
+    /// Name of the column of SMILES, where it is not `smiles`.
+    pub smiles_column: Option<Located<String>>,
+}
+
+/// The `[assembly]` table, read and kept; the search itself is another job.
+#[derive(Clone, Debug, Default, PartialEq)]
+#[non_exhaustive]
+pub struct Assembly {
+    /// Pieces to build from, as written; empty: the default list.
+    pub pieces: Vec<Located<String>>,
+    /// Fewest pieces in a molecule.
+    pub least_pieces: Option<Located<u32>>,
+    /// Most pieces in a molecule.
+    pub most_pieces: Option<Located<u32>>,
+    /// Highest count by piece or class, in the order of the brief.
+    pub limits: Vec<(Located<String>, u32)>,
+}
+
+/// A checked job, everything in SI units.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub struct Brief {
+    /// Name of the brief in messages.
+    pub file: Arc<str>,
+    /// Folder of the brief: what `pool.file` is relative to.
+    pub folder: PathBuf,
+    /// The text of the brief as it stands, for the run record.
+    pub text: Arc<str>,
+    /// What the job is called.
+    pub title: Option<Located<String>>,
+    /// What it is for; a free word so far.
+    pub purpose: Option<Located<String>>,
+    /// The mixture.
+    pub mixture: Option<Mixture>,
+    /// The candidate list.
+    pub pool: Option<Pool>,
+    /// The assembly search.
+    pub assembly: Option<Located<Assembly>>,
+    /// Limits on structure.
+    pub structure: Structure,
+    /// The targets, in the order of the brief.
+    pub targets: Vec<Target>,
+    /// How many candidates the ranking keeps.
+    pub keep_best: usize,
+}
+
+impl Brief {
+    /// Path of the pool; `None` if there is no pool or it is standard input.
+    pub fn pool_path(&self) -> Option<PathBuf> {
+        let file = &self.pool.as_ref()?.file.value;
+        (file != "-").then(|| self.folder.join(Path::new(file)))
+    }
+
+    /// The title, or the name of the file where there is none.
+    pub fn heading(&self) -> &str {
+        match &self.title {
+            Some(title) => &title.value,
+            None => &self.file,
+        }
+    }
+}
