@@ -1,0 +1,4 @@
+//! The integration tests, one module for each room.
+
+mod chem;
+mod pure;
