@@ -1,4 +1,5 @@
 //! The integration tests, one module for each room.
+//! Integration tests, one module a room.
 
 mod chem;
 mod pure;
