@@ -2,12 +2,17 @@
 
 use super::StructureFacts;
 use super::corresponding_states::{
-    Constants, LiquidDensityCurve, LiquidDensityInput, LiquidDensityMethod, VaporPressureCurve,
-    VaporPressureMethod,
+    CATOIRE_NAUDET, CATOIRE_NAUDET_BOILING_POINTS_K, CATOIRE_NAUDET_CARBONS, Constants,
+    LiquidDensityCurve, LiquidDensityInput, LiquidDensityMethod, SASTRI_RAO, SurfaceTensionClass,
+    VaporPressureCurve, VaporPressureMethod, enthalpy_of_vaporization_watson,
+    flash_point_catoire_naudet, surface_tension_sastri_rao,
 };
 use super::joback::{self, Contributions, LinearSums, State};
+use crate::chem::Element;
 use crate::groups::GroupCounts;
-use crate::quantity::{Absent, Estimate, Flag, Flags, Outcome, Property, Status};
+use crate::quantity::{
+    Absent, Estimate, Flag, Flags, Outcome, Property, REFERENCE_TEMPERATURE_K, Status,
+};
 
 /// One outcome for each property; indexed by [`Property`] `as usize`.
 pub type Estimates = [Outcome; Property::COUNT];
@@ -15,6 +20,13 @@ pub type Estimates = [Outcome; Property::COUNT];
 /// Reduced temperature below which a vapor pressure is flagged: no data were
 /// looked at there.
 const VAPOR_PRESSURE_TR_LOW: f64 = 0.5;
+
+/// Numbers of the alcohol and the acid group in the table of Joback and Reid.
+const ALCOHOL_GROUP: u16 = 20;
+const ACID_GROUP: u16 = 27;
+
+/// Identifier of a molar mass.
+const ATOMIC_WEIGHTS: &str = "standard-atomic-weights";
 
 /// How near two temperatures have to be to count as the same, K.
 const SAME_TEMPERATURE_K: f64 = 1e-6;
@@ -94,6 +106,7 @@ pub fn estimate_all(
     };
     let molecule = Molecule {
         methods,
+        counts,
         sums: &sums,
         facts,
         given,
@@ -111,9 +124,9 @@ pub fn estimate_all(
     };
     let critical_pressure = molecule.additive(Property::CriticalPressure, state);
     let critical_volume = molecule.additive(Property::CriticalVolume, state);
+    let enthalpy_of_vaporization = molecule.additive(Property::EnthalpyOfVaporization, state);
     for property in [
         Property::MeltingPoint,
-        Property::EnthalpyOfVaporization,
         Property::EnthalpyOfFusion,
         Property::IdealGasEnthalpyOfFormation,
         Property::IdealGasGibbsEnergyOfFormation,
@@ -135,12 +148,19 @@ pub fn estimate_all(
             &acentric_factor,
         ),
     );
+    put(Property::SurfaceTension, molecule.surface_tension(&curve));
+    put(
+        Property::FlashPoint,
+        molecule.flash_point(
+            &boiling_point,
+            &critical_temperature,
+            &enthalpy_of_vaporization,
+        ),
+    );
+    put(Property::EnthalpyOfVaporization, enthalpy_of_vaporization);
     put(
         Property::MolarMass,
-        Ok(Estimate::new(
-            facts.molar_mass_kg_per_mol,
-            "standard-atomic-weights",
-        )),
+        Ok(Estimate::new(facts.molar_mass_kg_per_mol, ATOMIC_WEIGHTS)),
     );
     put(Property::BoilingPoint, boiling_point);
     put(Property::CriticalTemperature, critical_temperature);
@@ -148,8 +168,6 @@ pub fn estimate_all(
     put(Property::CriticalVolume, critical_volume);
     put(Property::AcentricFactor, acentric_factor);
     for property in [
-        Property::SurfaceTension,
-        Property::FlashPoint,
         Property::HansenDispersion,
         Property::HansenPolar,
         Property::HansenHydrogenBonding,
@@ -171,6 +189,7 @@ pub fn estimate_all(
 
 struct Molecule<'a> {
     methods: &'a PureMethods,
+    counts: Result<&'a GroupCounts, &'a Absent>,
     sums: &'a Result<LinearSums, Absent>,
     facts: &'a StructureFacts,
     given: Given<'a>,
@@ -290,6 +309,78 @@ impl Molecule<'_> {
         Ok(Estimate::new(density, density_curve.method())
             .at(self.temperature_k)
             .flagged(flags))
+    }
+
+    fn surface_tension(&self, curve: &Curve) -> Outcome {
+        if let Some(known) = self.given.at(Property::SurfaceTension, self.temperature_k) {
+            return Ok(known.clone());
+        }
+        let counts = self.counts.map_err(Absent::clone)?;
+        let class = if counts.count(ACID_GROUP) > 0 {
+            SurfaceTensionClass::Acid
+        } else if counts.count(ALCOHOL_GROUP) > 0 {
+            SurfaceTensionClass::Alcohol
+        } else {
+            SurfaceTensionClass::Other
+        };
+        let (curve, flags) = curve.as_ref().map_err(Absent::clone)?;
+        let tension = surface_tension_sastri_rao(curve.constants(), class, self.temperature_k)?;
+        Ok(Estimate::new(tension, SASTRI_RAO)
+            .at(self.temperature_k)
+            .flagged(*flags))
+    }
+
+    fn flash_point(&self, tb: &Outcome, tc: &Outcome, h_vap: &Outcome) -> Outcome {
+        if let Some(known) = self.given.get(Property::FlashPoint) {
+            return Ok(known.clone());
+        }
+        let (tb, tc, h_vap) = (value(tb)?, value(tc)?, value(h_vap)?);
+        let outside = |what| Absent::OutsideDomain {
+            method: CATOIRE_NAUDET,
+            what,
+        };
+        let mut flags = rests_on(tb).union(rests_on(tc)).union(rests_on(h_vap));
+        match halogenation(self.facts) {
+            Halogenation::Full => {
+                return Err(outside(
+                    "a molecule of halogen without hydrogen as a rule does not burn",
+                ));
+            }
+            Halogenation::Strong => flags = flags.with(Flag::OutsideFamily),
+            Halogenation::Little => {}
+        }
+        let at_reference = enthalpy_of_vaporization_watson(
+            h_vap.value,
+            tb.value,
+            tc.value,
+            REFERENCE_TEMPERATURE_K,
+        )
+        .ok_or_else(|| outside("the critical temperature is below 298.15 K"))?;
+        let carbons = self.facts.composition.count(Element::C);
+        let flash = flash_point_catoire_naudet(tb.value, at_reference, carbons)?;
+        let (low, high) = CATOIRE_NAUDET_BOILING_POINTS_K;
+        let (fewest, most) = CATOIRE_NAUDET_CARBONS;
+        if !(low..=high).contains(&tb.value) || !(fewest..=most).contains(&carbons) {
+            flags = flags.with(Flag::OutsideFamily);
+        }
+        Ok(Estimate::new(flash, CATOIRE_NAUDET).flagged(flags))
+    }
+}
+
+/// Whether halogens take the place of hydrogen so far that burning is in doubt.
+enum Halogenation {
+    Little,
+    Strong,
+    Full,
+}
+
+fn halogenation(facts: &StructureFacts) -> Halogenation {
+    let of = |element| facts.composition.count(element);
+    let halogens = of(Element::F) + of(Element::Cl) + of(Element::Br) + of(Element::I);
+    match of(Element::H) {
+        0 if halogens > 0 => Halogenation::Full,
+        hydrogens if hydrogens < halogens => Halogenation::Strong,
+        _ => Halogenation::Little,
     }
 }
 

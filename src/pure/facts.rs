@@ -1,6 +1,6 @@
 //! What a method needs to know of a molecule beyond its group counts.
 
-use crate::chem::Composition;
+use crate::chem::{Composition, Element};
 
 /// Structure facts that travel with the group counts of a molecule.
 ///
@@ -18,8 +18,6 @@ pub struct StructureFacts {
     pub heavy_atoms: u32,
     /// Independent rings (bonds − atoms + 1).
     pub rings: u32,
-    /// Carboxylic acid groups: their vapor associates.
-    pub carboxyl_groups: u32,
     /// Whether the substance is water, which no group set describes.
     pub is_water: bool,
 }
@@ -28,17 +26,14 @@ impl StructureFacts {
     /// Facts of a molecule of this composition; atoms are counted from it.
     pub fn new(composition: Composition, molar_mass_kg_per_mol: f64, rings: u32) -> Self {
         let heavy_atoms = u32::from(composition.heavy_atoms());
-        let hydrogens = u32::from(composition.count(crate::chem::Element::H));
+        let hydrogens = u32::from(composition.count(Element::H));
         Self {
             molar_mass_kg_per_mol,
             composition,
             atoms: heavy_atoms + hydrogens,
             heavy_atoms,
             rings,
-            carboxyl_groups: 0,
-            is_water: heavy_atoms == 1
-                && hydrogens == 2
-                && composition.count(crate::chem::Element::O) == 1,
+            is_water: heavy_atoms == 1 && hydrogens == 2 && composition.count(Element::O) == 1,
         }
     }
 }

@@ -1,6 +1,8 @@
 //! The register of pure-component methods.
 
-use super::corresponding_states::{LiquidDensityMethod, VaporPressureMethod};
+use super::corresponding_states::{
+    CATOIRE_NAUDET, LiquidDensityMethod, SASTRI_RAO, VaporPressureMethod,
+};
 use super::joback;
 use crate::quantity::Property;
 
@@ -176,6 +178,27 @@ pub const METHODS: &[Method] = &[
     additive(Property::IdealGasGibbsEnergyOfFormation, &[]),
     additive(Property::IdealGasHeatCapacity, &[]),
     additive(Property::LiquidViscosity, &[]),
+    Method {
+        id: SASTRI_RAO,
+        property: Property::SurfaceTension,
+        source: "Sastri and Rao, Chem. Eng. J. 59 (1995) 181-186, doi:10.1016/0923-0467(94)02946-6",
+        needs: CRITICAL_POINT,
+        // Its class constants ask for alcohol and acid groups.
+        needs_groups: true,
+        role: Role::Default,
+    },
+    relation(
+        CATOIRE_NAUDET,
+        Property::FlashPoint,
+        "Catoire and Naudet, J. Phys. Chem. Ref. Data 33 (2004) 1083-1111, doi:10.1063/1.1835321; \
+         enthalpy of vaporization carried to 298.15 K with Watson, Ind. Eng. Chem. 35 (1943) 398-406",
+        &[
+            Property::BoilingPoint,
+            Property::CriticalTemperature,
+            Property::EnthalpyOfVaporization,
+        ],
+        Role::Default,
+    ),
 ];
 
 /// The methods of a property, the default first.

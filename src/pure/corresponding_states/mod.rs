@@ -6,10 +6,18 @@
 
 mod constants;
 mod enthalpy;
+mod flash_point;
 mod liquid_density;
+mod surface_tension;
 mod vapor_pressure;
 
 pub use constants::{Constants, acentric_factor_edmister};
 pub use enthalpy::enthalpy_of_vaporization_watson;
+pub use flash_point::flash_point_catoire_naudet;
+pub(super) use flash_point::{
+    CATOIRE_NAUDET, CATOIRE_NAUDET_BOILING_POINTS_K, CATOIRE_NAUDET_CARBONS,
+};
 pub use liquid_density::{LiquidDensityCurve, LiquidDensityInput, LiquidDensityMethod};
+pub(super) use surface_tension::SASTRI_RAO;
+pub use surface_tension::{SurfaceTensionClass, surface_tension_sastri_rao};
 pub use vapor_pressure::{VaporPressureCurve, VaporPressureMethod};

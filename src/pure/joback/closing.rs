@@ -7,6 +7,10 @@ use crate::quantity::{Absent, Estimate, Flag, Flags, Outcome, Property, REFERENC
 /// Sum of the T_c column at which its closing function turns: 0.965 / 2.
 const TC_TURN: f64 = 0.4825;
 
+/// Sum of the T_c column at which T_b/T_c has come back to the 0.584 of no
+/// groups at all; beyond it every further group makes T_c absurd.
+const TC_END: f64 = 0.965;
+
 /// Temperatures between which the heat capacities were fitted.
 const CP_RANGE_K: (f64, f64) = (273.0, 1000.0);
 
@@ -89,13 +93,20 @@ pub fn close(
                 ),
             };
             let denominator = 0.584 + 0.965 * tc - tc * tc;
-            // A ratio T_b/T_c of 1 or more is no critical point of a liquid with this T_b.
-            if !(denominator > 0.0 && denominator < 1.0) {
+            // Below −0.336 the denominator is not even positive; above TC_END the
+            // parabola falls towards zero and T_c goes to infinity with it.
+            if !(denominator > 0.0 && denominator < 1.0 && tc <= TC_END) {
                 return Err(outside(
-                    "the ratio of boiling to critical temperature is not between 0 and 1",
+                    "the sum of the groups is outside what the critical temperature was fitted on",
                 ));
             }
-            plain(positive(tb / denominator)?).flagged(flags)
+            // Beyond the turn a further group lowers T_c: the form was not made for such chains.
+            let family = if tc > TC_TURN {
+                Flags::NONE.with(Flag::OutsideFamily)
+            } else {
+                Flags::NONE
+            };
+            plain(positive(tb / denominator)?).flagged(flags.union(family))
         }
         Property::CriticalPressure => {
             let root = 0.113 + 0.0032 * f64::from(facts.atoms) - sum(Term::Pc)?;
