@@ -93,6 +93,23 @@ impl<'a> Given<'a> {
 /// # Complexity
 ///
 /// No allocation; two dozen transcendental functions.
+///
+/// # Example
+///
+/// ```
+/// use groupsmith::groups::GroupCounts;
+/// use groupsmith::pure::{Given, PureMethods, StructureFacts, estimate_all};
+/// use groupsmith::quantity::Property;
+///
+/// // Acetone: two -CH3 and a >C=O; 322.11 K by the method, 329.2 K measured.
+/// let methods = PureMethods::built_in();
+/// let counts = GroupCounts::from_text("1:2;24:1").unwrap();
+/// let composition = methods.joback.atoms_of(&counts).unwrap();
+/// let facts = StructureFacts::new(composition, 0.058_08);
+/// let all = estimate_all(&methods, Ok(&counts), &facts, Given::default(), 298.15);
+/// let boiling_point = all[Property::BoilingPoint as usize].as_ref().unwrap();
+/// assert!((boiling_point.value - 322.11).abs() < 0.005);
+/// ```
 pub fn estimate_all(
     methods: &PureMethods,
     counts: Result<&GroupCounts, &Absent>,

@@ -16,24 +16,17 @@ pub struct StructureFacts {
     pub atoms: u32,
     /// Atoms that are not hydrogen.
     pub heavy_atoms: u32,
-    /// Independent rings (bonds − atoms + 1).
-    pub rings: u32,
-    /// Whether the substance is water, which no group set describes.
-    pub is_water: bool,
 }
 
 impl StructureFacts {
     /// Facts of a molecule of this composition; atoms are counted from it.
-    pub fn new(composition: Composition, molar_mass_kg_per_mol: f64, rings: u32) -> Self {
+    pub fn new(composition: Composition, molar_mass_kg_per_mol: f64) -> Self {
         let heavy_atoms = u32::from(composition.heavy_atoms());
-        let hydrogens = u32::from(composition.count(Element::H));
         Self {
             molar_mass_kg_per_mol,
             composition,
-            atoms: heavy_atoms + hydrogens,
+            atoms: heavy_atoms + u32::from(composition.count(Element::H)),
             heavy_atoms,
-            rings,
-            is_water: heavy_atoms == 1 && hydrogens == 2 && composition.count(Element::O) == 1,
         }
     }
 }

@@ -20,7 +20,7 @@ fn estimates(criterion: &mut Criterion) {
     .map(|(text, molar_mass)| {
         let counts = GroupCounts::from_text(text).expect("counts are well formed");
         let composition = methods.joback.atoms_of(&counts).expect("groups exist");
-        (counts, StructureFacts::new(composition, molar_mass, 0))
+        (counts, StructureFacts::new(composition, molar_mass))
     })
     .collect();
     criterion.bench_function("all properties of five molecules", |bencher| {

@@ -357,7 +357,7 @@ impl Reference {
                     name: row["name"].clone(),
                     smiles: row["smiles"].clone(),
                     family: family(&counts),
-                    facts: StructureFacts::new(composition, molar_mass_kg_per_mol(&composition), 0),
+                    facts: StructureFacts::new(composition, molar_mass_kg_per_mol(&composition)),
                     counts,
                 },
             );

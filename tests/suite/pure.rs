@@ -21,7 +21,7 @@ fn counts(text: &str) -> GroupCounts {
 
 fn facts(table: &Contributions, counts: &GroupCounts, molar_mass: f64) -> StructureFacts {
     let composition = table.atoms_of(counts).expect("test counts are groups");
-    StructureFacts::new(composition, molar_mass, 0)
+    StructureFacts::new(composition, molar_mass)
 }
 
 fn measured(value: f64) -> Estimate {
@@ -499,8 +499,7 @@ fn nothing_saturated_above_the_critical_temperature() {
 fn measured_constants_suffice_without_groups() {
     let methods = PureMethods::built_in();
     let composition = Composition::from_formula("H2O").unwrap();
-    let water = StructureFacts::new(composition, 0.018_015, 0);
-    assert!(water.is_water);
+    let water = StructureFacts::new(composition, 0.018_015);
     let reason = Absent::NotCovered {
         set: "joback",
         what: "water".into(),
