@@ -1,1 +1,25 @@
-//! TODO room.
+//! Writing finished rows: CSV and JSON for programs, aligned text for people.
+//!
+//! This room computes no property and opens no file: rows come in finished and
+//! bytes go out, into a reused `Vec<u8>` where a run writes many of them. SI
+//! values are converted to the shown unit here and nowhere else. Entry points:
+//! the row types ([`BreakdownRow`], [`PropertyRow`], [`MixtureRow`],
+//! [`RankedTable`], [`NotRankedRow`]), [`TextTable`] and [`outcome_text`].
+
+mod breakdown;
+mod csv_line;
+mod json;
+mod mixture;
+mod property;
+mod ranking;
+mod summary;
+mod text_table;
+
+pub use breakdown::{BreakdownRow, BreakdownStatus, breakdown_text};
+pub use csv_line::{CsvLine, CsvRow, write_csv_rows};
+pub use json::write_json_rows;
+pub use mixture::{MixtureRow, MixtureStatus, mixture_text};
+pub use property::{PropertyRow, property_text};
+pub use ranking::{FigureColumn, NotRankedRow, RankedRow, RankedTable};
+pub use summary::{TargetLabel, outcome_text};
+pub use text_table::{TextColumn, TextTable};

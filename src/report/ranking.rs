@@ -1,0 +1,197 @@
+//! The two tables of a run: who is ranked, and why the others are not.
+
+use super::csv_line::{CsvLine, CsvRow};
+use super::text_table::{TextColumn, TextTable};
+use crate::quantity::Dimension;
+use crate::quantity::number::{self, RUN_DIGITS};
+use crate::quantity::unit::{column_suffix, reading_unit, to_table};
+use crate::run;
+
+/// A figure with a column of its own in the ranking.
+#[derive(Clone, Debug, PartialEq)]
+pub struct FigureColumn {
+    /// Its name, made of letters, digits and underscores.
+    pub name: String,
+    /// What it measures; the unit of tables is added to the name of the column.
+    pub dimension: Dimension,
+}
+
+impl FigureColumn {
+    /// The name of the column, unit included: `boiling_point_k`.
+    pub fn head(&self) -> String {
+        format!("{}{}", self.name, column_suffix(self.dimension))
+    }
+}
+
+/// One ranked candidate.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct RankedRow<'a> {
+    /// Its place, from 1.
+    pub rank: u64,
+    /// Name as given; may be empty.
+    pub name: &'a str,
+    /// SMILES.
+    pub smiles: &'a str,
+    /// Score from 0 to 1; `None` where a figure that counts is absent.
+    pub score: Option<f64>,
+    /// The figures in SI, in column order.
+    pub figures: &'a [Option<f64>],
+    /// Line of the pool, from 1.
+    pub line: u64,
+    /// Flags, gaps and remarks, joined by `; `.
+    pub notes: &'a str,
+    /// Further columns of the pool, carried along.
+    pub carried: &'a [&'a str],
+}
+
+/// The form of `ranked.csv`: fixed columns, figures, `line`, `notes`, and what
+/// the pool carries along.
+#[derive(Clone, Debug, PartialEq)]
+pub struct RankedTable {
+    figures: Vec<FigureColumn>,
+    carried: Vec<String>,
+}
+
+impl RankedTable {
+    /// A table with these figures and carried columns. A carried column whose
+    /// name is taken is shown as `pool_NAME`.
+    pub fn new(figures: Vec<FigureColumn>, carried: &[&str]) -> Self {
+        let mut taken: Vec<String> = ["rank", "name", "smiles", "score", "line", "notes"]
+            .map(str::to_owned)
+            .into();
+        taken.extend(figures.iter().map(FigureColumn::head));
+        let mut renamed = Vec::with_capacity(carried.len());
+        for name in carried {
+            let mut name = (*name).to_owned();
+            while taken.contains(&name) {
+                name.insert_str(0, "pool_");
+            }
+            taken.push(name.clone());
+            renamed.push(name);
+        }
+        Self {
+            figures,
+            carried: renamed,
+        }
+    }
+
+    /// Appends the line of column names.
+    pub fn write_head(&self, out: &mut Vec<u8>) {
+        let mut line = CsvLine::new(out);
+        line.text("rank").text("name").text("smiles").text("score");
+        for figure in &self.figures {
+            line.text(&figure.head());
+        }
+        line.text("line").text("notes");
+        for name in &self.carried {
+            line.text(name);
+        }
+        line.end();
+    }
+
+    /// Appends the line of a candidate.
+    ///
+    /// # Panics
+    ///
+    /// If it has another number of figures or carried cells than the table.
+    pub fn write_row(&self, row: &RankedRow<'_>, out: &mut Vec<u8>) {
+        assert_eq!(row.figures.len(), self.figures.len());
+        assert_eq!(row.carried.len(), self.carried.len());
+        let mut line = CsvLine::new(out);
+        line.integer(row.rank)
+            .text(row.name)
+            .text(row.smiles)
+            .number_or_empty(row.score, RUN_DIGITS);
+        for (figure, value) in self.figures.iter().zip(row.figures) {
+            let shown = value.map(|value| to_table(value, figure.dimension));
+            line.number_or_empty(shown, RUN_DIGITS);
+        }
+        line.integer(row.line).text(row.notes);
+        for cell in row.carried {
+            line.text(cell);
+        }
+        line.end();
+    }
+
+    /// The ranking for people: rank, name, score and figures in the units
+    /// people read.
+    pub fn text<'a>(
+        &self,
+        rows: impl IntoIterator<Item = RankedRow<'a>>,
+        width: Option<usize>,
+    ) -> String {
+        let mut columns = vec![
+            TextColumn::number("rank", ""),
+            TextColumn::text("name"),
+            TextColumn::number("score", ""),
+        ];
+        columns.extend(self.figures.iter().map(|figure| {
+            let unit = reading_unit(figure.dimension).map_or("", |unit| unit.symbol);
+            TextColumn::number(figure.name.replace('_', " "), unit)
+        }));
+        let mut table = TextTable::new(columns);
+        for row in rows {
+            let name = match row.name {
+                "" => row.smiles,
+                name => name,
+            };
+            let mut cells = vec![
+                row.rank.to_string(),
+                name.to_owned(),
+                row.score.map_or("–".into(), |score| format!("{score:.4}")),
+            ];
+            for (figure, value) in self.figures.iter().zip(row.figures) {
+                cells.push(match value {
+                    None => "–".into(),
+                    Some(value) => number::for_reading(match reading_unit(figure.dimension) {
+                        Some(unit) => unit.from_si(*value),
+                        None => *value,
+                    }),
+                });
+            }
+            table.add(cells);
+        }
+        table.render(width)
+    }
+}
+
+/// One line of a pool that is not ranked.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct NotRankedRow<'a> {
+    /// Line of the pool, from 1.
+    pub line: u64,
+    /// Name as given; may be empty.
+    pub name: &'a str,
+    /// SMILES, or the text of a line that could not be read.
+    pub smiles: &'a str,
+    /// How it came out.
+    pub outcome: run::Outcome,
+    /// The figure or structural limit it fell at; empty where there is none.
+    pub figure: &'a str,
+    /// The value in SI, and what it measures.
+    pub value: Option<(f64, Dimension)>,
+    /// What was wanted, in words.
+    pub wanted: &'a str,
+    /// Why, in words.
+    pub reason: &'a str,
+}
+
+impl CsvRow for NotRankedRow<'_> {
+    const HEAD: &'static str = "line,name,smiles,outcome,figure,value,wanted,reason";
+
+    fn write_csv(&self, out: &mut Vec<u8>) {
+        let mut line = CsvLine::new(out);
+        let shown = self
+            .value
+            .map(|(value, dimension)| to_table(value, dimension));
+        line.integer(self.line)
+            .text(self.name)
+            .text(self.smiles)
+            .text(self.outcome.id())
+            .text(self.figure)
+            .number_or_empty(shown, RUN_DIGITS)
+            .text(self.wanted)
+            .text(self.reason);
+        line.end();
+    }
+}
