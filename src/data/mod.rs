@@ -1,1 +1,29 @@
-//! TODO room.
+//! Measured data of substances: names, synonyms and CAS numbers, constants,
+//! vapor-pressure and density curves, each number with its published source.
+//!
+//! Tables come in as text, the built-in ones from `groups/substances/`, a
+//! user's later as further layers whose values go before those already there.
+//! Loading checks every row against the others (boiling point against curve,
+//! formula against structure, CAS check digits, duplicates) and refuses a
+//! layer with file, row and column of everything that is wrong with it.
+//!
+//! Estimates nothing and opens no file. Entry points: [`Substances::built_in`],
+//! [`Substances::find`], [`Substance::measured`].
+
+mod built_in;
+mod cas;
+mod density;
+mod error;
+mod load;
+mod name;
+mod substance;
+mod substances;
+mod vapor_pressure;
+
+pub use cas::CasNumber;
+pub use density::{DensityEquation, LiquidDensity};
+pub use error::{DataError, NameError, OutOfRange};
+pub use load::{TableText, Tables};
+pub use substance::{Constant, Substance};
+pub use substances::{Conflict, Substances};
+pub use vapor_pressure::{VaporPressure, VaporPressureEquation, WagnerForm};

@@ -2,4 +2,5 @@
 //! Integration tests, one module a room.
 
 mod chem;
+mod data;
 mod pure;

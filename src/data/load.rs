@@ -1,0 +1,853 @@
+//! Reads a layer of tables into the collection and checks it.
+
+use std::collections::hash_map::Entry;
+use std::sync::Arc;
+
+use rustc_hash::{FxHashMap, FxHashSet};
+use smallvec::smallvec;
+
+use super::cas::{CasFault, CasNumber};
+use super::substance::is_normal_pressure;
+use super::substances::Named;
+use super::vapor_pressure::{VaporPressureEquation, WagnerForm};
+use super::{
+    Conflict, Constant, DataError, DensityEquation, LiquidDensity, Substance, Substances,
+    VaporPressure, name,
+};
+use crate::chem::{Composition, Element};
+use crate::quantity::{Dimension, Property};
+use crate::table::{Column, Row, Table, TableError};
+
+/// By how much a vapor-pressure curve may miss a stated boiling point, in K.
+const BOILING_POINT_MISS_K: f64 = 3.0;
+
+/// By how much a stated density may differ from the substance's curve, as a part of it.
+const DENSITY_MISS: f64 = 0.05;
+
+/// A table file: its name for messages and its text.
+#[derive(Clone, Copy, Debug)]
+pub struct TableText<'a> {
+    /// File name as shown in messages.
+    pub file: &'a str,
+    /// The whole text.
+    pub text: &'a str,
+}
+
+/// The files of one layer; any of them may be missing.
+///
+/// `groups/substances/README.md` describes their columns.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Tables<'a> {
+    /// Names, synonyms, CAS numbers, structures.
+    pub substances: Option<TableText<'a>>,
+    /// Single measured numbers.
+    pub measured: Option<TableText<'a>>,
+    /// Hansen parameters, three a row.
+    pub hansen: Option<TableText<'a>>,
+    /// Vapor-pressure coefficients.
+    pub vapor_pressure: Option<TableText<'a>>,
+    /// Density coefficients and values.
+    pub density: Option<TableText<'a>>,
+    /// Disagreements between sources.
+    pub conflicts: Option<TableText<'a>>,
+}
+
+/// What one layer has brought so far.
+struct Layer<'a> {
+    all: &'a mut Substances,
+    faults: Vec<TableError>,
+    /// Substances that stand in this layer's list.
+    listed: FxHashSet<u32>,
+    /// Number of values of this layer at the head of each substance's lists.
+    fresh: FxHashMap<(u32, Kind), usize>,
+}
+
+#[derive(Clone, Copy, PartialEq, Eq, Hash)]
+enum Kind {
+    Constants,
+    VaporPressures,
+    Densities,
+}
+
+pub(super) fn load(all: &mut Substances, tables: &Tables<'_>) -> Result<(), DataError> {
+    let mut layer = Layer {
+        all,
+        faults: Vec::new(),
+        listed: FxHashSet::default(),
+        fresh: FxHashMap::default(),
+    };
+    layer.read(tables.substances, Layer::substances);
+    layer.read(tables.measured, Layer::measured);
+    layer.read(tables.hansen, Layer::hansen);
+    layer.read(tables.vapor_pressure, Layer::vapor_pressure);
+    layer.read(tables.density, Layer::density);
+    layer.read(tables.conflicts, Layer::conflicts);
+    if layer.faults.is_empty() {
+        Ok(())
+    } else {
+        Err(DataError::Tables {
+            faults: layer.faults,
+        })
+    }
+}
+
+/// The sources that the head of a table names: `key: reference`.
+struct Sources<'a>(FxHashMap<&'a str, Arc<str>>);
+
+impl<'a> Sources<'a> {
+    fn of(table: &'a Table) -> Self {
+        Self(
+            table
+                .facts("source")
+                .filter_map(|fact| fact.split_once(": "))
+                .map(|(key, reference)| (key, Arc::from(reference)))
+                .collect(),
+        )
+    }
+
+    /// The reference a cell stands for; a text that is no key stands for itself.
+    fn get(&self, row: Row<'_>, column: Column) -> Result<Arc<str>, TableError> {
+        let text = row.required_text(column)?;
+        Ok(self.0.get(text).map_or_else(|| Arc::from(text), Arc::clone))
+    }
+}
+
+impl Layer<'_> {
+    fn read(
+        &mut self,
+        text: Option<TableText<'_>>,
+        rows: impl Fn(&mut Self, &Table) -> Result<(), TableError>,
+    ) {
+        let Some(TableText { file, text }) = text else {
+            return;
+        };
+        if let Err(fault) = Table::read(file, text).and_then(|table| rows(self, &table)) {
+            self.faults.push(fault);
+        }
+    }
+
+    fn each_row(
+        &mut self,
+        table: &Table,
+        mut one: impl FnMut(&mut Self, Row<'_>) -> Result<(), TableError>,
+    ) {
+        for row in table.rows() {
+            if let Err(fault) = one(self, row) {
+                self.faults.push(fault);
+            }
+        }
+    }
+
+    fn find(&self, row: Row<'_>, column: Column) -> Result<u32, TableError> {
+        let text = row.required_text(column)?;
+        self.all
+            .position(text)
+            .map_err(|error| row.fault(column, error.to_string()))
+    }
+
+    /// Where the next value of this layer goes: behind the layer's own, before older ones.
+    fn place(&mut self, substance: u32, kind: Kind) -> usize {
+        let fresh = self.fresh.entry((substance, kind)).or_default();
+        *fresh += 1;
+        *fresh - 1
+    }
+
+    fn fresh(&self, substance: u32, kind: Kind) -> usize {
+        self.fresh.get(&(substance, kind)).copied().unwrap_or(0)
+    }
+
+    // ------------------------------------------------------------ substances
+
+    fn substances(&mut self, table: &Table) -> Result<(), TableError> {
+        let columns = SubstanceColumns {
+            name: table.column("name")?,
+            synonyms: table.column("synonyms")?,
+            cas: table.column("cas")?,
+            smiles: table.column("smiles")?,
+            formula: table.column("formula")?,
+            family: table.optional_column("family"),
+        };
+        self.each_row(table, |layer, row| layer.substance(row, &columns));
+        Ok(())
+    }
+
+    fn substance(&mut self, row: Row<'_>, columns: &SubstanceColumns) -> Result<(), TableError> {
+        let name = row.required_text(columns.name)?;
+        let cas = match row.text(columns.cas) {
+            "" => None,
+            text => Some(CasNumber::parse_or_fault(text).map_err(|fault| {
+                row.fault(
+                    columns.cas,
+                    match fault {
+                        CasFault::Form => "is not a CAS number".to_owned(),
+                        CasFault::CheckDigit { expected } => {
+                            format!("has a wrong check digit: {expected} would fit")
+                        }
+                    },
+                )
+            })?),
+        };
+        let by_name = match self.all.by_name.get(name::folded(name).as_str()) {
+            Some(Named::One(position)) => Some(*position),
+            Some(Named::Several(_)) => {
+                return Err(row.fault(columns.name, "is in use for several substances"));
+            }
+            None => None,
+        };
+        let by_cas = cas.and_then(|cas| self.all.by_cas.get(&cas).copied());
+        let known = match (by_name, by_cas) {
+            (Some(a), Some(b)) if a != b => {
+                return Err(row.fault(
+                    columns.cas,
+                    format!(
+                        "belongs to `{}`, while the name belongs to `{}`",
+                        self.all.substances[b as usize].name, self.all.substances[a as usize].name
+                    ),
+                ));
+            }
+            (a, b) => a.or(b),
+        };
+        if let Some(position) = known
+            && self.listed.contains(&position)
+        {
+            let column = if by_cas.is_some() {
+                columns.cas
+            } else {
+                columns.name
+            };
+            return Err(row.fault(
+                column,
+                format!(
+                    "stands twice: it is `{}` already",
+                    self.all.substances[position as usize].name
+                ),
+            ));
+        }
+        let composition = self.composition(row, columns, known)?;
+        let position = match known {
+            Some(position) => position,
+            None => {
+                let position = self.all.substances.len() as u32;
+                self.all.substances.push(Substance {
+                    name: Arc::from(name),
+                    synonyms: Vec::new(),
+                    family: None,
+                    cas: None,
+                    smiles: Arc::from(row.required_text(columns.smiles)?),
+                    composition,
+                    constants: Vec::new(),
+                    vapor_pressures: Vec::new(),
+                    densities: Vec::new(),
+                });
+                position
+            }
+        };
+        self.listed.insert(position);
+        let substance = &mut self.all.substances[position as usize];
+        if let Some(cas) = cas {
+            match substance.cas {
+                Some(other) if other != cas => {
+                    let fault = format!("`{}` has the CAS number {other}", substance.name);
+                    return Err(row.fault(columns.cas, fault));
+                }
+                _ => substance.cas = Some(cas),
+            }
+            self.all.by_cas.insert(cas, position);
+        }
+        if let Some(family) = columns.family.map(|column| row.text(column))
+            && !family.is_empty()
+        {
+            substance.family = Some(Arc::from(family));
+        }
+        self.name_it(row, columns.name, name, position)?;
+        for synonym in row.text(columns.synonyms).split(';').map(str::trim) {
+            if let Some(shared) = synonym.strip_suffix('?') {
+                self.share_name(row, columns.synonyms, shared, position)?;
+            } else if !synonym.is_empty() {
+                self.name_it(row, columns.synonyms, synonym, position)?;
+            }
+        }
+        Ok(())
+    }
+
+    /// The element counts of the formula, which the structure has to have too.
+    fn composition(
+        &self,
+        row: Row<'_>,
+        columns: &SubstanceColumns,
+        known: Option<u32>,
+    ) -> Result<Composition, TableError> {
+        let older = known.map(|position| self.all.substances[position as usize].composition);
+        let composition = match (row.text(columns.formula), older) {
+            ("", Some(older)) => older,
+            (text, _) => Composition::from_formula(text)
+                .filter(|composition| *composition != Composition::default())
+                .ok_or_else(|| row.fault(columns.formula, "is not a formula"))?,
+        };
+        match older {
+            Some(older) if older != composition => Err(row.fault(
+                columns.formula,
+                format!("differs from {older}, which the substance has in another table"),
+            )),
+            _ => Ok(composition),
+        }
+    }
+
+    fn name_it(
+        &mut self,
+        row: Row<'_>,
+        column: Column,
+        name: &str,
+        position: u32,
+    ) -> Result<(), TableError> {
+        let folded = name::folded(name);
+        if folded.is_empty() || CasNumber::parse(name).is_some() {
+            return Err(row.fault(column, format!("`{name}` will not do as a name")));
+        }
+        match self.all.by_name.entry(folded.into_boxed_str()) {
+            Entry::Occupied(entry) => match entry.get() {
+                Named::One(other) if *other == position => return Ok(()),
+                Named::One(other) => {
+                    let other = &self.all.substances[*other as usize].name;
+                    return Err(
+                        row.fault(column, format!("`{name}` is already a name of `{other}`"))
+                    );
+                }
+                Named::Several(_) => {
+                    return Err(
+                        row.fault(column, format!("`{name}` is in use for several substances"))
+                    );
+                }
+            },
+            Entry::Vacant(entry) => {
+                entry.insert(Named::One(position));
+            }
+        }
+        let substance = &mut self.all.substances[position as usize];
+        if *substance.name != *name {
+            substance.synonyms.push(Arc::from(name));
+        }
+        Ok(())
+    }
+
+    fn share_name(
+        &mut self,
+        row: Row<'_>,
+        column: Column,
+        name: &str,
+        position: u32,
+    ) -> Result<(), TableError> {
+        match self.all.by_name.entry(name::folded(name).into_boxed_str()) {
+            Entry::Vacant(entry) => {
+                entry.insert(Named::Several(smallvec![position]));
+                Ok(())
+            }
+            Entry::Occupied(mut entry) => match entry.get_mut() {
+                Named::Several(positions) => {
+                    if !positions.contains(&position) {
+                        positions.push(position);
+                    }
+                    Ok(())
+                }
+                Named::One(other) => {
+                    let other = &self.all.substances[*other as usize].name;
+                    Err(row.fault(column, format!("`{name}` is a name of `{other}` alone")))
+                }
+            },
+        }
+    }
+
+    // -------------------------------------------------------------- constants
+
+    fn measured(&mut self, table: &Table) -> Result<(), TableError> {
+        let sources = Sources::of(table);
+        let substance = table.column("substance")?;
+        let property = table.column("property")?;
+        let value = table.column("value")?;
+        let unit = table.column("unit")?;
+        let temperature = table.column_in("temperature", "K")?;
+        let pressure = table.column_in("pressure", "kPa")?;
+        let source = table.column("source")?;
+        self.each_row(table, |layer, row| {
+            let position = layer.find(row, substance)?;
+            let quantity = Property::from_id(row.text(property))
+                .filter(|&quantity| quantity != Property::MolarMass)
+                .ok_or_else(|| row.fault(property, "is not a property that can be measured"))?;
+            let (wanted, factor) = table_unit(quantity.dimension());
+            if row.text(unit) != wanted {
+                return Err(row.fault(unit, format!("should be {wanted}")));
+            }
+            let constant = Constant {
+                property: quantity,
+                value: factor * row.required_number(value)?,
+                temperature_k: row.number(temperature)?,
+                pressure_pa: row.number(pressure)?.map(|kpa| 1000.0 * kpa),
+                source: sources.get(row, source)?,
+            };
+            if quantity.depends_on_temperature() && constant.temperature_k.is_none() {
+                return Err(row.fault(temperature, "is blank, and the property depends on it"));
+            }
+            if quantity == Property::BoilingPoint
+                && !constant.pressure_pa.is_some_and(|pressure| pressure > 0.0)
+            {
+                return Err(row.fault(pressure, "has to be a positive number for a boiling point"));
+            }
+            if must_be_positive(quantity) && constant.value <= 0.0 {
+                return Err(row.fault(value, "is not positive"));
+            }
+            layer.add_constant(row, property, position, constant)
+        });
+        Ok(())
+    }
+
+    fn add_constant(
+        &mut self,
+        row: Row<'_>,
+        column: Column,
+        position: u32,
+        constant: Constant,
+    ) -> Result<(), TableError> {
+        let fresh = self.fresh(position, Kind::Constants);
+        let constants = &mut self.all.substances[position as usize].constants;
+        let same = |other: &&Constant| {
+            other.property == constant.property
+                && other.temperature_k == constant.temperature_k
+                && other.pressure_pa == constant.pressure_pa
+        };
+        if let Some(other) = constants[..fresh].iter().find(same) {
+            return Err(row.fault(
+                column,
+                format!(
+                    "stands twice for this substance: {} and {}",
+                    other.value, constant.value
+                ),
+            ));
+        }
+        constants.insert(fresh, constant);
+        self.place(position, Kind::Constants);
+        Ok(())
+    }
+
+    fn hansen(&mut self, table: &Table) -> Result<(), TableError> {
+        let sources = Sources::of(table);
+        let substance = table.column("substance")?;
+        let parts = [
+            (Property::HansenDispersion, "dispersion"),
+            (Property::HansenPolar, "polar"),
+            (Property::HansenHydrogenBonding, "hydrogen_bonding"),
+        ];
+        let mut columns = [(Property::HansenDispersion, substance); 3];
+        for (slot, (property, name)) in columns.iter_mut().zip(parts) {
+            *slot = (property, table.column_in(name, "MPa^0.5")?);
+        }
+        let source = table.column("source")?;
+        self.each_row(table, |layer, row| {
+            let position = layer.find(row, substance)?;
+            let source = sources.get(row, source)?;
+            for (property, column) in columns {
+                let value = row.required_number(column)?;
+                if !(0.0..=60.0).contains(&value) {
+                    return Err(row.fault(column, "is not between 0 and 60 MPa^0.5"));
+                }
+                let constant = Constant {
+                    property,
+                    value: 1000.0 * value,
+                    temperature_k: None,
+                    pressure_pa: None,
+                    source: Arc::clone(&source),
+                };
+                layer.add_constant(row, column, position, constant)?;
+            }
+            Ok(())
+        });
+        Ok(())
+    }
+
+    // ----------------------------------------------------------------- curves
+
+    fn vapor_pressure(&mut self, table: &Table) -> Result<(), TableError> {
+        let sources = Sources::of(table);
+        let columns = VaporPressureColumns::of(table)?;
+        self.each_row(table, |layer, row| {
+            let position = layer.find(row, columns.substance)?;
+            let equation = columns.equation(row)?;
+            let (low, high) = range(row, columns.low, columns.high)?;
+            let source = sources.get(row, columns.source)?;
+            let curve = VaporPressure::new(equation, low, high, source).map_err(|t| {
+                row.fault(
+                    columns.equation,
+                    format!("gives no pressure that rises with temperature at {t:.2} K"),
+                )
+            })?;
+            layer.check_boiling_points(row, columns.equation, position, &curve)?;
+            let place = layer.place(position, Kind::VaporPressures);
+            let curves = &mut layer.all.substances[position as usize].vapor_pressures;
+            curves.insert(place, curve);
+            Ok(())
+        });
+        Ok(())
+    }
+
+    /// Refuses a curve that misses a boiling point stated for a pressure it reaches.
+    fn check_boiling_points(
+        &self,
+        row: Row<'_>,
+        column: Column,
+        position: u32,
+        curve: &VaporPressure,
+    ) -> Result<(), TableError> {
+        let constants = &self.all.substances[position as usize].constants;
+        // the preferred normal boiling point and every one at another pressure
+        let mut normal_seen = false;
+        for constant in constants {
+            let Some(pressure) = constant.pressure_pa else {
+                continue;
+            };
+            if constant.property != Property::BoilingPoint
+                || is_normal_pressure(pressure) && std::mem::replace(&mut normal_seen, true)
+            {
+                continue;
+            }
+            let at = |t: f64| curve.pressure_pa(t).ok();
+            let low = at(constant.value - BOILING_POINT_MISS_K);
+            let high = at(constant.value + BOILING_POINT_MISS_K);
+            if low.is_some_and(|low| low > pressure) || high.is_some_and(|high| high < pressure) {
+                let gives = match curve.saturation_temperature_k(pressure) {
+                    Ok(t) => format!("{t:.2} K"),
+                    Err(error) => error.to_string(),
+                };
+                return Err(row.fault(
+                    column,
+                    format!(
+                        "the curve gives {gives} at {} kPa, the stated boiling point is {} K",
+                        pressure / 1000.0,
+                        constant.value
+                    ),
+                ));
+            }
+        }
+        Ok(())
+    }
+
+    fn density(&mut self, table: &Table) -> Result<(), TableError> {
+        let sources = Sources::of(table);
+        let columns = DensityColumns::of(table)?;
+        self.each_row(table, |layer, row| {
+            let position = layer.find(row, columns.substance)?;
+            let substance = &layer.all.substances[position as usize];
+            let equation = columns.equation(row, &substance.composition)?;
+            let (low, high) = range(row, columns.low, columns.high)?;
+            let source = sources.get(row, columns.source)?;
+            let curve = LiquidDensity::new(equation, low, high, source).ok_or_else(|| {
+                row.fault(
+                    columns.equation,
+                    "gives a density that is not between 100 and 10000 kg/m3",
+                )
+            })?;
+            layer.check_densities(row, columns.equation, position, &curve)?;
+            let place = layer.place(position, Kind::Densities);
+            let curves = &mut layer.all.substances[position as usize].densities;
+            curves.insert(place, curve);
+            Ok(())
+        });
+        Ok(())
+    }
+
+    /// Refuses a curve that contradicts a stated density or another curve of the substance.
+    fn check_densities(
+        &self,
+        row: Row<'_>,
+        column: Column,
+        position: u32,
+        curve: &LiquidDensity,
+    ) -> Result<(), TableError> {
+        let substance = &self.all.substances[position as usize];
+        let stated = substance
+            .constants
+            .iter()
+            .filter(|constant| constant.property == Property::LiquidDensity)
+            .filter_map(|constant| Some((constant.temperature_k?, constant.value)));
+        let others = substance.densities.iter().filter_map(|other| {
+            let low = other.range_k().0.max(curve.range_k().0);
+            let high = other.range_k().1.min(curve.range_k().1);
+            // near a critical point two fits may part
+            let t = low + 0.25 * (high - low);
+            Some((t, other.density_kg_per_m3(t).ok()?))
+        });
+        for (t, density) in stated.chain(others) {
+            if let Ok(ours) = curve.density_kg_per_m3(t)
+                && (ours / density - 1.0).abs() > DENSITY_MISS
+            {
+                return Err(row.fault(
+                    column,
+                    format!("the curve gives {ours:.1} kg/m3 at {t:.2} K, elsewhere it is {density:.1} kg/m3"),
+                ));
+            }
+        }
+        Ok(())
+    }
+
+    // -------------------------------------------------------------- conflicts
+
+    fn conflicts(&mut self, table: &Table) -> Result<(), TableError> {
+        let sources = Sources::of(table);
+        let decisions: FxHashMap<&str, Arc<str>> = table
+            .facts("decision")
+            .filter_map(|fact| fact.split_once(": "))
+            .map(|(key, text)| (key, Arc::from(text)))
+            .collect();
+        let substance = table.column("substance")?;
+        let property = table.column("property")?;
+        let temperature = table.column_in("temperature", "K")?;
+        let used = table.column("used")?;
+        let used_source = table.column("used_source")?;
+        let other = table.column("other")?;
+        let other_source = table.column("other_source")?;
+        let unit = table.column("unit")?;
+        let decision = table.column("decision")?;
+        self.each_row(table, |layer, row| {
+            let text = |column: Column| Arc::from(row.text(column));
+            let conflict = Conflict {
+                substance: layer.find(row, substance)? as usize,
+                property: Arc::from(row.required_text(property)?),
+                temperature_k: row.number(temperature)?,
+                used: text(used),
+                used_source: match row.text(used_source) {
+                    "" => Arc::from(""),
+                    _ => sources.get(row, used_source)?,
+                },
+                other: Arc::from(row.required_text(other)?),
+                other_source: sources.get(row, other_source)?,
+                unit: text(unit),
+                decision: decisions
+                    .get(row.required_text(decision)?)
+                    .map(Arc::clone)
+                    .ok_or_else(|| {
+                        row.fault(decision, "is not explained in the head of the table")
+                    })?,
+            };
+            layer.all.conflicts.push(conflict);
+            Ok(())
+        });
+        Ok(())
+    }
+}
+
+struct SubstanceColumns {
+    name: Column,
+    synonyms: Column,
+    cas: Column,
+    smiles: Column,
+    formula: Column,
+    family: Option<Column>,
+}
+
+struct VaporPressureColumns {
+    substance: Column,
+    equation: Column,
+    logarithm: Column,
+    pressure_unit: Column,
+    temperature_unit: Column,
+    coefficients: [Column; 5],
+    critical_temperature: Column,
+    critical_pressure: Column,
+    low: Column,
+    high: Column,
+    source: Column,
+}
+
+impl VaporPressureColumns {
+    fn of(table: &Table) -> Result<Self, TableError> {
+        Ok(Self {
+            substance: table.column("substance")?,
+            equation: table.column("equation")?,
+            logarithm: table.column("logarithm")?,
+            pressure_unit: table.column("pressure_unit")?,
+            temperature_unit: table.column("temperature_unit")?,
+            coefficients: [
+                table.column("a")?,
+                table.column("b")?,
+                table.column("c")?,
+                table.column("d")?,
+                table.column("e")?,
+            ],
+            critical_temperature: table.column_in("critical_temperature", "K")?,
+            critical_pressure: table.column_in("critical_pressure", "kPa")?,
+            low: table.column_in("low", "K")?,
+            high: table.column_in("high", "K")?,
+            source: table.column("source")?,
+        })
+    }
+
+    fn equation(&self, row: Row<'_>) -> Result<VaporPressureEquation, TableError> {
+        let number = |index: usize| row.required_number(self.coefficients[index]);
+        match row.text(self.equation) {
+            "antoine" => {
+                let log = match row.text(self.logarithm) {
+                    "log10" => std::f64::consts::LN_10,
+                    "ln" => 1.0,
+                    _ => return Err(row.fault(self.logarithm, "should be log10 or ln")),
+                };
+                let unit_pa = match row.text(self.pressure_unit) {
+                    "Pa" => 1.0,
+                    "kPa" => 1e3,
+                    "bar" => 1e5,
+                    "mmHg" => 101_325.0 / 760.0,
+                    _ => {
+                        let fault = "should be Pa, kPa, bar or mmHg";
+                        return Err(row.fault(self.pressure_unit, fault));
+                    }
+                };
+                let zero_k = match row.text(self.temperature_unit) {
+                    "K" => 0.0,
+                    "degC" => 273.15,
+                    _ => return Err(row.fault(self.temperature_unit, "should be K or degC")),
+                };
+                Ok(VaporPressureEquation::Antoine {
+                    a: log * number(0)? + f64::ln(unit_pa),
+                    b: log * number(1)?,
+                    c: number(2)? - zero_k,
+                })
+            }
+            form @ ("wagner-2.5-5" | "wagner-3-6") => Ok(VaporPressureEquation::Wagner {
+                form: if form == "wagner-3-6" {
+                    WagnerForm::ThreeSix
+                } else {
+                    WagnerForm::TwoAndAHalfFive
+                },
+                coefficients: [number(0)?, number(1)?, number(2)?, number(3)?],
+                critical_temperature_k: positive(row, self.critical_temperature)?,
+                critical_pressure_pa: 1e3 * positive(row, self.critical_pressure)?,
+            }),
+            "extended-antoine" => Ok(VaporPressureEquation::ExtendedAntoine {
+                coefficients: [number(0)?, number(1)?, number(2)?, number(3)?, number(4)?],
+            }),
+            _ => Err(row.fault(
+                self.equation,
+                "should be antoine, wagner-2.5-5, wagner-3-6 or extended-antoine",
+            )),
+        }
+    }
+}
+
+struct DensityColumns {
+    substance: Column,
+    equation: Column,
+    coefficients: [Column; 4],
+    critical_temperature: Column,
+    critical_density: Column,
+    low: Column,
+    high: Column,
+    source: Column,
+}
+
+impl DensityColumns {
+    fn of(table: &Table) -> Result<Self, TableError> {
+        Ok(Self {
+            substance: table.column("substance")?,
+            equation: table.column("equation")?,
+            coefficients: [
+                table.column("a")?,
+                table.column("b")?,
+                table.column("c")?,
+                table.column("d")?,
+            ],
+            critical_temperature: table.column_in("critical_temperature", "K")?,
+            critical_density: table.column_in("critical_density", "kg/m3")?,
+            low: table.column_in("low", "K")?,
+            high: table.column_in("high", "K")?,
+            source: table.column("source")?,
+        })
+    }
+
+    fn equation(
+        &self,
+        row: Row<'_>,
+        composition: &Composition,
+    ) -> Result<DensityEquation, TableError> {
+        let number = |index: usize| row.required_number(self.coefficients[index]);
+        match row.text(self.equation) {
+            "rackett-molar" => Ok(DensityEquation::Rackett {
+                // mol/dm3 times g/mol is kg/m3
+                a: number(0)? * molar_mass_g_per_mol(composition),
+                b: positive(row, self.coefficients[1])?,
+                c: positive(row, self.coefficients[2])?,
+                d: positive(row, self.coefficients[3])?,
+            }),
+            "critical-expansion" => Ok(DensityEquation::CriticalExpansion {
+                coefficients: [number(0)?, number(1)?, number(2)?, number(3)?],
+                critical_temperature_k: positive(row, self.critical_temperature)?,
+                critical_density_kg_per_m3: positive(row, self.critical_density)?,
+            }),
+            "constant" => Ok(DensityEquation::Constant {
+                density_kg_per_m3: positive(row, self.coefficients[0])?,
+            }),
+            _ => Err(row.fault(
+                self.equation,
+                "should be rackett-molar, critical-expansion or constant",
+            )),
+        }
+    }
+}
+
+fn positive(row: Row<'_>, column: Column) -> Result<f64, TableError> {
+    let value = row.required_number(column)?;
+    if value > 0.0 {
+        Ok(value)
+    } else {
+        Err(row.fault(column, "is not positive"))
+    }
+}
+
+fn range(row: Row<'_>, low: Column, high: Column) -> Result<(f64, f64), TableError> {
+    let low_k = positive(row, low)?;
+    let high_k = positive(row, high)?;
+    if low_k < high_k {
+        Ok((low_k, high_k))
+    } else {
+        Err(row.fault(
+            high,
+            format!("is not above the lower end of the range, {low_k} K"),
+        ))
+    }
+}
+
+/// The unit of a dimension in these tables and the factor to its SI unit inside.
+fn table_unit(dimension: Dimension) -> (&'static str, f64) {
+    match dimension {
+        Dimension::Number => ("-", 1.0),
+        Dimension::Temperature => ("K", 1.0),
+        Dimension::Pressure => ("Pa", 1.0),
+        Dimension::Density => ("kg/m3", 1.0),
+        Dimension::MolarMass => ("kg/mol", 1.0),
+        Dimension::MolarVolume => ("m3/mol", 1.0),
+        Dimension::MolarEnergy => ("J/mol", 1.0),
+        Dimension::MolarHeatCapacity => ("J/(mol K)", 1.0),
+        Dimension::Viscosity => ("Pa s", 1.0),
+        Dimension::SurfaceTension => ("N/m", 1.0),
+        Dimension::SolubilityParameter => ("MPa^0.5", 1000.0),
+    }
+}
+
+/// Whether a value of zero or less makes no sense.
+fn must_be_positive(property: Property) -> bool {
+    !matches!(
+        property,
+        Property::AcentricFactor
+            | Property::IdealGasEnthalpyOfFormation
+            | Property::IdealGasGibbsEnergyOfFormation
+            | Property::HansenPolar
+            | Property::HansenHydrogenBonding
+            | Property::LogPOctanolWater
+    )
+}
+
+fn molar_mass_g_per_mol(composition: &Composition) -> f64 {
+    const WEIGHTS: [f64; Element::COUNT] = [
+        1.008, 10.81, 12.011, 14.007, 15.999, 18.998, 28.085, 30.974, 32.06, 35.45, 79.904, 126.90,
+    ];
+    Element::ALL
+        .into_iter()
+        .map(|element| f64::from(composition.count(element)) * WEIGHTS[element as usize])
+        .sum()
+}

@@ -1,0 +1,172 @@
+//! The collection: finding a substance by name, CAS number or structure.
+
+use std::sync::Arc;
+
+use rustc_hash::FxHashMap;
+use smallvec::SmallVec;
+
+use super::cas::{CasFault, CasNumber};
+use super::{DataError, NameError, Substance, Tables, built_in, name};
+
+/// How many names an error message offers.
+const SUGGESTIONS: usize = 3;
+
+/// Every substance of the loaded layers.
+///
+/// Immutable once loaded; shared between threads.
+#[derive(Debug, Default)]
+pub struct Substances {
+    pub(super) substances: Vec<Substance>,
+    pub(super) by_name: FxHashMap<Box<str>, Named>,
+    pub(super) by_cas: FxHashMap<CasNumber, u32>,
+    pub(super) conflicts: Vec<Conflict>,
+}
+
+/// What a folded name stands for.
+#[derive(Clone, Debug)]
+pub(super) enum Named {
+    /// One substance.
+    One(u32),
+    /// A name in use for several.
+    Several(SmallVec<[u32; 4]>),
+}
+
+/// A disagreement between two published sources, and what was done about it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Conflict {
+    /// Index of the substance in [`Substances::iter`].
+    pub substance: usize,
+    /// What they disagree about.
+    pub property: Arc<str>,
+    /// The temperature at which they were compared, in K, where that matters.
+    pub temperature_k: Option<f64>,
+    /// The value used, as text; blank where none is.
+    pub used: Arc<str>,
+    /// Its source.
+    pub used_source: Arc<str>,
+    /// The other value.
+    pub other: Arc<str>,
+    /// Its source.
+    pub other_source: Arc<str>,
+    /// Unit of both values.
+    pub unit: Arc<str>,
+    /// What was done and why.
+    pub decision: Arc<str>,
+}
+
+impl Substances {
+    /// The built-in table.
+    ///
+    /// # Errors
+    ///
+    /// None as released: the tables are checked by a test.
+    pub fn built_in() -> Result<Self, DataError> {
+        Self::default().with(&built_in::TABLES)
+    }
+
+    /// Number of substances.
+    pub fn len(&self) -> usize {
+        self.substances.len()
+    }
+
+    /// Whether there are none.
+    pub fn is_empty(&self) -> bool {
+        self.substances.is_empty()
+    }
+
+    /// Every substance, in the order of the tables.
+    pub fn iter(&self) -> impl ExactSizeIterator<Item = &Substance> {
+        self.substances.iter()
+    }
+
+    /// The disagreements between sources that the tables record.
+    pub fn conflicts(&self) -> &[Conflict] {
+        &self.conflicts
+    }
+
+    /// The substance of this name, synonym or CAS number.
+    ///
+    /// Case, spaces and hyphens do not matter to names.
+    ///
+    /// # Errors
+    ///
+    /// Unknown (with the names nearest to it) or in use for several
+    /// substances; a CAS number that is unknown or has a wrong check digit.
+    pub fn find(&self, text: &str) -> Result<&Substance, NameError> {
+        self.position(text)
+            .map(|position| &self.substances[position as usize])
+    }
+
+    pub(super) fn position(&self, text: &str) -> Result<u32, NameError> {
+        let text = text.trim();
+        match CasNumber::parse_or_fault(text) {
+            Ok(cas) => {
+                return self
+                    .by_cas
+                    .get(&cas)
+                    .copied()
+                    .ok_or_else(|| NameError::UnknownCas {
+                        cas: cas.to_string(),
+                    });
+            }
+            Err(CasFault::CheckDigit { expected }) => {
+                return Err(NameError::CasCheckDigit {
+                    text: text.to_owned(),
+                    expected,
+                });
+            }
+            Err(CasFault::Form) => {}
+        }
+        let folded = name::folded(text);
+        let named = self.by_name.get(folded.as_str()).or_else(|| {
+            name::expanded(text).and_then(|expanded| self.by_name.get(expanded.as_str()))
+        });
+        match named {
+            Some(Named::One(position)) => Ok(*position),
+            Some(Named::Several(positions)) => Err(NameError::Ambiguous {
+                name: text.to_owned(),
+                candidates: positions
+                    .iter()
+                    .map(|&position| Arc::clone(&self.substances[position as usize].name))
+                    .collect(),
+            }),
+            None => Err(NameError::Unknown {
+                name: text.to_owned(),
+                nearest: self.nearest(&folded),
+            }),
+        }
+    }
+
+    /// The spellings nearest to a folded name, one for each substance.
+    fn nearest(&self, folded: &str) -> Vec<Arc<str>> {
+        let limit = (folded.len() / 4).clamp(1, 4);
+        let mut found: Vec<(usize, u32, &Arc<str>)> = Vec::new();
+        for (position, substance) in (0..).zip(&self.substances) {
+            let best = std::iter::once(&substance.name)
+                .chain(&substance.synonyms)
+                .filter_map(|spelling| {
+                    let distance = name::distance(folded, &name::folded(spelling), limit)?;
+                    Some((distance, position, spelling))
+                })
+                .min_by_key(|&(distance, ..)| distance);
+            found.extend(best);
+        }
+        found.sort_unstable_by_key(|&(distance, position, _)| (distance, position));
+        found.truncate(SUGGESTIONS);
+        found
+            .into_iter()
+            .map(|(_, _, spelling)| Arc::clone(spelling))
+            .collect()
+    }
+
+    /// The same substances with a further layer of tables, whose values go
+    /// before those already there.
+    ///
+    /// # Errors
+    ///
+    /// [`DataError::Tables`] with every fault of the layer.
+    pub fn with(mut self, tables: &Tables<'_>) -> Result<Self, DataError> {
+        super::load::load(&mut self, tables)?;
+        Ok(self)
+    }
+}
