@@ -14,8 +14,8 @@ use super::{
     Conflict, Constant, DataError, DensityEquation, LiquidDensity, Substance, Substances,
     VaporPressure, name,
 };
-use crate::chem::{Composition, Element};
-use crate::quantity::{Dimension, Property};
+use crate::chem::{Composition, Molecule, Reader};
+use crate::quantity::{Dimension, Property, unit};
 use crate::table::{Column, Row, Table, TableError};
 
 /// By how much a vapor-pressure curve may miss a stated boiling point, in K.
@@ -56,6 +56,8 @@ pub struct Tables<'a> {
 struct Layer<'a> {
     all: &'a mut Substances,
     faults: Vec<TableError>,
+    reader: Reader,
+    molecule: Molecule,
     /// Substances that stand in this layer's list.
     listed: FxHashSet<u32>,
     /// Number of values of this layer at the head of each substance's lists.
@@ -73,6 +75,8 @@ pub(super) fn load(all: &mut Substances, tables: &Tables<'_>) -> Result<(), Data
     let mut layer = Layer {
         all,
         faults: Vec::new(),
+        reader: Reader::new(),
+        molecule: Molecule::default(),
         listed: FxHashSet::default(),
         fresh: FxHashMap::default(),
     };
@@ -223,24 +227,12 @@ impl Layer<'_> {
                 ),
             ));
         }
-        let composition = self.composition(row, columns, known)?;
         let position = match known {
-            Some(position) => position,
-            None => {
-                let position = self.all.substances.len() as u32;
-                self.all.substances.push(Substance {
-                    name: Arc::from(name),
-                    synonyms: Vec::new(),
-                    family: None,
-                    cas: None,
-                    smiles: Arc::from(row.required_text(columns.smiles)?),
-                    composition,
-                    constants: Vec::new(),
-                    vapor_pressures: Vec::new(),
-                    densities: Vec::new(),
-                });
+            Some(position) => {
+                self.check_structure(row, columns, position)?;
                 position
             }
+            None => self.new_substance(row, columns, name)?,
         };
         self.listed.insert(position);
         let substance = &mut self.all.substances[position as usize];
@@ -270,26 +262,75 @@ impl Layer<'_> {
         Ok(())
     }
 
-    /// The element counts of the formula, which the structure has to have too.
-    fn composition(
-        &self,
+    fn new_substance(
+        &mut self,
         row: Row<'_>,
         columns: &SubstanceColumns,
-        known: Option<u32>,
-    ) -> Result<Composition, TableError> {
-        let older = known.map(|position| self.all.substances[position as usize].composition);
-        let composition = match (row.text(columns.formula), older) {
-            ("", Some(older)) => older,
-            (text, _) => Composition::from_formula(text)
-                .filter(|composition| *composition != Composition::default())
-                .ok_or_else(|| row.fault(columns.formula, "is not a formula"))?,
+        name: &str,
+    ) -> Result<u32, TableError> {
+        let smiles = row.required_text(columns.smiles)?;
+        self.read_structure(row, columns)?;
+        let position = self.all.substances.len() as u32;
+        self.all.substances.push(Substance {
+            name: Arc::from(name),
+            synonyms: Vec::new(),
+            family: None,
+            cas: None,
+            smiles: Arc::from(smiles),
+            composition: self.molecule.composition(),
+            molar_mass_kg_per_mol: self.molecule.molar_mass_kg_per_mol(),
+            constants: Vec::new(),
+            vapor_pressures: Vec::new(),
+            densities: Vec::new(),
+        });
+        Ok(position)
+    }
+
+    /// Checks what a row says about a substance that another table lists
+    /// already: blank, or the same element counts.
+    fn check_structure(
+        &mut self,
+        row: Row<'_>,
+        columns: &SubstanceColumns,
+        position: u32,
+    ) -> Result<(), TableError> {
+        let known = self.all.substances[position as usize].composition;
+        let found = if row.text(columns.smiles).is_empty() {
+            match row.text(columns.formula) {
+                "" => return Ok(()),
+                _ => formula(row, columns)?,
+            }
+        } else {
+            self.read_structure(row, columns)?;
+            self.molecule.composition()
         };
-        match older {
-            Some(older) if older != composition => Err(row.fault(
+        if found == known {
+            Ok(())
+        } else {
+            Err(row.fault(
                 columns.formula,
-                format!("differs from {older}, which the substance has in another table"),
-            )),
-            _ => Ok(composition),
+                format!("the substance is {known} in another table, not {found}"),
+            ))
+        }
+    }
+
+    /// Reads the structure of a row and compares it with the formula beside it.
+    fn read_structure(
+        &mut self,
+        row: Row<'_>,
+        columns: &SubstanceColumns,
+    ) -> Result<(), TableError> {
+        self.reader
+            .read_into(row.text(columns.smiles), &mut self.molecule)
+            .map_err(|error| row.fault(columns.smiles, error.to_string()))?;
+        let structure = self.molecule.composition();
+        if row.text(columns.formula).is_empty() || formula(row, columns)? == structure {
+            Ok(())
+        } else {
+            Err(row.fault(
+                columns.formula,
+                format!("is not that of the SMILES, which is {structure}"),
+            ))
         }
     }
 
@@ -373,13 +414,9 @@ impl Layer<'_> {
             let quantity = Property::from_id(row.text(property))
                 .filter(|&quantity| quantity != Property::MolarMass)
                 .ok_or_else(|| row.fault(property, "is not a property that can be measured"))?;
-            let (wanted, factor) = table_unit(quantity.dimension());
-            if row.text(unit) != wanted {
-                return Err(row.fault(unit, format!("should be {wanted}")));
-            }
             let constant = Constant {
                 property: quantity,
-                value: factor * row.required_number(value)?,
+                value: in_si(row, value, unit, quantity.dimension())?,
                 temperature_k: row.number(temperature)?,
                 pressure_pa: row.number(pressure)?.map(|kpa| 1000.0 * kpa),
                 source: sources.get(row, source)?,
@@ -535,7 +572,7 @@ impl Layer<'_> {
         self.each_row(table, |layer, row| {
             let position = layer.find(row, columns.substance)?;
             let substance = &layer.all.substances[position as usize];
-            let equation = columns.equation(row, &substance.composition)?;
+            let equation = columns.equation(row, substance.molar_mass_kg_per_mol)?;
             let (low, high) = range(row, columns.low, columns.high)?;
             let source = sources.get(row, columns.source)?;
             let curve = LiquidDensity::new(equation, low, high, source).ok_or_else(|| {
@@ -570,6 +607,9 @@ impl Layer<'_> {
         let others = substance.densities.iter().filter_map(|other| {
             let low = other.range_k().0.max(curve.range_k().0);
             let high = other.range_k().1.min(curve.range_k().1);
+            if low > high {
+                return None;
+            }
             // near a critical point two fits may part
             let t = low + 0.25 * (high - low);
             Some((t, other.density_kg_per_m3(t).ok()?))
@@ -631,6 +671,12 @@ impl Layer<'_> {
         });
         Ok(())
     }
+}
+
+fn formula(row: Row<'_>, columns: &SubstanceColumns) -> Result<Composition, TableError> {
+    Composition::from_formula(row.text(columns.formula))
+        .filter(|composition| *composition != Composition::default())
+        .ok_or_else(|| row.fault(columns.formula, "is not a formula"))
 }
 
 struct SubstanceColumns {
@@ -763,13 +809,13 @@ impl DensityColumns {
     fn equation(
         &self,
         row: Row<'_>,
-        composition: &Composition,
+        molar_mass_kg_per_mol: f64,
     ) -> Result<DensityEquation, TableError> {
         let number = |index: usize| row.required_number(self.coefficients[index]);
         match row.text(self.equation) {
             "rackett-molar" => Ok(DensityEquation::Rackett {
                 // mol/dm3 times g/mol is kg/m3
-                a: number(0)? * molar_mass_g_per_mol(composition),
+                a: number(0)? * 1000.0 * molar_mass_kg_per_mol,
                 b: positive(row, self.coefficients[1])?,
                 c: positive(row, self.coefficients[2])?,
                 d: positive(row, self.coefficients[3])?,
@@ -812,20 +858,24 @@ fn range(row: Row<'_>, low: Column, high: Column) -> Result<(f64, f64), TableErr
     }
 }
 
-/// The unit of a dimension in these tables and the factor to its SI unit inside.
-fn table_unit(dimension: Dimension) -> (&'static str, f64) {
+/// The value of a cell in SI, whatever unit of the dimension stands beside it.
+fn in_si(
+    row: Row<'_>,
+    value: Column,
+    unit: Column,
+    dimension: Dimension,
+) -> Result<f64, TableError> {
+    let number = row.required_number(value)?;
+    let symbol = row.text(unit);
     match dimension {
-        Dimension::Number => ("-", 1.0),
-        Dimension::Temperature => ("K", 1.0),
-        Dimension::Pressure => ("Pa", 1.0),
-        Dimension::Density => ("kg/m3", 1.0),
-        Dimension::MolarMass => ("kg/mol", 1.0),
-        Dimension::MolarVolume => ("m3/mol", 1.0),
-        Dimension::MolarEnergy => ("J/mol", 1.0),
-        Dimension::MolarHeatCapacity => ("J/(mol K)", 1.0),
-        Dimension::Viscosity => ("Pa s", 1.0),
-        Dimension::SurfaceTension => ("N/m", 1.0),
-        Dimension::SolubilityParameter => ("MPa^0.5", 1000.0),
+        Dimension::Number if symbol == "-" || symbol.is_empty() => Ok(number),
+        // the common case, kept from being written out and read again
+        Dimension::SolubilityParameter if symbol == unit::si_symbol(dimension) => {
+            Ok(1000.0 * number)
+        }
+        _ if symbol == unit::si_symbol(dimension) => Ok(number),
+        _ => unit::parse(&format!("{number} {symbol}"), dimension)
+            .map_err(|error| row.fault(unit, error.to_string())),
     }
 }
 
@@ -840,14 +890,4 @@ fn must_be_positive(property: Property) -> bool {
             | Property::HansenHydrogenBonding
             | Property::LogPOctanolWater
     )
-}
-
-fn molar_mass_g_per_mol(composition: &Composition) -> f64 {
-    const WEIGHTS: [f64; Element::COUNT] = [
-        1.008, 10.81, 12.011, 14.007, 15.999, 18.998, 28.085, 30.974, 32.06, 35.45, 79.904, 126.90,
-    ];
-    Element::ALL
-        .into_iter()
-        .map(|element| f64::from(composition.count(element)) * WEIGHTS[element as usize])
-        .sum()
 }

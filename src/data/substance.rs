@@ -36,6 +36,7 @@ pub struct Substance {
     pub(super) cas: Option<CasNumber>,
     pub(super) smiles: Arc<str>,
     pub(super) composition: Composition,
+    pub(super) molar_mass_kg_per_mol: f64,
     pub(super) constants: Vec<Constant>,
     pub(super) vapor_pressures: Vec<VaporPressure>,
     pub(super) densities: Vec<LiquidDensity>,
@@ -70,6 +71,11 @@ impl Substance {
     /// Element counts.
     pub fn composition(&self) -> &Composition {
         &self.composition
+    }
+
+    /// Molar mass in kg/mol, isotopes of the structure counted.
+    pub fn molar_mass_kg_per_mol(&self) -> f64 {
+        self.molar_mass_kg_per_mol
     }
 
     /// Every single measured number, the preferred one of a property first.
