@@ -1,12 +1,17 @@
 //! Everything published that an evaluation draws on, loaded once.
 
+use std::sync::Arc;
+
 use thiserror::Error;
 
-use crate::chem::Canonicalizer;
-use crate::data::{DataError, Substances};
+use super::error::UnknownMolecule;
+use super::profile::{Known, Profile, Profiler};
+use crate::chem::Keys;
+use crate::data::{DataError, Substance, Substances};
 use crate::groups::{GroupSet, GroupsError, SetId};
 use crate::mixture::{ActivityModel, Slips, Unifac};
 use crate::pure::PureMethods;
+use crate::quantity::Absent;
 use crate::table::TableError;
 
 /// A built-in or user table that cannot be used.
@@ -27,15 +32,18 @@ pub enum LibraryError {
 #[derive(Debug)]
 pub struct Library {
     sets: [GroupSet; SetId::ALL.len()],
-    unifac: [Unifac; 3],
+    unifac: [Unifac; UNIFAC_MODELS.len()],
     /// Pure-component methods.
     pub methods: PureMethods,
     /// Measured substances.
     pub substances: Substances,
     slips: Slips,
+    /// That a set leaves atoms out, without saying which: finding the words takes
+    /// longer than the breakdown, so it waits until somebody reads them.
+    not_covered: [Absent; SetId::ALL.len()],
 }
 
-/// The UNIFAC models, in the order of [`Library::unifac`]'s array.
+/// The models that have tables, in the order in which they are held.
 const UNIFAC_MODELS: [ActivityModel; 3] =
     [ActivityModel::Unifac, ActivityModel::UnifacDortmund, ActivityModel::UnifacDortmund2006];
 
@@ -57,6 +65,10 @@ impl Library {
             methods: PureMethods::built_in(),
             substances: Substances::built_in()?,
             slips,
+            not_covered: SetId::ALL.map(|set| Absent::NotCovered {
+                set: set.id(),
+                what: "some atoms are in no group".into(),
+            }),
         })
     }
 
@@ -75,8 +87,55 @@ impl Library {
         self.slips
     }
 
-    /// A canonicalizer for looking molecules up; one per thread.
-    pub(super) fn canonicalizer(&self) -> Canonicalizer {
-        Canonicalizer::new()
+    /// The reason of every molecule that a set does not cover; see [`Profiler::explained`].
+    pub(super) fn not_covered(&self, set: SetId) -> &Absent {
+        &self.not_covered[set as usize]
+    }
+
+    /// Measured data of a molecule: of the same identity, else of the same constitution.
+    pub fn known(&self, keys: &Keys) -> Option<Known<'_>> {
+        self.substances
+            .by_keys(&keys.full, &keys.constitution)
+            .map(|(substance, same_identity)| Known { substance, same_identity })
+    }
+
+    /// The molecule behind a name, CAS number or SMILES. A built-in name goes
+    /// before a SMILES that reads the same.
+    ///
+    /// # Errors
+    ///
+    /// The text is neither.
+    pub fn find(
+        &self,
+        profiler: &mut Profiler,
+        text: &str,
+    ) -> Result<(Option<Arc<str>>, Profile), UnknownMolecule> {
+        let text = text.trim();
+        match self.substances.find(text) {
+            Ok(substance) => {
+                let profile = profiler
+                    .profile(self, substance.smiles())
+                    .expect("structures of built-in substances were read when they were loaded");
+                Ok((Some(Arc::clone(substance.name())), profile))
+            }
+            Err(name) => match profiler.profile(self, text) {
+                Ok(profile) => {
+                    let known = self.known(&profile.keys).filter(|known| known.same_identity);
+                    Ok((known.map(|known| Arc::clone(known.substance.name())), profile))
+                }
+                Err(smiles) => Err(UnknownMolecule { text: text.to_owned(), smiles, name }),
+            },
+        }
+    }
+
+    pub(super) fn position(&self, substance: &Substance) -> usize {
+        self.substances
+            .iter()
+            .position(|other| std::ptr::eq(other, substance))
+            .expect("the substance is one of the library")
+    }
+
+    pub(super) fn substance(&self, position: usize) -> &Substance {
+        self.substances.iter().nth(position).expect("positions come from the library")
     }
 }

@@ -1,0 +1,148 @@
+//! A component of the user's mixture, with everything models ask of it.
+
+use std::sync::Arc;
+
+use super::error::UnknownMolecule;
+use super::profile::{Known, Profile, Profiler, properties};
+use super::Library;
+use crate::data::VaporPressure;
+use crate::pure::corresponding_states::{Constants, VaporPressureCurve};
+use crate::quantity::{Absent, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
+
+/// Vapor pressure of a substance as a function of temperature.
+#[derive(Clone, Debug)]
+pub enum VaporCurve {
+    /// A correlation of measured values.
+    Measured(VaporPressure),
+    /// A corresponding-states method through the boiling point.
+    Estimated(VaporPressureCurve),
+    /// There is none.
+    Absent(Absent),
+}
+
+impl VaporCurve {
+    /// The curve of a molecule: measured where known, else estimated.
+    pub(super) fn of(library: &Library, profile: &Profile, known: Option<Known<'_>>) -> Self {
+        if let Some(curve) = known.and_then(|known| known.substance.vapor_pressure()) {
+            return Self::Measured(curve.clone());
+        }
+        let all = properties(library, profile, known, REFERENCE_TEMPERATURE_K);
+        Self::estimated(library, &all).unwrap_or_else(Self::Absent)
+    }
+
+    /// The estimated curve that goes with a set of estimates.
+    pub(super) fn estimated(
+        library: &Library,
+        all: &crate::pure::Estimates,
+    ) -> Result<Self, Absent> {
+        let value = |property: Property| {
+            all[property as usize].as_ref().map(|found| found.value).map_err(Absent::clone)
+        };
+        let method = library.methods.vapor_pressure;
+        let constants = Constants::new(
+            value(Property::BoilingPoint)?,
+            value(Property::CriticalTemperature)?,
+            value(Property::CriticalPressure)?,
+            method.id(),
+        )?;
+        Ok(Self::Estimated(VaporPressureCurve::through_boiling_point(method, constants)?))
+    }
+
+    /// Vapor pressure in Pa at a temperature in K.
+    ///
+    /// # Errors
+    ///
+    /// There is no curve, or it does not reach that far.
+    pub fn pressure_pa(&self, temperature_k: f64) -> Result<f64, Absent> {
+        match self {
+            Self::Measured(curve) => curve.pressure_pa(temperature_k).map_err(|error| error.absent()),
+            Self::Estimated(curve) => curve.pressure_pa(temperature_k),
+            Self::Absent(reason) => Err(reason.clone()),
+        }
+    }
+
+    /// What the reader of a value at this temperature has to know.
+    pub fn flags_at(&self, temperature_k: f64) -> Flags {
+        match self {
+            Self::Measured(curve) => curve.flags_at(temperature_k),
+            Self::Estimated(_) => Flags::NONE.with(Flag::RestsOnEstimate),
+            Self::Absent(_) => Flags::NONE,
+        }
+    }
+
+    /// Whether it rests on measured values.
+    pub fn is_measured(&self) -> bool {
+        matches!(self, Self::Measured(_))
+    }
+}
+
+/// A component of the user's mixture.
+#[derive(Clone, Debug)]
+pub struct MixtureComponent {
+    /// What to call it: the name of the substance if it is known, else as written.
+    pub name: Arc<str>,
+    /// Its structure.
+    pub profile: Profile,
+    /// Position of the measured substance, where there is one.
+    known: Option<(usize, bool)>,
+    /// Vapor pressure.
+    pub vapor: VaporCurve,
+}
+
+impl MixtureComponent {
+    /// Finds a component by name, CAS number or SMILES; `use_measured` says
+    /// whether measured data are drawn on.
+    ///
+    /// # Errors
+    ///
+    /// The text is neither.
+    pub fn find(
+        library: &Library,
+        profiler: &mut Profiler,
+        text: &str,
+        use_measured: bool,
+    ) -> Result<Self, UnknownMolecule> {
+        let (name, profile) = library.find(profiler, text)?;
+        let known = library.known(&profile.keys).filter(|_| use_measured);
+        let name = known.filter(|known| known.same_identity).map_or_else(
+            || name.unwrap_or_else(|| text.trim().into()),
+            |known| Arc::clone(known.substance.name()),
+        );
+        let vapor = VaporCurve::of(library, &profile, known);
+        let known = known.map(|known| (library.position(known.substance), known.same_identity));
+        Ok(Self { name, profile, known, vapor })
+    }
+
+    /// Measured data of the component.
+    pub fn known<'l>(&self, library: &'l Library) -> Option<Known<'l>> {
+        let (position, same_identity) = self.known?;
+        Some(Known { substance: library.substance(position), same_identity })
+    }
+
+    /// Molar volume of the pure liquid in m³/mol at a temperature, with flags.
+    ///
+    /// # Errors
+    ///
+    /// Why the density is absent.
+    pub fn molar_volume_m3_per_mol(
+        &self,
+        library: &Library,
+        temperature_k: f64,
+    ) -> Result<(f64, Flags), Absent> {
+        let all = properties(library, &self.profile, self.known(library), temperature_k);
+        let density = all[Property::LiquidDensity as usize].as_ref().map_err(Absent::clone)?;
+        let flags = if density.status == crate::quantity::Status::Measured {
+            density.flags
+        } else {
+            density.flags.with(Flag::RestsOnEstimate)
+        };
+        Ok((self.profile.facts.molar_mass_kg_per_mol / density.value, flags))
+    }
+
+    /// Boiling point in K for a first guess; absent where nothing is known.
+    pub(super) fn boiling_guess_k(&self, library: &Library) -> Option<f64> {
+        let all =
+            properties(library, &self.profile, self.known(library), REFERENCE_TEMPERATURE_K);
+        all[Property::BoilingPoint as usize].as_ref().ok().map(|found| found.value)
+    }
+}

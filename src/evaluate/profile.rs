@@ -1,0 +1,205 @@
+//! What a structure alone says: keys, groups and facts, before any brief.
+
+use smallvec::SmallVec;
+
+use super::Library;
+use crate::chem::{BondOrder, Canonicalizer, Element, Keys, Molecule, Reader, SmilesError};
+use crate::data::Substance;
+use crate::groups::{Breaker, Breakdown, Coverage, GroupCounts, SetId};
+use crate::pure::{Estimates, Given, StructureFacts, estimate_all};
+use crate::quantity::{Absent, Estimate, Flag, Flags, Property};
+
+/// A molecule with its canonical keys, its groups in every set, and its facts.
+#[derive(Clone, Debug, Default)]
+pub struct Profile {
+    /// The molecule.
+    pub molecule: Molecule,
+    /// Canonical keys.
+    pub keys: Keys,
+    /// Counts by set; index with [`SetId`].
+    pub counts: [GroupCounts; SetId::ALL.len()],
+    /// How far each set covers the molecule.
+    pub coverage: Coverages,
+    /// Facts that travel with the counts.
+    pub facts: StructureFacts,
+    /// Whether its vapor associates (a carboxylic acid).
+    pub associates: bool,
+}
+
+/// Coverage by set.
+#[derive(Clone, Copy, Debug)]
+pub struct Coverages([Coverage; SetId::ALL.len()]);
+
+impl Default for Coverages {
+    fn default() -> Self {
+        Self([Coverage::Partial; SetId::ALL.len()])
+    }
+}
+
+impl Coverages {
+    /// The coverage by one set.
+    pub fn of(&self, set: SetId) -> Coverage {
+        self.0[set as usize]
+    }
+}
+
+impl Profile {
+    /// The counts in a set, if they are complete.
+    ///
+    /// # Errors
+    ///
+    /// That some atom is in no group; [`Profiler::gaps`] says which.
+    pub fn complete_counts(&self, library: &Library, set: SetId) -> Result<&GroupCounts, Absent> {
+        if self.coverage.of(set) == Coverage::Complete {
+            Ok(&self.counts[set as usize])
+        } else {
+            Err(library.not_covered(set).clone())
+        }
+    }
+}
+
+/// Reads structures into profiles; holds the scratch memory, one per thread.
+pub struct Profiler {
+    reader: Reader,
+    canonicalizer: Canonicalizer,
+    breaker: Breaker,
+}
+
+impl Default for Profiler {
+    fn default() -> Self {
+        Self::new()
+    }
+}
+
+impl Profiler {
+    /// A profiler with empty scratch memory.
+    pub fn new() -> Self {
+        Self {
+            reader: Reader::new(),
+            canonicalizer: Canonicalizer::new(),
+            breaker: Breaker::new(),
+        }
+    }
+
+    /// Reads a SMILES and breaks it down in every set.
+    ///
+    /// # Errors
+    ///
+    /// The line is no molecule that Groupsmith takes.
+    pub fn profile(&mut self, library: &Library, smiles: &str) -> Result<Profile, SmilesError> {
+        let mut profile = Profile::default();
+        self.profile_into(library, smiles, &mut profile)?;
+        Ok(profile)
+    }
+
+    /// The same into memory that is used again; after an error the profile is
+    /// of no use.
+    ///
+    /// # Errors
+    ///
+    /// As [`profile`](Self::profile).
+    pub fn profile_into(
+        &mut self,
+        library: &Library,
+        smiles: &str,
+        profile: &mut Profile,
+    ) -> Result<(), SmilesError> {
+        self.reader.read_into(smiles, &mut profile.molecule)?;
+        let molecule = &profile.molecule;
+        self.canonicalizer.keys_into(molecule, &mut profile.keys);
+        self.breaker.load(molecule);
+        for set in SetId::ALL {
+            let counts = &mut profile.counts[set as usize];
+            profile.coverage.0[set as usize] =
+                self.breaker.counts(molecule, library.set(set), counts);
+        }
+        profile.facts =
+            StructureFacts::new(molecule.composition(), molecule.molar_mass_kg_per_mol());
+        profile.associates = has_carboxyl(molecule);
+        Ok(())
+    }
+
+    /// The breakdown in one set, with the place of every group.
+    pub fn breakdown(&mut self, library: &Library, profile: &Profile, set: SetId) -> Breakdown {
+        self.breaker.load(&profile.molecule);
+        self.breaker.breakdown(&profile.molecule, library.set(set))
+    }
+
+    /// Why a set does not cover a molecule, in a chemist's words.
+    pub fn gaps(&mut self, library: &Library, profile: &Profile, set: SetId) -> String {
+        let breakdown = self.breakdown(library, profile, set);
+        breakdown.gaps(&profile.molecule, library.set(set))
+    }
+
+    /// A reason for absence with the words for an uncovered part filled in.
+    pub fn explained(&mut self, library: &Library, profile: &Profile, absent: &Absent) -> Absent {
+        for set in SetId::ALL {
+            if absent == library.not_covered(set) {
+                let what = self.gaps(library, profile, set).into();
+                return Absent::NotCovered { set: set.id(), what };
+            }
+        }
+        absent.clone()
+    }
+}
+
+fn has_carboxyl(molecule: &Molecule) -> bool {
+    (0..molecule.atoms().len() as u32).any(|carbon| {
+        let around = molecule.neighbors(carbon);
+        let oxygen = |order: BondOrder, with_hydrogen: bool| {
+            around.iter().any(|bond| {
+                let atom = &molecule.atoms()[bond.atom as usize];
+                bond.order == order
+                    && atom.element == Element::O
+                    && (atom.hydrogens > 0) == with_hydrogen
+            })
+        };
+        molecule.atoms()[carbon as usize].element == Element::C
+            && oxygen(BondOrder::Double, false)
+            && oxygen(BondOrder::Single, true)
+    })
+}
+
+/// Measured data of a molecule.
+#[derive(Clone, Copy, Debug)]
+pub struct Known<'l> {
+    /// The substance.
+    pub substance: &'l Substance,
+    /// Whether stereochemistry and isotopes are the same too.
+    pub same_identity: bool,
+}
+
+/// Measured values that go before estimates; room for all without allocation.
+pub(super) type GivenValues = SmallVec<[(Property, Estimate); 12]>;
+
+/// The measured values of a substance at a temperature.
+pub(super) fn measured_values(known: Option<Known<'_>>, temperature_k: f64) -> GivenValues {
+    let Some(known) = known else { return GivenValues::new() };
+    let flags =
+        if known.same_identity { Flags::NONE } else { Flags::NONE.with(Flag::OtherStereoisomer) };
+    Property::ALL
+        .into_iter()
+        .filter_map(|property| {
+            let value = known.substance.measured(property, temperature_k)?.ok()?;
+            Some((property, value.flagged(flags)))
+        })
+        .collect()
+}
+
+/// Every property of a molecule at a temperature, measured before estimated.
+pub fn properties(
+    library: &Library,
+    profile: &Profile,
+    known: Option<Known<'_>>,
+    temperature_k: f64,
+) -> Estimates {
+    let counts = profile.complete_counts(library, SetId::Joback);
+    let given = measured_values(known, temperature_k);
+    estimate_all(
+        &library.methods,
+        counts.as_ref().map(|counts| *counts),
+        &profile.facts,
+        Given(&given),
+        temperature_k,
+    )
+}
