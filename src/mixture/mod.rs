@@ -9,17 +9,26 @@
 //! [`Component`]s, [`UnifacMixture`] with its [`UnifacState`] (ln γ and its
 //! derivatives), [`Liquid`] (what every model offers to phase equilibrium).
 
+mod composition;
+mod equilibrium;
 mod error;
 mod excess;
 mod liquid;
 mod model;
 mod unifac;
 
+pub use composition::{MassFractions, MoleFractions, SUM_TOLERANCE, VolumeFractions};
+pub use equilibrium::{
+    Azeotrope, AzeotropeKind, BubblePoint, Condition, Extremum, LiquidPhase, Vapor, VaporPressures,
+    VolatilityPoint, azeotropes, bubble_pressure, bubble_temperature, liquid_phases,
+    relative_volatility,
+};
 pub use error::{MixtureError, PairGap};
 pub use excess::Excess;
 pub use liquid::{IdealState, Liquid};
 pub use model::{ActivityModel, ModelStatus, RESERVED_MODELS};
 pub use unifac::{
-    Component, Coverage, Interaction, MainGroup, Override, PairRecord, Slip, Slips, Subgroup,
-    TableFile, Unifac, UnifacMixture, UnifacOverlay, UnifacState, UnifacTables, UnifacTexts,
+    Component, Coverage, GroupsAtTemperature, HostAtTemperature, Interaction, KeysAtTemperature,
+    MainGroup, Override, PairRecord, Slip, Slips, Subgroup, TableFile, Unifac, UnifacMixture,
+    UnifacOverlay, UnifacState, UnifacTables, UnifacTexts,
 };

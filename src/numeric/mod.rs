@@ -1,1 +1,13 @@
-//! TODO room.
+//! Numerical tools without chemistry: roots of one unknown, small dense
+//! equations, finite differences.
+//!
+//! Every iteration has a limit; running into it is an error that carries the
+//! residual, the number of steps and the last iterate.
+
+mod difference;
+mod linear;
+mod root;
+
+pub use difference::central_difference;
+pub use linear::solve_dense;
+pub use root::{Root, RootError, RootTolerance, bracketed_root, rising_root};

@@ -29,7 +29,7 @@ pub(super) enum Combinatorial {
 /// Parameters: the heads of the table files.
 #[derive(Clone, Debug)]
 pub struct Unifac {
-    tables: Arc<UnifacTables>,
+    pub(super) tables: Arc<UnifacTables>,
     combinatorial: Combinatorial,
 }
 

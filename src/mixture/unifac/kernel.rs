@@ -7,10 +7,10 @@ use super::component::Component;
 use super::tables::{Interaction, UnifacTables};
 
 /// Half of the coordination number z = 10.
-const HALF_Z: f64 = 5.0;
+pub(super) const HALF_Z: f64 = 5.0;
 
 /// Largest |ln ψ| taken as meaningful; keeps every product of the kernel finite.
-const MOST_LN_PSI: f64 = 150.0;
+pub(super) const MOST_LN_PSI: f64 = 150.0;
 
 /// The components of a mixture and the interactions of their main groups.
 ///

@@ -323,15 +323,20 @@ impl UnifacTables {
             let missing = present & !self.known[at];
             if missing != 0 {
                 let other = missing.trailing_zeros() as usize;
-                let (a, b) = (self.main_groups[at].number, self.main_groups[other].number);
-                return Err(PairGap {
-                    first: a.min(b),
-                    second: a.max(b),
-                });
+                return Err(self.pair_gap(at, other));
             }
             left &= left - 1;
         }
         Ok(())
+    }
+
+    /// The gap between two main groups given by position.
+    pub(super) fn pair_gap(&self, at: usize, other: usize) -> PairGap {
+        let (a, b) = (self.main_groups[at].number, self.main_groups[other].number);
+        PairGap {
+            first: a.min(b),
+            second: a.max(b),
+        }
     }
 
     /// The gap with the names of its main groups.
