@@ -52,12 +52,7 @@ pub(super) struct Aromaticity {
 
 impl Aromaticity {
     /// Marks aromatic atoms and bonds of a molecule in a Kekulé form.
-    pub(super) fn perceive(
-        &mut self,
-        molecule: &mut Molecule,
-        rings: &Rings,
-        spelling: &Spelling,
-    ) {
+    pub(super) fn perceive(&mut self, molecule: &mut Molecule, rings: &Rings, spelling: &Spelling) {
         self.electrons.clear();
         for atom in 0..molecule.atoms.len() {
             let electrons = if molecule.atoms[atom].in_ring {
@@ -221,7 +216,10 @@ impl Aromaticity {
                 bond.kekule == 2
                     && bond.in_ring
                     && bond.order != BondOrder::Aromatic
-                    && bond.atoms.iter().any(|&atom| molecule.atoms[atom as usize].aromatic)
+                    && bond
+                        .atoms
+                        .iter()
+                        .any(|&atom| molecule.atoms[atom as usize].aromatic)
             })
             .collect();
         if strays.is_empty() {
@@ -243,7 +241,10 @@ impl Aromaticity {
             bond.order == BondOrder::Aromatic
                 || (bond.in_ring
                     && bond.kekule == 1
-                    && bond.atoms.iter().all(|&atom| !atoms[atom as usize].aromatic))
+                    && bond
+                        .atoms
+                        .iter()
+                        .all(|&atom| !atoms[atom as usize].aromatic))
         });
         if let Ok(pairs) = pairs {
             for index in freed {

@@ -163,11 +163,7 @@ impl Kekule {
 }
 
 /// Whether a lower-case atom needs a ring double bond; settles its hydrogens.
-fn lacks_bond(
-    molecule: &mut Molecule,
-    spelling: &Spelling,
-    index: u32,
-) -> Result<bool, Fault> {
+fn lacks_bond(molecule: &mut Molecule, spelling: &Spelling, index: u32) -> Result<bool, Fault> {
     let atom = molecule.atoms[index as usize];
     if !atom.in_ring {
         return Err(spelling.at(index, SmilesFault::AromaticOutsideRing));

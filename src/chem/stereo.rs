@@ -72,7 +72,10 @@ fn center(
     if line_atom.hydrogens == 1 || has_lone_pair {
         ligands.push((behind_parent, NONE));
     }
-    let unseen = ligands.iter().filter(|&&(_, ligand)| ligand == NONE).count();
+    let unseen = ligands
+        .iter()
+        .filter(|&&(_, ligand)| ligand == NONE)
+        .count();
     if ligands.len() != 4 || unseen > 1 || usize::from(here.hydrogens) > unseen {
         return None;
     }

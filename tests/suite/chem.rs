@@ -77,7 +77,11 @@ fn orders_follow_the_model() {
     let toluene = read("CC1=CC=CC=C1");
     let orders: Vec<BondOrder> = toluene.bonds().iter().map(|bond| bond.order).collect();
     assert_eq!(orders[0], BondOrder::Single);
-    assert!(orders[1..].iter().all(|&order| order == BondOrder::Aromatic));
+    assert!(
+        orders[1..]
+            .iter()
+            .all(|&order| order == BondOrder::Aromatic)
+    );
     assert_eq!(toluene.atoms()[1].ring_sizes, 1 << 6);
     assert_eq!(toluene.neighbors(0).len(), 1);
 }
