@@ -130,7 +130,7 @@ impl Given {
             fractions: !mixture.fractions.is_absent(),
             temperature: !mixture.temperature.is_absent(),
             pressure: !mixture.pressure.is_absent(),
-            solvent_to_feed: mixture.solvent_to_feed.is_some(),
+            solvent_to_feed: mixture.has_solvent_to_feed,
         }
     }
 }

@@ -90,6 +90,8 @@ pub(super) struct RawMixture {
     pub(super) pressure: Field<RawQuantity>,
     pub(super) model: Field<Vec<Located<String>>>,
     pub(super) solvent_to_feed: Option<RawSolventToFeed>,
+    /// Whether it is there, sound or not.
+    pub(super) has_solvent_to_feed: bool,
     pub(super) estimates_for_keys: Field<bool>,
 }
 
@@ -213,6 +215,23 @@ struct Section<'a> {
     /// What goes before the name of a field.
     prefix: String,
     place: Place,
+    /// Keys that unknown keys were probably meant for: their fault is told, so
+    /// they are not to be called missing too.
+    mistyped: Vec<&'static str>,
+}
+
+impl Section<'_> {
+    fn has(&self, key: &str) -> bool {
+        self.table.contains_key(key) || self.mistyped.contains(&key)
+    }
+
+    /// What a field is that the table does not hold.
+    fn lacking<T>(&self, key: &str) -> Field<T> {
+        match self.mistyped.contains(&key) {
+            true => Field::Faulty,
+            false => Field::Absent,
+        }
+    }
 }
 
 struct Reader<'a> {
@@ -245,15 +264,16 @@ pub(super) fn read(text: &str) -> (RawBrief, Vec<(Place, Cause)>) {
         name: "the brief".into(),
         prefix: String::new(),
         place: Place::START,
+        mistyped: Vec::new(),
     };
-    let brief = reader.brief(&root);
+    let brief = reader.brief(root);
     (brief, reader.faults)
 }
 
 impl<'a> Reader<'a> {
-    fn brief(&mut self, root: &Section<'_>) -> RawBrief {
+    fn brief(&mut self, mut root: Section<'_>) -> RawBrief {
         self.refuse_unknown(
-            root,
+            &mut root,
             &[
                 "title",
                 "purpose",
@@ -265,19 +285,20 @@ impl<'a> Reader<'a> {
                 "keep",
             ],
         );
+        let root = &root;
         let mut brief = RawBrief {
             title: self.text(root, "title", "title = \"Entrainers for the pair\""),
             purpose: self.text(root, "purpose", "purpose = \"entrainer\""),
-            has_targets: root.table.contains_key("target"),
-            has_mixture: root.table.contains_key("mixture"),
-            has_pool: root.table.contains_key("pool"),
+            has_targets: root.has("target"),
+            has_mixture: root.has("mixture"),
+            has_pool: root.has("pool"),
             ..RawBrief::default()
         };
-        if let Some(section) = self.section(root, "mixture") {
-            brief.mixture = Some(self.mixture(&section));
+        if let Some(mut section) = self.section(root, "mixture") {
+            brief.mixture = Some(self.mixture(&mut section));
         }
-        if let Some(section) = self.section(root, "pool") {
-            self.refuse_unknown(&section, &["file", "name_column", "smiles_column"]);
+        if let Some(mut section) = self.section(root, "pool") {
+            self.refuse_unknown(&mut section, &["file", "name_column", "smiles_column"]);
             brief.pool = Some(RawPool {
                 place: section.place,
                 file: self.text(&section, "file", "file = \"solvents.csv\""),
@@ -285,11 +306,11 @@ impl<'a> Reader<'a> {
                 smiles_column: self.text(&section, "smiles_column", "smiles_column = \"SMILES\""),
             });
         }
-        if let Some(section) = self.section(root, "assembly") {
-            brief.assembly = Some(self.assembly(&section));
+        if let Some(mut section) = self.section(root, "assembly") {
+            brief.assembly = Some(self.assembly(&mut section));
         }
-        if let Some(section) = self.section(root, "structure") {
-            brief.structure = self.structure(&section);
+        if let Some(mut section) = self.section(root, "structure") {
+            brief.structure = self.structure(&mut section);
         }
         let targets = self.sections(root, "target", "[[target]]");
         brief.targets = targets
@@ -297,14 +318,14 @@ impl<'a> Reader<'a> {
             .enumerate()
             .map(|(position, section)| self.target(position, section))
             .collect();
-        if let Some(section) = self.section(root, "keep") {
-            self.refuse_unknown(&section, &["best"]);
+        if let Some(mut section) = self.section(root, "keep") {
+            self.refuse_unknown(&mut section, &["best"]);
             brief.keep_best = self.count(&section, "best", "best = 1000");
         }
         brief
     }
 
-    fn mixture(&mut self, section: &Section<'_>) -> RawMixture {
+    fn mixture(&mut self, section: &mut Section<'_>) -> RawMixture {
         self.refuse_unknown(
             section,
             &[
@@ -336,6 +357,7 @@ impl<'a> Reader<'a> {
             pressure: self.quantity(section, "pressure", "pressure = \"101.325 kPa\""),
             model: self.texts(section, "model", "model = \"unifac-dortmund\"", true),
             solvent_to_feed: self.solvent_to_feed(section),
+            has_solvent_to_feed: section.has("solvent_to_feed"),
             estimates_for_keys: self.truth(
                 section,
                 "estimates_for_keys",
@@ -355,8 +377,8 @@ impl<'a> Reader<'a> {
                 basis: Field::Absent,
             });
         }
-        let inner = self.section(section, key)?;
-        self.refuse_unknown(&inner, &["ratio", "basis"]);
+        let mut inner = self.section(section, key)?;
+        self.refuse_unknown(&mut inner, &["ratio", "basis"]);
         Some(RawSolventToFeed {
             place,
             ratio: self.number(&inner, "ratio", "{ ratio = 2.0, basis = \"mole\" }"),
@@ -364,7 +386,7 @@ impl<'a> Reader<'a> {
         })
     }
 
-    fn assembly(&mut self, section: &Section<'_>) -> RawAssembly {
+    fn assembly(&mut self, section: &mut Section<'_>) -> RawAssembly {
         self.refuse_unknown(section, &["pieces", "count", "limits"]);
         let mut assembly = RawAssembly {
             place: section.place,
@@ -374,8 +396,8 @@ impl<'a> Reader<'a> {
             limits: Vec::new(),
         };
         let example = "count = { least = 2, most = 10 }";
-        if let Some(count) = self.section(section, "count") {
-            self.refuse_unknown(&count, &["least", "most"]);
+        if let Some(mut count) = self.section(section, "count") {
+            self.refuse_unknown(&mut count, &["least", "most"]);
             assembly.least = self.count(&count, "least", example);
             assembly.most = self.count(&count, "most", example);
         }
@@ -391,7 +413,7 @@ impl<'a> Reader<'a> {
         assembly
     }
 
-    fn structure(&mut self, section: &Section<'_>) -> RawStructure {
+    fn structure(&mut self, section: &mut Section<'_>) -> RawStructure {
         self.refuse_unknown(
             section,
             &[
@@ -420,14 +442,14 @@ impl<'a> Reader<'a> {
             ),
             ..RawStructure::default()
         };
-        if let Some(range) = self.section(section, "heavy_atoms") {
-            structure.heavy_atoms = Some(self.count_range(&range));
+        if let Some(mut range) = self.section(section, "heavy_atoms") {
+            structure.heavy_atoms = Some(self.count_range(&mut range));
         }
-        if let Some(range) = self.section(section, "rings") {
-            structure.rings = Some(self.count_range(&range));
+        if let Some(mut range) = self.section(section, "rings") {
+            structure.rings = Some(self.count_range(&mut range));
         }
-        if let Some(range) = self.section(section, "molar_mass") {
-            self.refuse_unknown(&range, &RANGE_KEYS);
+        if let Some(mut range) = self.section(section, "molar_mass") {
+            self.refuse_unknown(&mut range, &RANGE_KEYS);
             structure.molar_mass = Some(RawRange {
                 place: range.place,
                 at_least: self.quantity(&range, "at_least", "at_least = \"60 g/mol\""),
@@ -436,22 +458,22 @@ impl<'a> Reader<'a> {
         }
         if let Some(atoms) = self.section(section, "atoms") {
             for (symbol, place) in self.keys(&atoms) {
-                if let Some(range) = self.section(&atoms, &symbol) {
-                    let range = self.count_range(&range);
+                if let Some(mut range) = self.section(&atoms, &symbol) {
+                    let range = self.count_range(&mut range);
                     structure.atoms.push((Located::new(symbol, place), range));
                 }
             }
         }
-        for group in self.sections(section, "group", "[[structure.group]]") {
-            self.refuse_unknown(&group, &["set", "number", "at_least", "at_most"]);
+        for mut group in self.sections(section, "group", "[[structure.group]]") {
+            self.refuse_unknown(&mut group, &["set", "number", "at_least", "at_most"]);
             structure.groups.push(RawGroup {
                 set: self.text(&group, "set", "set = \"unifac\""),
                 number: self.count(&group, "number", "number = 14"),
                 count: self.count_limits(&group),
             });
         }
-        for pattern in self.sections(section, "pattern", "[[structure.pattern]]") {
-            self.refuse_unknown(&pattern, &["name", "pattern", "at_least", "at_most"]);
+        for mut pattern in self.sections(section, "pattern", "[[structure.pattern]]") {
+            self.refuse_unknown(&mut pattern, &["name", "pattern", "at_least", "at_most"]);
             structure.patterns.push(RawPattern {
                 name: self.text(&pattern, "name", "name = \"peroxide\""),
                 pattern: self.text(&pattern, "pattern", "pattern = \"[O][O]\""),
@@ -473,7 +495,7 @@ impl<'a> Reader<'a> {
             None => name.clone(),
         };
         self.refuse_unknown(
-            &section,
+            &mut section,
             &[
                 "figure",
                 "component",
@@ -513,7 +535,7 @@ impl<'a> Reader<'a> {
         }
     }
 
-    fn count_range(&mut self, section: &Section<'_>) -> RawRange<u32> {
+    fn count_range(&mut self, section: &mut Section<'_>) -> RawRange<u32> {
         self.refuse_unknown(section, &RANGE_KEYS);
         self.count_limits(section)
     }
@@ -663,7 +685,7 @@ impl<'a> Reader<'a> {
         read: impl Fn(&Value) -> Option<T>,
     ) -> Field<Vec<Located<T>>> {
         let Some((place, item)) = self.item(section, key) else {
-            return Field::Absent;
+            return section.lacking(key);
         };
         let mut list = Vec::new();
         let mut fault = None;
@@ -712,7 +734,7 @@ impl<'a> Reader<'a> {
         read: impl FnOnce(&Item) -> Option<T>,
     ) -> Field<T> {
         let Some((place, item)) = self.item(section, key) else {
-            return Field::Absent;
+            return section.lacking(key);
         };
         match read(item) {
             Some(value) => Field::Given(Located::new(value, place)),
@@ -733,6 +755,7 @@ impl<'a> Reader<'a> {
                 name: format!("`[{}{key}]`", parent.prefix),
                 prefix: format!("{}{key}.", parent.prefix),
                 place,
+                mistyped: Vec::new(),
             }),
             None => {
                 let example = match key {
@@ -798,6 +821,7 @@ impl<'a> Reader<'a> {
                 name: format!("`[[{}{key}]]` number {}", parent.prefix, position + 1),
                 prefix: format!("{}{key} {}.", parent.prefix, position + 1),
                 place: at.unwrap_or(place),
+                mistyped: Vec::new(),
             })
             .collect()
     }
@@ -811,10 +835,11 @@ impl<'a> Reader<'a> {
             .collect()
     }
 
-    fn refuse_unknown(&mut self, section: &Section<'_>, known: &'static [&'static str]) {
+    fn refuse_unknown(&mut self, section: &mut Section<'_>, known: &'static [&'static str]) {
         for (key, place) in self.keys(section) {
             if !known.contains(&key.as_str()) {
                 let nearest = nearest_key(&key, known);
+                section.mistyped.extend(nearest);
                 self.faults.push((
                     place,
                     Cause::UnknownKey {

@@ -119,7 +119,8 @@ pub fn short(value: f64) -> String {
 }
 
 /// A finite number for people: four significant digits, whole numbers of more
-/// digits in full, trailing zeros kept so that a column shows one precision.
+/// digits in full, trailing zeros kept so that a column shows one precision;
+/// below 1e-5 and from 1e9 on with an exponent.
 ///
 /// # Panics
 ///
@@ -130,7 +131,7 @@ pub fn for_reading(value: f64) -> String {
         return "0".to_owned();
     }
     let (_, exponent) = decimal(value.abs(), READING_DIGITS as i32);
-    if (-4..9).contains(&exponent) {
+    if (-5..9).contains(&exponent) {
         let decimals = (READING_DIGITS as i32 - 1 - exponent).max(0) as usize;
         format!("{value:.decimals$}")
     } else {
@@ -141,49 +142,38 @@ pub fn for_reading(value: f64) -> String {
 /// The decimal significand with exactly `digits` digits and the exponent of
 /// its first digit, for a finite value above 0.
 fn decimal(value: f64, digits: i32) -> (u64, i32) {
-    // log10 may be off by one next to a power of ten; the loop below mends it.
+    let most = EXACT_POWERS[digits as usize];
+    // The logarithm of a number just below a power of ten may round up to it.
     let mut exponent = value.log10().floor() as i32;
-    let most = EXACT_POWERS[digits as usize] as u64;
-    loop {
-        let shift = digits - 1 - exponent;
-        let significand = scaled(value, shift).round() as u64;
-        if significand >= most {
-            exponent += 1;
-        } else if significand * 10 < most {
-            exponent -= 1;
-        } else {
-            return (significand, exponent);
-        }
+    let mut significand = scaled(value, digits - 1 - exponent);
+    if significand < most / 10.0 {
+        exponent -= 1;
+        significand = scaled(value, digits - 1 - exponent);
     }
+    significand = significand.round();
+    if significand >= most {
+        exponent += 1;
+        significand = most / 10.0;
+    }
+    (significand as u64, exponent)
 }
 
-/// value · 10^shift, with one rounding wherever the power is exact.
+/// value · 10^shift, with one rounding wherever the power is exact. Larger
+/// powers, which a double may not hold at all, are applied in steps.
 fn scaled(value: f64, shift: i32) -> f64 {
-    let power = |exponent: i32| EXACT_POWERS.get(exponent as usize).copied();
-    if shift >= 0 {
-        match power(shift) {
-            Some(power) => value * power,
-            None => value * 1e22 * rest_power(shift - 22),
+    let largest = EXACT_POWERS.len() as i32 - 1;
+    let mut scaled = value;
+    let mut left = shift;
+    while left != 0 {
+        let step = left.clamp(-largest, largest);
+        if step > 0 {
+            scaled *= EXACT_POWERS[step as usize];
+        } else {
+            scaled /= EXACT_POWERS[-step as usize];
         }
-    } else {
-        match power(-shift) {
-            Some(power) => value / power,
-            None => value / 1e22 / rest_power(-shift - 22),
-        }
-    }
-}
-
-/// 10^exponent by repeated exact factors; beyond 1e308 values are subnormal
-/// and the caller's product still is finite, so the factor is applied in steps.
-fn rest_power(exponent: i32) -> f64 {
-    let mut power = 1.0;
-    let mut left = exponent;
-    while left > 0 {
-        let step = left.min(22);
-        power *= EXACT_POWERS[step as usize];
         left -= step;
     }
-    power
+    scaled
 }
 
 #[cfg(test)]
@@ -230,8 +220,10 @@ mod tests {
             (0.789_3, "0.7893"),
             (101_325.0, "101325"),
             (-234_812.3, "-234812"),
-            (0.000_012_3, "1.23e-5"),
-            (9.999_96, "10.00"),
+            (0.000_012_3, "0.00001230"),
+            (0.000_001_23, "1.23e-6"),
+            (9.999_6, "10.00"),
+            (9.999_4, "9.999"),
         ] {
             assert_eq!(for_reading(value), expected);
         }

@@ -249,7 +249,7 @@ bad·[31m name of great length              –
     fn words_are_cut_to_fit_and_numbers_are_not() {
         let text = sample().render(Some(30));
         assert!(text.lines().all(|line| line.width() <= 30), "{text}");
-        assert!(text.contains("bad·[31m name…"), "{text}");
+        assert!(text.contains("bad·[31m name …"), "{text}");
         let narrow = sample().render(Some(5));
         assert!(narrow.contains("373.15"), "{narrow}");
     }
