@@ -69,7 +69,10 @@ impl Kekule {
             let partners = pair_all(molecule, &self.lacks_bond, |_, bond| {
                 bond.order == BondOrder::Aromatic
             })
-            .map_err(|atom| spelling.at(atom, SmilesFault::NoKekuleForm))?;
+            .map_err(|atom| {
+                let first = first_of_system(molecule, atom);
+                spelling.at(first, SmilesFault::NoKekuleForm)
+            })?;
             for (atom, &(partner, bond)) in partners.iter().enumerate() {
                 if partner != NONE && (atom as u32) < partner {
                     self.doubled.push(bond);
@@ -188,4 +191,20 @@ fn lacks_bond(molecule: &mut Molecule, spelling: &Spelling, index: u32) -> Resul
         implicit(atom.element)
     };
     Ok(!valences.contains(&bonds) && valences.contains(&(bonds + 1)))
+}
+
+/// The atom that stands first in the line among those joined by aromatic bonds.
+fn first_of_system(molecule: &Molecule, atom: u32) -> u32 {
+    let mut seen = vec![false; molecule.atoms.len()];
+    let mut open = vec![atom];
+    let mut first = atom;
+    while let Some(atom) = open.pop() {
+        if std::mem::replace(&mut seen[atom as usize], true) {
+            continue;
+        }
+        first = first.min(atom);
+        let aromatic = |n: &&super::Neighbor| n.order == BondOrder::Aromatic;
+        open.extend(molecule.neighbors(atom).iter().filter(aromatic).map(|n| n.atom));
+    }
+    first
 }

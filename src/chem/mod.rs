@@ -5,6 +5,7 @@
 //! [`Molecule::from_smiles`]) and [`Canonicalizer`] (or [`Molecule::keys`]).
 
 mod aromaticity;
+mod canonical;
 mod composition;
 mod element;
 mod error;
@@ -19,6 +20,7 @@ mod stereo;
 mod valence;
 mod weights;
 
+pub use canonical::{Canonicalizer, Keys};
 pub use composition::Composition;
 pub use element::Element;
 pub use error::{SmilesError, SmilesFault};

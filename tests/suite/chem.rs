@@ -1,6 +1,8 @@
 //! Molecules: reading, valence, rings, aromaticity, identity.
 
-use groupsmith::chem::{BondOrder, Molecule};
+use std::collections::{HashMap, HashSet};
+
+use groupsmith::chem::{BondOrder, Canonicalizer, Keys, Molecule, Reader};
 
 fn read(text: &str) -> Molecule {
     Molecule::from_smiles(text).unwrap_or_else(|error| panic!("{text}: {error}"))
@@ -118,7 +120,7 @@ fn refusals_name_column_and_reason() {
         ("C C", 2, "syntax"),
         ("CX", 2, "syntax"),
         ("C%1C", 4, "syntax"),
-        ("F/C(/Cl)=C/F", 2, "contradicting-directions"),
+        ("F/C(\\Cl)=C/F", 2, "contradicting-directions"),
         ("OCl(=O)(=O)=O", 2, "impossible-valence"),
     ] {
         let error = Molecule::from_smiles(text).expect_err(text);
@@ -130,4 +132,234 @@ fn refusals_name_column_and_reason() {
         sentence,
         "column 2: nitrogen with 4 bonds and no charge is not a possible valence"
     );
+}
+
+#[test]
+fn keys_of_common_molecules() {
+    for (text, constitution, full) in [
+        ("OCC", "CCO", "CCO"),
+        ("C1=CC=CC=C1C", "Cc1ccccc1", "Cc1ccccc1"),
+        ("OC(C)=O", "CC(=O)O", "CC(=O)O"),
+        ("[2H]O[2H]", "O", "O([2H])[2H]"),
+        ("[H][2H]", "[H][H]", "[H][2H]"),
+        ("Cl\\C=C\\Cl", "ClC=CCl", "Cl/C=C/Cl"),
+        ("c1cc[nH]c1", "c1ccc[nH]1", "c1ccc[nH]1"),
+    ] {
+        let keys = read(text).keys();
+        println!("{text} {} {}", keys.constitution, keys.full);
+        let again = read(&keys.full).keys();
+        assert_eq!(keys, again, "{text}");
+        assert_eq!(keys.constitution, constitution, "{text}");
+        if !full.is_empty() {
+            assert_eq!(keys.full, full, "{text}");
+        }
+    }
+}
+
+#[test]
+fn spellings_of_one_group_agree() {
+    for spellings in [
+        &["CN(=O)=O", "C[N+](=O)[O-]", "C[N+]([O-])=O"][..],
+        &["CS(C)=O", "C[S+](C)[O-]"],
+        &["CS(=O)(=O)C", "C[S+2]([O-])([O-])C", "C[S+](=O)([O-])C"],
+        &["c1ccn(=O)cc1", "c1cc[n+]([O-])cc1", "O=N1=CC=CC=C1"],
+        &["CC#N=O", "CC#[N+][O-]", "C[C-]=[N+]=O"],
+        &["C[N+]#[C-]", "CN#C", "CN=[C]", "CN#[C]"],
+        &["CN=[N+]=[N-]", "CN=N#N", "C[N-][N+]#N"],
+        &["C=[N+]=[N-]", "C=N#N", "[CH2-][N+]#N"],
+        &["CP(C)(C)=O", "C[P+](C)(C)[O-]"],
+        &["C=N(=O)C", "C=[N+]([O-])C"],
+        &["CN=N(=O)C", "CN=[N+]([O-])C"],
+        &["N#N=O", "N#[N+][O-]", "[N-]=[N+]=O"],
+        &["[C-]#[O+]", "[C]=O"],
+        &["C[S@](=O)CC", "C[S@+]([O-])CC"],
+    ] {
+        let first = read(spellings[0]).keys();
+        for spelling in spellings {
+            assert_eq!(read(spelling).keys(), first, "{spelling}");
+        }
+    }
+}
+
+#[test]
+fn stereo_that_means_something_is_kept() {
+    // Same full key within a line, other full key on the next, for each constitution.
+    let same = |a: &str, b: &str| {
+        let (a_keys, b_keys) = (read(a).keys(), read(b).keys());
+        assert_eq!(a_keys.full, b_keys.full, "{a} {b}");
+        assert_eq!(a_keys.constitution, b_keys.constitution, "{a} {b}");
+    };
+    let different = |a: &str, b: &str| {
+        let (a_keys, b_keys) = (read(a).keys(), read(b).keys());
+        assert_ne!(a_keys.full, b_keys.full, "{a} {b}");
+        assert_eq!(a_keys.constitution, b_keys.constitution, "{a} {b}");
+    };
+    different("Cl/C=C/Cl", "Cl/C=C\\Cl");
+    different("Cl/C=C/Cl", "ClC=CCl");
+    same("Cl/C=C/Cl", "Cl\\C=C\\Cl");
+    same("Cl/C=C/Cl", "C(\\Cl)=C/Cl");
+    same("Cl/C([H])=C/Cl", "Cl/C=C/Cl");
+    same("Cl/C(=C/Cl)[H]", "[H]/C(Cl)=C\\Cl");
+    same("C/C=C(/C)C", "CC=C(C)C");
+    same("C[C@H](C)O", "CC(C)O");
+    different("C[C@H](N)O", "C[C@@H](N)O");
+    same("C[C@H](N)O", "N[C@@H](C)O");
+    same("C[C@H](N)O", "[C@H](N)(C)O");
+    same("C[C@]([H])(N)O", "C[C@H](N)O");
+    same("[H][C@@](C)(N)O", "C[C@H](N)O");
+    same("C[C@H]1CC[C@@H](C)CC1", "C[C@@H]1CC[C@H](C)CC1");
+    different("C[C@H]1CC[C@@H](C)CC1", "C[C@H]1CC[C@H](C)CC1");
+    same("C[C@H]1CCC(C)CC1", "CC1CCC(C)CC1");
+    same("O[C@H]1CCCCC1", "OC1CCCCC1");
+    different("C[C@H](O)[C@@H](C)O", "C[C@H](O)[C@H](C)O");
+    same("C[C@H](O)[C@@H](C)O", "O[C@H](C)[C@@H](O)C");
+    same("N/C=N/[H]", "[H]/N=C/N");
+    different("N/C=N/[H]", "N/C=N\\[H]");
+    different("[2H]C", "C");
+    different("[13CH4]", "C");
+    same("C1C/C=C/CC1", "C1CC=CCC1");
+    different("C1CCC/C=C/CC1", "C1CCC/C=C\\CC1");
+    same("C[C@@](F)(Cl)Br", "C[C@](F)(Br)Cl");
+    same("C[N@](CC)CCC", "CN(CC)CCC");
+    different("C[S@](=O)CC", "C[S@@](=O)CC");
+    same("CC=[C@]=CC", "CC=C=CC");
+    same("F[C@AL1H](Br)Cl", "FC(Br)Cl");
+    different("F/C=C/C=C/F", "F/C=C/C=C\\F");
+    same("C[C@@H](O)[C@H](Cl)[C@H](C)O", "C[C@@H](O)C(Cl)[C@H](C)O");
+}
+
+/// One molecule of the reference set.
+struct Reference {
+    constitution: String,
+    formula: String,
+    mass_g_per_mol: f64,
+    rings: usize,
+    ring_atoms: String,
+    aromatic_atoms: String,
+    hydrogens: String,
+    spellings: Vec<String>,
+}
+
+fn references() -> Vec<Reference> {
+    let packed = std::fs::File::open("tests/data/chem/rdkit_reference.csv.gz").unwrap();
+    let mut reader = csv::ReaderBuilder::new()
+        .comment(Some(b'#'))
+        .from_reader(flate2::read::GzDecoder::new(packed));
+    reader
+        .records()
+        .map(|record| {
+            let record = record.unwrap();
+            let cell = |index: usize| record[index].to_owned();
+            Reference {
+                constitution: cell(0),
+                formula: cell(1),
+                mass_g_per_mol: record[2].parse().unwrap(),
+                rings: record[3].parse().unwrap(),
+                ring_atoms: cell(4),
+                aromatic_atoms: cell(5),
+                hydrogens: cell(6),
+                spellings: record[7].split(' ').map(str::to_owned).collect(),
+            }
+        })
+        .collect()
+}
+
+fn digits<T: Into<u32>>(values: impl Iterator<Item = T>) -> String {
+    values
+        .map(|value| char::from_digit(value.into(), 10).unwrap())
+        .collect()
+}
+
+#[test]
+fn reference_spellings_collapse_and_molecules_stay_apart() {
+    let references = references();
+    assert_eq!(references.len(), 2000);
+    let mut reader = Reader::new();
+    let mut canonicalizer = Canonicalizer::new();
+    let mut seen: HashMap<String, &str> = HashMap::new();
+    let mut constitutions: HashMap<String, &str> = HashMap::new();
+    let mut faults = Vec::new();
+    for reference in &references {
+        assert_eq!(reference.spellings.len(), 10);
+        let mut keys: Option<Keys> = None;
+        for spelling in &reference.spellings {
+            let molecule = match reader.read(spelling) {
+                Ok(molecule) => molecule,
+                Err(error) => {
+                    faults.push(format!("{spelling}: {error}"));
+                    continue;
+                }
+            };
+            let these = canonicalizer.keys(&molecule);
+            let again = reader.read(&these.full).map(|m| canonicalizer.keys(&m));
+            if again.as_ref() != Ok(&these) {
+                faults.push(format!("{spelling}: {these:?} read again gives {again:?}"));
+            }
+            match &keys {
+                None => keys = Some(these),
+                Some(first) if *first == these => {}
+                Some(first) => faults.push(format!(
+                    "{} -> {first:?}; {spelling} -> {these:?}",
+                    reference.spellings[0]
+                )),
+            }
+        }
+        let Some(keys) = keys else { continue };
+        assert!(keys.canonical);
+        if let Some(other) = seen.insert(keys.full.clone(), &reference.spellings[0]) {
+            faults.push(format!(
+                "{} and {other} get one key {}",
+                reference.spellings[0], keys.full
+            ));
+        }
+        // Equal constitutions have equal constitution keys, and only they.
+        let known = constitutions.insert(keys.constitution.clone(), &reference.constitution);
+        if known.is_some_and(|known| known != reference.constitution) {
+            faults.push(format!("{} joins two constitutions", keys.constitution));
+        }
+    }
+    let groups: HashSet<&str> = references.iter().map(|r| r.constitution.as_str()).collect();
+    assert!(faults.is_empty(), "{} faults\n{}", faults.len(), faults.join("\n"));
+    assert_eq!(groups.len(), constitutions.len());
+}
+
+#[test]
+fn reference_rings_hydrogens_formula_and_mass_agree() {
+    let exceptions = std::fs::read_to_string("tests/data/chem/aromatic_exceptions.csv").unwrap();
+    let mut exceptions: HashMap<&str, &str> = exceptions
+        .lines()
+        .filter(|line| !line.starts_with('#'))
+        .skip(1)
+        .map(|line| line.split_once(',').unwrap())
+        .collect();
+    let mut faults = Vec::new();
+    for reference in references() {
+        let molecule = read(&reference.spellings[0]);
+        let atoms = molecule.atoms();
+        let mut compare = |what: &str, ours: String, theirs: &str| {
+            if ours != theirs {
+                let spelling = &reference.spellings[0];
+                faults.push(format!("{spelling} {what}: {ours}, RDKit {theirs}"));
+            }
+        };
+        compare("formula", molecule.composition().to_string(), &reference.formula);
+        compare("rings", molecule.ring_count().to_string(), &reference.rings.to_string());
+        compare("ring atoms", digits(atoms.iter().map(|a| a.in_ring)), &reference.ring_atoms);
+        compare("hydrogens", digits(atoms.iter().map(|a| a.hydrogens)), &reference.hydrogens);
+        let aromatic = digits(atoms.iter().map(|atom| atom.aromatic));
+        let exception = exceptions.remove(molecule.keys().full.as_str());
+        if exception.is_none() {
+            compare("aromatic atoms", aromatic, &reference.aromatic_atoms);
+        } else if aromatic == reference.aromatic_atoms {
+            compare("exception", aromatic, "");
+        }
+        // RDKit carries older atomic weights of B, Si, S and Cl.
+        let mass = molecule.molar_mass_kg_per_mol() * 1e3;
+        let relative = (mass / reference.mass_g_per_mol - 1.0).abs();
+        if relative > 2.2e-4 {
+            compare("mass", format!("{mass:.3}"), &reference.mass_g_per_mol.to_string());
+        }
+    }
+    assert!(faults.is_empty(), "{} faults\n{}", faults.len(), faults.join("\n"));
+    assert!(exceptions.is_empty(), "no such molecules: {exceptions:?}");
 }
