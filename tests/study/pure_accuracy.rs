@@ -176,7 +176,7 @@ impl Study {
             size: size(&molecule.facts),
             error: scale.error(estimate, measured),
             text: format!(
-                "{},{},{estimate:.6e},{measured:.6e}",
+                "{},{},{estimate:.6e}",
                 quoted(&molecule.name),
                 quoted(&molecule.smiles)
             ),
@@ -187,9 +187,8 @@ impl Study {
         let mut errors = String::from(
             "figure,method,inputs,class,member,unit,points,molecules,mean_abs,median_abs,p90_abs,bias,no_value\n",
         );
-        let mut worst = String::from(
-            "figure,method,inputs,unit,error,family,name,smiles,estimate_si,measured_si\n",
-        );
+        let mut worst =
+            String::from("figure,method,inputs,unit,error,family,name,smiles,estimate_si\n");
         for (key, (unit, deviations)) in &self.deviations {
             let head = format!("{},{},{}", key.figure, key.method, key.inputs.text());
             let mut classes: BTreeMap<(&str, &str), Vec<&Deviation>> = BTreeMap::new();
