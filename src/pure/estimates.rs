@@ -8,6 +8,7 @@ use super::corresponding_states::{
     flash_point_catoire_naudet, surface_tension_sastri_rao,
 };
 use super::joback::{self, Contributions, LinearSums, State};
+use super::method::ATOMIC_WEIGHTS;
 use crate::chem::Element;
 use crate::groups::GroupCounts;
 use crate::quantity::{
@@ -24,9 +25,6 @@ const VAPOR_PRESSURE_TR_LOW: f64 = 0.5;
 /// Numbers of the alcohol and the acid group in the table of Joback and Reid.
 const ALCOHOL_GROUP: u16 = 20;
 const ACID_GROUP: u16 = 27;
-
-/// Identifier of a molar mass.
-const ATOMIC_WEIGHTS: &str = "standard-atomic-weights";
 
 /// How near two temperatures have to be to count as the same, K.
 const SAME_TEMPERATURE_K: f64 = 1e-6;

@@ -32,6 +32,9 @@ pub struct Method {
     pub role: Role,
 }
 
+/// Identifier of a molar mass, which the caller computes.
+pub(super) const ATOMIC_WEIGHTS: &str = "standard-atomic-weights";
+
 const JOBACK: &str =
     "Joback and Reid, Chem. Eng. Commun. 57 (1987) 233-243, doi:10.1080/00986448708960487";
 const AMBROSE_WALTON: &str =
@@ -90,6 +93,13 @@ const fn relation(
 
 /// Every method that is built in, by property in display order, the default first.
 pub const METHODS: &[Method] = &[
+    relation(
+        ATOMIC_WEIGHTS,
+        Property::MolarMass,
+        "conventional standard atomic weights of IUPAC/CIAAW",
+        &[],
+        Role::Default,
+    ),
     additive(Property::BoilingPoint, &[]),
     additive(Property::MeltingPoint, &[]),
     additive(Property::CriticalTemperature, &[Property::BoilingPoint]),
