@@ -204,7 +204,13 @@ fn first_of_system(molecule: &Molecule, atom: u32) -> u32 {
         }
         first = first.min(atom);
         let aromatic = |n: &&super::Neighbor| n.order == BondOrder::Aromatic;
-        open.extend(molecule.neighbors(atom).iter().filter(aromatic).map(|n| n.atom));
+        open.extend(
+            molecule
+                .neighbors(atom)
+                .iter()
+                .filter(aromatic)
+                .map(|n| n.atom),
+        );
     }
     first
 }

@@ -6,7 +6,12 @@ use clap::{Args, Parser, Subcommand, ValueEnum};
 
 /// Ranks solvent candidates for a mixture from published group methods and measured data.
 #[derive(Debug, Parser)]
-#[command(name = "groupsmith", version, max_term_width = 100, arg_required_else_help = true)]
+#[command(
+    name = "groupsmith",
+    version,
+    max_term_width = 100,
+    arg_required_else_help = true
+)]
 pub(super) struct Arguments {
     #[command(subcommand)]
     pub(super) command: Command,

@@ -1,8 +1,79 @@
-//! The command line: definitions, progress, error rendering, exit codes.
+//! The command line: definitions, look-ups, progress, error rendering, exit codes.
+//!
+//! The only room that knows the terminal. Results go to standard output, all
+//! else to standard error. Entry point: [`main`].
+
+mod args;
+mod breakdown;
+mod check;
+mod error;
+mod exit;
+mod mixture;
+mod molecules;
+mod output;
+mod progress;
+mod properties;
+mod screen;
+mod tables;
 
 use std::process::ExitCode;
 
+use clap::Parser;
+use clap::error::ErrorKind;
+
+use args::{Arguments, Command};
+use error::CliError;
+use exit::Exit;
+
+use crate::evaluate::Library;
+use crate::mixture::Slips;
+
 /// Runs the command named on the command line.
 pub fn main() -> ExitCode {
-    ExitCode::from(2)
+    let arguments = match Arguments::try_parse() {
+        Ok(arguments) => arguments,
+        Err(error) => {
+            // Help and version are what was asked for; anything else is a fault.
+            let asked = matches!(
+                error.kind(),
+                ErrorKind::DisplayHelp | ErrorKind::DisplayVersion
+            );
+            return match error.print() {
+                Ok(()) if asked => Exit::Done.into(),
+                Ok(()) | Err(_) => Exit::Wrong.into(),
+            };
+        }
+    };
+    let quiet = arguments.quiet;
+    match run(&arguments) {
+        Ok(exit) => exit.into(),
+        Err(CliError::ClosedPipe) => Exit::Done.into(),
+        Err(error) => {
+            output::complain(&error.to_string());
+            let _ = quiet;
+            error.exit().into()
+        }
+    }
+}
+
+fn run(arguments: &Arguments) -> Result<Exit, CliError> {
+    let slips = if arguments.as_circulated {
+        Slips::AsCirculated
+    } else {
+        Slips::Corrected
+    };
+    if let Command::Assemble(_) | Command::Report(_) | Command::Gather(_) = &arguments.command {
+        return Err(CliError::NotBuiltIn);
+    }
+    let library = Library::built_in(slips)?;
+    let notes = output::Notes::new(arguments.quiet);
+    match &arguments.command {
+        Command::Breakdown(command) => breakdown::run(command, &library),
+        Command::Properties(command) => properties::run(command, &library),
+        Command::Mixture(command) => mixture::run(command, &library, notes),
+        Command::Screen(command) => screen::run(command, library, notes),
+        Command::Tables(command) => tables::run(command, &library),
+        Command::Check(command) => check::run(command, library),
+        Command::Assemble(_) | Command::Report(_) | Command::Gather(_) => Err(CliError::NotBuiltIn),
+    }
 }

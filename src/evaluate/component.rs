@@ -2,9 +2,9 @@
 
 use std::sync::Arc;
 
+use super::Library;
 use super::error::UnknownMolecule;
 use super::profile::{Known, Profile, Profiler, properties};
-use super::Library;
 use crate::data::VaporPressure;
 use crate::pure::corresponding_states::{Constants, VaporPressureCurve};
 use crate::quantity::{Absent, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
@@ -36,7 +36,10 @@ impl VaporCurve {
         all: &crate::pure::Estimates,
     ) -> Result<Self, Absent> {
         let value = |property: Property| {
-            all[property as usize].as_ref().map(|found| found.value).map_err(Absent::clone)
+            all[property as usize]
+                .as_ref()
+                .map(|found| found.value)
+                .map_err(Absent::clone)
         };
         let method = library.methods.vapor_pressure;
         let constants = Constants::new(
@@ -45,7 +48,9 @@ impl VaporCurve {
             value(Property::CriticalPressure)?,
             method.id(),
         )?;
-        Ok(Self::Estimated(VaporPressureCurve::through_boiling_point(method, constants)?))
+        Ok(Self::Estimated(VaporPressureCurve::through_boiling_point(
+            method, constants,
+        )?))
     }
 
     /// Vapor pressure in Pa at a temperature in K.
@@ -55,7 +60,7 @@ impl VaporCurve {
     /// There is no curve, or it does not reach that far.
     pub fn pressure_pa(&self, temperature_k: f64) -> Result<f64, Absent> {
         match self {
-            Self::Measured(curve) => curve.pressure_pa(temperature_k).map_err(|error| error.absent()),
+            Self::Measured(curve) => curve.pressure_pa(temperature_k).map_err(Absent::from),
             Self::Estimated(curve) => curve.pressure_pa(temperature_k),
             Self::Absent(reason) => Err(reason.clone()),
         }
@@ -110,13 +115,21 @@ impl MixtureComponent {
         );
         let vapor = VaporCurve::of(library, &profile, known);
         let known = known.map(|known| (library.position(known.substance), known.same_identity));
-        Ok(Self { name, profile, known, vapor })
+        Ok(Self {
+            name,
+            profile,
+            known,
+            vapor,
+        })
     }
 
     /// Measured data of the component.
     pub fn known<'l>(&self, library: &'l Library) -> Option<Known<'l>> {
         let (position, same_identity) = self.known?;
-        Some(Known { substance: library.substance(position), same_identity })
+        Some(Known {
+            substance: library.substance(position),
+            same_identity,
+        })
     }
 
     /// Molar volume of the pure liquid in m³/mol at a temperature, with flags.
@@ -130,19 +143,31 @@ impl MixtureComponent {
         temperature_k: f64,
     ) -> Result<(f64, Flags), Absent> {
         let all = properties(library, &self.profile, self.known(library), temperature_k);
-        let density = all[Property::LiquidDensity as usize].as_ref().map_err(Absent::clone)?;
+        let density = all[Property::LiquidDensity as usize]
+            .as_ref()
+            .map_err(Absent::clone)?;
         let flags = if density.status == crate::quantity::Status::Measured {
             density.flags
         } else {
             density.flags.with(Flag::RestsOnEstimate)
         };
-        Ok((self.profile.facts.molar_mass_kg_per_mol / density.value, flags))
+        Ok((
+            self.profile.facts.molar_mass_kg_per_mol / density.value,
+            flags,
+        ))
     }
 
     /// Boiling point in K for a first guess; absent where nothing is known.
     pub(super) fn boiling_guess_k(&self, library: &Library) -> Option<f64> {
-        let all =
-            properties(library, &self.profile, self.known(library), REFERENCE_TEMPERATURE_K);
-        all[Property::BoilingPoint as usize].as_ref().ok().map(|found| found.value)
+        let all = properties(
+            library,
+            &self.profile,
+            self.known(library),
+            REFERENCE_TEMPERATURE_K,
+        );
+        all[Property::BoilingPoint as usize]
+            .as_ref()
+            .ok()
+            .map(|found| found.value)
     }
 }

@@ -65,7 +65,9 @@ pub enum PlanCause {
         faults: Vec<PatternFault>,
     },
     /// No temperature to evaluate the mixture at.
-    #[error("the temperature of the mixture cannot be found from its pressure: {reason}; give `temperature` in [mixture]")]
+    #[error(
+        "the temperature of the mixture cannot be found from its pressure: {reason}; give `temperature` in [mixture]"
+    )]
     NoTemperature {
         /// Why not.
         reason: String,

@@ -52,7 +52,12 @@ const NOTHING: brief::Needs = brief::Needs {
     at_temperature: brief::Need::Refused,
 };
 
-const KEYS: brief::Needs = brief::Needs { mixture: true, keys: true, state: true, ..NOTHING };
+const KEYS: brief::Needs = brief::Needs {
+    mixture: true,
+    keys: true,
+    state: true,
+    ..NOTHING
+};
 
 const fn entry(
     kind: FigureKind,
@@ -60,7 +65,15 @@ const fn entry(
     needs: brief::Needs,
     title: &'static str,
 ) -> FigureEntry {
-    FigureEntry { kind, figure: brief::Figure { id, dimension: Dimension::Number, needs }, title }
+    FigureEntry {
+        kind,
+        figure: brief::Figure {
+            id,
+            dimension: Dimension::Number,
+            needs,
+        },
+        title,
+    }
 }
 
 /// Figures of a candidate together with the mixture.
@@ -91,7 +104,12 @@ const OF_MIXTURE: [FigureEntry; 10] = [
     entry(
         FigureKind::GammaInfinityOfCandidate,
         "gamma_infinity_of_candidate",
-        brief::Needs { mixture: true, fractions: true, state: true, ..NOTHING },
+        brief::Needs {
+            mixture: true,
+            fractions: true,
+            state: true,
+            ..NOTHING
+        },
         "activity coefficient of the candidate at infinite dilution in the mixture",
     ),
     entry(
@@ -115,13 +133,19 @@ const OF_MIXTURE: [FigureEntry; 10] = [
     entry(
         FigureKind::CapacityByMole,
         "capacity_mole",
-        brief::Needs { component: brief::Need::Optional, ..KEYS },
+        brief::Needs {
+            component: brief::Need::Optional,
+            ..KEYS
+        },
         "moles of the selected component (the second key unless named) per mole of candidate: 1/gamma",
     ),
     entry(
         FigureKind::CapacityByMass,
         "capacity_mass",
-        brief::Needs { component: brief::Need::Optional, ..KEYS },
+        brief::Needs {
+            component: brief::Need::Optional,
+            ..KEYS
+        },
         "mass of the selected component (the second key unless named) per mass of candidate",
     ),
     entry(
@@ -149,7 +173,10 @@ const fn of_property(property: Property) -> FigureEntry {
         figure: brief::Figure {
             id: property.id(),
             dimension: property.dimension(),
-            needs: brief::Needs { at_temperature, ..NOTHING },
+            needs: brief::Needs {
+                at_temperature,
+                ..NOTHING
+            },
         },
         title: "pure-component property",
     }
@@ -181,14 +208,22 @@ const NAMES: [brief::Figure; FIGURES.len()] = {
 };
 
 const MODELS: [brief::Model; ActivityModel::ALL.len() + RESERVED_MODELS.len()] = {
-    let mut all = [brief::Model { id: "", built_in: true };
-        ActivityModel::ALL.len() + RESERVED_MODELS.len()];
+    let mut all = [brief::Model {
+        id: "",
+        built_in: true,
+    }; ActivityModel::ALL.len() + RESERVED_MODELS.len()];
     let mut at = 0;
     while at < all.len() {
         all[at] = if at < ActivityModel::ALL.len() {
-            brief::Model { id: ActivityModel::ALL[at].id(), built_in: true }
+            brief::Model {
+                id: ActivityModel::ALL[at].id(),
+                built_in: true,
+            }
         } else {
-            brief::Model { id: RESERVED_MODELS[at - ActivityModel::ALL.len()].0, built_in: false }
+            brief::Model {
+                id: RESERVED_MODELS[at - ActivityModel::ALL.len()].0,
+                built_in: false,
+            }
         };
         at += 1;
     }
@@ -196,8 +231,10 @@ const MODELS: [brief::Model; ActivityModel::ALL.len() + RESERVED_MODELS.len()] =
 };
 
 /// What a brief may name.
-pub const CATALOG: brief::FigureCatalog<'static> =
-    brief::FigureCatalog { figures: &NAMES, models: &MODELS };
+pub const CATALOG: brief::FigureCatalog<'static> = brief::FigureCatalog {
+    figures: &NAMES,
+    models: &MODELS,
+};
 
 /// The figure of this name.
 pub fn figure(id: &str) -> Option<&'static FigureEntry> {
@@ -211,7 +248,11 @@ mod tests {
     #[test]
     fn names_are_unique() {
         for (at, entry) in FIGURES.iter().enumerate() {
-            assert!(FIGURES[..at].iter().all(|other| other.figure.id != entry.figure.id));
+            assert!(
+                FIGURES[..at]
+                    .iter()
+                    .all(|other| other.figure.id != entry.figure.id)
+            );
         }
     }
 }

@@ -44,8 +44,11 @@ pub struct Library {
 }
 
 /// The models that have tables, in the order in which they are held.
-const UNIFAC_MODELS: [ActivityModel; 3] =
-    [ActivityModel::Unifac, ActivityModel::UnifacDortmund, ActivityModel::UnifacDortmund2006];
+const UNIFAC_MODELS: [ActivityModel; 3] = [
+    ActivityModel::Unifac,
+    ActivityModel::UnifacDortmund,
+    ActivityModel::UnifacDortmund2006,
+];
 
 impl Library {
     /// What is built into the program; `slips` says whether suspected slips of
@@ -56,9 +59,8 @@ impl Library {
     /// A built-in table that does not pass its checks, with file, row and column.
     pub fn built_in(slips: Slips) -> Result<Self, LibraryError> {
         let [original, dortmund, joback] = SetId::ALL.map(GroupSet::built_in);
-        let [first, second, third] = UNIFAC_MODELS.map(|model| {
-            Unifac::built_in(model, slips).expect("every UNIFAC model has tables")
-        });
+        let [first, second, third] = UNIFAC_MODELS
+            .map(|model| Unifac::built_in(model, slips).expect("every UNIFAC model has tables"));
         Ok(Self {
             sets: [original?, dortmund?, joback?],
             unifac: [first?, second?, third?],
@@ -79,12 +81,39 @@ impl Library {
 
     /// The UNIFAC behind a model; `None` for the ideal mixture.
     pub fn unifac(&self, model: ActivityModel) -> Option<&Unifac> {
-        UNIFAC_MODELS.iter().position(|&known| known == model).map(|at| &self.unifac[at])
+        UNIFAC_MODELS
+            .iter()
+            .position(|&known| known == model)
+            .map(|at| &self.unifac[at])
     }
 
     /// How suspected slips are treated.
     pub fn slips(&self) -> Slips {
         self.slips
+    }
+
+    /// Every table computed with, as (file name, text): what a fingerprint is taken of.
+    pub fn texts(&self) -> Vec<(&'static str, &'static str)> {
+        let mut all = Vec::new();
+        for set in SetId::ALL {
+            let texts = set.built_in_texts();
+            all.extend([texts.groups, texts.patterns]);
+        }
+        for texts in ActivityModel::ALL.iter().filter_map(|model| model.texts()) {
+            let files = [texts.main_groups, texts.subgroups, texts.interactions];
+            all.extend(
+                files
+                    .into_iter()
+                    .chain(texts.slips)
+                    .map(|file| (file.name, file.text)),
+            );
+        }
+        all.extend(
+            Substances::built_in_texts()
+                .into_iter()
+                .map(|file| (file.file, file.text)),
+        );
+        all
     }
 
     /// The reason of every molecule that a set does not cover; see [`Profiler::explained`].
@@ -94,9 +123,11 @@ impl Library {
 
     /// Measured data of a molecule: of the same identity, else of the same constitution.
     pub fn known(&self, keys: &Keys) -> Option<Known<'_>> {
-        self.substances
-            .by_keys(&keys.full, &keys.constitution)
-            .map(|(substance, same_identity)| Known { substance, same_identity })
+        let (substance, flags) = self.substances.find_structure(keys)?;
+        Some(Known {
+            substance,
+            same_identity: flags.is_empty(),
+        })
     }
 
     /// The molecule behind a name, CAS number or SMILES. A built-in name goes
@@ -120,10 +151,19 @@ impl Library {
             }
             Err(name) => match profiler.profile(self, text) {
                 Ok(profile) => {
-                    let known = self.known(&profile.keys).filter(|known| known.same_identity);
-                    Ok((known.map(|known| Arc::clone(known.substance.name())), profile))
+                    let known = self
+                        .known(&profile.keys)
+                        .filter(|known| known.same_identity);
+                    Ok((
+                        known.map(|known| Arc::clone(known.substance.name())),
+                        profile,
+                    ))
                 }
-                Err(smiles) => Err(UnknownMolecule { text: text.to_owned(), smiles, name }),
+                Err(smiles) => Err(UnknownMolecule {
+                    text: text.to_owned(),
+                    smiles,
+                    name,
+                }),
             },
         }
     }
@@ -136,6 +176,9 @@ impl Library {
     }
 
     pub(super) fn substance(&self, position: usize) -> &Substance {
-        self.substances.iter().nth(position).expect("positions come from the library")
+        self.substances
+            .iter()
+            .nth(position)
+            .expect("positions come from the library")
     }
 }

@@ -1,1 +1,25 @@
-//! TODO room.
+//! Where molecules, tables, data, methods and models meet: a brief becomes a
+//! plan, a candidate becomes figures and a verdict, a mixture is described.
+//!
+//! Reads no file, starts no thread, prints nothing. Entry points:
+//! [`Library::built_in`], [`Plan::new`] and [`Plan::evaluate`],
+//! [`properties`], [`describe_mixture`].
+
+mod candidate;
+mod component;
+mod error;
+mod figure;
+mod library;
+mod plan;
+mod profile;
+mod solution;
+mod structure;
+
+pub use candidate::{Scratch, Verdict};
+pub use component::{MixtureComponent, VaporCurve};
+pub use error::{PlanCause, PlanFault, UnknownMolecule};
+pub use figure::{CATALOG, FIGURES, FigureEntry, FigureKind, figure};
+pub use library::{Library, LibraryError};
+pub use plan::{DEFAULT_MODEL, Plan, PlannedFigure, PlannedTarget};
+pub use profile::{Coverages, Known, Profile, Profiler, properties};
+pub use solution::{MixtureFigure, StatedState, describe_mixture, mole_fractions};

@@ -5,7 +5,7 @@ use smallvec::SmallVec;
 use super::Library;
 use crate::chem::{BondOrder, Canonicalizer, Element, Keys, Molecule, Reader, SmilesError};
 use crate::data::Substance;
-use crate::groups::{Breaker, Breakdown, Coverage, GroupCounts, SetId};
+use crate::groups::{Breakdown, Breaker, Coverage, GroupCounts, SetId};
 use crate::pure::{Estimates, Given, StructureFacts, estimate_all};
 use crate::quantity::{Absent, Estimate, Flag, Flags, Property};
 
@@ -136,7 +136,10 @@ impl Profiler {
         for set in SetId::ALL {
             if absent == library.not_covered(set) {
                 let what = self.gaps(library, profile, set).into();
-                return Absent::NotCovered { set: set.id(), what };
+                return Absent::NotCovered {
+                    set: set.id(),
+                    what,
+                };
             }
         }
         absent.clone()
@@ -174,9 +177,14 @@ pub(super) type GivenValues = SmallVec<[(Property, Estimate); 12]>;
 
 /// The measured values of a substance at a temperature.
 pub(super) fn measured_values(known: Option<Known<'_>>, temperature_k: f64) -> GivenValues {
-    let Some(known) = known else { return GivenValues::new() };
-    let flags =
-        if known.same_identity { Flags::NONE } else { Flags::NONE.with(Flag::OtherStereoisomer) };
+    let Some(known) = known else {
+        return GivenValues::new();
+    };
+    let flags = if known.same_identity {
+        Flags::NONE
+    } else {
+        Flags::NONE.with(Flag::OtherStereoisomer)
+    };
     Property::ALL
         .into_iter()
         .filter_map(|property| {

@@ -1,8 +1,8 @@
 //! Limits on the structure of candidates, bound to sets and patterns.
 
+use super::Library;
 use super::error::{PlanCause, PlanFault};
 use super::profile::Profile;
-use super::Library;
 use crate::brief::{self, CountRange, Located, Place};
 use crate::chem::Element;
 use crate::groups::{Coverage, Pattern, SetId};
@@ -20,14 +20,26 @@ pub(super) struct StructureLimit {
 
 #[derive(Clone, Debug)]
 enum Rule {
-    Elements { allowed: Vec<Element> },
+    Elements {
+        allowed: Vec<Element>,
+    },
     Forbidden(Element),
     HeavyAtoms(CountRange),
     Rings(CountRange),
-    MolarMass { low: Option<f64>, high: Option<f64> },
+    MolarMass {
+        low: Option<f64>,
+        high: Option<f64>,
+    },
     Atoms(Element, CountRange),
-    Group { set: SetId, number: u16, count: CountRange },
-    Pattern { pattern: Box<Pattern>, count: CountRange },
+    Group {
+        set: SetId,
+        number: u16,
+        count: CountRange,
+    },
+    Pattern {
+        pattern: Box<Pattern>,
+        count: CountRange,
+    },
 }
 
 /// A structural limit that is missed: the value and what it measures.
@@ -65,17 +77,19 @@ impl StructureLimit {
             Rule::Rings(range) => counted(profile.molecule.ring_count() as u32, range),
             Rule::MolarMass { low, high } => {
                 let mass = profile.facts.molar_mass_kg_per_mol;
-                let within = low.is_none_or(|low| mass >= low) && high.is_none_or(|high| mass <= high);
+                let within =
+                    low.is_none_or(|low| mass >= low) && high.is_none_or(|high| mass <= high);
                 (!within).then_some((mass, Dimension::MolarMass))
             }
-            Rule::Atoms(element, range) => {
-                counted(u32::from(composition.count(*element)), range)
-            }
+            Rule::Atoms(element, range) => counted(u32::from(composition.count(*element)), range),
             Rule::Group { set, number, count } => {
                 if profile.coverage.of(*set) != Coverage::Complete {
                     return Err(library.not_covered(*set).clone());
                 }
-                counted(u32::from(profile.counts[*set as usize].count(*number)), count)
+                counted(
+                    u32::from(profile.counts[*set as usize].count(*number)),
+                    count,
+                )
             }
             Rule::Pattern { pattern, count } => {
                 // One more than the limit is enough to know that it is passed.
@@ -95,14 +109,24 @@ pub(super) fn bind(
 ) -> Vec<StructureLimit> {
     let mut limits = Vec::new();
     let mut add = |label: String, wanted: String, rule: Rule| {
-        limits.push(StructureLimit { label, wanted, rule });
+        limits.push(StructureLimit {
+            label,
+            wanted,
+            rule,
+        });
     };
     if let Some(allowed) = &structure.allowed {
-        let names: Vec<_> = allowed.value.iter().map(|element| element.symbol()).collect();
+        let names: Vec<_> = allowed
+            .value
+            .iter()
+            .map(|element| element.symbol())
+            .collect();
         add(
             "structure.elements".into(),
             format!("only H, {}", names.join(", ")),
-            Rule::Elements { allowed: allowed.value.clone() },
+            Rule::Elements {
+                allowed: allowed.value.clone(),
+            },
         );
     }
     for element in &structure.forbidden {
@@ -121,15 +145,28 @@ pub(super) fn bind(
         );
     }
     if let Some(range) = &structure.rings {
-        add("structure.rings".into(), words(&range.value, "rings"), Rule::Rings(range.value));
+        add(
+            "structure.rings".into(),
+            words(&range.value, "rings"),
+            Rule::Rings(range.value),
+        );
     }
-    if let Some(Located { value: (low, high), .. }) = structure.molar_mass_kg_per_mol {
+    if let Some(Located {
+        value: (low, high), ..
+    }) = structure.molar_mass_kg_per_mol
+    {
         let end = |word: &str, value: Option<f64>| {
             value.map(|mass| format!("{word} {} g/mol", mass * 1e3))
         };
-        let ends: Vec<_> =
-            [end("at least", low), end("at most", high)].into_iter().flatten().collect();
-        add("structure.molar_mass".into(), ends.join(" and "), Rule::MolarMass { low, high });
+        let ends: Vec<_> = [end("at least", low), end("at most", high)]
+            .into_iter()
+            .flatten()
+            .collect();
+        add(
+            "structure.molar_mass".into(),
+            ends.join(" and "),
+            Rule::MolarMass { low, high },
+        );
     }
     for (element, range) in &structure.atoms {
         let symbol = element.value.symbol();
@@ -140,21 +177,36 @@ pub(super) fn bind(
         );
     }
     for limit in &structure.groups {
-        let fault = |place: Place, cause: PlanCause| PlanFault { place: Some(place), cause };
+        let fault = |place: Place, cause: PlanCause| PlanFault {
+            place: Some(place),
+            cause,
+        };
         let Some(set) = SetId::from_id(&limit.set.value) else {
-            let cause = PlanCause::NoSet { set: limit.set.value.clone() };
+            let cause = PlanCause::NoSet {
+                set: limit.set.value.clone(),
+            };
             faults.push(fault(limit.set.place, cause));
             continue;
         };
         let number = limit.number.value;
         let Some(group) = library.set(set).group(number) else {
-            faults.push(fault(limit.number.place, PlanCause::NoGroup { set: set.id(), number }));
+            faults.push(fault(
+                limit.number.place,
+                PlanCause::NoGroup {
+                    set: set.id(),
+                    number,
+                },
+            ));
             continue;
         };
         add(
             format!("structure.group.{}.{number}", set.id()),
             words(&limit.count, &group.formula),
-            Rule::Group { set, number, count: limit.count },
+            Rule::Group {
+                set,
+                number,
+                count: limit.count,
+            },
         );
     }
     for limit in &structure.patterns {
@@ -164,11 +216,17 @@ pub(super) fn bind(
             Ok(pattern) => add(
                 format!("structure.pattern.{name}"),
                 words(&limit.count, name),
-                Rule::Pattern { pattern: Box::new(pattern), count: limit.count },
+                Rule::Pattern {
+                    pattern: Box::new(pattern),
+                    count: limit.count,
+                },
             ),
             Err(found) => faults.push(PlanFault {
                 place: Some(limit.pattern.place),
-                cause: PlanCause::Pattern { pattern: text.clone(), faults: found },
+                cause: PlanCause::Pattern {
+                    pattern: text.clone(),
+                    faults: found,
+                },
             }),
         }
     }

@@ -30,6 +30,11 @@ impl Fingerprint {
         Self::new().with(bytes)
     }
 
+    /// The 128 bits.
+    pub const fn value(self) -> u128 {
+        self.0
+    }
+
     /// Adds bytes as they are.
     #[must_use]
     pub const fn with(self, bytes: &[u8]) -> Self {

@@ -1,7 +1,9 @@
 //! Which lines of a pool are the same molecule, and which are stereoisomers.
 
-use std::io;
-use std::path::Path;
+use std::io::{self, BufReader, BufWriter, Read, Seek, SeekFrom, Write};
+use std::path::{Path, PathBuf};
+
+use tempfile::SpooledTempFile;
 
 use super::sorter::{Record, Sorted, Sorter};
 
@@ -82,7 +84,7 @@ impl Record for Relation {
 /// Collects the identities of the lines of a pool.
 pub(super) struct Identities {
     lines: Sorter<Line>,
-    folder: std::path::PathBuf,
+    folder: PathBuf,
 }
 
 impl Identities {
@@ -162,6 +164,74 @@ impl Relations {
             }
         }
         Ok(None)
+    }
+}
+
+/// Relations written down in line order, to be read beside the lines again.
+pub(super) struct RelationLog {
+    file: BufWriter<SpooledTempFile>,
+}
+
+/// Bytes of relations that stay in memory.
+const LOG_MEMORY: usize = 4 << 20;
+
+impl RelationLog {
+    /// An empty log that goes to a temporary file in `folder` when it grows.
+    pub(super) fn new(folder: &Path) -> Self {
+        Self {
+            file: BufWriter::new(tempfile::spooled_tempfile_in(LOG_MEMORY, folder)),
+        }
+    }
+
+    /// Writes one down.
+    pub(super) fn add(&mut self, relation: &Relation) -> io::Result<()> {
+        let mut bytes = [0; Relation::SIZE];
+        relation.write(&mut bytes);
+        self.file.write_all(&bytes)
+    }
+
+    /// Ends writing and starts reading.
+    pub(super) fn finish(self) -> io::Result<WrittenRelations> {
+        let mut file = self
+            .file
+            .into_inner()
+            .map_err(io::IntoInnerError::into_error)?;
+        file.seek(SeekFrom::Start(0))?;
+        let mut log = WrittenRelations {
+            file: BufReader::new(file),
+            next: None,
+        };
+        log.advance()?;
+        Ok(log)
+    }
+}
+
+/// A [`RelationLog`] that is read.
+pub(super) struct WrittenRelations {
+    file: BufReader<SpooledTempFile>,
+    next: Option<Relation>,
+}
+
+impl WrittenRelations {
+    fn advance(&mut self) -> io::Result<()> {
+        let mut bytes = [0; Relation::SIZE];
+        self.next = match self.file.read_exact(&mut bytes) {
+            Ok(()) => Some(Relation::read(&bytes)),
+            Err(error) if error.kind() == io::ErrorKind::UnexpectedEof => None,
+            Err(error) => return Err(error),
+        };
+        Ok(())
+    }
+
+    /// The relation of a line, if it has one; lines in ascending order.
+    pub(super) fn of(&mut self, line: u64) -> io::Result<Option<Relation>> {
+        match self.next {
+            Some(relation) if relation.line == line => {
+                self.advance()?;
+                Ok(Some(relation))
+            }
+            _ => Ok(None),
+        }
     }
 }
 

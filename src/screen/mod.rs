@@ -1,7 +1,14 @@
 //! Screening: a pool of candidates streamed through `evaluate`.
+//!
+//! Lines are read in batches, evaluated on all cores, and written down in the
+//! order of the pool; memory does not grow with its length. Entry points:
+//! [`Pool::open`], [`Screening::run`].
 
 mod identity;
+mod ledger;
 mod pool;
+mod screening;
 mod sorter;
 
-pub use pool::{Batch, LineFault, Pool, PoolError, PoolLine};
+pub use pool::{Batch, Columns, LineFault, Pool, PoolError, PoolLine};
+pub use screening::{FILES, Ranked, ScreenError, Screened, Screening};

@@ -8,6 +8,8 @@ use std::fs::File;
 use std::io::{self, BufRead, BufReader, Read};
 use std::ops::Range;
 use std::path::{Path, PathBuf};
+use std::sync::Arc;
+use std::sync::atomic::{AtomicU64, Ordering};
 
 use flate2::bufread::MultiGzDecoder;
 use thiserror::Error;
@@ -62,10 +64,12 @@ pub enum PoolError {
         name: String,
     },
     /// A CSV without the one column that is needed.
-    #[error("{name}: no column is headed `smiles`; its columns are {}", columns.iter().map(|column| format!("`{column}`")).collect::<Vec<_>>().join(", "))]
+    #[error("{name}: no column is headed `{wanted}`; its columns are {}", columns.iter().map(|column| format!("`{column}`")).collect::<Vec<_>>().join(", "))]
     NoSmilesColumn {
         /// The file.
         name: String,
+        /// The column that is needed.
+        wanted: String,
         /// The columns it has.
         columns: Vec<String>,
     },
@@ -121,6 +125,24 @@ impl LineFault {
             Self::OpenQuote => "open-quote",
             Self::Cells { .. } => "cell-count",
             Self::NoSmiles => "no-smiles",
+        }
+    }
+}
+
+/// Heads of the columns that are looked for in a CSV pool; case does not matter.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Columns<'a> {
+    /// The column of SMILES; has to be there.
+    pub smiles: &'a str,
+    /// The column of names.
+    pub name: &'a str,
+}
+
+impl Default for Columns<'_> {
+    fn default() -> Self {
+        Self {
+            smiles: "smiles",
+            name: "name",
         }
     }
 }
@@ -183,6 +205,11 @@ impl Batch {
         self.entries.len()
     }
 
+    /// The text of the lines, one after the other: what a fingerprint is taken of.
+    pub fn text(&self) -> &str {
+        &self.text
+    }
+
     /// Whether there is no line.
     pub fn is_empty(&self) -> bool {
         self.entries.is_empty()
@@ -224,6 +251,22 @@ pub struct Pool {
     ahead: VecDeque<(Vec<u8>, bool)>,
     splitter: Splitter,
     found_any: bool,
+    bytes: Option<u64>,
+    bytes_read: Arc<AtomicU64>,
+}
+
+/// Counts what goes through it.
+struct Counted<R> {
+    reader: R,
+    bytes: Arc<AtomicU64>,
+}
+
+impl<R: Read> Read for Counted<R> {
+    fn read(&mut self, buffer: &mut [u8]) -> io::Result<usize> {
+        let read = self.reader.read(buffer)?;
+        self.bytes.fetch_add(read as u64, Ordering::Relaxed);
+        Ok(read)
+    }
 }
 
 impl Pool {
@@ -233,7 +276,7 @@ impl Pool {
     /// # Errors
     ///
     /// Every [`PoolError`] but `Read`.
-    pub fn open(path: &Path) -> Result<Self, PoolError> {
+    pub fn open(path: &Path, columns: Columns<'_>) -> Result<Self, PoolError> {
         let open = |reason| PoolError::Open {
             path: path.to_owned(),
             reason,
@@ -244,10 +287,22 @@ impl Pool {
             });
         }
         let file = File::open(path).map_err(open)?;
+        let bytes = file
+            .metadata()
+            .ok()
+            .filter(|facts| facts.is_file())
+            .map(|facts| facts.len());
         let plain = path.to_string_lossy().to_ascii_lowercase();
         let plain = plain.strip_suffix(".gz").unwrap_or(&plain);
         let lines = plain.ends_with(".smi") || plain.ends_with(".txt");
-        Self::from_reader(Box::new(file), &path.display().to_string(), Some(!lines))
+        let mut pool = Self::from_reader(
+            Box::new(file),
+            &path.display().to_string(),
+            Some(!lines),
+            columns,
+        )?;
+        pool.bytes = bytes;
+        Ok(pool)
     }
 
     /// Reads a pool from anything; `csv` says whether it is CSV, and where that
@@ -260,11 +315,17 @@ impl Pool {
         reader: Box<dyn Read + Send>,
         name: &str,
         csv: Option<bool>,
+        columns: Columns<'_>,
     ) -> Result<Self, PoolError> {
         let read = |reason| PoolError::Read {
             name: name.to_owned(),
             line: 0,
             reason,
+        };
+        let bytes_read = Arc::new(AtomicU64::new(0));
+        let reader = Counted {
+            reader,
+            bytes: Arc::clone(&bytes_read),
         };
         let mut raw = BufReader::with_capacity(LINE_LIMIT, reader);
         let compressed = raw.fill_buf().map_err(read)?.starts_with(&[0x1f, 0x8b]);
@@ -300,9 +361,11 @@ impl Pool {
             ahead: VecDeque::new(),
             splitter: Splitter::new(),
             found_any: false,
+            bytes: None,
+            bytes_read,
         };
         if csv != Some(false) {
-            pool.read_header(csv == Some(true))?;
+            pool.read_header(csv == Some(true), columns)?;
         }
         Ok(pool)
     }
@@ -310,6 +373,16 @@ impl Pool {
     /// What to call the pool in messages.
     pub fn name(&self) -> &str {
         &self.name
+    }
+
+    /// Size of the file in bytes, where it is known.
+    pub fn input_bytes(&self) -> Option<u64> {
+        self.bytes
+    }
+
+    /// Bytes of the file taken in so far, before decompression.
+    pub fn input_bytes_read(&self) -> u64 {
+        self.bytes_read.load(Ordering::Relaxed)
     }
 
     /// Heads of the columns besides `smiles` and `name`, in file order.
@@ -366,7 +439,7 @@ impl Pool {
         Ok(())
     }
 
-    fn read_header(&mut self, certain: bool) -> Result<(), PoolError> {
+    fn read_header(&mut self, certain: bool, columns: Columns<'_>) -> Result<(), PoolError> {
         let name = self.name.clone();
         let mut bytes = Vec::new();
         loop {
@@ -407,10 +480,11 @@ impl Pool {
                 .iter()
                 .position(|head| head.eq_ignore_ascii_case(wanted))
         };
-        let Some(smiles) = place("smiles") else {
+        let Some(smiles) = place(columns.smiles) else {
             if certain {
                 return Err(PoolError::NoSmilesColumn {
                     name,
+                    wanted: columns.smiles.to_owned(),
                     columns: heads,
                 });
             }
@@ -429,7 +503,7 @@ impl Pool {
                 });
             }
         }
-        let named = place("name");
+        let named = place(columns.name);
         self.layout = Layout::Csv {
             smiles,
             name: named,
@@ -630,6 +704,7 @@ mod tests {
             Box::new(io::Cursor::new(text.as_bytes().to_vec())),
             "list",
             csv,
+            Columns::default(),
         )
     }
 
@@ -750,8 +825,13 @@ mod tests {
     #[test]
     fn bytes_that_are_not_text_are_refused_by_line() {
         let bytes = b"smiles\nC\xff\nCC\n".to_vec();
-        let mut pool =
-            Pool::from_reader(Box::new(io::Cursor::new(bytes)), "list", Some(true)).unwrap();
+        let mut pool = Pool::from_reader(
+            Box::new(io::Cursor::new(bytes)),
+            "list",
+            Some(true),
+            Columns::default(),
+        )
+        .unwrap();
         let mut batch = Batch::default();
         pool.read_batch(&mut batch, 9).unwrap();
         assert_eq!(batch.line(0).smiles, Err(LineFault::NotUtf8(2)));

@@ -319,7 +319,12 @@ fn reference_spellings_collapse_and_molecules_stay_apart() {
         }
     }
     let groups: HashSet<&str> = references.iter().map(|r| r.constitution.as_str()).collect();
-    assert!(faults.is_empty(), "{} faults\n{}", faults.len(), faults.join("\n"));
+    assert!(
+        faults.is_empty(),
+        "{} faults\n{}",
+        faults.len(),
+        faults.join("\n")
+    );
     assert_eq!(groups.len(), constitutions.len());
 }
 
@@ -342,10 +347,26 @@ fn reference_rings_hydrogens_formula_and_mass_agree() {
                 faults.push(format!("{spelling} {what}: {ours}, RDKit {theirs}"));
             }
         };
-        compare("formula", molecule.composition().to_string(), &reference.formula);
-        compare("rings", molecule.ring_count().to_string(), &reference.rings.to_string());
-        compare("ring atoms", digits(atoms.iter().map(|a| a.in_ring)), &reference.ring_atoms);
-        compare("hydrogens", digits(atoms.iter().map(|a| a.hydrogens)), &reference.hydrogens);
+        compare(
+            "formula",
+            molecule.composition().to_string(),
+            &reference.formula,
+        );
+        compare(
+            "rings",
+            molecule.ring_count().to_string(),
+            &reference.rings.to_string(),
+        );
+        compare(
+            "ring atoms",
+            digits(atoms.iter().map(|a| a.in_ring)),
+            &reference.ring_atoms,
+        );
+        compare(
+            "hydrogens",
+            digits(atoms.iter().map(|a| a.hydrogens)),
+            &reference.hydrogens,
+        );
         let aromatic = digits(atoms.iter().map(|atom| atom.aromatic));
         let exception = exceptions.remove(molecule.keys().full.as_str());
         if exception.is_none() {
@@ -357,9 +378,18 @@ fn reference_rings_hydrogens_formula_and_mass_agree() {
         let mass = molecule.molar_mass_kg_per_mol() * 1e3;
         let relative = (mass / reference.mass_g_per_mol - 1.0).abs();
         if relative > 2.2e-4 {
-            compare("mass", format!("{mass:.3}"), &reference.mass_g_per_mol.to_string());
+            compare(
+                "mass",
+                format!("{mass:.3}"),
+                &reference.mass_g_per_mol.to_string(),
+            );
         }
     }
-    assert!(faults.is_empty(), "{} faults\n{}", faults.len(), faults.join("\n"));
+    assert!(
+        faults.is_empty(),
+        "{} faults\n{}",
+        faults.len(),
+        faults.join("\n")
+    );
     assert!(exceptions.is_empty(), "no such molecules: {exceptions:?}");
 }

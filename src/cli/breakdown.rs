@@ -1,0 +1,119 @@
+//! `groupsmith breakdown`.
+
+use std::io::Write;
+
+use super::args::{self, Format};
+use super::error::CliError;
+use super::exit::Exit;
+use super::molecules::{Asked, for_each};
+use super::output;
+use crate::evaluate::{Library, Profiler};
+use crate::groups::{Coverage, SetId};
+use crate::quantity::unit::nearest;
+use crate::report::{
+    BreakdownRow, BreakdownStatus, breakdown_text, write_csv_rows, write_json_rows,
+};
+
+/// A row with its texts.
+struct Row {
+    line: u64,
+    name: String,
+    smiles: String,
+    set: SetId,
+    status: BreakdownStatus,
+    groups: String,
+    detail: String,
+    readable: String,
+}
+
+impl Row {
+    fn shown(&self) -> BreakdownRow<'_> {
+        BreakdownRow {
+            line: self.line,
+            name: &self.name,
+            smiles: &self.smiles,
+            set: self.set.id(),
+            status: self.status,
+            groups: &self.groups,
+            detail: &self.detail,
+        }
+    }
+}
+
+pub(super) fn run(command: &args::Breakdown, library: &Library) -> Result<Exit, CliError> {
+    let sets = sets(&command.sets)?;
+    let mut profiler = Profiler::new();
+    let mut rows = Vec::new();
+    let mut answered = false;
+    for_each(
+        &command.molecules,
+        library,
+        &mut profiler,
+        |profiler, asked| {
+            for &set in &sets {
+                let row = row(library, profiler, &asked, set);
+                answered |= row.status == BreakdownStatus::Complete;
+                rows.push(row);
+            }
+            Ok(())
+        },
+    )?;
+    let mut out = output::stdout();
+    let shown = rows.iter().map(Row::shown);
+    match command.format {
+        Format::Csv => write_csv_rows(&mut out, shown)?,
+        Format::Json => write_json_rows(&mut out, shown)?,
+        Format::Text => {
+            let readable = rows.iter().map(|row| (row.shown(), row.readable.as_str()));
+            out.write_all(breakdown_text(readable, output::width()).as_bytes())?;
+        }
+    }
+    out.flush()?;
+    Ok(if answered { Exit::Done } else { Exit::Nothing })
+}
+
+fn sets(names: &[String]) -> Result<Vec<SetId>, CliError> {
+    if names.is_empty() {
+        return Ok(SetId::ALL.to_vec());
+    }
+    let known = |name: &String| {
+        SetId::from_id(name).ok_or_else(|| {
+            let near = nearest(name, SetId::ALL.map(SetId::id))
+                .map_or(String::new(), |near| format!("; did you mean `{near}`?"));
+            CliError::Usage(format!(
+                "there is no group set `{name}`{near}\n  sets: {}",
+                SetId::ALL.map(SetId::id).join(", ")
+            ))
+        })
+    };
+    names.iter().map(known).collect()
+}
+
+fn row(library: &Library, profiler: &mut Profiler, asked: &Asked, set: SetId) -> Row {
+    let mut row = Row {
+        line: asked.line,
+        name: asked.name.to_string(),
+        smiles: asked.smiles.to_string(),
+        set,
+        status: BreakdownStatus::Unreadable,
+        groups: String::new(),
+        detail: String::new(),
+        readable: String::new(),
+    };
+    match &asked.profile {
+        Err(reason) => row.detail.clone_from(reason),
+        Ok(profile) => {
+            let counts = &profile.counts[set as usize];
+            row.status = match profile.coverage.of(set) {
+                Coverage::Complete => BreakdownStatus::Complete,
+                _ => BreakdownStatus::Partial,
+            };
+            row.groups = counts.to_string();
+            row.readable = library.set(set).describe(counts);
+            if row.status == BreakdownStatus::Partial {
+                row.detail = profiler.gaps(library, profile, set);
+            }
+        }
+    }
+    row
+}

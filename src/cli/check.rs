@@ -1,0 +1,86 @@
+//! `groupsmith check`.
+
+use std::io::Write;
+use std::sync::Arc;
+
+use super::args;
+use super::error::CliError;
+use super::exit::Exit;
+use super::output;
+use super::screen::open_pool;
+use crate::brief::{Brief, Job};
+use crate::evaluate::{CATALOG, Library, Plan};
+use crate::screen::Batch;
+
+pub(super) fn run(command: &args::Check, library: Library) -> Result<Exit, CliError> {
+    let brief = Brief::load(&command.brief, &CATALOG, Job::Check)?;
+    let name = brief.file.to_string();
+    let plan = Plan::new(Arc::new(library), brief, true)
+        .map_err(|faults| CliError::Plan { file: name, faults })?;
+    let mut out = output::stdout();
+    writeln!(out, "{}: sound", plan.brief.heading())?;
+    for (position, component) in plan.components.iter().enumerate() {
+        let vapor = if component.vapor.is_measured() {
+            "measured"
+        } else {
+            "estimated or absent"
+        };
+        writeln!(
+            out,
+            "  component {}: {} {} (vapor pressure {vapor})",
+            position + 1,
+            component.name,
+            component.profile.keys.full
+        )?;
+    }
+    if let Some(temperature_k) = plan.temperature_k {
+        writeln!(out, "  mixture at {temperature_k:.2} K")?;
+    }
+    let models: Vec<_> = plan.models().map(|model| model.id()).collect();
+    if plan.brief.mixture.is_some() {
+        writeln!(
+            out,
+            "  models: {} (targets by the first)",
+            models.join(", ")
+        )?;
+    }
+    for (name, wanted) in plan.labels() {
+        writeln!(out, "  target: {name} {wanted}")?;
+    }
+    for note in &plan.notes {
+        writeln!(out, "  note: {note}")?;
+    }
+    if plan.brief.assembly.is_some() {
+        writeln!(
+            out,
+            "  [assembly] is read, but the search is not built in yet"
+        )?;
+    }
+    if plan.brief.pool.is_some() {
+        let mut pool = open_pool(&plan)?;
+        let mut batch = Batch::default();
+        let (mut lines, mut unusable) = (0_u64, 0_u64);
+        loop {
+            pool.read_batch(&mut batch, 4096)?;
+            if batch.is_empty() {
+                break;
+            }
+            lines += batch.len() as u64;
+            unusable += (0..batch.len())
+                .filter(|&at| batch.line(at).smiles.is_err())
+                .count() as u64;
+        }
+        writeln!(
+            out,
+            "  pool: {lines} lines in {}, {unusable} of them unusable",
+            pool.name()
+        )?;
+        writeln!(
+            out,
+            "  kept in the ranking: at most {}",
+            plan.brief.keep_best
+        )?;
+    }
+    out.flush()?;
+    Ok(Exit::Done)
+}

@@ -1,0 +1,422 @@
+//! `groupsmith tables`.
+
+use std::io::Write;
+
+use super::args::{self, TablesWhat};
+use super::error::CliError;
+use super::exit::Exit;
+use super::output;
+use crate::evaluate::{FIGURES, Library};
+use crate::groups::SetId;
+use crate::mixture::{ActivityModel, ModelStatus, RESERVED_MODELS, Unifac};
+use crate::pure::{METHODS, Role};
+use crate::quantity::Property;
+use crate::quantity::unit::si_symbol;
+use crate::report::{TextColumn, TextTable};
+
+pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, CliError> {
+    let text = match &command.what {
+        None => overview(library),
+        Some(TablesWhat::Groups { set, number }) => groups(library, set, *number)?,
+        Some(TablesWhat::Pair {
+            model,
+            first,
+            second,
+        }) => pair(library, model, *first, *second)?,
+        Some(TablesWhat::Coverage { model }) => coverage(library, model)?,
+        Some(TablesWhat::Methods) => methods(),
+        Some(TablesWhat::Figures) => figures(),
+        Some(TablesWhat::Substances { name }) => substances(library, name.as_deref())?,
+        Some(TablesWhat::Patterns) => include_str!("../groups/pattern/reference.md").to_owned(),
+        Some(TablesWhat::Slips) => slips(library),
+    };
+    let mut out = output::stdout();
+    out.write_all(text.as_bytes())?;
+    out.flush()?;
+    Ok(Exit::Done)
+}
+
+fn set_named(name: &str) -> Result<SetId, CliError> {
+    SetId::from_id(name).ok_or_else(|| {
+        CliError::Usage(format!(
+            "there is no group set `{name}`\n  sets: {}",
+            SetId::ALL.map(SetId::id).join(", ")
+        ))
+    })
+}
+
+fn unifac_named<'l>(library: &'l Library, name: &str) -> Result<&'l Unifac, CliError> {
+    match ActivityModel::from_id(name) {
+        Some(ModelStatus::BuiltIn(model)) => library
+            .unifac(model)
+            .ok_or_else(|| CliError::Usage(format!("the model `{name}` has no tables"))),
+        Some(ModelStatus::Reserved) => Err(CliError::Usage(format!(
+            "the model `{name}` is not built in yet"
+        ))),
+        None => Err(CliError::Usage(format!(
+            "there is no model `{name}`\n  models with tables: unifac, unifac-dortmund, unifac-dortmund-2006"
+        ))),
+    }
+}
+
+fn overview(library: &Library) -> String {
+    let mut text = String::from("Group sets\n");
+    let mut table = TextTable::new([
+        TextColumn::text("  set"),
+        TextColumn::number("groups", ""),
+        TextColumn::number("patterns", ""),
+        TextColumn::text("what it is"),
+    ]);
+    for set in SetId::ALL {
+        let groups = library.set(set);
+        table.add([
+            format!("  {}", set.id()),
+            groups.groups().len().to_string(),
+            groups.patterns().len().to_string(),
+            set.title().into(),
+        ]);
+    }
+    text.push_str(&table.render(output::width()));
+    text.push_str("\nActivity models\n");
+    let mut table = TextTable::new([
+        TextColumn::text("  model"),
+        TextColumn::number("main groups", ""),
+        TextColumn::number("pairs known", ""),
+        TextColumn::number("of", ""),
+        TextColumn::text("what it is"),
+    ]);
+    for model in ActivityModel::ALL {
+        let cells = match library.unifac(model) {
+            None => [String::new(), String::new(), String::new()],
+            Some(unifac) => {
+                let coverage = unifac.tables().coverage();
+                [
+                    unifac.tables().main_groups().len().to_string(),
+                    coverage.known.to_string(),
+                    coverage.possible.to_string(),
+                ]
+            }
+        };
+        let [mains, known, possible] = cells;
+        table.add([
+            format!("  {}", model.id()),
+            mains,
+            known,
+            possible,
+            model.title().into(),
+        ]);
+    }
+    text.push_str(&table.render(output::width()));
+    text.push_str("  reserved: ");
+    text.push_str(&RESERVED_MODELS.map(|(id, _)| id).join(", "));
+    text.push('\n');
+    for model in ActivityModel::ALL {
+        if let Some(unifac) = library.unifac(model) {
+            text.push_str(&format!("\nSources of {}\n", model.id()));
+            for source in unifac.tables().sources() {
+                text.push_str(&format!("  {source}\n"));
+            }
+        }
+    }
+    text.push_str(&format!(
+        "\nMeasured substances: {}\nPure-component methods: {}\nFigures for targets: {}\n",
+        library.substances.len(),
+        METHODS.len(),
+        FIGURES.len()
+    ));
+    text.push_str(
+        "\nMore: groupsmith tables groups SET [NUMBER], pair MODEL FIRST SECOND, coverage MODEL,\n\
+         methods, figures, substances [NAME], patterns, slips\n",
+    );
+    text
+}
+
+fn groups(library: &Library, name: &str, number: Option<u16>) -> Result<String, CliError> {
+    let id = set_named(name)?;
+    let set = library.set(id);
+    let unifac = match id {
+        SetId::Unifac => library.unifac(ActivityModel::Unifac),
+        SetId::UnifacDortmund => library.unifac(ActivityModel::UnifacDortmund),
+        SetId::Joback => None,
+    };
+    let subgroup = |number: u16| unifac.and_then(|unifac| unifac.tables().subgroup(number));
+    let Some(number) = number else {
+        let mut table = TextTable::new([
+            TextColumn::number("number", ""),
+            TextColumn::text("formula"),
+            TextColumn::text("main group"),
+            TextColumn::number("R", ""),
+            TextColumn::number("Q", ""),
+        ]);
+        for group in set.groups() {
+            let (main, r, q) = match subgroup(group.number) {
+                Some(sub) => (
+                    sub.main_group.to_string(),
+                    sub.r.to_string(),
+                    sub.q.to_string(),
+                ),
+                None => Default::default(),
+            };
+            table.add([
+                group.number.to_string(),
+                group.formula.to_string(),
+                main,
+                r,
+                q,
+            ]);
+        }
+        return Ok(table.render(output::width()));
+    };
+    let Some(group) = set.group(number) else {
+        return Err(CliError::Usage(format!(
+            "group set {} has no group {number}\n  `groupsmith tables groups {}` lists them",
+            id.id(),
+            id.id()
+        )));
+    };
+    let mut text = format!("{} of {}: {}\n", number, id.id(), group.formula);
+    if let Some(sub) = subgroup(number) {
+        text.push_str(&format!(
+            "  main group {}, R {}, Q {}\n",
+            sub.main_group, sub.r, sub.q
+        ));
+    }
+    if id == SetId::Joback {
+        for (term, name, unit) in crate::pure::joback::Term::COLUMNS {
+            let value = library.methods.joback.contribution(number, term);
+            let value = value.map_or("not published".into(), |value| format!("{value} {unit}"));
+            text.push_str(&format!("  {name}: {value}\n"));
+        }
+    }
+    text.push_str("  patterns:\n");
+    for (gives, pattern, example, line) in set.patterns() {
+        if gives.count(number) > 0 {
+            text.push_str(&format!("    {pattern}  gives {gives}"));
+            if let Some(example) = example {
+                text.push_str(&format!("  as in {example}"));
+            }
+            text.push_str(&format!("  (line {line})\n"));
+        }
+    }
+    Ok(text)
+}
+
+fn pair(library: &Library, model: &str, first: u16, second: u16) -> Result<String, CliError> {
+    let tables = unifac_named(library, model)?.tables();
+    let name = |number: u16| {
+        tables.main_group(number).map(|main| main.name.to_string()).ok_or_else(|| {
+            CliError::Usage(format!(
+                "{model} has no main group {number}\n  `groupsmith tables coverage {model}` lists them"
+            ))
+        })
+    };
+    let (one, other) = (name(first)?, name(second)?);
+    let mut text = format!("{model}: main groups {first} ({one}) and {second} ({other})\n");
+    for (i, j) in [(first, second), (second, first)] {
+        match tables.pair(i, j) {
+            None => text.push_str(&format!("  {i} to {j}: not published\n")),
+            Some(pair) => {
+                let used = pair.used;
+                text.push_str(&format!(
+                    "  {i} to {j}: a = {} K, b = {}, c = {} 1/K\n",
+                    used.a_k, used.b, used.c_per_k
+                ));
+                if let Some(slip) = pair.slip {
+                    text.push_str(&format!(
+                        "    as circulated: a = {} K, b = {}, c = {} 1/K\n    {}\n",
+                        slip.circulated.a_k,
+                        slip.circulated.b,
+                        slip.circulated.c_per_k,
+                        slip.reason
+                    ));
+                }
+            }
+        }
+    }
+    text.push_str("  sources:\n");
+    for source in tables.sources() {
+        text.push_str(&format!("    {source}\n"));
+    }
+    Ok(text)
+}
+
+fn coverage(library: &Library, model: &str) -> Result<String, CliError> {
+    let tables = unifac_named(library, model)?.tables();
+    let coverage = tables.coverage();
+    let mut text = format!(
+        "{model}: {} of {} pairs of main groups are published\n",
+        coverage.known, coverage.possible
+    );
+    let mut table = TextTable::new([
+        TextColumn::number("number", ""),
+        TextColumn::text("main group"),
+        TextColumn::number("pairs known", ""),
+        TextColumn::text("not published with"),
+    ]);
+    for main in tables.main_groups() {
+        let others = tables
+            .main_groups()
+            .iter()
+            .filter(|other| other.number != main.number);
+        let (known, missing): (Vec<_>, Vec<_>) = others.partition(|other| {
+            tables.pair(main.number, other.number).is_some()
+                && tables.pair(other.number, main.number).is_some()
+        });
+        let missing: Vec<_> = missing
+            .iter()
+            .map(|other| other.number.to_string())
+            .collect();
+        table.add([
+            main.number.to_string(),
+            main.name.to_string(),
+            known.len().to_string(),
+            missing.join(" "),
+        ]);
+    }
+    text.push_str(&table.render(output::width()));
+    Ok(text)
+}
+
+fn methods() -> String {
+    let mut table = TextTable::new([
+        TextColumn::text("property"),
+        TextColumn::text("method"),
+        TextColumn::text("use"),
+        TextColumn::text("source"),
+    ]);
+    for method in METHODS {
+        table.add([
+            method.property.id().into(),
+            method.id.into(),
+            match method.role {
+                Role::Default => "default".into(),
+                Role::Selectable => "in the library".into(),
+            },
+            method.source.into(),
+        ]);
+    }
+    let mut text = table.render(output::width());
+    let without: Vec<_> = Property::ALL
+        .into_iter()
+        .filter(|property| METHODS.iter().all(|method| method.property != *property))
+        .map(Property::id)
+        .collect();
+    if !without.is_empty() {
+        text.push_str(&format!(
+            "without a method (measured values only): {}\n",
+            without.join(", ")
+        ));
+    }
+    text
+}
+
+fn figures() -> String {
+    let mut table = TextTable::new([
+        TextColumn::text("figure"),
+        TextColumn::text("unit"),
+        TextColumn::text("what it is"),
+    ]);
+    for entry in &FIGURES {
+        table.add([
+            entry.figure.id.into(),
+            si_symbol(entry.figure.dimension).into(),
+            entry.title.into(),
+        ]);
+    }
+    table.render(output::width())
+}
+
+fn substances(library: &Library, name: Option<&str>) -> Result<String, CliError> {
+    let Some(name) = name else {
+        let mut table = TextTable::new([
+            TextColumn::text("name"),
+            TextColumn::text("CAS"),
+            TextColumn::text("SMILES"),
+            TextColumn::text("vapor pressure"),
+            TextColumn::text("density"),
+        ]);
+        for substance in library.substances.iter() {
+            let range = |range: Option<(f64, f64)>| {
+                range.map_or(String::new(), |(low, high)| {
+                    format!("{low:.0} to {high:.0} K")
+                })
+            };
+            table.add([
+                substance.name().to_string(),
+                substance.cas().map_or(String::new(), |cas| cas.to_string()),
+                substance.smiles().to_owned(),
+                range(substance.vapor_pressure().map(|curve| curve.range_k())),
+                range(substance.liquid_density().map(|curve| curve.range_k())),
+            ]);
+        }
+        return Ok(table.render(output::width()));
+    };
+    let substance = match library.substances.find(name) {
+        Ok(substance) => substance,
+        Err(error) => {
+            let mut profiler = crate::evaluate::Profiler::new();
+            let found = profiler
+                .profile(library, name.trim())
+                .ok()
+                .and_then(|profile| library.known(&profile.keys));
+            match found {
+                Some(known) => known.substance,
+                None => return Err(CliError::Usage(error.to_string())),
+            }
+        }
+    };
+    let mut text = format!("{}  {}\n", substance.name(), substance.smiles());
+    if let Some(cas) = substance.cas() {
+        text.push_str(&format!("  CAS {cas}\n"));
+    }
+    if !substance.synonyms().is_empty() {
+        let synonyms: Vec<&str> = substance.synonyms().iter().map(|name| &**name).collect();
+        text.push_str(&format!("  also: {}\n", synonyms.join("; ")));
+    }
+    for constant in substance.constants() {
+        let property = constant.property;
+        let value = crate::quantity::unit::to_table(constant.value, property.dimension());
+        let at = constant
+            .temperature_k
+            .map_or(String::new(), |t| format!(" at {t} K"));
+        text.push_str(&format!(
+            "  {}: {value} {}{at}  ({})\n",
+            property.id(),
+            si_symbol(property.dimension()),
+            constant.source
+        ));
+    }
+    for curve in substance.vapor_pressures() {
+        let (low, high) = curve.range_k();
+        text.push_str(&format!(
+            "  vapor pressure from {low} K to {high} K: {:?}  ({})\n",
+            curve.equation(),
+            curve.source()
+        ));
+    }
+    for curve in substance.liquid_densities() {
+        let (low, high) = curve.range_k();
+        text.push_str(&format!(
+            "  liquid density from {low} K to {high} K: {:?}  ({})\n",
+            curve.equation(),
+            curve.source()
+        ));
+    }
+    Ok(text)
+}
+
+fn slips(library: &Library) -> String {
+    let mut text = String::new();
+    for model in ActivityModel::ALL {
+        let Some(unifac) = library.unifac(model) else {
+            continue;
+        };
+        for slip in unifac.tables().slips() {
+            text.push_str(&format!("{}: {slip:?}\n", model.id()));
+        }
+    }
+    if text.is_empty() {
+        text.push_str("no suspected slips are recorded\n");
+    }
+    text
+}

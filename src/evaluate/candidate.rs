@@ -1,0 +1,504 @@
+//! One candidate evaluated by a plan.
+
+use super::component::VaporCurve;
+use super::figure::FigureKind;
+use super::plan::{Plan, PlannedFigure, PlannedModel};
+use super::profile::{Known, Profile, Profiler, properties};
+use super::solution::{BOILING_RANGE_K, with_liquid};
+use crate::chem::SmilesError;
+use crate::mixture::{Component, Unifac, Vapor, relative_volatility};
+use crate::pure::Estimates;
+use crate::quantity::{
+    Absent, Dimension, Estimate, Flag, Flags, Outcome, REFERENCE_TEMPERATURE_K, Status,
+};
+
+/// Solvent-free mole fractions of the first key at which the relative
+/// volatility beside the solvent is looked at.
+const SOLVENT_FREE_POINTS: [f64; 11] = [0.01, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.99];
+
+/// What a plan makes of a candidate.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Verdict {
+    /// Every must is met.
+    Qualified {
+        /// Weighted geometric mean of the desirabilities of what counts, 0 to 1.
+        score: f64,
+        /// Whether every figure that counts has a value.
+        complete: bool,
+    },
+    /// A must is missed.
+    Missed {
+        /// Position in [`Plan::labels`].
+        label: usize,
+        /// The value, in SI, and what it measures.
+        value: f64,
+        /// Its dimension.
+        dimension: Dimension,
+    },
+    /// A must cannot be judged.
+    NotAssessable {
+        /// Position in [`Plan::labels`].
+        label: usize,
+        /// Why not.
+        reason: Absent,
+    },
+}
+
+/// Memory for evaluating candidates, one per thread.
+pub struct Scratch {
+    profiler: Profiler,
+    /// The last candidate.
+    pub profile: Profile,
+    /// Its figures, in the order of [`Plan::figures`].
+    pub figures: Vec<Outcome>,
+    /// Its properties at each temperature of the plan.
+    estimates: Vec<Estimates>,
+    dilute: Vec<Dilute>,
+}
+
+impl Default for Scratch {
+    fn default() -> Self {
+        Self::new()
+    }
+}
+
+impl Scratch {
+    /// Empty memory.
+    pub fn new() -> Self {
+        Self {
+            profiler: Profiler::new(),
+            profile: Profile::default(),
+            figures: Vec::new(),
+            estimates: Vec::new(),
+            dilute: Vec::new(),
+        }
+    }
+
+    /// A reason for absence in the last candidate, with the words for an
+    /// uncovered part filled in.
+    pub fn explained(&mut self, plan: &Plan, absent: &Absent) -> Absent {
+        self.profiler
+            .explained(&plan.library, &self.profile, absent)
+    }
+}
+
+/// A candidate at infinite dilution with the keys, by one model.
+struct Dilute {
+    /// The candidate as the model sees it.
+    component: Result<Component, Absent>,
+    /// ln γ∞ of the keys in the candidate.
+    keys: [Result<f64, Absent>; 2],
+}
+
+impl Plan {
+    /// Evaluates a candidate; its figures and keys are left in `scratch`.
+    ///
+    /// # Errors
+    ///
+    /// The line is no molecule that Groupsmith takes.
+    pub fn evaluate(&self, scratch: &mut Scratch, smiles: &str) -> Result<Verdict, SmilesError> {
+        scratch
+            .profiler
+            .profile_into(&self.library, smiles, &mut scratch.profile)?;
+        let Scratch {
+            profile,
+            figures,
+            estimates,
+            dilute,
+            ..
+        } = scratch;
+        let known = self
+            .library
+            .known(&profile.keys)
+            .filter(|_| self.use_measured);
+        estimates.clear();
+        estimates.extend(
+            self.temperatures
+                .iter()
+                .map(|&t| properties(&self.library, profile, known, t)),
+        );
+        dilute.clear();
+        dilute.extend(self.models.iter().map(|model| self.dilute(model, profile)));
+        figures.clear();
+        for figure in &self.figures {
+            let outcome = self.figure(figure, profile, known, estimates, dilute);
+            figures.push(outcome);
+        }
+        Ok(self.verdict(profile, figures))
+    }
+
+    fn dilute(&self, model: &PlannedModel, profile: &Profile) -> Dilute {
+        let needless = || Absent::Because("the mixture has no keys".into());
+        let Some((unifac, set)) = &model.unifac else {
+            return Dilute {
+                component: Err(needless()),
+                keys: [Ok(0.0), Ok(0.0)],
+            };
+        };
+        let component = super::solution::record(&self.library, unifac, *set, profile);
+        let keys = match (&component, self.keys) {
+            (_, None) => [Err(needless()), Err(needless())],
+            (Err(reason), _) => [Err(reason.clone()), Err(reason.clone())],
+            (Ok(component), Some(keys)) => {
+                let mut together = [0.0; 2];
+                let quick = model
+                    .keys
+                    .as_ref()
+                    .is_some_and(|keys| keys.ln_gamma_inf(component, &mut together).is_ok());
+                if quick {
+                    together.map(Ok)
+                } else {
+                    keys.map(|key| model.ln_gamma_inf_of(key, component))
+                }
+            }
+        };
+        Dilute { component, keys }
+    }
+
+    fn figure(
+        &self,
+        figure: &PlannedFigure,
+        profile: &Profile,
+        known: Option<Known<'_>>,
+        estimates: &[Estimates],
+        dilute: &[Dilute],
+    ) -> Outcome {
+        if let FigureKind::Property(property) = figure.kind {
+            return estimates[figure.temperature][property as usize].clone();
+        }
+        let model = &self.models[figure.model];
+        let of_candidate = &dilute[figure.model];
+        let temperature_k = self.temperature_k.unwrap_or(REFERENCE_TEMPERATURE_K);
+        let calculated = |value: f64| Estimate::new(value, model.model.id()).at(temperature_k);
+        let [first, second] = &of_candidate.keys;
+        let of_keys = |key: usize| [first, second][key].as_ref().map_err(Absent::clone);
+        let of_component = |component: Option<usize>| -> Result<f64, Absent> {
+            let selected = component.or(self.keys.map(|keys| keys[1]));
+            let Some(selected) = selected else {
+                return Err(Absent::Because("the mixture has no keys".into()));
+            };
+            if let Some(key) = self
+                .keys
+                .and_then(|keys| keys.iter().position(|&k| k == selected))
+            {
+                return of_keys(key).copied();
+            }
+            if model.unifac.is_none() {
+                return Ok(0.0);
+            }
+            let candidate = of_candidate.component.as_ref().map_err(Absent::clone)?;
+            model.ln_gamma_inf_of(selected, candidate)
+        };
+        let value = match figure.kind {
+            FigureKind::Property(_) => unreachable!("answered above"),
+            FigureKind::GammaInfinityOfKey(key) => of_keys(key)?.exp(),
+            FigureKind::GammaInfinityOfComponent => of_component(figure.component)?.exp(),
+            FigureKind::GammaInfinityOfCandidate => {
+                if model.unifac.is_none() {
+                    1.0
+                } else {
+                    let candidate = of_candidate.component.as_ref().map_err(Absent::clone)?;
+                    model.ln_gamma_inf_in_host(candidate)?.exp()
+                }
+            }
+            FigureKind::Selectivity => (of_keys(0)? - of_keys(1)?).exp(),
+            FigureKind::RelativeVolatility | FigureKind::SeparationFactor => {
+                let selectivity = (of_keys(0)? - of_keys(1)?).exp();
+                let ratio = self.key_pressure_ratio.as_ref().map_err(Absent::clone)?;
+                let alpha = selectivity * ratio;
+                let value = if figure.kind == FigureKind::SeparationFactor {
+                    alpha.max(1.0 / alpha)
+                } else {
+                    alpha
+                };
+                return finite(calculated(value).flagged(self.vapor_flags(temperature_k)));
+            }
+            FigureKind::CapacityByMole => (-of_component(figure.component)?).exp(),
+            FigureKind::CapacityByMass => {
+                let selected = figure
+                    .component
+                    .or(self.keys.map(|keys| keys[1]))
+                    .unwrap_or(0);
+                let of_key = self.components[selected]
+                    .profile
+                    .facts
+                    .molar_mass_kg_per_mol;
+                (-of_component(figure.component)?).exp() * of_key
+                    / profile.facts.molar_mass_kg_per_mol
+            }
+            FigureKind::RelativeVolatilityWithSolvent => {
+                return self.with_solvent(model, of_candidate, profile, known, &estimates[0]);
+            }
+        };
+        finite(calculated(value))
+    }
+
+    /// Flags of figures that rest on the vapor pressures of the keys.
+    fn vapor_flags(&self, temperature_k: f64) -> Flags {
+        let Some(keys) = self.keys else {
+            return Flags::NONE;
+        };
+        keys.iter().fold(Flags::NONE, |flags, &key| {
+            let key = &self.components[key];
+            let flags = flags.union(key.vapor.flags_at(temperature_k));
+            if key.profile.associates {
+                flags.with(Flag::VaporAssociationNotModelled)
+            } else {
+                flags
+            }
+        })
+    }
+
+    /// The least favorable relative volatility of the keys beside the candidate.
+    fn with_solvent(
+        &self,
+        model: &PlannedModel,
+        dilute: &Dilute,
+        profile: &Profile,
+        known: Option<Known<'_>>,
+        estimates: &Estimates,
+    ) -> Outcome {
+        let because = |text: &str| Absent::Because(text.into());
+        let keys = self
+            .keys
+            .ok_or_else(|| because("the mixture has no keys"))?;
+        let pressure_pa = self
+            .brief
+            .mixture
+            .as_ref()
+            .and_then(|mixture| mixture.pressure_pa.as_ref())
+            .ok_or_else(|| because("the mixture states no pressure"))?
+            .value;
+        let ratio = self
+            .solvent_to_feed(profile.facts.molar_mass_kg_per_mol)
+            .ok_or_else(|| because("the mixture states no solvent_to_feed"))?;
+        // Without measured vapor pressures of the keys the figure is noise.
+        self.key_pressure_ratio.as_ref().map_err(Absent::clone)?;
+        let curve = match known.and_then(|known| known.substance.vapor_pressure()) {
+            Some(curve) => VaporCurve::Measured(curve.clone()),
+            None => VaporCurve::estimated(&self.library, estimates)?,
+        };
+        let [first, second] = keys.map(|key| &self.components[key]);
+        let pressures = |component: usize, temperature_k: f64| match component {
+            0 => first.vapor.pressure_pa(temperature_k),
+            1 => second.vapor.pressure_pa(temperature_k),
+            _ => curve.pressure_pa(temperature_k),
+        };
+        let vapor = Vapor {
+            pressures: &pressures,
+            associates: &[
+                first.profile.associates,
+                second.profile.associates,
+                profile.associates,
+            ],
+            range_k: BOILING_RANGE_K,
+        };
+        let guess_k = self.temperature_k.unwrap_or(350.0);
+        let components = model.ternary(keys, dilute.component.as_ref())?;
+        let points = with_liquid(
+            components
+                .as_ref()
+                .map(|(unifac, records)| (*unifac, &records[..])),
+            3,
+            guess_k,
+            |liquid| {
+                relative_volatility(
+                    liquid,
+                    ratio,
+                    &SOLVENT_FREE_POINTS,
+                    pressure_pa,
+                    vapor,
+                    guess_k,
+                )
+            },
+        )?;
+        let least = points
+            .iter()
+            .map(|point| point.alpha)
+            .fold(f64::INFINITY, f64::min);
+        let most = points.iter().map(|point| point.alpha).fold(0.0, f64::max);
+        let flags = points
+            .iter()
+            .fold(Flags::NONE, |flags, point| flags.union(point.flags));
+        let flags = if curve.is_measured() {
+            flags
+        } else {
+            flags.with(Flag::RestsOnEstimate)
+        };
+        finite(Estimate::new(least.max(1.0 / most), model.model.id()).flagged(flags))
+    }
+
+    fn verdict(&self, profile: &Profile, figures: &[Outcome]) -> Verdict {
+        let mut missed = None;
+        for (label, limit) in self.limits.iter().enumerate() {
+            match limit.check(&self.library, profile) {
+                Err(reason) => return Verdict::NotAssessable { label, reason },
+                Ok(None) => {}
+                Ok(Some((value, dimension))) => {
+                    missed.get_or_insert(Verdict::Missed {
+                        label,
+                        value,
+                        dimension,
+                    });
+                }
+            }
+        }
+        let (mut sum, mut weights, mut complete) = (0.0, 0.0, true);
+        for (position, planned) in self.targets.iter().enumerate() {
+            let target = &planned.target;
+            let label = self.limits.len() + position;
+            match &figures[planned.figure] {
+                Err(reason) if target.must => {
+                    return Verdict::NotAssessable {
+                        label,
+                        reason: reason.clone(),
+                    };
+                }
+                Err(_) => complete &= !target.counts,
+                Ok(found) => {
+                    if target.must && !target.want.is_met(found.value) {
+                        missed.get_or_insert(Verdict::Missed {
+                            label,
+                            value: found.value,
+                            dimension: target.dimension,
+                        });
+                    }
+                    if target.counts {
+                        sum += target.weight * target.want.desirability(found.value).ln();
+                        weights += target.weight;
+                    }
+                }
+            }
+        }
+        missed.unwrap_or_else(|| {
+            let score = if weights > 0.0 {
+                (sum / weights).exp()
+            } else {
+                1.0
+            };
+            Verdict::Qualified { score, complete }
+        })
+    }
+
+    /// What a reader of the ranking has to know of a candidate: gaps, what was
+    /// measured, flags of the figures of targets, which key goes overhead.
+    pub fn remarks(&self, scratch: &mut Scratch) -> String {
+        let mut remarks = String::new();
+        let mut add = |text: &str| {
+            if !remarks.is_empty() {
+                remarks.push_str("; ");
+            }
+            remarks.push_str(text);
+        };
+        let mut told: Vec<usize> = Vec::new();
+        for target in &self.targets {
+            if told.contains(&target.figure) {
+                continue;
+            }
+            told.push(target.figure);
+            let name = &self.figures[target.figure].name;
+            match &scratch.figures[target.figure] {
+                Err(reason) => {
+                    let reason =
+                        scratch
+                            .profiler
+                            .explained(&self.library, &scratch.profile, reason);
+                    add(&format!("no {name}: {reason}"));
+                }
+                Ok(found) => {
+                    if found.status == Status::Measured {
+                        add(&format!("{name} measured"));
+                    }
+                    for flag in found
+                        .flags
+                        .iter()
+                        .filter(|&flag| flag != Flag::RestsOnEstimate)
+                    {
+                        add(&format!("{name}: {}", flag.text()));
+                    }
+                }
+            }
+        }
+        if let Some(direction) = self.direction(&scratch.figures) {
+            add(&direction);
+        }
+        remarks
+    }
+
+    /// Which key goes overhead, and whether the selectivity works against the
+    /// volatility.
+    fn direction(&self, figures: &[Outcome]) -> Option<String> {
+        let keys = self.keys?;
+        let value = |kind: FigureKind| {
+            let at = self
+                .figures
+                .iter()
+                .position(|f| f.kind == kind && f.model == 0)?;
+            figures[at].as_ref().ok().map(|found| found.value)
+        };
+        let selectivity = value(FigureKind::Selectivity)?;
+        let alpha = value(FigureKind::RelativeVolatility)?;
+        let ratio = alpha / selectivity;
+        let [first, second] = keys.map(|key| &self.components[key].name);
+        let overhead = if alpha > 1.0 { first } else { second };
+        let against = (selectivity > 1.0) != (ratio > 1.0);
+        Some(if !against {
+            format!("{overhead} overhead")
+        } else if (alpha > 1.0) == (ratio > 1.0) {
+            format!("{overhead} overhead, though selectivity works against volatility")
+        } else {
+            format!("{overhead} overhead, selectivity having reversed the volatility")
+        })
+    }
+}
+
+/// A value that leaves the room is finite, or absent for that reason.
+fn finite(estimate: Estimate) -> Outcome {
+    if estimate.value.is_finite() {
+        Ok(estimate)
+    } else {
+        Err(Absent::OutsideDomain {
+            method: estimate.method,
+            what: "the value is too large for a number",
+        })
+    }
+}
+
+impl PlannedModel {
+    /// ln γ∞ of a component of the mixture in a candidate.
+    fn ln_gamma_inf_of(&self, component: usize, candidate: &Component) -> Result<f64, Absent> {
+        let record = self.each[component].as_ref().map_err(Absent::clone)?;
+        let mut value = [0.0];
+        record
+            .ln_gamma_inf(candidate, &mut value)
+            .map_err(|gap| record.groups().tables().gap_error(gap).absent())?;
+        Ok(value[0])
+    }
+
+    fn ln_gamma_inf_in_host(&self, candidate: &Component) -> Result<f64, Absent> {
+        let host = self.host.as_ref().map_err(Absent::clone)?;
+        let (unifac, _) = self
+            .unifac
+            .as_ref()
+            .expect("a host belongs to a UNIFAC model");
+        host.ln_gamma_inf(candidate)
+            .map_err(|gap| unifac.tables().gap_error(gap).absent())
+    }
+
+    /// The two keys and a candidate as the model sees them; `None` for the ideal mixture.
+    fn ternary(
+        &self,
+        keys: [usize; 2],
+        candidate: Result<&Component, &Absent>,
+    ) -> Result<Option<(&Unifac, [Component; 3])>, Absent> {
+        let Some((unifac, _)) = &self.unifac else {
+            return Ok(None);
+        };
+        let record = |key: usize| self.components[key].clone();
+        let candidate = candidate.map_err(Absent::clone)?.clone();
+        Ok(Some((
+            unifac,
+            [record(keys[0])?, record(keys[1])?, candidate],
+        )))
+    }
+}

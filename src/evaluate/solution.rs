@@ -1,0 +1,584 @@
+//! The user's own mixture: activity and what follows from it.
+
+use super::Library;
+use super::component::MixtureComponent;
+use super::profile::Profile;
+use crate::brief::Basis;
+use crate::groups::SetId;
+use crate::mixture::{
+    ActivityModel, Azeotrope, AzeotropeKind, BubblePoint, Component, Condition, Excess, Extremum,
+    IdealState, Liquid, MassFractions, MixtureError, MoleFractions, Unifac, Vapor, VolumeFractions,
+    azeotropes, bubble_pressure, bubble_temperature, liquid_phases,
+};
+use crate::quantity::{Absent, Flag, Flags};
+
+/// Temperatures between which boiling points are sought, K.
+pub(super) const BOILING_RANGE_K: (f64, f64) = (120.0, 900.0);
+
+/// A molecule as a UNIFAC model sees it.
+pub(super) fn record(
+    library: &Library,
+    unifac: &Unifac,
+    set: SetId,
+    profile: &Profile,
+) -> Result<Component, Absent> {
+    let counts = profile.complete_counts(library, set)?;
+    unifac.component(counts).map_err(|error| error.absent())
+}
+
+/// Fractions of any basis as mole fractions; volumes are those of the pure
+/// liquids at the temperature.
+///
+/// # Errors
+///
+/// A molar volume that is needed and absent, or fractions that are none.
+pub fn mole_fractions(
+    library: &Library,
+    components: &[MixtureComponent],
+    fractions: &[f64],
+    basis: Basis,
+    temperature_k: f64,
+) -> Result<Vec<f64>, Absent> {
+    let absent = |error: MixtureError| error.absent();
+    let values = fractions.to_vec();
+    let x = match basis {
+        Basis::Mole => MoleFractions::new(values).map_err(absent)?,
+        Basis::Mass => {
+            let masses = molar_masses(components);
+            let w = MassFractions::new(values).map_err(absent)?;
+            MoleFractions::from_mass(&w, &masses).map_err(absent)?
+        }
+        Basis::Volume => {
+            let volumes = molar_volumes(library, components, temperature_k)?.0;
+            let phi = VolumeFractions::new(values).map_err(absent)?;
+            MoleFractions::from_volume(&phi, &volumes).map_err(absent)?
+        }
+    };
+    Ok(x.as_slice().to_vec())
+}
+
+fn molar_masses(components: &[MixtureComponent]) -> Vec<f64> {
+    components
+        .iter()
+        .map(|component| component.profile.facts.molar_mass_kg_per_mol)
+        .collect()
+}
+
+fn molar_volumes(
+    library: &Library,
+    components: &[MixtureComponent],
+    temperature_k: f64,
+) -> Result<(Vec<f64>, Flags), Absent> {
+    let mut flags = Flags::NONE;
+    let mut volumes = Vec::with_capacity(components.len());
+    for component in components {
+        let (volume, more) = component
+            .molar_volume_m3_per_mol(library, temperature_k)
+            .map_err(|reason| {
+                Absent::Because(format!("density of {}: {reason}", component.name).into())
+            })?;
+        volumes.push(volume);
+        flags = flags.union(more);
+    }
+    Ok((volumes, flags))
+}
+
+/// Does something with the liquid of a model; `None` for the model is the
+/// ideal mixture of `count` components.
+pub(super) fn with_liquid<R>(
+    model: Option<(&Unifac, &[Component])>,
+    count: usize,
+    temperature_k: f64,
+    work: impl FnOnce(&mut dyn Liquid) -> Result<R, MixtureError>,
+) -> Result<R, Absent> {
+    let done = match model {
+        None => IdealState::new(count, temperature_k).and_then(|mut liquid| work(&mut liquid)),
+        Some((unifac, components)) => unifac.mixture(components).and_then(|mixture| {
+            let mut state = mixture.state(temperature_k)?;
+            work(&mut state)
+        }),
+    };
+    done.map_err(|error| error.absent())
+}
+
+/// The components of a mixture as a model sees them; `None` for the ideal mixture.
+fn records(
+    library: &Library,
+    components: &[MixtureComponent],
+    model: ActivityModel,
+) -> Result<Option<Vec<Component>>, Absent> {
+    let (Some(unifac), Some(set)) = (
+        library.unifac(model),
+        model.group_set().and_then(SetId::from_id),
+    ) else {
+        return Ok(None);
+    };
+    let all = components.iter().map(|component| {
+        record(library, unifac, set, &component.profile).map_err(|reason| match reason {
+            Absent::NotCovered { .. } => {
+                let mut profiler = super::Profiler::new();
+                let what = profiler.gaps(library, &component.profile, set);
+                Absent::NotCovered {
+                    set: set.id(),
+                    what: format!("{}: {what}", component.name).into(),
+                }
+            }
+            other => other,
+        })
+    });
+    all.collect::<Result<_, _>>().map(Some)
+}
+
+/// Bubble temperature of a mixture by a model.
+pub(super) fn bubble_temperature_k(
+    library: &Library,
+    components: &[MixtureComponent],
+    model: ActivityModel,
+    x: &[f64],
+    pressure_pa: f64,
+) -> Result<f64, Absent> {
+    let records = records(library, components, model)?;
+    let pressures = |at: usize, t: f64| named_pressure(components, at, t);
+    let associates = associates(components);
+    let vapor = Vapor {
+        pressures: &pressures,
+        associates: &associates,
+        range_k: BOILING_RANGE_K,
+    };
+    let guess_k = boiling_guess_k(library, components, x);
+    with_liquid(
+        records
+            .as_deref()
+            .zip(library.unifac(model))
+            .map(|(records, unifac)| (unifac, records)),
+        components.len(),
+        guess_k,
+        |liquid| bubble_temperature(liquid, x, pressure_pa, vapor, guess_k),
+    )
+    .map(|point| point.temperature_k)
+}
+
+fn named_pressure(
+    components: &[MixtureComponent],
+    at: usize,
+    temperature_k: f64,
+) -> Result<f64, Absent> {
+    let component = &components[at];
+    component
+        .vapor
+        .pressure_pa(temperature_k)
+        .map_err(|reason| {
+            Absent::Because(format!("vapor pressure of {}: {reason}", component.name).into())
+        })
+}
+
+fn associates(components: &[MixtureComponent]) -> Vec<bool> {
+    components
+        .iter()
+        .map(|component| component.profile.associates)
+        .collect()
+}
+
+fn boiling_guess_k(library: &Library, components: &[MixtureComponent], x: &[f64]) -> f64 {
+    let (mut sum, mut weights) = (0.0, 0.0);
+    for (component, x) in components.iter().zip(x) {
+        if let Some(boiling_k) = component.boiling_guess_k(library) {
+            sum += x * boiling_k;
+            weights += x;
+        }
+    }
+    if weights > 0.0 { sum / weights } else { 350.0 }
+}
+
+/// The state at which a mixture is asked about.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct StatedState {
+    /// Temperature in K; where it is absent, the bubble point at the pressure.
+    pub temperature_k: Option<f64>,
+    /// Pressure in Pa.
+    pub pressure_pa: Option<f64>,
+}
+
+/// One quantity of a mixture, or of a component in it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct MixtureFigure {
+    /// Name of the quantity.
+    pub quantity: &'static str,
+    /// Component from 0; `None` for the whole.
+    pub component: Option<usize>,
+    /// SI unit; empty for a bare number.
+    pub unit: &'static str,
+    /// The model.
+    pub model: ActivityModel,
+    /// The value, nothing where nothing is the answer (no azeotrope), or why there is none.
+    pub value: Result<Option<f64>, Absent>,
+    /// What the reader has to know.
+    pub remark: String,
+}
+
+/// Everything about one mixture by one model: the order of the contract.
+///
+/// `x` are mole fractions, one for each component, adding up to 1.
+pub fn describe_mixture(
+    library: &Library,
+    components: &[MixtureComponent],
+    x: &[f64],
+    state: StatedState,
+    model: ActivityModel,
+) -> Vec<MixtureFigure> {
+    let mut describer = Describer {
+        library,
+        components,
+        x,
+        model,
+        records: records(library, components, model),
+        figures: Vec::new(),
+    };
+    describer.all(state);
+    describer.figures
+}
+
+struct Describer<'a> {
+    library: &'a Library,
+    components: &'a [MixtureComponent],
+    x: &'a [f64],
+    model: ActivityModel,
+    records: Result<Option<Vec<Component>>, Absent>,
+    figures: Vec<MixtureFigure>,
+}
+
+impl Describer<'_> {
+    fn all(&mut self, state: StatedState) {
+        let guess_k = boiling_guess_k(self.library, self.components, self.x);
+        let bubble_at_pressure = state.pressure_pa.map(|pressure_pa| {
+            self.at(guess_k, |liquid, x, vapor| {
+                bubble_temperature(liquid, x, pressure_pa, vapor, guess_k)
+            })
+        });
+        let temperature_k = match (state.temperature_k, &bubble_at_pressure) {
+            (Some(stated), _) => Ok(stated),
+            (None, Some(Ok(point))) => Ok(point.temperature_k),
+            (None, Some(Err(reason))) => Err(reason.clone()),
+            (None, None) => Err(Absent::Because(
+                "neither temperature nor pressure is stated".into(),
+            )),
+        };
+        self.activity(&temperature_k);
+        self.excess(&temperature_k);
+        self.volume(&temperature_k);
+        self.bubble(state, bubble_at_pressure);
+        self.azeotrope(state, guess_k);
+        self.phases(&temperature_k);
+    }
+
+    /// Runs something on the liquid at a temperature.
+    fn at<R>(
+        &self,
+        temperature_k: f64,
+        work: impl FnOnce(&mut dyn Liquid, &[f64], Vapor<'_>) -> Result<R, MixtureError>,
+    ) -> Result<R, Absent> {
+        let records = self.records.as_ref().map_err(Absent::clone)?;
+        let model = records.as_deref().zip(self.library.unifac(self.model));
+        let pressures = |at: usize, t: f64| named_pressure(self.components, at, t);
+        let associates = associates(self.components);
+        let vapor = Vapor {
+            pressures: &pressures,
+            associates: &associates,
+            range_k: BOILING_RANGE_K,
+        };
+        with_liquid(
+            model.map(|(records, unifac)| (unifac, records)),
+            self.components.len(),
+            temperature_k,
+            |liquid| work(liquid, self.x, vapor),
+        )
+    }
+
+    fn put(
+        &mut self,
+        quantity: &'static str,
+        component: Option<usize>,
+        unit: &'static str,
+        value: Result<Option<f64>, Absent>,
+        remark: impl Into<String>,
+    ) {
+        let value = match value {
+            Ok(Some(value)) if !value.is_finite() => Err(Absent::OutsideDomain {
+                method: self.model.id(),
+                what: "the value is too large for a number",
+            }),
+            other => other,
+        };
+        let model = self.model;
+        let remark = remark.into();
+        self.figures.push(MixtureFigure {
+            quantity,
+            component,
+            unit,
+            model,
+            value,
+            remark,
+        });
+    }
+
+    fn activity(&mut self, temperature_k: &Result<f64, Absent>) {
+        let n = self.components.len();
+        let ln_gamma = temperature_k.clone().and_then(|t| {
+            self.at(t, |liquid, x, _| {
+                let mut out = vec![0.0; n];
+                liquid.ln_gamma(x, &mut out).map(|()| out)
+            })
+        });
+        let values = |of: &dyn Fn(usize, f64) -> f64| -> Vec<Result<Option<f64>, Absent>> {
+            (0..n)
+                .map(|i| {
+                    ln_gamma
+                        .as_ref()
+                        .map(|all| Some(of(i, all[i])))
+                        .map_err(Absent::clone)
+                })
+                .collect()
+        };
+        let x = self.x;
+        let columns = [
+            ("ln_activity_coefficient", values(&|_, ln| ln)),
+            ("activity_coefficient", values(&|_, ln| ln.exp())),
+            ("activity", values(&|i, ln| x[i] * ln.exp())),
+        ];
+        for (quantity, values) in columns {
+            for (component, value) in values.into_iter().enumerate() {
+                self.put(quantity, Some(component), "", value, "");
+            }
+        }
+    }
+
+    fn excess(&mut self, temperature_k: &Result<f64, Absent>) {
+        let excess = temperature_k
+            .clone()
+            .and_then(|t| self.at(t, |liquid, x, _| Excess::of(liquid, x)));
+        let value = |of: fn(&Excess) -> f64| {
+            excess
+                .as_ref()
+                .map(|all| Some(of(all)))
+                .map_err(Absent::clone)
+        };
+        let rows = [
+            (
+                "excess_gibbs_energy",
+                "J/mol",
+                value(|e| e.gibbs_j_per_mol),
+                "",
+            ),
+            (
+                "excess_enthalpy",
+                "J/mol",
+                value(|e| e.enthalpy_j_per_mol),
+                "",
+            ),
+            (
+                "excess_entropy",
+                "J/(mol K)",
+                value(|e| e.entropy_j_per_mol_k),
+                "",
+            ),
+            (
+                "excess_internal_energy",
+                "J/mol",
+                value(|e| e.enthalpy_j_per_mol),
+                "taken as the excess enthalpy: no excess volume is modelled",
+            ),
+        ];
+        for (quantity, unit, value, remark) in rows {
+            self.put(quantity, None, unit, value, remark);
+        }
+    }
+
+    fn volume(&mut self, temperature_k: &Result<f64, Absent>) {
+        let found = temperature_k
+            .clone()
+            .and_then(|t| molar_volumes(self.library, self.components, t));
+        let (volume, density, remark) = match found {
+            Ok((volumes, flags)) => {
+                let volume: f64 = self.x.iter().zip(&volumes).map(|(x, v)| x * v).sum();
+                let masses = molar_masses(self.components);
+                let mass: f64 = self.x.iter().zip(&masses).map(|(x, m)| x * m).sum();
+                let mut remark = String::from("volumes of the pure liquids add up");
+                if !flags.is_empty() {
+                    remark.push_str(&format!("; {flags}"));
+                }
+                (Ok(Some(volume)), Ok(Some(mass / volume)), remark)
+            }
+            Err(reason) => (Err(reason.clone()), Err(reason), String::new()),
+        };
+        self.put("molar_volume", None, "m3/mol", volume, remark.clone());
+        self.put("density", None, "kg/m3", density, remark);
+    }
+
+    fn bubble(&mut self, state: StatedState, at_pressure: Option<Result<BubblePoint, Absent>>) {
+        let at_temperature = state
+            .temperature_k
+            .map(|t| self.at(t, |liquid, x, vapor| bubble_pressure(liquid, x, vapor)));
+        if let Some(point) = &at_pressure {
+            let remark = self.point_remark(point);
+            let value = point
+                .as_ref()
+                .map(|p| Some(p.temperature_k))
+                .map_err(Absent::clone);
+            self.put("bubble_temperature", None, "K", value, remark);
+        }
+        if let Some(point) = &at_temperature {
+            let remark = self.point_remark(point);
+            let value = point
+                .as_ref()
+                .map(|p| Some(p.pressure_pa))
+                .map_err(Absent::clone);
+            self.put("bubble_pressure", None, "Pa", value, remark);
+        }
+        // The vapor belongs to the stated temperature where there is one.
+        if let Some(point) = at_temperature.or(at_pressure) {
+            let remark = self.point_remark(&point);
+            for component in 0..self.components.len() {
+                let value = point
+                    .as_ref()
+                    .map(|p| Some(p.y[component]))
+                    .map_err(Absent::clone);
+                self.put(
+                    "vapor_mole_fraction",
+                    Some(component),
+                    "",
+                    value,
+                    remark.clone(),
+                );
+            }
+        }
+    }
+
+    fn point_remark(&self, point: &Result<BubblePoint, Absent>) -> String {
+        match point {
+            Ok(point) => self.vapor_remark(point.temperature_k, point.flags),
+            Err(_) => String::new(),
+        }
+    }
+
+    /// What a reader of a vapor-side figure has to know.
+    fn vapor_remark(&self, temperature_k: f64, flags: Flags) -> String {
+        let mut parts: Vec<String> = Vec::new();
+        for component in self.components {
+            let flags = component.vapor.flags_at(temperature_k);
+            for flag in flags.iter() {
+                let text = match flag {
+                    Flag::RestsOnEstimate => "estimated",
+                    other => other.text(),
+                };
+                parts.push(format!("vapor pressure of {} {text}", component.name));
+            }
+        }
+        parts.extend(flags.iter().map(|flag| flag.text().to_owned()));
+        parts.join("; ")
+    }
+
+    fn azeotrope(&mut self, state: StatedState, guess_k: f64) {
+        if self.components.len() != 2 {
+            return;
+        }
+        let condition = match (state.pressure_pa, state.temperature_k) {
+            (Some(pressure_pa), _) => Condition::Pressure(pressure_pa),
+            (None, Some(temperature_k)) => Condition::Temperature(temperature_k),
+            (None, None) => return,
+        };
+        let start_k = state.temperature_k.unwrap_or(guess_k);
+        let found = self.at(start_k, |liquid, _, vapor| {
+            azeotropes(liquid, condition, vapor, guess_k)
+        });
+        match found {
+            Err(reason) => {
+                self.put("azeotrope_temperature", None, "K", Err(reason.clone()), "");
+                for component in 0..2 {
+                    let value = Err(reason.clone());
+                    self.put("azeotrope_mole_fraction", Some(component), "", value, "");
+                }
+            }
+            Ok(all) if all.is_empty() => {
+                let at = match condition {
+                    Condition::Pressure(pressure_pa) => format!("at {pressure_pa} Pa"),
+                    Condition::Temperature(temperature_k) => format!("at {temperature_k} K"),
+                };
+                let remark = format!("no azeotrope {at} by this model");
+                self.put("azeotrope_temperature", None, "K", Ok(None), remark.clone());
+                for component in 0..2 {
+                    self.put(
+                        "azeotrope_mole_fraction",
+                        Some(component),
+                        "",
+                        Ok(None),
+                        remark.clone(),
+                    );
+                }
+            }
+            Ok(all) => {
+                for azeotrope in &all {
+                    let remark = self.azeotrope_remark(azeotrope);
+                    let temperature = Ok(Some(azeotrope.temperature_k));
+                    self.put(
+                        "azeotrope_temperature",
+                        None,
+                        "K",
+                        temperature,
+                        remark.clone(),
+                    );
+                    for (component, y) in [azeotrope.y1, 1.0 - azeotrope.y1].into_iter().enumerate()
+                    {
+                        let quantity = "azeotrope_mole_fraction";
+                        self.put(quantity, Some(component), "", Ok(Some(y)), remark.clone());
+                    }
+                }
+            }
+        }
+    }
+
+    fn azeotrope_remark(&self, azeotrope: &Azeotrope) -> String {
+        let mut remark = String::from(match azeotrope.extremum {
+            Extremum::MinimumBoiling => "minimum-boiling",
+            Extremum::MaximumBoiling => "maximum-boiling",
+        });
+        match &azeotrope.kind {
+            AzeotropeKind::Homogeneous => remark.push_str(", one liquid"),
+            AzeotropeKind::Heterogeneous { .. } => remark.push_str(", two liquids"),
+        }
+        let more = self.vapor_remark(azeotrope.temperature_k, azeotrope.flags);
+        if !more.is_empty() {
+            remark.push_str("; ");
+            remark.push_str(&more);
+        }
+        remark
+    }
+
+    fn phases(&mut self, temperature_k: &Result<f64, Absent>) {
+        let phases = temperature_k
+            .clone()
+            .and_then(|t| self.at(t, |liquid, x, _| liquid_phases(liquid, x)));
+        let (value, remark) = match phases {
+            Err(reason) => (Err(reason), String::new()),
+            Ok(phases) => {
+                let remark = if phases.len() > 1 {
+                    let liquids: Vec<_> = phases
+                        .iter()
+                        .map(|phase| {
+                            let x: Vec<_> = phase.x.iter().map(|x| format!("{x:.4}")).collect();
+                            format!(
+                                "{:.4} of the whole with x = {}",
+                                phase.fraction,
+                                x.join(" ")
+                            )
+                        })
+                        .collect();
+                    liquids.join("; ")
+                } else {
+                    String::new()
+                };
+                (Ok(Some(phases.len() as f64)), remark)
+            }
+        };
+        self.put("liquid_phases", None, "", value, remark);
+    }
+}

@@ -1,0 +1,578 @@
+//! A pool streamed through a plan: from lines to the files of the run.
+
+use std::collections::BinaryHeap;
+use std::io;
+use std::path::Path;
+use std::time::Instant;
+
+use rayon::prelude::*;
+use thiserror::Error;
+
+use super::identity::{Identities, Kinship, Relation, RelationLog, Relations, WrittenRelations};
+use super::ledger::{Entry, Finding, Ledger, WrittenLedger};
+use super::pool::{Batch, Pool, PoolError, PoolLine};
+use crate::evaluate::{Plan, Scratch, Verdict};
+use crate::quantity::unit::si_symbol;
+use crate::quantity::{Absent, Dimension, number, unit};
+use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedRow, RankedTable};
+use crate::run::{
+    Counts, Event, FileError, Fingerprint, InputRecord, Listener, NewFile, Outcome, RunRecord,
+    StopFlag,
+};
+
+/// Lines that are evaluated between two looks at the stop flag.
+const BATCH_LINES: usize = 4096;
+/// Lines that one task evaluates.
+const TASK_LINES: usize = 128;
+/// Stack of a worker: the longest SMILES is read by recursion along its chain.
+const WORKER_STACK: usize = 16 << 20;
+
+/// The files a screening leaves, the marker of a complete run last.
+pub const FILES: [&str; 3] = ["ranked.csv", "not_ranked.csv", RunRecord::FILE_NAME];
+
+/// Why a screening did not come to its end.
+#[derive(Debug, Error)]
+pub enum ScreenError {
+    /// The pool.
+    #[error(transparent)]
+    Pool(#[from] PoolError),
+    /// A file of the results.
+    #[error(transparent)]
+    File(#[from] FileError),
+    /// The worker threads could not be started.
+    #[error("the worker threads could not be started: {0}")]
+    Threads(String),
+}
+
+/// Where and how a screening runs.
+pub struct Screening<'a> {
+    /// The plan.
+    pub plan: &'a Plan,
+    /// Folder of the results; has to exist.
+    pub folder: &'a Path,
+    /// Worker threads; 0 for one each core.
+    pub threads: usize,
+    /// Raised by whoever wants the run to end early.
+    pub stop: &'a StopFlag,
+    /// Hears how it goes.
+    pub listener: &'a dyn Listener,
+}
+
+/// A candidate of the ranking.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Ranked {
+    /// Line of the pool.
+    pub line: u64,
+    /// Name as given.
+    pub name: String,
+    /// SMILES as given.
+    pub smiles: String,
+    /// Score.
+    pub score: f64,
+    /// Figures in SI, in the order of the plan.
+    pub figures: Vec<Option<f64>>,
+    /// Remarks.
+    pub notes: String,
+}
+
+/// How a screening came out.
+#[derive(Clone, Debug)]
+pub struct Screened {
+    /// The ranking, best first.
+    pub ranking: Vec<Ranked>,
+    /// How the lines came out.
+    pub counts: Counts,
+    /// Whether it was stopped before the end of the pool.
+    pub stopped: bool,
+    /// Form of the ranking.
+    pub table: RankedTable,
+}
+
+/// What a task hands back for its lines, in their order.
+struct Done {
+    records: Vec<u8>,
+    identities: Vec<(u64, u128, u128)>,
+    qualified: u64,
+}
+
+/// Place in the ranking, the best first; the order is total.
+#[derive(Clone, Debug)]
+struct Standing {
+    complete: bool,
+    score: f64,
+    key: String,
+    line: u64,
+}
+
+impl Ord for Standing {
+    fn cmp(&self, other: &Self) -> std::cmp::Ordering {
+        other
+            .complete
+            .cmp(&self.complete)
+            .then_with(|| other.score.total_cmp(&self.score))
+            .then_with(|| self.key.cmp(&other.key))
+            .then_with(|| self.line.cmp(&other.line))
+    }
+}
+
+impl PartialOrd for Standing {
+    fn partial_cmp(&self, other: &Self) -> Option<std::cmp::Ordering> {
+        Some(self.cmp(other))
+    }
+}
+
+impl PartialEq for Standing {
+    fn eq(&self, other: &Self) -> bool {
+        self.cmp(other).is_eq()
+    }
+}
+
+impl Eq for Standing {}
+
+impl Screening<'_> {
+    /// Reads the pool to its end and writes the files of the run; `record` says
+    /// what is run and is completed and put into place last.
+    ///
+    /// # Errors
+    ///
+    /// The pool cannot be read on, or a file cannot be written: then none of
+    /// the files is put into place.
+    pub fn run(&self, mut pool: Pool, mut record: RunRecord) -> Result<Screened, ScreenError> {
+        let begun = Instant::now();
+        let threads = rayon::ThreadPoolBuilder::new()
+            .num_threads(self.threads)
+            .stack_size(WORKER_STACK)
+            .build()
+            .map_err(|error| ScreenError::Threads(error.to_string()))?;
+        self.listener.hear(Event::Started {
+            unit: "lines",
+            input_bytes: pool.input_bytes(),
+            threads: threads.current_num_threads(),
+        });
+        let carried = pool.carried().to_vec();
+        let temporary = |error: io::Error| FileError::new(self.folder, error);
+        let mut ledger = Ledger::new(self.folder);
+        let mut identities = Identities::new(self.folder);
+        let mut input = Fingerprint::new();
+        let (mut lines, mut qualified, mut stopped) = (0, 0, false);
+
+        let mut batch = Batch::default();
+        let mut next = Batch::default();
+        pool.read_batch(&mut batch, BATCH_LINES)?;
+        while !batch.is_empty() {
+            if self.stop.is_raised() {
+                stopped = true;
+                break;
+            }
+            // The next lines are read while these are evaluated.
+            let (done, read) = threads.install(|| {
+                rayon::join(
+                    || self.evaluate(&batch),
+                    || pool.read_batch(&mut next, BATCH_LINES),
+                )
+            });
+            read?;
+            for done in done {
+                ledger.add(&done.records).map_err(temporary)?;
+                for (line, constitution, full) in done.identities {
+                    identities
+                        .push(line, constitution, full)
+                        .map_err(temporary)?;
+                }
+                qualified += done.qualified;
+            }
+            input = input.with(batch.text().as_bytes());
+            lines += batch.len() as u64;
+            self.listener.hear(Event::Progress {
+                done: lines,
+                input_bytes: pool.input_bytes_read(),
+                qualified,
+            });
+            std::mem::swap(&mut batch, &mut next);
+        }
+
+        let mut ledger = ledger.finish().map_err(temporary)?;
+        let mut relations = identities.relations().map_err(temporary)?;
+        let kept = self.keep(&mut ledger, &mut relations).map_err(temporary)?;
+        let figures = self.plan.figures.iter().map(|figure| FigureColumn {
+            name: figure.name.clone(),
+            dimension: figure.dimension,
+        });
+        let carried: Vec<&str> = carried.iter().map(String::as_str).collect();
+        let table = RankedTable::new(figures.collect(), &carried);
+        let (ranking, counts) = self.write(&mut ledger, kept, &table)?;
+
+        record.input = self.plan.brief.pool.as_ref().map(|pool| InputRecord {
+            file: pool.file.value.clone(),
+            fingerprint: input,
+        });
+        record.counts = counts.clone();
+        record.end(stopped);
+        let elapsed_s = begun.elapsed().as_secs_f64();
+        record.timing.elapsed_s = elapsed_s;
+        record.timing.threads = threads.current_num_threads();
+        record.timing.lines_per_s = if elapsed_s > 0.0 {
+            lines as f64 / elapsed_s
+        } else {
+            0.0
+        };
+        record.put_in_place(self.folder)?;
+        self.listener.hear(Event::Finished {
+            ending: record.ended,
+            counts: &counts,
+        });
+        Ok(Screened {
+            ranking,
+            counts,
+            stopped,
+            table,
+        })
+    }
+
+    fn evaluate(&self, batch: &Batch) -> Vec<Done> {
+        (0..batch.len().div_ceil(TASK_LINES))
+            .into_par_iter()
+            .map_init(Scratch::new, |scratch, task| {
+                let lines = task * TASK_LINES..batch.len().min((task + 1) * TASK_LINES);
+                let mut done = Done {
+                    records: Vec::new(),
+                    identities: Vec::new(),
+                    qualified: 0,
+                };
+                for index in lines {
+                    let line = batch.line(index);
+                    let entry = self.entry(scratch, line, &mut done);
+                    entry.write(&mut done.records);
+                }
+                done
+            })
+            .collect()
+    }
+
+    fn entry(&self, scratch: &mut Scratch, line: PoolLine<'_>, done: &mut Done) -> Entry {
+        let fell = |outcome, label: &str, reason: String| Finding::Fell {
+            outcome,
+            label: label.to_owned(),
+            value: None,
+            wanted: String::new(),
+            reason,
+        };
+        let (smiles, finding) = match line.smiles {
+            Err(fault) => {
+                let reason = format!("the line {fault}");
+                ("", fell(Outcome::Refused, fault.reason(), reason))
+            }
+            Ok(smiles) => match self.plan.evaluate(scratch, smiles) {
+                Err(error) => (
+                    smiles,
+                    fell(Outcome::Refused, error.reason(), error.to_string()),
+                ),
+                Ok(verdict) => {
+                    let keys = &scratch.profile.keys;
+                    done.identities
+                        .push((line.line, hash(&keys.constitution), hash(&keys.full)));
+                    let finding = self.finding(scratch, verdict);
+                    done.qualified += u64::from(matches!(finding, Finding::Qualified { .. }));
+                    (smiles, finding)
+                }
+            },
+        };
+        Entry {
+            line: line.line,
+            name: line.name.to_owned(),
+            smiles: smiles.to_owned(),
+            finding,
+            carried: line.carried().map(str::to_owned).collect(),
+        }
+    }
+
+    fn finding(&self, scratch: &mut Scratch, verdict: Verdict) -> Finding {
+        let label = |position: usize| {
+            self.plan
+                .labels()
+                .nth(position)
+                .expect("verdicts name labels of the plan")
+        };
+        match verdict {
+            Verdict::Qualified { score, complete } => Finding::Qualified {
+                score,
+                complete,
+                notes: self.plan.remarks(scratch),
+                key: scratch.profile.keys.full.clone(),
+                figures: scratch
+                    .figures
+                    .iter()
+                    .map(|figure| figure.as_ref().ok().map(|found| found.value))
+                    .collect(),
+            },
+            Verdict::Missed {
+                label: position,
+                value,
+                dimension,
+            } => {
+                let (name, wanted) = label(position);
+                Finding::Fell {
+                    outcome: Outcome::NotQualified,
+                    label: name.to_owned(),
+                    value: Some((value, dimension)),
+                    wanted: wanted.to_owned(),
+                    reason: format!("{name} is {}, wanted {wanted}", in_words(value, dimension)),
+                }
+            }
+            Verdict::NotAssessable {
+                label: position,
+                reason,
+            } => {
+                let (name, wanted) = label(position);
+                let reason: Absent = scratch.explained(self.plan, &reason);
+                Finding::Fell {
+                    outcome: Outcome::NotAssessable,
+                    label: name.to_owned(),
+                    value: None,
+                    wanted: wanted.to_owned(),
+                    reason: reason.to_string(),
+                }
+            }
+        }
+    }
+
+    /// The lines that stay in the ranking, best first.
+    fn keep(&self, ledger: &mut WrittenLedger, relations: &mut Relations) -> io::Result<Kept> {
+        let most = self.plan.brief.keep_best;
+        let mut heap: BinaryHeap<Standing> = BinaryHeap::new();
+        let mut related = RelationLog::new(self.folder);
+        ledger.for_each(|entry| {
+            let relation = relations.of(entry.line)?;
+            if let Some(relation) = &relation {
+                related.add(relation)?;
+            }
+            let duplicate = relation.is_some_and(|relation| relation.kinship == Kinship::Duplicate);
+            if let Finding::Qualified {
+                score,
+                complete,
+                key,
+                ..
+            } = entry.finding
+                && !duplicate
+            {
+                heap.push(Standing {
+                    complete,
+                    score,
+                    key,
+                    line: entry.line,
+                });
+                if heap.len() > most {
+                    heap.pop();
+                }
+            }
+            Ok(())
+        })?;
+        Ok(Kept {
+            standings: heap.into_sorted_vec(),
+            related: related.finish()?,
+        })
+    }
+
+    fn write(
+        &self,
+        ledger: &mut WrittenLedger,
+        kept: Kept,
+        table: &RankedTable,
+    ) -> Result<(Vec<Ranked>, Counts), FileError> {
+        let [ranked_name, not_ranked_name, _] = FILES;
+        let mut not_ranked = NewFile::begin(&self.folder.join(not_ranked_name))?;
+        let mut ranked = NewFile::begin(&self.folder.join(ranked_name))?;
+        let mut ranks: Vec<(u64, usize)> = kept
+            .standings
+            .iter()
+            .enumerate()
+            .map(|(rank, standing)| (standing.line, rank))
+            .collect();
+        ranks.sort_unstable();
+        let mut ranking: Vec<Option<(Ranked, Vec<String>)>> = vec![None; ranks.len()];
+        let mut counts = Counts::default();
+        let mut related = kept.related;
+        let mut out = Vec::new();
+        out.extend_from_slice(NotRankedRow::HEAD.as_bytes());
+        out.push(b'\n');
+        let mut failure = None;
+        let walked = ledger.for_each(|entry| {
+            let relation = related.of(entry.line)?;
+            let rank = ranks.binary_search_by_key(&entry.line, |rank| rank.0).ok();
+            let rank = rank.map(|at| ranks[at].1);
+            if let Some(place) = self.settle(entry, relation, rank, &mut counts, &mut out) {
+                let (rank, row) = place;
+                ranking[rank] = Some(row);
+            }
+            if out.len() > 1 << 16 {
+                if let Err(error) = not_ranked.add(&out) {
+                    failure = Some(error);
+                    return Err(io::Error::other("the file of lines that are not ranked"));
+                }
+                out.clear();
+            }
+            Ok(())
+        });
+        if let Some(error) = failure {
+            return Err(error);
+        }
+        walked.map_err(|error| FileError::new(self.folder, error))?;
+        not_ranked.add(&out)?;
+
+        out.clear();
+        table.write_head(&mut out);
+        let mut rows = Vec::with_capacity(ranking.len());
+        for (rank, row) in ranking.into_iter().enumerate() {
+            let (row, carried) = row.expect("every kept line is in the ledger");
+            let carried: Vec<&str> = carried.iter().map(String::as_str).collect();
+            table.write_row(&row.as_row(rank, &carried), &mut out);
+            rows.push(row);
+        }
+        ranked.add(&out)?;
+        not_ranked.put_in_place()?;
+        ranked.put_in_place()?;
+        Ok((rows, counts))
+    }
+
+    /// Counts an entry; a kept one comes back with its rank, any other is
+    /// appended to `out`.
+    fn settle(
+        &self,
+        entry: Entry,
+        relation: Option<Relation>,
+        rank: Option<usize>,
+        counts: &mut Counts,
+        out: &mut Vec<u8>,
+    ) -> Option<(usize, (Ranked, Vec<String>))> {
+        let not_ranked =
+            |outcome, figure: &str, value, wanted: &str, reason: &str, out: &mut Vec<u8>| {
+                NotRankedRow {
+                    line: entry.line,
+                    name: &entry.name,
+                    smiles: &entry.smiles,
+                    outcome,
+                    figure,
+                    value,
+                    wanted,
+                    reason,
+                }
+                .write_csv(out);
+            };
+        let mut stereoisomer = None;
+        match relation {
+            Some(Relation {
+                kinship: Kinship::Duplicate,
+                earlier,
+                ..
+            }) => {
+                counts.add(Outcome::Duplicate, "");
+                let reason = format!("the same substance as line {earlier}");
+                not_ranked(Outcome::Duplicate, "", None, "", &reason, out);
+                return None;
+            }
+            Some(Relation {
+                kinship: Kinship::Stereoisomer,
+                earlier,
+                ..
+            }) => {
+                stereoisomer = Some(format!("stereoisomer or isotopologue of line {earlier}"));
+            }
+            None => {}
+        }
+        match entry.finding {
+            Finding::Fell {
+                outcome,
+                ref label,
+                value,
+                ref wanted,
+                ref reason,
+            } => {
+                counts.add(outcome, label);
+                let figure = if outcome == Outcome::Refused {
+                    ""
+                } else {
+                    label
+                };
+                let reason = joined(reason, stereoisomer.as_deref());
+                not_ranked(outcome, figure, value, wanted, &reason, out);
+                None
+            }
+            Finding::Qualified { .. } if rank.is_none() => {
+                counts.add(Outcome::BelowKept, "");
+                let reason = format!(
+                    "qualified, but {} better ones are kept",
+                    self.plan.brief.keep_best
+                );
+                let reason = joined(&reason, stereoisomer.as_deref());
+                not_ranked(Outcome::BelowKept, "", None, "", &reason, out);
+                None
+            }
+            Finding::Qualified {
+                score,
+                complete,
+                figures,
+                notes,
+                ..
+            } => {
+                counts.add(Outcome::Ranked, "");
+                counts.ranked_incomplete += u64::from(!complete);
+                let notes = joined(&notes, stereoisomer.as_deref());
+                let (name, smiles) = (entry.name, entry.smiles);
+                let row = Ranked {
+                    line: entry.line,
+                    name,
+                    smiles,
+                    score,
+                    figures,
+                    notes,
+                };
+                rank.map(|rank| (rank, (row, entry.carried)))
+            }
+        }
+    }
+}
+
+impl Ranked {
+    /// The row of the ranking at a rank from 0.
+    pub fn as_row<'a>(&'a self, rank: usize, carried: &'a [&'a str]) -> RankedRow<'a> {
+        RankedRow {
+            rank: rank as u64 + 1,
+            name: &self.name,
+            smiles: &self.smiles,
+            score: Some(self.score),
+            figures: &self.figures,
+            line: self.line,
+            notes: &self.notes,
+            carried,
+        }
+    }
+}
+
+/// The ranking before its rows are read again, and the lines that are related
+/// to earlier ones.
+struct Kept {
+    standings: Vec<Standing>,
+    related: WrittenRelations,
+}
+
+fn joined(text: &str, more: Option<&str>) -> String {
+    match more {
+        Some(more) if text.is_empty() => more.to_owned(),
+        Some(more) => format!("{text}; {more}"),
+        None => text.to_owned(),
+    }
+}
+
+/// 128 bits of a key: two different keys of one pool practically never share them.
+fn hash(key: &str) -> u128 {
+    Fingerprint::of(key.as_bytes()).value()
+}
+
+/// A value with its unit, as tables show it.
+fn in_words(value: f64, dimension: Dimension) -> String {
+    let shown = number::short(unit::to_table(value, dimension));
+    match si_symbol(dimension) {
+        "" => shown,
+        symbol => format!("{shown} {symbol}"),
+    }
+}
