@@ -6,6 +6,7 @@
 mod brief;
 mod chem;
 mod data;
+mod groups;
 mod mixture;
 mod pure;
 mod quantity;
