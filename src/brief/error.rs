@@ -128,10 +128,12 @@ pub enum Cause {
         known: &'static [&'static str],
     },
     /// A value of another kind.
-    #[error("`{field}` is {found}, not {wanted}")]
+    #[error("{}`{field}` is {found}, not {wanted}", if *.is_entry { "an entry of " } else { "" })]
     Kind {
         /// The field.
         field: String,
+        /// Whether it is an entry of the field, which is a list.
+        is_entry: bool,
         /// What it is.
         found: &'static str,
         /// What it should be.
@@ -174,7 +176,7 @@ pub enum Cause {
         wanted: &'static str,
     },
     /// A word that is none of a short list.
-    #[error("`{field}` is `{word}`, which is none of its words")]
+    #[error("`{field}` is `{word}`, which is not a choice there")]
     Word {
         /// The field.
         field: String,

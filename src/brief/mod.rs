@@ -10,6 +10,8 @@
 //! [`Place`] for whoever binds the brief to tables and data. It computes no
 //! property; what figures there are comes in as a [`FigureCatalog`]. Its only
 //! file work is [`Brief::load`], which reads the brief itself.
+//!
+#![doc = include_str!("reference.md")]
 
 mod catalog;
 mod check;
@@ -31,3 +33,6 @@ pub use target::{Direction, Target, Want};
 pub use types::{
     Assembly, Basis, Brief, DEFAULT_KEEP_BEST, Job, LARGEST_KEEP_BEST, Mixture, Pool, SolventToFeed,
 };
+
+/// The fields of a brief as a page of Markdown: documentation and help text.
+pub const REFERENCE: &str = include_str!("reference.md");

@@ -347,7 +347,7 @@ impl<'a> Reader<'a> {
             keys: self.list(
                 section,
                 "keys",
-                "a list of components",
+                ["a list of components", "a component or its position"],
                 "keys = [\"ethyl acetate\", \"CCO\"]",
                 reference,
             ),
@@ -631,11 +631,17 @@ impl<'a> Reader<'a> {
         key: &str,
         example: &'static str,
     ) -> Field<Vec<f64>> {
-        let field = self.list(section, key, "a list of numbers", example, |value| {
-            value
-                .as_float()
-                .or_else(|| value.as_integer().map(|integer| integer as f64))
-        });
+        let field = self.list(
+            section,
+            key,
+            ["a list of numbers", "a number"],
+            example,
+            |value| {
+                value
+                    .as_float()
+                    .or_else(|| value.as_integer().map(|integer| integer as f64))
+            },
+        );
         match field {
             Field::Given(list) => {
                 Field::Given(list.map(|list| list.into_iter().map(|entry| entry.value).collect()))
@@ -664,9 +670,13 @@ impl<'a> Reader<'a> {
                 Field::Faulty => Field::Faulty,
             };
         }
-        let field = self.list(section, key, "a list of texts", example, |value| {
-            value.as_str().map(str::to_owned)
-        });
+        let field = self.list(
+            section,
+            key,
+            ["a list of texts", "a text in quotes"],
+            example,
+            |value| value.as_str().map(str::to_owned),
+        );
         if let Field::Given(list) = &field
             && let Some(blank) = list.value.iter().find(|text| text.value.trim().is_empty())
         {
@@ -680,7 +690,7 @@ impl<'a> Reader<'a> {
         &mut self,
         section: &Section<'_>,
         key: &str,
-        wanted: &'static str,
+        [wanted, wanted_entry]: [&'static str; 2],
         example: &'static str,
         read: impl Fn(&Value) -> Option<T>,
     ) -> Field<Vec<Located<T>>> {
@@ -688,6 +698,7 @@ impl<'a> Reader<'a> {
             return section.lacking(key);
         };
         let mut list = Vec::new();
+        // Of several faulty entries the first is told: they tend to be alike.
         let mut fault = None;
         match item.as_array() {
             None => fault = Some((place, kind(item))),
@@ -704,19 +715,14 @@ impl<'a> Reader<'a> {
         match fault {
             None => Field::Given(Located::new(list, place)),
             Some((at, found)) => {
-                let within = match item.is_array() {
-                    true => format!("an entry of {}{key}", section.prefix),
-                    false => format!("{}{key}", section.prefix),
-                };
+                let is_entry = item.is_array();
                 self.faults.push((
                     at,
                     Cause::Kind {
-                        field: within,
+                        field: format!("{}{key}", section.prefix),
+                        is_entry,
                         found,
-                        wanted: match item.is_array() {
-                            true => wanted.strip_prefix("a list of ").unwrap_or(wanted),
-                            false => wanted,
-                        },
+                        wanted: if is_entry { wanted_entry } else { wanted },
                         example,
                     },
                 ));
@@ -889,6 +895,7 @@ impl<'a> Reader<'a> {
             place,
             Cause::Kind {
                 field: format!("{}{key}", section.prefix),
+                is_entry: false,
                 found,
                 wanted,
                 example,
@@ -925,7 +932,7 @@ fn value_kind(value: &Value) -> &'static str {
         Value::String(_) => "a text",
         Value::Integer(_) => "a whole number",
         Value::Float(_) => "a decimal number",
-        Value::Boolean(_) => "true or false",
+        Value::Boolean(_) => "a truth value",
         Value::Datetime(_) => "a date or time",
         Value::Array(_) => "a list",
         Value::InlineTable(_) => "a table",

@@ -10,7 +10,7 @@ use super::target::Target;
 /// How many candidates are kept in the ranking unless the brief says otherwise.
 pub const DEFAULT_KEEP_BEST: usize = 1_000;
 
-/// The most candidates a brief may ask to keep.
+/// The most candidates a brief may ask to keep; messages spell it out.
 pub const LARGEST_KEEP_BEST: usize = 1_000_000;
 
 /// What the brief is read for; decides which of its parts have to be there.

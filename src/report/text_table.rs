@@ -31,6 +31,34 @@ impl TextColumn {
     }
 }
 
+impl TextColumn {
+    /// The head, broken at blanks where a number column may be narrower.
+    fn head_lines(&self, width: usize) -> Vec<String> {
+        let head = printable(&self.head);
+        if head.is_empty() {
+            return Vec::new();
+        }
+        if !self.is_number {
+            return vec![head];
+        }
+        let longest_word = head.split(' ').map(UnicodeWidthStr::width).max();
+        let width = width.max(longest_word.unwrap_or(0));
+        let mut lines = Vec::new();
+        let mut line = String::new();
+        for word in head.split(' ') {
+            if !line.is_empty() && line.width() + 1 + word.width() > width {
+                lines.push(std::mem::take(&mut line));
+            }
+            if !line.is_empty() {
+                line.push(' ');
+            }
+            line.push_str(word);
+        }
+        lines.push(line);
+        lines
+    }
+}
+
 /// Columns are not made narrower than this to fit a width.
 const NARROWEST: usize = 10;
 
@@ -76,7 +104,8 @@ impl TextTable {
 
     /// The table as lines of text, at most `width` cells wide where one is given.
     ///
-    /// To fit, columns of words are shortened, the widest first, and cut cells
+    /// Heads of number columns are broken at blanks where their numbers are
+    /// narrower. To fit, columns of words are shortened, the widest first, and cut cells
     /// end in `…`. Numbers are never shortened: a table of many numbers may stay
     /// wider than asked for. Columns without any content are left out.
     pub fn render(&self, width: Option<usize>) -> String {
@@ -84,28 +113,34 @@ impl TextTable {
             .filter(|&at| self.rows.iter().any(|row| !row[at].is_empty()))
             .collect();
         let cells: Vec<Vec<String>> = shown.iter().map(|&at| self.aligned(at)).collect();
-        let mut widths: Vec<usize> = shown
-            .iter()
-            .zip(&cells)
-            .map(|(&at, cells)| {
-                let column = &self.columns[at];
-                let widest = cells.iter().map(|cell| cell.width()).max().unwrap_or(0);
-                widest
-                    .max(printable(&column.head).width())
-                    .max(column.unit.width())
-            })
-            .collect();
+        let mut widths = Vec::with_capacity(shown.len());
+        let mut heads = Vec::with_capacity(shown.len());
+        for (&at, cells) in shown.iter().zip(&cells) {
+            let column = &self.columns[at];
+            let widest = cells.iter().map(|cell| cell.width()).max().unwrap_or(0);
+            let head = column.head_lines(widest.max(column.unit.width()));
+            let head_width = head.iter().map(|line| line.width()).max().unwrap_or(0);
+            widths.push(widest.max(column.unit.width()).max(head_width));
+            heads.push(head);
+        }
         if let Some(width) = width {
             self.shrink(&shown, &mut widths, width);
         }
 
         let mut text = String::new();
-        let heads = shown.iter().map(|&at| printable(&self.columns[at].head));
-        let units = shown.iter().map(|&at| self.columns[at].unit.clone());
-        for line in [heads.collect::<Vec<_>>(), units.collect()] {
-            if line.iter().any(|cell| !cell.is_empty()) {
-                self.push_line(&mut text, &shown, &widths, line.iter().map(String::as_str));
-            }
+        let head_lines = heads.iter().map(Vec::len).max().unwrap_or(0);
+        for line in 0..head_lines {
+            // Short heads stand at the bottom, next to their numbers.
+            let cells = heads.iter().map(|head| {
+                (line + head.len())
+                    .checked_sub(head_lines)
+                    .map_or("", |line| head[line].as_str())
+            });
+            self.push_line(&mut text, &shown, &widths, cells);
+        }
+        if shown.iter().any(|&at| !self.columns[at].unit.is_empty()) {
+            let units = shown.iter().map(|&at| self.columns[at].unit.as_str());
+            self.push_line(&mut text, &shown, &widths, units);
         }
         for row in 0..self.rows.len() {
             let line = cells.iter().map(|column| column[row].as_str());
@@ -235,13 +270,16 @@ mod tests {
     fn numbers_meet_at_the_point_and_wide_characters_take_two_cells() {
         assert_eq!(
             sample().render(None),
-            "\
-name                           boiling point
-                                           K
-water                                 373.15
-水                                   1000
-bad·[31m name of great length              –
-"
+            [
+                "                               boiling",
+                "name                             point",
+                "                                     K",
+                "water                           373.15",
+                "水                             1000",
+                "bad·[31m name of great length        –",
+                "",
+            ]
+            .join("\n")
         );
     }
 
@@ -249,7 +287,7 @@ bad·[31m name of great length              –
     fn words_are_cut_to_fit_and_numbers_are_not() {
         let text = sample().render(Some(30));
         assert!(text.lines().all(|line| line.width() <= 30), "{text}");
-        assert!(text.contains("bad·[31m name …"), "{text}");
+        assert!(text.contains("bad·[31m name of gre…"), "{text}");
         let narrow = sample().render(Some(5));
         assert!(narrow.contains("373.15"), "{narrow}");
     }
