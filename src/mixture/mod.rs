@@ -7,7 +7,10 @@
 //!
 //! Entry points: [`ActivityModel`] (the registry), [`Unifac`] and its
 //! [`Component`]s, [`UnifacMixture`] with its [`UnifacState`] (ln γ and its
-//! derivatives), [`Liquid`] (what every model offers to phase equilibrium).
+//! derivatives), [`Liquid`] (what every model offers to phase equilibrium:
+//! [`bubble_temperature`], [`azeotropes`], [`liquid_phases`],
+//! [`relative_volatility`]), [`KeysAtTemperature`] and [`HostAtTemperature`]
+//! (the batch path), [`UnifacTables`] (what `groupsmith tables` shows).
 
 mod composition;
 mod equilibrium;

@@ -2,7 +2,8 @@
 //!
 //! `cargo run --release --example mixture_reference -- FOLDER`; the folder holds
 //! `model_reference_*.csv`, `published_examples.csv`, `gamma_infinity.csv`,
-//! `azeotropes.csv` and the two `reference_predictions_*.csv`.
+//! `azeotropes.csv`, `lle.csv` and the `reference_predictions_*.csv`, its sibling
+//! `pure` holds `vapor_pressure.csv` and `groups_unifac.csv`.
 
 #![expect(
     clippy::print_stdout,
@@ -11,11 +12,14 @@
 
 use std::collections::HashMap;
 use std::path::{Path, PathBuf};
+use std::time::{Duration, Instant};
 
 use groupsmith::groups::GroupCounts;
 use groupsmith::mixture::{
-    ActivityModel, Component, Excess, MixtureError, Slips, Unifac, UnifacMixture,
+    ActivityModel, AzeotropeKind, Component, Condition, Excess, MixtureError, Slips, Unifac,
+    UnifacMixture, Vapor, azeotropes, liquid_phases,
 };
+use groupsmith::quantity::Absent;
 
 type Fault = Box<dyn std::error::Error>;
 type Row = HashMap<String, String>;
@@ -37,6 +41,14 @@ fn main() -> Result<(), Fault> {
         _ => None,
     };
 
+    let begun = Instant::now();
+    for model in ActivityModel::ALL {
+        drop(Unifac::built_in(model, Slips::Corrected).transpose()?);
+    }
+    println!(
+        "reading the built-in tables of all models: {:.1?}",
+        begun.elapsed()
+    );
     println!("model values, table as circulated (largest absolute deviation)");
     for name in ["unifac_original", "dortmund_2016", "dortmund_2006"] {
         let unifac = by_name(name).ok_or("unknown model")?;
@@ -90,7 +102,409 @@ fn main() -> Result<(), Fault> {
             row["example"], row["quantity"]
         );
     }
+    println!("liquids formed by the mixtures of the model files (fractions of 0 left as they are)");
+    for name in ["unifac_original", "dortmund_2016", "dortmund_2006"] {
+        let unifac = by_name(name).ok_or("unknown model")?;
+        liquids_of_reference(
+            unifac,
+            name,
+            &read(&folder, &format!("model_reference_{name}.csv"))?,
+        )?;
+    }
+    gamma_infinity(&folder)?;
+    azeotrope_statistics(&folder)?;
+    miscibility(&folder)?;
     Ok(())
+}
+
+/// How many liquids the reference mixtures form, how often the search fails, and its speed.
+fn liquids_of_reference(unifac: &Unifac, name: &str, rows: &[Row]) -> Result<(), Fault> {
+    let mut counts = [0_u32; 4];
+    let mut worst = 0.0_f64;
+    let mut slowest = (Duration::ZERO, String::new());
+    let start = Instant::now();
+    for row in rows {
+        let mixture = mixture(unifac, row)?;
+        let n = mixture.components();
+        let amounts = numbers(row, "x", n)?;
+        let sum: f64 = amounts.iter().sum();
+        let x: Vec<f64> = amounts.iter().map(|x| x / sum).collect();
+        let mut state = mixture.state(row["T_K"].parse()?)?;
+        let begun = Instant::now();
+        match liquid_phases(&mut state, &x) {
+            Ok(phases) => {
+                counts[phases.len()] += 1;
+                let mut first = vec![0.0; n];
+                let mut other = vec![0.0; n];
+                state.ln_gamma(&phases[0].x, &mut first)?;
+                for phase in &phases[1..] {
+                    state.ln_gamma(&phase.x, &mut other)?;
+                    for i in (0..n).filter(|&i| x[i] > 0.0) {
+                        let difference =
+                            phases[0].x[i].ln() + first[i] - phase.x[i].ln() - other[i];
+                        worst = worst.max(difference.abs());
+                    }
+                }
+            }
+            Err(fault) => {
+                counts[0] += 1;
+                println!("    {}: {fault}", row["id"]);
+            }
+        }
+        let took = begun.elapsed();
+        if took > slowest.0 {
+            slowest = (took, row["id"].clone());
+        }
+    }
+    println!(
+        "{name:>18}: one {}, two {}, three {}, failed {}; largest difference of ln activity {worst:.1e}; {:.1?} in all, slowest {:.1?} ({})",
+        counts[1],
+        counts[2],
+        counts[3],
+        counts[0],
+        start.elapsed(),
+        slowest.0,
+        slowest.1
+    );
+    Ok(())
+}
+
+/// Errors of ln γ∞ by class, with the group assignments listed beside the reference predictions.
+fn gamma_infinity(folder: &Path) -> Result<(), Fault> {
+    let measured = by_id(read(folder, "gamma_infinity.csv")?);
+    let predicted = read(folder, "reference_predictions_gamma_infinity.csv")?;
+    println!("ln gamma at infinite dilution against measurement (suspect rows left out)");
+    for (model, slips, groups, reference) in [
+        (
+            ActivityModel::Unifac,
+            Slips::Corrected,
+            "original",
+            "unifac_original",
+        ),
+        (
+            ActivityModel::UnifacDortmund,
+            Slips::Corrected,
+            "dortmund",
+            "",
+        ),
+        (
+            ActivityModel::UnifacDortmund,
+            Slips::AsCirculated,
+            "dortmund",
+            "dortmund_2016",
+        ),
+        (
+            ActivityModel::UnifacDortmund2006,
+            Slips::Corrected,
+            "dortmund",
+            "",
+        ),
+    ] {
+        let unifac = Unifac::built_in(model, slips).ok_or("model without groups")??;
+        let mut errors: HashMap<String, Vec<f64>> = HashMap::new();
+        let (mut missing, mut no_groups) = (0, 0);
+        let mut from_reference = 0.0_f64;
+        for row in &predicted {
+            let fact = &measured[&row["id"]];
+            let pair = [
+                component(&unifac, &row[&format!("groups_solute_{groups}")]),
+                component(&unifac, &row[&format!("groups_solvent_{groups}")]),
+            ];
+            let [Ok(solute), Ok(solvent)] = pair else {
+                no_groups += 1;
+                continue;
+            };
+            let Ok(mixture) = unifac.mixture(&[solute, solvent]) else {
+                missing += 1;
+                continue;
+            };
+            let mut out = [0.0; 2];
+            mixture
+                .state(fact["T_K"].parse()?)?
+                .ln_gamma(&[0.0, 1.0], &mut out)?;
+            if let Some(value) = row
+                .get(&format!("ln_gamma_inf_{reference}"))
+                .filter(|value| !value.is_empty())
+            {
+                from_reference = from_reference.max((out[0] - value.parse::<f64>()?).abs());
+            }
+            if fact["flag"].is_empty() {
+                let error = (out[0] - fact["ln_gamma_inf"].parse::<f64>()?).abs();
+                errors.entry("all".into()).or_default().push(error);
+                errors.entry(fact["class"].clone()).or_default().push(error);
+            }
+        }
+        print!("  {} {slips:?}:", model.id());
+        let mut classes: Vec<_> = errors.iter_mut().collect();
+        classes.sort_by(|a, b| a.0.cmp(b.0));
+        for (class, errors) in classes {
+            errors.sort_by(f64::total_cmp);
+            let mean = errors.iter().sum::<f64>() / errors.len() as f64;
+            print!(
+                "  {class} n {} mean {mean:.3} median {:.3};",
+                errors.len(),
+                errors[errors.len() / 2]
+            );
+        }
+        println!("  missing pair {missing}, no groups {no_groups}");
+        if !reference.is_empty() {
+            println!("      largest deviation from the reference predictions {from_reference:.1e}");
+        }
+    }
+    Ok(())
+}
+
+/// Vapor pressure through the points of `pure/vapor_pressure.csv`: a parabola of ln p in 1/T, least squares.
+fn vapor_pressures(folder: &Path) -> Result<HashMap<String, [f64; 3]>, Fault> {
+    let mut points: HashMap<String, Vec<(f64, f64)>> = HashMap::new();
+    let pure = folder.join("../pure");
+    for row in read(&pure, "vapor_pressure.csv")? {
+        let pressure = row
+            .get("P_Pa")
+            .or_else(|| row.get("vapor_pressure_Pa"))
+            .or_else(|| row.get("Psat_Pa"))
+            .ok_or("no column of the vapor pressure")?;
+        points.entry(row["smiles"].clone()).or_default().push((
+            1.0 / row["T_K"].parse::<f64>()?,
+            pressure.parse::<f64>()?.ln(),
+        ));
+    }
+    let mut fits = HashMap::new();
+    for (smiles, points) in points {
+        if points.len() < 3 {
+            continue;
+        }
+        // scaled to 1000/T to keep the normal equations well conditioned
+        let (mut a, mut b) = (vec![0.0; 9], vec![0.0; 3]);
+        for (u, ln_p) in points {
+            let powers = [1.0, 1e3 * u, 1e6 * u * u];
+            for i in 0..3 {
+                b[i] += powers[i] * ln_p;
+                for j in 0..3 {
+                    a[i * 3 + j] += powers[i] * powers[j];
+                }
+            }
+        }
+        if groupsmith::numeric::solve_dense(&mut a, &mut b) {
+            fits.insert(smiles, [b[0], b[1], b[2]]);
+        }
+    }
+    Ok(fits)
+}
+
+/// Group counts by SMILES from the listed assignments.
+fn assignments(folder: &Path) -> Result<HashMap<String, [String; 2]>, Fault> {
+    let measured = by_id(read(folder, "gamma_infinity.csv")?);
+    let mut groups = HashMap::new();
+    for row in read(&folder.join("../pure"), "groups_unifac.csv")? {
+        groups.insert(
+            row["smiles"].clone(),
+            [
+                row["unifac_subgroups"].clone(),
+                row["dortmund_subgroups"].clone(),
+            ],
+        );
+    }
+    for row in read(folder, "reference_predictions_gamma_infinity.csv")? {
+        for side in ["solute", "solvent"] {
+            groups.insert(
+                measured[&row["id"]][&format!("{side}_smiles")].clone(),
+                [
+                    row[&format!("groups_{side}_original")].clone(),
+                    row[&format!("groups_{side}_dortmund")].clone(),
+                ],
+            );
+        }
+    }
+    Ok(groups)
+}
+
+fn azeotrope_statistics(folder: &Path) -> Result<(), Fault> {
+    let predictions = read(folder, "reference_predictions_azeotropes.csv")?;
+    let fits = vapor_pressures(folder)?;
+    let groups = assignments(folder)?;
+    println!(
+        "azeotropes at 101.325 kPa (vapor pressures fitted to the points of pure/vapor_pressure.csv)"
+    );
+    for (model, set) in [
+        (ActivityModel::Unifac, 0),
+        (ActivityModel::UnifacDortmund, 1),
+        (ActivityModel::UnifacDortmund2006, 1),
+    ] {
+        let unifac = Unifac::built_in(model, Slips::Corrected).ok_or("model without groups")??;
+        let (mut assessed, mut right, mut kind_right, mut kinds) = (0, 0, 0, 0);
+        let (mut t_error, mut x_error, mut t_other) = (Vec::new(), Vec::new(), Vec::new());
+        let (mut compared, mut agree) = (0, 0);
+        let mut faults: HashMap<String, u32> = HashMap::new();
+        for row in read(folder, "azeotropes.csv")? {
+            let names = [&row["smiles_1"], &row["smiles_2"]];
+            let (Some(p1), Some(p2), Some(g1), Some(g2)) = (
+                fits.get(names[0]),
+                fits.get(names[1]),
+                groups.get(names[0]),
+                groups.get(names[1]),
+            ) else {
+                continue;
+            };
+            let [Ok(one), Ok(two)] = [component(&unifac, &g1[set]), component(&unifac, &g2[set])]
+            else {
+                continue;
+            };
+            let Ok(mixture) = unifac.mixture(&[one, two]) else {
+                continue;
+            };
+            let closure = |i: usize, t: f64| -> Result<f64, Absent> {
+                let p = if i == 0 { p1 } else { p2 };
+                let u = 1e3 / t;
+                Ok((p[0] + u * (p[1] + u * p[2])).exp())
+            };
+            let vapor = Vapor {
+                pressures: &closure,
+                associates: &[false, false],
+                range_k: (200.0, 600.0),
+            };
+            let mut state = mixture.state(350.0)?;
+            let found = match azeotropes(&mut state, Condition::Pressure(101_325.0), vapor, 350.0) {
+                Ok(found) => found,
+                Err(fault) => {
+                    let name = fault.to_string();
+                    *faults.entry(name.chars().take(60).collect()).or_default() += 1;
+                    continue;
+                }
+            };
+            assessed += 1;
+            let exists = row["azeotrope"] == "yes";
+            right += u32::from(found.is_empty() != exists);
+            if let Some(other) = predictions.iter().find(|other| {
+                other["id"] == row["id"]
+                    && other["model"] == "dortmund_2016"
+                    && other["status"] == "ok"
+                    && model == ActivityModel::UnifacDortmund
+            }) {
+                compared += 1;
+                let theirs = other["azeotrope_predicted"] == "yes";
+                let ours_kind = match found.first().map(|one| &one.kind) {
+                    Some(AzeotropeKind::Homogeneous) => "homogeneous",
+                    Some(AzeotropeKind::Heterogeneous { .. }) => "heterogeneous",
+                    None => "none",
+                };
+                let their_kind = if theirs {
+                    other["kind_predicted"].as_str()
+                } else {
+                    "none"
+                };
+                if ours_kind == their_kind {
+                    agree += 1;
+                } else {
+                    println!(
+                        "    {} {} {}: ours {ours_kind} {:?}, reference {their_kind} {} {}",
+                        row["id"],
+                        row["name_1"],
+                        row["name_2"],
+                        found
+                            .iter()
+                            .map(|one| (one.y1, one.temperature_k))
+                            .collect::<Vec<_>>(),
+                        other["x_1_predicted"],
+                        other["T_az_K_predicted"]
+                    );
+                }
+                if let (Some(one), true) = (found.first(), theirs) {
+                    t_other.push(
+                        (one.temperature_k - other["T_az_K_predicted"].parse::<f64>()?).abs(),
+                    );
+                }
+            }
+            if let (true, Some(one)) = (exists, found.first()) {
+                t_error.push((one.temperature_k - row["T_az_K"].parse::<f64>()?).abs());
+                if let Ok(x) = row["x_1"].parse::<f64>() {
+                    x_error.push((one.y1 - x).abs());
+                }
+                let heterogeneous = matches!(one.kind, AzeotropeKind::Heterogeneous { .. });
+                if !row["kind"].is_empty() {
+                    kinds += 1;
+                    kind_right += u32::from(heterogeneous == (row["kind"] == "heterogeneous"));
+                }
+            }
+        }
+        println!(
+            "  {}: {assessed} assessed, presence right {right}, kind right {kind_right} of {kinds}, mean |dT| {:.2} K, mean |dx| {:.3}, faults {faults:?}",
+            model.id(),
+            mean(&t_error),
+            mean(&x_error)
+        );
+        if compared > 0 {
+            println!(
+                "    reference predictions: same presence and kind {agree} of {compared}, mean |dT| {:.3} K",
+                mean(&t_other)
+            );
+        }
+    }
+    Ok(())
+}
+
+/// Number of liquids at x = 0.5 against the stated miscibility.
+fn miscibility(folder: &Path) -> Result<(), Fault> {
+    let groups = assignments(folder)?;
+    println!("liquids of equal amounts of two substances against stated miscibility");
+    for (model, set) in [
+        (ActivityModel::Unifac, 0),
+        (ActivityModel::UnifacDortmund, 1),
+    ] {
+        let unifac = Unifac::built_in(model, Slips::Corrected).ok_or("model without groups")??;
+        let mut table = [[0_u32; 2]; 2];
+        let mut faults = 0;
+        for row in read(folder, "lle.csv")? {
+            let stated = match row["miscible"].as_str() {
+                "yes" => 1,
+                "no" => 0,
+                _ => continue,
+            };
+            let (Some(g1), Some(g2)) = (groups.get(&row["smiles_1"]), groups.get(&row["smiles_2"]))
+            else {
+                continue;
+            };
+            let [Ok(one), Ok(two)] = [component(&unifac, &g1[set]), component(&unifac, &g2[set])]
+            else {
+                continue;
+            };
+            let Ok(mixture) = unifac.mixture(&[one, two]) else {
+                continue;
+            };
+            let mut state = mixture.state(row["T_K"].parse()?)?;
+            // any split counts, wherever it lies
+            let mut splits = false;
+            for x1 in [0.02, 0.1, 0.3, 0.5, 0.7, 0.9, 0.98] {
+                match liquid_phases(&mut state, &[x1, 1.0 - x1]) {
+                    Ok(phases) => splits |= phases.len() > 1,
+                    Err(fault) => {
+                        faults += 1;
+                        println!("    {} x1 {x1}: {fault}", row["id"]);
+                    }
+                }
+            }
+            table[stated][usize::from(!splits)] += 1;
+        }
+        println!(
+            "  {}: immiscible found {} missed {}, miscible found {} missed {}, faults {faults}",
+            model.id(),
+            table[0][0],
+            table[0][1],
+            table[1][1],
+            table[1][0]
+        );
+    }
+    Ok(())
+}
+
+fn by_id(rows: Vec<Row>) -> HashMap<String, Row> {
+    rows.into_iter()
+        .map(|row| (row["id"].clone(), row))
+        .collect()
+}
+
+fn mean(values: &[f64]) -> f64 {
+    values.iter().sum::<f64>() / values.len().max(1) as f64
 }
 
 /// Largest deviations of one model.

@@ -748,6 +748,20 @@ fn liquids_share_activities_close_the_balance_and_leave_no_lower_trial_phase() {
 }
 
 #[test]
+fn a_stability_search_that_swings_settles() {
+    let unifac = built_in(ActivityModel::Unifac, Slips::Corrected);
+    // ethanol and hexane: plain substitution swings between two trial phases here
+    let mixture = mixture(&unifac, &["1:1;2:1;14:1", "1:2;2:4"]);
+    let mut state = mixture.state(298.15).unwrap();
+    for x1 in [0.05, 0.1, 0.15, 0.2, 0.3] {
+        let phases = liquid_phases(&mut state, &[x1, 1.0 - x1]).unwrap();
+        for phase in &phases[1..] {
+            assert_equal_activities(&mut state, &phases[0].x, &phase.x);
+        }
+    }
+}
+
+#[test]
 fn a_solvent_moves_the_relative_volatility() {
     let unifac = built_in(ActivityModel::UnifacDortmund, Slips::Corrected);
     // ethanol, water, 1,2-ethanediol; the solvent hardly boils

@@ -24,6 +24,9 @@ const EQUAL_ACTIVITY: f64 = 1e-10;
 const MOST_STEPS: u32 = 20_000;
 /// Substitution steps before Newton steps are tried.
 const WARM_UP: u32 = 12;
+/// Steps after which substitution is damped by half, and by four fifths.
+const STEADY: u32 = 60;
+const HESITANT: u32 = 400;
 
 /// The liquids that a mixture of overall composition `z` forms at the liquid's temperature.
 ///
@@ -170,12 +173,19 @@ fn stationary(
                 });
         }
         residual_before = residual;
+        // undamped substitution can swing around a stationary point for ever
+        let share = match iteration {
+            ..STEADY => 1.0,
+            STEADY..HESITANT => 0.5,
+            _ => 0.2,
+        };
         for i in 0..n {
             if newton {
                 let root = amounts[i].sqrt() + 0.5 * step[i];
                 amounts[i] = root * root;
-            } else {
-                amounts[i] = (d[i] - ln_gamma[i]).exp();
+            } else if amounts[i] > 0.0 {
+                let target = d[i] - ln_gamma[i];
+                amounts[i] = (amounts[i].ln() * (1.0 - share) + target * share).exp();
             }
         }
     }

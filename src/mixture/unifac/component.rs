@@ -27,6 +27,26 @@ pub(super) enum Combinatorial {
 /// `unifac`: Fredenslund, Jones, Prausnitz, AIChE J. 21 (1975) 1086–1099.
 /// `unifac-dortmund`: Weidlich, Gmehling, Ind. Eng. Chem. Res. 26 (1987) 1372–1381.
 /// Parameters: the heads of the table files.
+///
+/// # Example
+///
+/// Diethylamine (0.4) and n-heptane at 308.15 K; Smith, Van Ness and Abbott
+/// print γ = 1.133 and 1.047.
+///
+/// ```
+/// use groupsmith::groups::GroupCounts;
+/// use groupsmith::mixture::{ActivityModel, Slips, Unifac};
+///
+/// let unifac = Unifac::built_in(ActivityModel::Unifac, Slips::Corrected).unwrap()?;
+/// let amine = unifac.component(&GroupCounts::from_iter([(1, 2), (2, 1), (32, 1)]))?;
+/// let heptane = unifac.component(&GroupCounts::from_iter([(1, 2), (2, 5)]))?;
+/// let mixture = unifac.mixture(&[amine, heptane])?;
+/// let mut ln_gamma = [0.0; 2];
+/// mixture.state(308.15)?.ln_gamma(&[0.4, 0.6], &mut ln_gamma)?;
+/// assert!((ln_gamma[0].exp() - 1.133).abs() < 0.0005);
+/// assert!((ln_gamma[1].exp() - 1.047).abs() < 0.0005);
+/// # Ok::<(), groupsmith::mixture::MixtureError>(())
+/// ```
 #[derive(Clone, Debug)]
 pub struct Unifac {
     pub(super) tables: Arc<UnifacTables>,
