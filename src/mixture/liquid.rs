@@ -1,6 +1,6 @@
 //! What an activity model offers to the phase-equilibrium functions.
 
-use super::MixtureError;
+use super::{MixtureError, UnifacMixture};
 
 /// A liquid mixture at a temperature: ln γ and its derivatives.
 ///
@@ -39,6 +39,29 @@ pub trait Liquid {
     ///
     /// As [`Liquid::ln_gamma`]; the fractions have to add up to 1.
     fn composition_derivatives(&mut self, x: &[f64], out: &mut [f64]) -> Result<(), MixtureError>;
+}
+
+/// The components of a mixture bound to a model, whichever it is.
+#[derive(Clone, Debug)]
+pub enum LiquidMixture {
+    /// An ideal mixture of this many components.
+    Ideal(usize),
+    /// A mixture of a UNIFAC model.
+    Unifac(UnifacMixture),
+}
+
+impl LiquidMixture {
+    /// The mixture at a temperature.
+    ///
+    /// # Errors
+    ///
+    /// No components; [`MixtureError::Temperature`].
+    pub fn state(&self, temperature_k: f64) -> Result<Box<dyn Liquid + '_>, MixtureError> {
+        Ok(match self {
+            Self::Ideal(components) => Box::new(IdealState::new(*components, temperature_k)?),
+            Self::Unifac(mixture) => Box::new(mixture.state(temperature_k)?),
+        })
+    }
 }
 
 /// The ideal mixture: every ln γ is 0.

@@ -28,7 +28,7 @@ pub use equilibrium::{
 };
 pub use error::{MixtureError, PairGap};
 pub use excess::Excess;
-pub use liquid::{IdealState, Liquid};
+pub use liquid::{IdealState, Liquid, LiquidMixture};
 pub use model::{ActivityModel, ModelStatus, RESERVED_MODELS};
 pub use unifac::{
     Component, Coverage, GroupsAtTemperature, HostAtTemperature, Interaction, KeysAtTemperature,

@@ -6,9 +6,9 @@ use std::path::Path;
 use groupsmith::groups::GroupCounts;
 use groupsmith::mixture::{
     ActivityModel, AzeotropeKind, Component, Condition, Excess, Extremum, HostAtTemperature,
-    IdealState, KeysAtTemperature, Liquid, MassFractions, MixtureError, ModelStatus, MoleFractions,
-    Slips, Unifac, UnifacMixture, Vapor, VolumeFractions, azeotropes, bubble_pressure,
-    bubble_temperature, liquid_phases, relative_volatility,
+    IdealState, KeysAtTemperature, Liquid, LiquidMixture, MassFractions, MixtureError, ModelStatus,
+    MoleFractions, Slips, Unifac, UnifacMixture, Vapor, VolumeFractions, azeotropes,
+    bubble_pressure, bubble_temperature, liquid_phases, relative_volatility,
 };
 use groupsmith::numeric::central_difference;
 use groupsmith::quantity::{Absent, Flag};
@@ -634,17 +634,20 @@ fn known_azeotropes_are_found() {
 
 #[test]
 fn an_ideal_mixture_has_no_azeotrope_and_one_liquid() {
-    let mut state = IdealState::new(2, 300.0).unwrap();
+    let ideal = LiquidMixture::Ideal(2);
+    let mut boxed = ideal.state(300.0).unwrap();
+    let state = &mut *boxed;
+    assert!(LiquidMixture::Ideal(0).state(300.0).is_err());
     let closure = pressures(&["ethanol", "water"]);
     let vapor = Vapor {
         pressures: &closure,
         associates: &[false, false],
         range_k: RANGE_K,
     };
-    let found = azeotropes(&mut state, Condition::Pressure(101_325.0), vapor, 350.0).unwrap();
+    let found = azeotropes(state, Condition::Pressure(101_325.0), vapor, 350.0).unwrap();
     assert!(found.is_empty());
-    assert_eq!(liquid_phases(&mut state, &[0.5, 0.5]).unwrap().len(), 1);
-    let excess = Excess::of(&mut state, &[0.5, 0.5]).unwrap();
+    assert_eq!(liquid_phases(state, &[0.5, 0.5]).unwrap().len(), 1);
+    let excess = Excess::of(state, &[0.5, 0.5]).unwrap();
     assert_eq!(excess.gibbs_j_per_mol, 0.0);
     assert_eq!(excess.enthalpy_j_per_mol, 0.0);
     assert!(matches!(
