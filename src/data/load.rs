@@ -7,6 +7,7 @@ use rustc_hash::{FxHashMap, FxHashSet};
 use smallvec::smallvec;
 
 use super::cas::{CasFault, CasNumber};
+use super::structure::{Match, StructureIndex};
 use super::substance::is_normal_pressure;
 use super::substances::Named;
 use super::vapor_pressure::{VaporPressureEquation, WagnerForm};
@@ -14,7 +15,7 @@ use super::{
     Conflict, Constant, DataError, DensityEquation, LiquidDensity, Substance, Substances,
     VaporPressure, name,
 };
-use crate::chem::{Composition, Molecule, Reader};
+use crate::chem::{Canonicalizer, Composition, Keys, Molecule, Reader};
 use crate::quantity::{Dimension, Property, unit};
 use crate::table::{Column, Row, Table, TableError};
 
@@ -58,6 +59,10 @@ struct Layer<'a> {
     faults: Vec<TableError>,
     reader: Reader,
     molecule: Molecule,
+    canonicalizer: Canonicalizer,
+    keys: Keys,
+    /// The structures so far, if they are to be compared.
+    structures: Option<StructureIndex>,
     /// Substances that stand in this layer's list.
     listed: FxHashSet<u32>,
     /// Number of values of this layer at the head of each substance's lists.
@@ -71,12 +76,21 @@ enum Kind {
     Densities,
 }
 
-pub(super) fn load(all: &mut Substances, tables: &Tables<'_>) -> Result<(), DataError> {
+/// Adds a layer to the substances. Given an index of the structures so far, it
+/// checks new structures against it and gives it back with them added.
+pub(super) fn load(
+    all: &mut Substances,
+    tables: &Tables<'_>,
+    structures: Option<StructureIndex>,
+) -> Result<Option<StructureIndex>, DataError> {
     let mut layer = Layer {
         all,
         faults: Vec::new(),
         reader: Reader::new(),
         molecule: Molecule::default(),
+        canonicalizer: Canonicalizer::new(),
+        keys: Keys::default(),
+        structures,
         listed: FxHashSet::default(),
         fresh: FxHashMap::default(),
     };
@@ -87,7 +101,7 @@ pub(super) fn load(all: &mut Substances, tables: &Tables<'_>) -> Result<(), Data
     layer.read(tables.density, Layer::density);
     layer.read(tables.conflicts, Layer::conflicts);
     if layer.faults.is_empty() {
-        Ok(())
+        Ok(layer.structures)
     } else {
         Err(DataError::Tables {
             faults: layer.faults,
@@ -211,28 +225,21 @@ impl Layer<'_> {
             }
             (a, b) => a.or(b),
         };
-        if let Some(position) = known
-            && self.listed.contains(&position)
-        {
-            let column = if by_cas.is_some() {
-                columns.cas
-            } else {
-                columns.name
-            };
-            return Err(row.fault(
-                column,
-                format!(
-                    "stands twice: it is `{}` already",
-                    self.all.substances[position as usize].name
-                ),
-            ));
-        }
+        let (known, column) = match known {
+            Some(position) if by_cas.is_some() => (Some(position), columns.cas),
+            Some(position) => (Some(position), columns.name),
+            None => (self.known_structure(row, columns)?, columns.smiles),
+        };
         let position = match known {
+            Some(position) if self.listed.contains(&position) => {
+                let name = &self.all.substances[position as usize].name;
+                return Err(row.fault(column, format!("stands twice: it is `{name}` already")));
+            }
             Some(position) => {
                 self.check_structure(row, columns, position)?;
                 position
             }
-            None => self.new_substance(row, columns, name)?,
+            None => self.new_substance(row, columns, name),
         };
         self.listed.insert(position);
         let substance = &mut self.all.substances[position as usize];
@@ -262,55 +269,77 @@ impl Layer<'_> {
         Ok(())
     }
 
-    fn new_substance(
+    /// Reads the structure of a row whose names are new; gives the substance
+    /// that has it already.
+    fn known_structure(
         &mut self,
         row: Row<'_>,
         columns: &SubstanceColumns,
-        name: &str,
-    ) -> Result<u32, TableError> {
-        let smiles = row.required_text(columns.smiles)?;
+    ) -> Result<Option<u32>, TableError> {
+        row.required_text(columns.smiles)?;
         self.read_structure(row, columns)?;
+        let Some(structures) = &self.structures else {
+            return Ok(None);
+        };
+        self.canonicalizer.keys_into(&self.molecule, &mut self.keys);
+        Ok(match structures.find(&self.keys) {
+            Some(Match::Full(position)) => Some(position),
+            _ => None,
+        })
+    }
+
+    /// Adds the substance whose structure was just read.
+    fn new_substance(&mut self, row: Row<'_>, columns: &SubstanceColumns, name: &str) -> u32 {
         let position = self.all.substances.len() as u32;
+        if let Some(structures) = &mut self.structures {
+            structures.insert(position, &self.keys);
+        }
         self.all.substances.push(Substance {
             name: Arc::from(name),
             synonyms: Vec::new(),
             family: None,
             cas: None,
-            smiles: Arc::from(smiles),
+            smiles: Arc::from(row.text(columns.smiles)),
             composition: self.molecule.composition(),
             molar_mass_kg_per_mol: self.molecule.molar_mass_kg_per_mol(),
             constants: Vec::new(),
             vapor_pressures: Vec::new(),
             densities: Vec::new(),
         });
-        Ok(position)
+        position
     }
 
     /// Checks what a row says about a substance that another table lists
-    /// already: blank, or the same element counts.
+    /// already: nothing, the same formula, or the same constitution.
     fn check_structure(
         &mut self,
         row: Row<'_>,
         columns: &SubstanceColumns,
         position: u32,
     ) -> Result<(), TableError> {
-        let known = self.all.substances[position as usize].composition;
-        let found = if row.text(columns.smiles).is_empty() {
-            match row.text(columns.formula) {
-                "" => return Ok(()),
-                _ => formula(row, columns)?,
-            }
-        } else {
-            self.read_structure(row, columns)?;
-            self.molecule.composition()
+        let known = &self.all.substances[position as usize];
+        if row.text(columns.smiles).is_empty() {
+            return if row.text(columns.formula).is_empty()
+                || formula(row, columns)? == known.composition
+            {
+                Ok(())
+            } else {
+                let fault = format!("is not that of `{}`, {}", known.name, known.composition);
+                Err(row.fault(columns.formula, fault))
+            };
+        }
+        self.read_structure(row, columns)?;
+        let Some(structures) = &self.structures else {
+            return Ok(());
         };
-        if found == known {
-            Ok(())
-        } else {
-            Err(row.fault(
-                columns.formula,
-                format!("the substance is {known} in another table, not {found}"),
-            ))
+        self.canonicalizer.keys_into(&self.molecule, &mut self.keys);
+        let known = &self.all.substances[position as usize];
+        match structures.find(&self.keys) {
+            Some(Match::Full(found)) if found == position => Ok(()),
+            _ => {
+                let fault = format!("is not the structure of `{}`, {}", known.name, known.smiles);
+                Err(row.fault(columns.smiles, fault))
+            }
         }
     }
 

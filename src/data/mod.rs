@@ -8,7 +8,8 @@
 //! layer with file, row and column of everything that is wrong with it.
 //!
 //! Estimates nothing and opens no file. Entry points: [`Substances::built_in`],
-//! [`Substances::find`], [`Substance::measured`].
+//! [`Substances::find`],
+//! [`Substances::find_structure`], [`Substance::measured`].
 
 mod built_in;
 mod cas;
@@ -16,6 +17,7 @@ mod density;
 mod error;
 mod load;
 mod name;
+mod structure;
 mod substance;
 mod substances;
 mod vapor_pressure;

@@ -1,12 +1,15 @@
 //! The collection: finding a substance by name, CAS number or structure.
 
-use std::sync::Arc;
+use std::sync::{Arc, OnceLock};
 
 use rustc_hash::FxHashMap;
 use smallvec::SmallVec;
 
 use super::cas::{CasFault, CasNumber};
-use super::{DataError, NameError, Substance, Tables, built_in, name};
+use super::structure::{Match, StructureIndex};
+use super::{DataError, NameError, Substance, Tables, built_in, load, name};
+use crate::chem::Keys;
+use crate::quantity::{Flag, Flags};
 
 /// How many names an error message offers.
 const SUGGESTIONS: usize = 3;
@@ -20,6 +23,8 @@ pub struct Substances {
     pub(super) by_name: FxHashMap<Box<str>, Named>,
     pub(super) by_cas: FxHashMap<CasNumber, u32>,
     pub(super) conflicts: Vec<Conflict>,
+    /// Made at the first look-up by structure: most runs of one command need none.
+    pub(super) structures: OnceLock<StructureIndex>,
 }
 
 /// What a folded name stands for.
@@ -61,7 +66,10 @@ impl Substances {
     ///
     /// None as released: the tables are checked by a test.
     pub fn built_in() -> Result<Self, DataError> {
-        Self::default().with(&built_in::TABLES)
+        let mut substances = Self::default();
+        // that no structure stands twice is left to a test: it would cost every start its index
+        load::load(&mut substances, &built_in::TABLES, None)?;
+        Ok(substances)
     }
 
     /// Number of substances.
@@ -137,6 +145,25 @@ impl Substances {
         }
     }
 
+    /// The substance of this structure, with [`Flag::OtherStereoisomer`] if it
+    /// is one of the same constitution but another (or no stated)
+    /// stereochemistry or isotopic composition.
+    ///
+    /// Among several of one constitution the one without stated stereochemistry
+    /// is taken, else the first of the table.
+    pub fn find_structure(&self, keys: &Keys) -> Option<(&Substance, Flags)> {
+        let index = self
+            .structures
+            .get_or_init(|| StructureIndex::of(&self.substances));
+        index.find(keys).map(|found| match found {
+            Match::Full(position) => (&self.substances[position as usize], Flags::NONE),
+            Match::Constitution(position) => (
+                &self.substances[position as usize],
+                Flags::NONE.with(Flag::OtherStereoisomer),
+            ),
+        })
+    }
+
     /// The spellings nearest to a folded name, one for each substance.
     fn nearest(&self, folded: &str) -> Vec<Arc<str>> {
         let limit = (folded.len() / 4).clamp(1, 4);
@@ -166,7 +193,12 @@ impl Substances {
     ///
     /// [`DataError::Tables`] with every fault of the layer.
     pub fn with(mut self, tables: &Tables<'_>) -> Result<Self, DataError> {
-        super::load::load(&mut self, tables)?;
+        let structures = self
+            .structures
+            .take()
+            .unwrap_or_else(|| StructureIndex::of(&self.substances));
+        self.structures = load::load(&mut self, tables, Some(structures))?
+            .map_or_else(OnceLock::new, OnceLock::from);
         Ok(self)
     }
 }

@@ -1,6 +1,6 @@
 //! Measured data: the built-in tables, their curves, names, and what is refused.
 
-use groupsmith::chem::{Composition, Reader};
+use groupsmith::chem::{Composition, Molecule, Reader};
 use groupsmith::data::{
     DataError, LiquidDensity, NameError, Substances, TableText, Tables, VaporPressure,
 };
@@ -458,6 +458,31 @@ fn what_is_not_found_says_what_is_near() {
 }
 
 #[test]
+fn structures_are_found_by_full_key_then_by_constitution() {
+    let substances = built_in();
+    let find = |smiles: &str| {
+        let keys = Molecule::from_smiles(smiles).unwrap().keys();
+        let (substance, flags) = substances.find_structure(&keys)?;
+        Some((substance.name().to_string(), flags))
+    };
+    let plain = |name: &str| Some((name.to_owned(), Flags::NONE));
+    let other = |name: &str| Some((name.to_owned(), Flags::NONE.with(Flag::OtherStereoisomer)));
+    assert_eq!(find("OC(C)C"), plain("2-propanol"));
+    assert_eq!(find("C1=CC=CC=C1C"), plain("toluene"));
+    assert_eq!(find("C[S+](C)[O-]"), plain("dimethyl sulfoxide"));
+    assert_eq!(find("Cl/C=C\\Cl"), plain("cis-1,2-dichloroethylene"));
+    assert_eq!(find("Cl/C=C/Cl"), plain("trans-1,2-dichloroethylene"));
+    assert_eq!(find("ClC=CCl"), other("cis-1,2-dichloroethylene"));
+    assert_eq!(find("[2H]O[2H]"), plain("deuterium oxide"));
+    assert_eq!(find("[2H]O"), other("water"));
+    assert_eq!(find("CC(O)(F)I"), None);
+    for substance in substances.iter() {
+        // so no structure stands twice
+        assert_eq!(find(substance.smiles()), plain(substance.name()));
+    }
+}
+
+#[test]
 fn measured_values_carry_their_source_and_flags() {
     let substances = built_in();
     let toluene = substances.find("toluene").unwrap();
@@ -545,7 +570,9 @@ fn a_further_layer_goes_before_the_built_in_one() {
         .unwrap()
         .measured(Property::BoilingPoint, 0.0);
     assert!((mek.unwrap().unwrap().value - 352.7).abs() < 0.5);
+    // another name for a known structure leads to the known substance
     let oil = table.find("glow oil").unwrap();
+    assert!(std::ptr::eq(oil, table.find("1-decanol").unwrap()));
     assert_eq!(
         oil.composition(),
         &Composition::from_formula("C10H22O").unwrap()
@@ -584,33 +611,43 @@ fn faults_are_refused_with_file_row_and_column() {
         ),
         (
             "substances",
-            "one,,,CCO,\none,,,CCC,",
+            "one,,,CCCO,\none,,,CCC,",
             "substances.csv:8: column `name`: stands twice: it is `one` already (found `one`)",
         ),
         (
             "substances",
-            "one,,64-17-5,CCO,\ntwo,,64-17-5,CCC,",
+            "one,,64-17-5,CCCO,\ntwo,,64-17-5,CCC,",
             "substances.csv:8: column `cas`: stands twice: it is `one` already (found `64-17-5`)",
         ),
         (
             "substances",
-            "one,x,,CCO,\ntwo,X,,CCC,",
+            "one,x,,CCCO,\ntwo,X,,CCC,",
             "substances.csv:8: column `synonyms`: `X` is already a name of `one` (found `X`)",
         ),
         (
             "substances",
-            "one,x?,,CCO,\ntwo,x,,CCC,",
+            "one,x?,,CCCO,\ntwo,x,,CCC,",
             "substances.csv:8: column `synonyms`: `x` is in use for several substances (found `x`)",
         ),
         (
             "substances",
             "base,,,CCCO,",
-            "substances.csv:7: column `formula`: the substance is C2H6O in another table, not C3H8O (found ``)",
+            "substances.csv:7: column `smiles`: is not the structure of `base`, CCO (found `CCCO`)",
         ),
         (
             "substances",
             "one,,,,",
             "substances.csv:7: column `smiles`: is blank (found ``)",
+        ),
+        (
+            "substances",
+            "one,,,CCCO,\ntwo,,,OCCC,",
+            "substances.csv:8: column `smiles`: stands twice: it is `one` already (found `OCCC`)",
+        ),
+        (
+            "substances",
+            "base,,,,C2H4O",
+            "substances.csv:7: column `formula`: is not that of `base`, C2H6O (found `C2H4O`)",
         ),
         (
             "measured",
