@@ -11,21 +11,29 @@
 //!    three-bonded cation C⁺; two with a lone pair and single bonds only (O, S,
 //!    NH, NR, C⁻, N⁻). Triple bonds in the ring count one electron per end.
 //! 3. A ring of the ring set (see [`super::rings`]) whose atoms all take part is
-//!    aromatic with 4n+2 electrons, 2 included.
+//!    aromatic with 4n+2 electrons, 2 included. A ring of nine or more atoms with
+//!    a two-bonded O or S takes no part: macrocyclic esters are not aromatic.
 //! 4. Where bonds of such rings are left, connected groups of two to six rings
-//!    that share bonds are tried, smaller ones first; an atom that lies in three
+//!    that share one bond each with the next are tried, smaller ones first; an atom that lies in three
 //!    or more rings of the group is not counted. All rings of a group with 4n+2
 //!    electrons are aromatic, the bonds they share included. For a ring system
 //!    of more than 64 rings only pairs are tried, and the search ends before a
 //!    size with more than [`MAX_GROUPS`] groups.
 //!
-//! Points 1 to 3 are the default model of RDKit. Known differences from it:
-//! the shared bond of azulene-like systems is aromatic here and single there;
-//! rings above 24 atoms are never aromatic here; the ring set of bridged systems
-//! may hold more rings. Double bonds of an aromatic system are kept inside it
-//! where a choice exists, so all Kekulé spellings of biphenylene agree.
-//! `tests/data/chem/aromatic_exceptions.csv` lists the molecules of the
-//! reference set whose aromatic atoms differ, each with the reason.
+//! This is meant to call the same atoms aromatic as the default model of RDKit;
+//! on the 2,000 reference molecules it does so without exception (exceptions
+//! would stand in `tests/data/chem/aromatic_exceptions.csv`, each with its
+//! reason). Differences that are wanted or known:
+//!
+//! - The bond shared by the rings of azulene is aromatic here and single there.
+//! - Double bonds are kept inside an aromatic system where a choice exists, so all
+//!   Kekulé spellings of biphenylene and benzocyclobutadiene give one molecule.
+//!   There the bonds between the rings follow the spelling.
+//! - Rings above 24 atoms are never aromatic here.
+//! - Lower-case rings that turn out not to be aromatic and leave a choice of
+//!   double bonds are refused; there one of the choices is taken.
+//! - The ring set holds every shortest ring of a bridged or symmetrical system,
+//!   theirs a selection, so groups of rings in point 4 may differ.
 
 use super::graph::pair_all;
 use super::kekule::{Kekule, Spelling};
@@ -43,6 +51,9 @@ const MAX_GROUPS: usize = 4096;
 /// An atom that takes no part.
 const APART: i8 = -1;
 
+/// Largest ring in which O and S take part.
+const MAX_CHALCOGEN_RING: usize = 8;
+
 /// Scratch of the perception.
 #[derive(Debug, Default)]
 pub(super) struct Aromaticity {
@@ -52,7 +63,12 @@ pub(super) struct Aromaticity {
 
 impl Aromaticity {
     /// Marks aromatic atoms and bonds of a molecule in a Kekulé form.
-    pub(super) fn perceive(&mut self, molecule: &mut Molecule, rings: &Rings, spelling: &Spelling) {
+    pub(super) fn perceive(
+        &mut self,
+        molecule: &mut Molecule,
+        rings: &Rings,
+        spelling: &Spelling,
+    ) {
         self.electrons.clear();
         for atom in 0..molecule.atoms.len() {
             let electrons = if molecule.atoms[atom].in_ring {
@@ -67,7 +83,12 @@ impl Aromaticity {
         for ring in 0..rings.len() {
             let mut sum = 0;
             let mut suits = true;
+            let is_large = rings.ring_atoms(ring).len() > MAX_CHALCOGEN_RING;
             for &atom in rings.ring_atoms(ring) {
+                let here = &molecule.atoms[atom as usize];
+                if is_large && here.charge == 0 {
+                    suits &= !matches!(here.element, Element::O | Element::S);
+                }
                 let electrons = self.electrons[atom as usize];
                 suits &= electrons != APART;
                 sum += i32::from(electrons);
@@ -97,13 +118,23 @@ impl Aromaticity {
                 rings_of_bond[bond as usize].push(index);
             }
         }
-        let touching = |index: usize| {
-            rings
-                .ring_bonds(self.candidates[index] as usize)
-                .iter()
-                .flat_map(|&bond| rings_of_bond[bond as usize].iter().copied())
-                .filter(move |&other| other != index)
-        };
+        // Rings that share exactly one bond with a ring.
+        let neighbors: Vec<Vec<usize>> = (0..count)
+            .map(|index| {
+                let mut others: Vec<usize> = rings
+                    .ring_bonds(self.candidates[index] as usize)
+                    .iter()
+                    .flat_map(|&bond| rings_of_bond[bond as usize].iter().copied())
+                    .filter(|&other| other != index)
+                    .collect();
+                others.sort_unstable();
+                others
+                    .chunk_by(|a, b| a == b)
+                    .filter(|shared| shared.len() == 1)
+                    .map(|shared| shared[0])
+                    .collect()
+            })
+            .collect();
         let mut systems: Vec<Vec<usize>> = Vec::new();
         for first in 0..count {
             if system[first] != NONE {
@@ -113,7 +144,7 @@ impl Aromaticity {
             system[first] = systems.len() as u32;
             let mut next = 0;
             while next < members.len() {
-                for other in touching(members[next]) {
+                for &other in &neighbors[members[next]] {
                     if system[other] == NONE {
                         system[other] = systems.len() as u32;
                         members.push(other);
@@ -124,14 +155,6 @@ impl Aromaticity {
             members.sort_unstable();
             systems.push(members);
         }
-        let neighbors: Vec<Vec<usize>> = (0..count)
-            .map(|index| {
-                let mut others: Vec<usize> = touching(index).collect();
-                others.sort_unstable();
-                others.dedup();
-                others
-            })
-            .collect();
         for members in systems.iter().filter(|members| members.len() > 1) {
             self.try_system(molecule, rings, members, &neighbors);
         }
@@ -216,10 +239,7 @@ impl Aromaticity {
                 bond.kekule == 2
                     && bond.in_ring
                     && bond.order != BondOrder::Aromatic
-                    && bond
-                        .atoms
-                        .iter()
-                        .any(|&atom| molecule.atoms[atom as usize].aromatic)
+                    && bond.atoms.iter().any(|&atom| molecule.atoms[atom as usize].aromatic)
             })
             .collect();
         if strays.is_empty() {
@@ -241,10 +261,7 @@ impl Aromaticity {
             bond.order == BondOrder::Aromatic
                 || (bond.in_ring
                     && bond.kekule == 1
-                    && bond
-                        .atoms
-                        .iter()
-                        .all(|&atom| !atoms[atom as usize].aromatic))
+                    && bond.atoms.iter().all(|&atom| !atoms[atom as usize].aromatic))
         });
         if let Ok(pairs) = pairs {
             for index in freed {

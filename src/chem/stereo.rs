@@ -69,13 +69,14 @@ fn center(
     let has_lone_pair = matches!(here.element, Element::S | Element::P)
         && here.hydrogens == 0
         && ligands.len() == 3;
-    if line_atom.hydrogens == 1 || has_lone_pair {
+    if line_atom.hydrogens == 1 {
         ligands.push((behind_parent, NONE));
+    } else if has_lone_pair {
+        // Seen from the first neighbor, whichever it is.
+        let first = ligands.iter().map(|&(place, _)| place).min()?;
+        ligands.push((first + 1, NONE));
     }
-    let unseen = ligands
-        .iter()
-        .filter(|&&(_, ligand)| ligand == NONE)
-        .count();
+    let unseen = ligands.iter().filter(|&&(_, ligand)| ligand == NONE).count();
     if ligands.len() != 4 || unseen > 1 || usize::from(here.hydrogens) > unseen {
         return None;
     }

@@ -2,7 +2,7 @@
 
 use std::collections::{HashMap, HashSet};
 
-use groupsmith::chem::{BondOrder, Canonicalizer, Keys, Molecule, Reader};
+use groupsmith::chem::{BondOrder, Canonicalizer, Composition, Keys, Molecule, Reader};
 
 fn read(text: &str) -> Molecule {
     Molecule::from_smiles(text).unwrap_or_else(|error| panic!("{text}: {error}"))
@@ -79,11 +79,7 @@ fn orders_follow_the_model() {
     let toluene = read("CC1=CC=CC=C1");
     let orders: Vec<BondOrder> = toluene.bonds().iter().map(|bond| bond.order).collect();
     assert_eq!(orders[0], BondOrder::Single);
-    assert!(
-        orders[1..]
-            .iter()
-            .all(|&order| order == BondOrder::Aromatic)
-    );
+    assert!(orders[1..].iter().all(|&order| order == BondOrder::Aromatic));
     assert_eq!(toluene.atoms()[1].ring_sizes, 1 << 6);
     assert_eq!(toluene.neighbors(0).len(), 1);
 }
@@ -120,7 +116,7 @@ fn refusals_name_column_and_reason() {
         ("C C", 2, "syntax"),
         ("CX", 2, "syntax"),
         ("C%1C", 4, "syntax"),
-        ("F/C(\\Cl)=C/F", 2, "contradicting-directions"),
+        ("F/C(\\Cl)=C/F", 3, "contradicting-directions"),
         ("OCl(=O)(=O)=O", 2, "impossible-valence"),
     ] {
         let error = Molecule::from_smiles(text).expect_err(text);
@@ -225,7 +221,8 @@ fn stereo_that_means_something_is_kept() {
     same("CC=[C@]=CC", "CC=C=CC");
     same("F[C@AL1H](Br)Cl", "FC(Br)Cl");
     different("F/C=C/C=C/F", "F/C=C/C=C\\F");
-    same("C[C@@H](O)[C@H](Cl)[C@H](C)O", "C[C@@H](O)C(Cl)[C@H](C)O");
+    same("C[C@@H](O)[C@H](Cl)[C@@H](C)O", "C[C@@H](O)C(Cl)[C@@H](C)O");
+    different("C[C@@H](O)[C@H](Cl)[C@H](C)O", "C[C@@H](O)[C@@H](Cl)[C@H](C)O");
 }
 
 /// One molecule of the reference set.
@@ -319,12 +316,7 @@ fn reference_spellings_collapse_and_molecules_stay_apart() {
         }
     }
     let groups: HashSet<&str> = references.iter().map(|r| r.constitution.as_str()).collect();
-    assert!(
-        faults.is_empty(),
-        "{} faults\n{}",
-        faults.len(),
-        faults.join("\n")
-    );
+    assert!(faults.is_empty(), "{} faults\n{}", faults.len(), faults.join("\n"));
     assert_eq!(groups.len(), constitutions.len());
 }
 
@@ -347,26 +339,12 @@ fn reference_rings_hydrogens_formula_and_mass_agree() {
                 faults.push(format!("{spelling} {what}: {ours}, RDKit {theirs}"));
             }
         };
-        compare(
-            "formula",
-            molecule.composition().to_string(),
-            &reference.formula,
-        );
-        compare(
-            "rings",
-            molecule.ring_count().to_string(),
-            &reference.rings.to_string(),
-        );
-        compare(
-            "ring atoms",
-            digits(atoms.iter().map(|a| a.in_ring)),
-            &reference.ring_atoms,
-        );
-        compare(
-            "hydrogens",
-            digits(atoms.iter().map(|a| a.hydrogens)),
-            &reference.hydrogens,
-        );
+        // RDKit puts hydrogen first where there is no carbon; Hill does not.
+        let formula = Composition::from_formula(&reference.formula).unwrap();
+        compare("formula", molecule.composition().to_string(), &formula.to_string());
+        compare("rings", molecule.ring_count().to_string(), &reference.rings.to_string());
+        compare("ring atoms", digits(atoms.iter().map(|a| a.in_ring)), &reference.ring_atoms);
+        compare("hydrogens", digits(atoms.iter().map(|a| a.hydrogens)), &reference.hydrogens);
         let aromatic = digits(atoms.iter().map(|atom| atom.aromatic));
         let exception = exceptions.remove(molecule.keys().full.as_str());
         if exception.is_none() {
@@ -378,18 +356,9 @@ fn reference_rings_hydrogens_formula_and_mass_agree() {
         let mass = molecule.molar_mass_kg_per_mol() * 1e3;
         let relative = (mass / reference.mass_g_per_mol - 1.0).abs();
         if relative > 2.2e-4 {
-            compare(
-                "mass",
-                format!("{mass:.3}"),
-                &reference.mass_g_per_mol.to_string(),
-            );
+            compare("mass", format!("{mass:.3}"), &reference.mass_g_per_mol.to_string());
         }
     }
-    assert!(
-        faults.is_empty(),
-        "{} faults\n{}",
-        faults.len(),
-        faults.join("\n")
-    );
+    assert!(faults.is_empty(), "{} faults\n{}", faults.len(), faults.join("\n"));
     assert!(exceptions.is_empty(), "no such molecules: {exceptions:?}");
 }

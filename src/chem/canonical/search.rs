@@ -120,7 +120,12 @@ impl Search {
         &self.certificate
     }
 
-    fn walk(&mut self, molecule: &Molecule, partition: &Partition, refiner: &mut Refiner) -> bool {
+    fn walk(
+        &mut self,
+        molecule: &Molecule,
+        partition: &Partition,
+        refiner: &mut Refiner,
+    ) -> bool {
         self.order.clear();
         self.certificate.clear();
         self.best_path.clear();
@@ -229,7 +234,9 @@ impl Search {
         let level = &mut self.levels[depth];
         level.partition.copy_from(&self.current);
         level.members.clear();
-        level.members.extend_from_slice(self.current.members(cell));
+        level
+            .members
+            .extend_from_slice(self.current.members(cell));
         level.next = 0;
         level.as_best = as_best;
     }

@@ -189,11 +189,7 @@ impl Writer {
             mass_number = 1 + here.deuterium + 2 * here.tritium;
             deuterium = 0;
         }
-        let hydrogens = if direction != 0 {
-            1
-        } else {
-            deuterium + tritium
-        };
+        let hydrogens = if direction != 0 { 1 } else { deuterium + tritium };
         let is_last_hydrogen = |hydrogen: u8| hydrogen + 1 == hydrogens;
         for (index, &(_, _, _, next)) in self.children.iter().enumerate().rev() {
             let is_last = index + 1 == self.children.len();
@@ -225,8 +221,7 @@ impl Writer {
         }
         if order_of_ligands {
             self.ligands.extend((0..hydrogens).map(|_| NONE));
-            self.ligands
-                .extend(self.children.iter().map(|child| child.3));
+            self.ligands.extend(self.children.iter().map(|child| child.3));
         }
     }
 
@@ -292,9 +287,10 @@ impl Writer {
             self.ligands.push(parent);
         }
         let here = &molecule.atoms()[atom as usize];
-        let hydrogen_is_written = isotopes && here.deuterium + here.tritium > 0 && center.is_some();
+        let hydrogen_is_written =
+            isotopes && here.deuterium + here.tritium > 0 && center.is_some();
         if let Some(center) = center {
-            if center.ligands.contains(&NONE) && !hydrogen_is_written {
+            if center.ligands.contains(&NONE) && here.hydrogens > 0 && !hydrogen_is_written {
                 self.ligands.push(NONE);
             }
         }
@@ -311,11 +307,15 @@ impl Writer {
             }
         }
         self.branch(molecule, atom, center.is_some(), isotopes);
-        let sense = center.map(|center| is_even(&center.ligands, &self.ligands));
-        let hydrogens_apart = if self
-            .hydrogen_directions
-            .get(atom as usize)
-            .is_some_and(|&d| d != 0)
+        let has_lone_pair = here.hydrogens == 0;
+        let sense = center.map(|center| {
+            if center.ligands.contains(&NONE) && has_lone_pair {
+                // A lone pair stands behind the first neighbor.
+                self.ligands.insert(1, NONE);
+            }
+            is_even(&center.ligands, &self.ligands)
+        });
+        let hydrogens_apart = if self.hydrogen_directions.get(atom as usize).is_some_and(|&d| d != 0)
         {
             1
         } else if isotopes {
@@ -393,6 +393,14 @@ impl Writer {
             .iter()
             .map(|geometry| [0, 1].map(|end| self.carrier(molecule, &open, geometry, end)))
             .collect();
+        let mut is_carrier = vec![false; molecule.bonds().len()];
+        for (geometry, carriers) in open.iter().zip(&carriers) {
+            for (end, &ligand) in carriers.iter().enumerate() {
+                if let Some(bond) = bond_between(molecule, geometry.ends[end], ligand) {
+                    is_carrier[bond as usize] = true;
+                }
+            }
+        }
         let mut left: Vec<usize> = (0..open.len()).collect();
         while !left.is_empty() {
             // Double bonds that share a bond with a settled one go first.
@@ -400,7 +408,7 @@ impl Writer {
                 .iter()
                 .rposition(|&index| {
                     (0..2).any(|end| {
-                        self.side(molecule, open[index].ends[end], carriers[index][end]) != 0
+                        self.side(molecule, &open[index], end, carriers[index][end]) != 0
                     })
                 })
                 .unwrap_or(left.len() - 1);
@@ -411,24 +419,34 @@ impl Writer {
             });
             let relation = if same_side { 1 } else { -1 };
             let [first, second] = carriers[index];
-            let [first_end, second_end] = geometry.ends;
-            match (
-                self.side(molecule, first_end, first),
-                self.side(molecule, second_end, second),
+            let sides = match (
+                self.side(molecule, geometry, 0, first),
+                self.side(molecule, geometry, 1, second),
             ) {
                 (0, 0) => {
                     // The one that is printed first gets `/`.
                     let is_before = first != NONE
-                        && self.times[first as usize] < self.times[first_end as usize];
+                        && self.times[first as usize] < self.times[geometry.ends[0] as usize];
                     let side = if is_before { -1 } else { 1 };
-                    self.set_side(molecule, first_end, first, side);
-                    self.set_side(molecule, second_end, second, relation * side);
+                    [side, relation * side]
                 }
-                (side, 0) => self.set_side(molecule, second_end, second, relation * side),
-                (0, side) => self.set_side(molecule, first_end, first, relation * side),
+                (side, 0) => [side, relation * side],
+                (0, side) => [relation * side, side],
                 // Both settled by neighbors: they agree, since the marks were
                 // read from a line that states all of them at once.
-                _ => {}
+                (first, second) => [first, second],
+            };
+            for end in 0..2 {
+                let carrier = carriers[index][end];
+                self.set_side(molecule, geometry.ends[end], carrier, sides[end]);
+                // Where the other neighbor of the end carries a direction for
+                // another double bond, it lies on the other side.
+                if let Some(other) = other_ligand(molecule, geometry, end, carrier) {
+                    let bond = bond_between(molecule, geometry.ends[end], other);
+                    if bond.is_some_and(|bond| is_carrier[bond as usize]) {
+                        self.set_side(molecule, geometry.ends[end], other, -sides[end]);
+                    }
+                }
             }
         }
     }
@@ -457,13 +475,18 @@ impl Writer {
                     && !kept.iter().any(|other| other.bond == neighbor.bond);
                 is_open
                     && molecule.neighbors(neighbor.atom).iter().any(|beyond| {
-                        kept.iter()
-                            .any(|other| other.ends.contains(&beyond.atom) && beyond.atom != ligand)
+                        kept.iter().any(|other| {
+                            other.ends.contains(&beyond.atom) && beyond.atom != ligand
+                        })
                     })
             })
         };
-        let best = others()
-            .min_by_key(|neighbor| (misleads(neighbor.atom), self.times[neighbor.atom as usize]));
+        let best = others().min_by_key(|neighbor| {
+            (
+                misleads(neighbor.atom),
+                self.times[neighbor.atom as usize],
+            )
+        });
         match best {
             Some(best)
                 if misleads(best.atom)
@@ -477,11 +500,23 @@ impl Writer {
         }
     }
 
-    /// On which side of the double bond at `end` a ligand is known to lie.
-    fn side(&self, molecule: &Molecule, end: u32, ligand: u32) -> i8 {
-        if ligand == NONE {
-            return self.hydrogen_directions[end as usize];
+    /// On which side of a double bond a ligand of one end is known to lie; 0
+    /// where it is not known yet.
+    fn side(&self, molecule: &Molecule, geometry: &Geometry, end: usize, ligand: u32) -> i8 {
+        let atom = geometry.ends[end];
+        let own = if ligand == NONE {
+            self.hydrogen_directions[atom as usize]
+        } else {
+            self.bond_side(molecule, atom, ligand)
+        };
+        match own {
+            0 => other_ligand(molecule, geometry, end, ligand)
+                .map_or(0, |other| -self.bond_side(molecule, atom, other)),
+            own => own,
         }
+    }
+
+    fn bond_side(&self, molecule: &Molecule, end: u32, ligand: u32) -> i8 {
         match bond_between(molecule, end, ligand) {
             Some(bond) => self.directions[bond as usize] * self.sign(end, ligand),
             None => 0,
@@ -504,6 +539,15 @@ impl Writer {
             -1
         }
     }
+}
+
+/// The neighbor of one end of a double bond that is neither the other end nor `ligand`.
+fn other_ligand(molecule: &Molecule, geometry: &Geometry, end: usize, ligand: u32) -> Option<u32> {
+    molecule
+        .neighbors(geometry.ends[end])
+        .iter()
+        .map(|neighbor| neighbor.atom)
+        .find(|&atom| atom != geometry.ends[1 - end] && atom != ligand)
 }
 
 fn bond_between(molecule: &Molecule, a: u32, b: u32) -> Option<u32> {
