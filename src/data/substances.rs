@@ -7,7 +7,7 @@ use smallvec::SmallVec;
 
 use super::cas::{CasFault, CasNumber};
 use super::structure::{Match, StructureIndex};
-use super::{DataError, NameError, Substance, Tables, built_in, load, name};
+use super::{DataError, NameError, Substance, TableText, Tables, built_in, load, name};
 use crate::chem::Keys;
 use crate::quantity::{Flag, Flags};
 
@@ -70,6 +70,22 @@ impl Substances {
         // that no structure stands twice is left to a test: it would cost every start its index
         load::load(&mut substances, &built_in::TABLES, None)?;
         Ok(substances)
+    }
+
+    /// The files of the built-in layer.
+    pub fn built_in_texts() -> Vec<TableText<'static>> {
+        let tables = built_in::TABLES;
+        [
+            tables.substances,
+            tables.measured,
+            tables.hansen,
+            tables.vapor_pressure,
+            tables.density,
+            tables.conflicts,
+        ]
+        .into_iter()
+        .flatten()
+        .collect()
     }
 
     /// Number of substances.

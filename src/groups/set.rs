@@ -16,8 +16,9 @@ pub struct Group {
     pub number: u16,
     /// Formula as the paper prints it.
     pub formula: Arc<str>,
-    /// Atoms it stands for, doubled: some groups hold half an atom.
-    pub doubled_composition: Composition,
+    /// Atoms it stands for, doubled: some groups hold half an atom. `None` for
+    /// an ion, which no neutral molecule holds.
+    pub doubled_composition: Option<Composition>,
 }
 
 /// A pattern with what it gives.
@@ -134,8 +135,8 @@ impl GroupSet {
     pub fn conserves(&self, counts: &GroupCounts, composition: &Composition) -> bool {
         let mut doubled = Composition::default();
         for (number, count) in counts.iter() {
-            match self.group(number) {
-                Some(group) => doubled.add_times(&group.doubled_composition, count),
+            match self.group(number).and_then(|group| group.doubled_composition.as_ref()) {
+                Some(composition) => doubled.add_times(composition, count),
                 None => return false,
             }
         }
@@ -159,8 +160,12 @@ fn read_groups(table: &Table) -> Result<Vec<Group>, GroupsError> {
         let group = Group {
             number: row.required_integer(number)?,
             formula: row.required_text(formula)?.into(),
-            doubled_composition: doubled_composition(row.required_text(composition)?)
-                .ok_or_else(|| row.fault(composition, "is no formula of whole or half atoms"))?,
+            doubled_composition: match row.text(composition) {
+                "" => None,
+                text => Some(doubled_composition(text).ok_or_else(|| {
+                    row.fault(composition, "is no formula of whole or half atoms")
+                })?),
+            },
         };
         match groups.binary_search_by_key(&group.number, |known| known.number) {
             Ok(_) => return Err(row.fault(number, "stands twice").into()),
