@@ -47,7 +47,7 @@ pub enum LiquidMixture {
     /// An ideal mixture of this many components.
     Ideal(usize),
     /// A mixture of a UNIFAC model.
-    Unifac(UnifacMixture),
+    Unifac(Box<UnifacMixture>),
 }
 
 impl LiquidMixture {

@@ -20,6 +20,16 @@ pub(super) enum Combinatorial {
     ThreeQuarters,
 }
 
+impl Combinatorial {
+    /// The power of r in the Flory–Huggins term.
+    pub(super) fn power(self) -> f64 {
+        match self {
+            Self::Original => 1.0,
+            Self::ThreeQuarters => 0.75,
+        }
+    }
+}
+
 /// A UNIFAC model: its tables and its combinatorial part.
 ///
 /// # Source
@@ -50,7 +60,7 @@ pub(super) enum Combinatorial {
 #[derive(Clone, Debug)]
 pub struct Unifac {
     pub(super) tables: Arc<UnifacTables>,
-    combinatorial: Combinatorial,
+    pub(super) combinatorial: Combinatorial,
 }
 
 /// Group data of one molecule in one UNIFAC model.

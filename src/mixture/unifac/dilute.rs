@@ -16,13 +16,16 @@ use super::tables::UnifacTables;
 pub struct GroupsAtTemperature {
     tables: Arc<UnifacTables>,
     temperature_k: f64,
+    /// Power of r in the Flory–Huggins term.
+    flory_power: f64,
     /// Row m, column n: ψ_mn; 1 where nothing is published, and never used there.
     psi: Vec<f64>,
 }
 
 impl GroupsAtTemperature {
-    pub(super) fn new(
+    fn new(
         tables: &Arc<UnifacTables>,
+        flory_power: f64,
         temperature_k: f64,
     ) -> Result<Self, MixtureError> {
         let n = tables.main_groups().len();
@@ -46,6 +49,7 @@ impl GroupsAtTemperature {
         Ok(Self {
             tables: Arc::clone(tables),
             temperature_k,
+            flory_power,
             psi,
         })
     }
@@ -125,7 +129,8 @@ pub struct KeysAtTemperature {
     groups: Arc<GroupsAtTemperature>,
     keys: Vec<Key>,
     mains: u128,
-    /// Blocks of key main groups.
+    /// Main groups of the keys, and blocks of [`LANES`] that hold them.
+    columns: usize,
     blocks: usize,
     /// For each main group N and block: ψ_Nk, then ψ_kN.
     psi: Vec<[[f64; LANES]; 2]>,
@@ -135,12 +140,12 @@ pub struct KeysAtTemperature {
 
 #[derive(Clone, Debug)]
 struct Key {
-    pure: f64,
+    /// Everything in ln γ∞ that does not depend on the candidate: with
+    /// Σ A_k (1 + ln q_candidate) = q (1 + ln q_candidate) taken out of the residual part.
+    constant: f64,
     r_flory: f64,
-    ln_r_flory: f64,
+    r: f64,
     q: f64,
-    r_per_q: f64,
-    ln_r_per_q: f64,
 }
 
 impl KeysAtTemperature {
@@ -171,12 +176,12 @@ impl KeysAtTemperature {
             tables.gap(key.mains).map_err(|gap| tables.gap_error(gap))?;
             mains |= key.mains;
             records.push(Key {
-                pure: groups.pure_term(key, &groups.own_terms(key)),
+                constant: 1.0 + key.r_flory.ln() - HALF_Z * key.q * (1.0 + (key.r / key.q).ln())
+                    + key.q
+                    - groups.pure_term(key, &groups.own_terms(key)),
                 r_flory: key.r_flory,
-                ln_r_flory: key.r_flory.ln(),
+                r: key.r,
                 q: key.q,
-                r_per_q: key.r / key.q,
-                ln_r_per_q: (key.r / key.q).ln(),
             });
         }
         let places: Vec<usize> = (0..n).filter(|&at| mains >> at & 1 == 1).collect();
@@ -201,6 +206,7 @@ impl KeysAtTemperature {
             groups: Arc::clone(groups),
             keys: records,
             mains,
+            columns: places.len(),
             blocks,
             psi,
             areas,
@@ -236,17 +242,15 @@ impl KeysAtTemperature {
         debug_assert_eq!(candidate.model, self.groups.tables.model());
         self.check(candidate)?;
         let own = self.groups.own_terms(candidate);
-        let per_q = 1.0 / candidate.q;
-        let ln_r_flory = candidate.r_flory.ln();
-        let r_per_q = candidate.r * per_q;
-        let ln_r_per_q = r_per_q.ln();
+        let (ln_r, ln_q) = (candidate.r.ln(), candidate.q.ln());
+        let ln_r_flory = self.groups.flory_power * ln_r;
         let per_r_flory = 1.0 / candidate.r_flory;
-        let per_r_per_q = 1.0 / r_per_q;
+        let q_per_r = candidate.q / candidate.r;
+        let by_surface = HALF_Z * (ln_r - ln_q) + ln_q;
         for (out, key) in out.iter_mut().zip(&self.keys) {
-            *out = 1.0 - key.r_flory * per_r_flory + key.ln_r_flory
-                - ln_r_flory
-                - HALF_Z * key.q * (1.0 - key.r_per_q * per_r_per_q + key.ln_r_per_q - ln_r_per_q)
-                - key.pure;
+            *out = key.constant - key.r_flory * per_r_flory - ln_r_flory
+                + HALF_Z * key.r * q_per_r
+                + key.q * by_surface;
         }
         for block in 0..self.blocks {
             let mut s = [0.0; LANES];
@@ -259,13 +263,14 @@ impl KeysAtTemperature {
                 }
             }
             let mut e = [0.0; LANES];
-            for lane in 0..LANES {
-                e[lane] = 1.0 - (s[lane] * per_q).ln() - sum[lane];
+            let used = LANES.min(self.columns - block * LANES);
+            for lane in 0..used {
+                e[lane] = s[lane].ln() + sum[lane];
             }
             for (k, out) in out.iter_mut().enumerate() {
                 let areas = &self.areas[k * self.blocks + block];
                 for lane in 0..LANES {
-                    *out += areas[lane] * e[lane];
+                    *out -= areas[lane] * e[lane];
                 }
             }
         }
@@ -392,6 +397,7 @@ impl Unifac {
         &self,
         temperature_k: f64,
     ) -> Result<Arc<GroupsAtTemperature>, MixtureError> {
-        GroupsAtTemperature::new(&self.tables, temperature_k).map(Arc::new)
+        GroupsAtTemperature::new(&self.tables, self.combinatorial.power(), temperature_k)
+            .map(Arc::new)
     }
 }

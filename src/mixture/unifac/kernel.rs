@@ -19,14 +19,35 @@ pub(super) const MOST_LN_PSI: f64 = 150.0;
 pub struct UnifacMixture {
     model: &'static str,
     components: usize,
+    /// Main groups of the mixture.
     mains: usize,
+    /// The same filled up to a multiple of [`LANES`] with groups of no surface
+    /// that interact with none: the length of every row below.
+    width: usize,
     r: Vec<f64>,
     q: Vec<f64>,
     r_flory: Vec<f64>,
+    ln_r_flory: Vec<f64>,
+    ln_r_per_q: Vec<f64>,
     /// Row i: surface of component i in each main group of the mixture.
     areas: Vec<f64>,
-    /// Row m: interaction of main group m with each.
-    interactions: Vec<Interaction>,
+    /// The main groups of component i are `own[own_ends[i - 1]..own_ends[i]]`.
+    own: Vec<OwnMain>,
+    own_ends: Vec<usize>,
+    /// Cell of ψ and its parameters, where they are not all zero.
+    interactions: Vec<(usize, Interaction)>,
+}
+
+/// Rows are handled four numbers at a time.
+const LANES: usize = 4;
+
+/// A main group within one pure component.
+#[derive(Clone, Copy, Debug)]
+struct OwnMain {
+    main: usize,
+    area: f64,
+    /// Surface fraction.
+    theta: f64,
 }
 
 impl UnifacMixture {
@@ -50,26 +71,46 @@ impl UnifacMixture {
             .filter(|&at| present >> at & 1 == 1)
             .collect();
         let mains = places.len();
-        let mut areas = vec![0.0; components.len() * mains];
-        for (row, component) in areas.chunks_exact_mut(mains).zip(components) {
+        let width = mains.next_multiple_of(LANES);
+        let mut areas = vec![0.0; components.len() * width];
+        let mut own = Vec::new();
+        let mut own_ends = Vec::with_capacity(components.len());
+        for (row, component) in areas.chunks_exact_mut(width).zip(components) {
             for &(main, area) in &component.areas {
                 let below = present & ((1 << main.0) - 1);
-                row[below.count_ones() as usize] = area;
+                let main = below.count_ones() as usize;
+                row[main] = area;
+                own.push(OwnMain {
+                    main,
+                    area,
+                    theta: area / component.q,
+                });
+            }
+            own_ends.push(own.len());
+        }
+        let mut interactions = Vec::with_capacity(mains * mains);
+        for (m, &place_m) in places.iter().enumerate() {
+            for (n, &place_n) in places.iter().enumerate() {
+                let parameters = tables.interaction_at(place_m, place_n);
+                if parameters != Interaction::default() {
+                    interactions.push((m * width + n, parameters));
+                }
             }
         }
-        let interactions = places
-            .iter()
-            .flat_map(|&m| places.iter().map(move |&n| tables.interaction_at(m, n)))
-            .collect();
         let column = |of: fn(&Component) -> f64| components.iter().map(of).collect();
         Ok(Self {
             model: tables.model(),
             components: components.len(),
             mains,
+            width,
             r: column(|one| one.r),
             q: column(|one| one.q),
             r_flory: column(|one| one.r_flory),
+            ln_r_flory: column(|one| one.r_flory.ln()),
+            ln_r_per_q: column(|one| (one.r / one.q).ln()),
             areas,
+            own,
+            own_ends,
             interactions,
         })
     }
@@ -91,11 +132,11 @@ impl UnifacMixture {
     /// [`MixtureError::Temperature`] if it is not a positive number or so low
     /// that an interaction leaves the range of numbers.
     pub fn state(&self, temperature_k: f64) -> Result<UnifacState<'_>, MixtureError> {
-        let (n, g) = (self.components, self.mains);
+        let (n, g) = (self.components, self.width);
         let mut state = UnifacState {
             mixture: self,
             temperature_k: f64::NAN,
-            psi: vec![0.0; g * g],
+            psi: vec![1.0; g * g],
             pure: vec![0.0; n],
             slopes_at_k: f64::NAN,
             psi_slope: Vec::new(),
@@ -148,27 +189,85 @@ pub struct UnifacState<'m> {
     spare: Vec<f64>,
 }
 
-/// S and E of the group mixture with surface fractions `theta`.
-#[inline]
-fn group_terms(psi: &[f64], theta: &[f64], s: &mut [f64], w: &mut [f64], e: &mut [f64]) {
-    let g = theta.len();
-    s.fill(0.0);
-    for (&theta, row) in theta.iter().zip(psi.chunks_exact(g)) {
-        for (s, &psi) in s.iter_mut().zip(row) {
-            *s += theta * psi;
+/// Sums over the components of a composition, in the forms the combinatorial part needs.
+struct Sums {
+    /// Σ x q.
+    q: f64,
+    /// Σ x q / Σ x r.
+    q_per_r: f64,
+    ln_r_per_q: f64,
+    /// 1/Σ x r', r' being r or r^(3/4).
+    per_r_flory: f64,
+    ln_r_flory: f64,
+}
+
+impl Sums {
+    fn new(r: f64, r_flory: f64, q: f64) -> Self {
+        let q_per_r = q / r;
+        Self {
+            q,
+            q_per_r,
+            ln_r_per_q: -q_per_r.ln(),
+            per_r_flory: 1.0 / r_flory,
+            ln_r_flory: r_flory.ln(),
         }
+    }
+}
+
+/// S, Θ/S and E of the group mixture with surface fractions `theta`; E of the first `mains` groups only.
+#[inline]
+fn group_terms(
+    psi: &[f64],
+    mains: usize,
+    theta: &[f64],
+    s: &mut [f64],
+    w: &mut [f64],
+    e: &mut [f64],
+) {
+    let width = theta.len();
+    s.fill(0.0);
+    for (&theta, row) in theta[..mains].iter().zip(psi.chunks_exact(width)) {
+        add_times(s, theta, row);
     }
     for ((w, &theta), &s) in w.iter_mut().zip(theta).zip(&*s) {
         *w = theta / s;
     }
-    for ((e, &s), row) in e.iter_mut().zip(&*s).zip(psi.chunks_exact(g)) {
-        let sum: f64 = row.iter().zip(&*w).map(|(&psi, &w)| psi * w).sum();
-        *e = 1.0 - s.ln() - sum;
+    // groups of the filling have Θ = 0 and every ψ = 1, so S = 1 there
+    for ((e, &s), row) in e[..mains].iter_mut().zip(&*s).zip(psi.chunks_exact(width)) {
+        *e = 1.0 - s.ln() - dot(row, w);
     }
 }
 
+/// Adds `factor` times `row`; lengths are equal and multiples of [`LANES`].
+#[inline]
+fn add_times(sum: &mut [f64], factor: f64, row: &[f64]) {
+    for (sum, row) in sum
+        .as_chunks_mut::<LANES>()
+        .0
+        .iter_mut()
+        .zip(row.as_chunks::<LANES>().0)
+    {
+        for (sum, value) in sum.iter_mut().zip(row) {
+            *sum += factor * value;
+        }
+    }
+}
+
+/// Scalar product; lengths are equal and multiples of [`LANES`].
+#[inline]
 fn dot(a: &[f64], b: &[f64]) -> f64 {
-    a.iter().zip(b).map(|(a, b)| a * b).sum()
+    let mut sums = [0.0; LANES];
+    for (a, b) in a
+        .as_chunks::<LANES>()
+        .0
+        .iter()
+        .zip(b.as_chunks::<LANES>().0)
+    {
+        for ((sum, a), b) in sums.iter_mut().zip(a).zip(b) {
+            *sum += a * b;
+        }
+    }
+    (sums[0] + sums[2]) + (sums[1] + sums[3])
 }
 
 impl UnifacState<'_> {
@@ -194,37 +293,26 @@ impl UnifacState<'_> {
         }
         let per_k = 1.0 / temperature_k;
         let mut largest = 0.0_f64;
-        for (psi, p) in self.psi.iter_mut().zip(&mixture.interactions) {
+        for &(cell, p) in &mixture.interactions {
             let ln_psi = -(p.a_k * per_k + p.b + p.c_per_k * temperature_k);
             largest = largest.max(ln_psi.abs());
-            // Most pairs on and near the diagonal do not interact; exp is the dear part.
-            *psi = if ln_psi == 0.0 { 1.0 } else { ln_psi.exp() };
+            self.psi[cell] = ln_psi.exp();
         }
         if largest > MOST_LN_PSI {
             return Err(refused());
         }
-        let g = mixture.mains;
-        for ((pure, areas), &q) in self
-            .pure
-            .iter_mut()
-            .zip(mixture.areas.chunks_exact(g))
-            .zip(&mixture.q)
-        {
-            *pure = pure_term(
-                &self.psi,
-                areas,
-                q,
-                &mut self.theta,
-                &mut self.s,
-                &mut self.w,
-            );
+        let mut start = 0;
+        for (pure, &end) in self.pure.iter_mut().zip(&mixture.own_ends) {
+            let own = &mixture.own[start..end];
+            *pure = pure_term(&self.psi, mixture.width, own, &mut self.w);
+            start = end;
         }
         self.temperature_k = temperature_k;
         Ok(())
     }
 
-    /// Checks the fractions and sets Θ and its terms; returns Σ x r, Σ x r', Σ x q.
-    fn compose(&mut self, x: &[f64]) -> Result<[f64; 3], MixtureError> {
+    /// Checks the fractions and sets Θ and its terms; returns the sums over the components.
+    fn compose(&mut self, x: &[f64]) -> Result<Sums, MixtureError> {
         let mixture = self.mixture;
         check_fractions(x, mixture.components)?;
         if self.temperature_k.is_nan() {
@@ -237,15 +325,13 @@ impl UnifacState<'_> {
         self.theta.fill(0.0);
         for (i, (&x, areas)) in x
             .iter()
-            .zip(mixture.areas.chunks_exact(mixture.mains))
+            .zip(mixture.areas.chunks_exact(mixture.width))
             .enumerate()
         {
             r += x * mixture.r[i];
             r_flory += x * mixture.r_flory[i];
             q += x * mixture.q[i];
-            for (theta, &area) in self.theta.iter_mut().zip(areas) {
-                *theta += x * area;
-            }
+            add_times(&mut self.theta, x, areas);
         }
         let per_q = 1.0 / q;
         for theta in &mut self.theta {
@@ -253,23 +339,26 @@ impl UnifacState<'_> {
         }
         group_terms(
             &self.psi,
+            mixture.mains,
             &self.theta,
             &mut self.s,
             &mut self.w,
             &mut self.e,
         );
-        Ok([r, r_flory, q])
+        Ok(Sums::new(r, r_flory, q))
     }
 
-    fn combinatorial(&self, i: usize, [r, r_flory, q]: [f64; 3]) -> f64 {
+    fn combinatorial(&self, i: usize, sums: &Sums) -> f64 {
         let mixture = self.mixture;
-        let v_flory = mixture.r_flory[i] / r_flory;
-        let v_per_f = (mixture.r[i] * q) / (r * mixture.q[i]);
-        1.0 - v_flory + v_flory.ln() - HALF_Z * mixture.q[i] * (1.0 - v_per_f + v_per_f.ln())
+        let (r, q) = (mixture.r[i], mixture.q[i]);
+        let v_flory = mixture.r_flory[i] * sums.per_r_flory;
+        let ln_v_flory = mixture.ln_r_flory[i] - sums.ln_r_flory;
+        let ln_v_per_f = mixture.ln_r_per_q[i] - sums.ln_r_per_q;
+        1.0 - v_flory + ln_v_flory - HALF_Z * (q - r * sums.q_per_r + q * ln_v_per_f)
     }
 
     fn residual(&self, i: usize) -> f64 {
-        let g = self.mixture.mains;
+        let g = self.mixture.width;
         dot(&self.mixture.areas[i * g..(i + 1) * g], &self.e) - self.pure[i]
     }
 
@@ -288,7 +377,7 @@ impl UnifacState<'_> {
         check_length("results", out.len(), self.mixture.components)?;
         let sums = self.compose(x)?;
         for (i, out) in out.iter_mut().enumerate() {
-            *out = self.combinatorial(i, sums) + self.residual(i);
+            *out = self.combinatorial(i, &sums) + self.residual(i);
         }
         Ok(())
     }
@@ -308,7 +397,7 @@ impl UnifacState<'_> {
         check_length("results", residual.len(), self.mixture.components)?;
         let sums = self.compose(x)?;
         for i in 0..self.mixture.components {
-            combinatorial[i] = self.combinatorial(i, sums);
+            combinatorial[i] = self.combinatorial(i, &sums);
             residual[i] = self.residual(i);
         }
         Ok(())
@@ -326,7 +415,7 @@ impl UnifacState<'_> {
         // before compose: both use the same scratch
         self.make_slopes();
         self.compose(x)?;
-        let g = self.mixture.mains;
+        let g = self.mixture.width;
         group_slopes(
             &self.psi,
             &self.psi_slope,
@@ -350,14 +439,12 @@ impl UnifacState<'_> {
             return;
         }
         let mixture = self.mixture;
-        let (n, g) = (mixture.components, mixture.mains);
+        let (n, g) = (mixture.components, mixture.width);
         self.psi_slope.clear();
-        self.psi_slope.extend(
-            self.psi
-                .iter()
-                .zip(&mixture.interactions)
-                .map(|(psi, p)| psi * p.ln_psi_slope_per_k(self.temperature_k)),
-        );
+        self.psi_slope.resize(g * g, 0.0);
+        for &(cell, p) in &mixture.interactions {
+            self.psi_slope[cell] = self.psi[cell] * p.ln_psi_slope_per_k(self.temperature_k);
+        }
         self.pure_slope.clear();
         self.spare.resize(g.max(n * g), 0.0);
         for (areas, &q) in mixture.areas.chunks_exact(g).zip(&mixture.q) {
@@ -366,6 +453,7 @@ impl UnifacState<'_> {
             }
             group_terms(
                 &self.psi,
+                mixture.mains,
                 &self.theta,
                 &mut self.s,
                 &mut self.w,
@@ -402,9 +490,14 @@ impl UnifacState<'_> {
         out: &mut [f64],
     ) -> Result<(), MixtureError> {
         let mixture = self.mixture;
-        let (n, g) = (mixture.components, mixture.mains);
+        let (n, g) = (mixture.components, mixture.width);
         check_length("results", out.len(), n * n)?;
-        let [r, r_flory, q] = self.compose(x)?;
+        let Sums {
+            per_r_flory,
+            q,
+            q_per_r,
+            ..
+        } = self.compose(x)?;
         let sum: f64 = x.iter().sum();
         if (sum - 1.0).abs() > 1e-9 {
             return Err(MixtureError::Sum { sum });
@@ -434,12 +527,11 @@ impl UnifacState<'_> {
                 }
                 *e = sum / q;
             }
-            let (v_j, f_j) = (mixture.r[j] / r, mixture.q[j] / q);
-            let flory_j = mixture.r_flory[j] / r_flory;
+            let (v_j, f_j) = (mixture.r[j] * q_per_r / q, mixture.q[j] / q);
+            let flory_j = mixture.r_flory[j] * per_r_flory;
             for i in 0..n {
-                let v_per_f = (mixture.r[i] * q) / (r * mixture.q[i]);
-                let combinatorial = (1.0 - mixture.r_flory[i] / r_flory) * (1.0 - flory_j)
-                    - HALF_Z * mixture.q[i] * (1.0 - v_per_f) * (f_j - v_j);
+                let combinatorial = (1.0 - mixture.r_flory[i] * per_r_flory) * (1.0 - flory_j)
+                    - HALF_Z * (mixture.q[i] - mixture.r[i] * q_per_r) * (f_j - v_j);
                 out[i * n + j] = combinatorial + dot(&mixture.areas[i * g..(i + 1) * g], &self.e);
             }
         }
@@ -461,33 +553,24 @@ fn check_length(what: &'static str, found: usize, expected: usize) -> Result<(),
 
 /// Σ_M A_M E_M of a pure component, over its own main groups only.
 #[inline]
-fn pure_term(
-    psi: &[f64],
-    areas: &[f64],
-    q: f64,
-    theta: &mut [f64],
-    s: &mut [f64],
-    w: &mut [f64],
-) -> f64 {
-    let g = areas.len();
-    let per_q = 1.0 / q;
-    s.fill(0.0);
-    for (m, (theta, &area)) in theta.iter_mut().zip(areas).enumerate() {
-        *theta = area * per_q;
-        if area > 0.0 {
-            for (s, &psi) in s.iter_mut().zip(&psi[m * g..(m + 1) * g]) {
-                *s += *theta * psi;
-            }
-        }
-    }
-    for ((w, &theta), &s) in w.iter_mut().zip(&*theta).zip(&*s) {
-        *w = theta / s;
+fn pure_term(psi: &[f64], width: usize, own: &[OwnMain], w: &mut [f64]) -> f64 {
+    // one main group: S = 1 and E = 0
+    if own.len() == 1 {
+        return 0.0;
     }
     let mut sum = 0.0;
-    for (m, &area) in areas.iter().enumerate() {
-        if area > 0.0 {
-            sum += area * (1.0 - s[m].ln() - dot(&psi[m * g..(m + 1) * g], w));
-        }
+    for (w, of) in w.iter_mut().zip(own) {
+        let s: f64 = own
+            .iter()
+            .map(|other| other.theta * psi[other.main * width + of.main])
+            .sum();
+        *w = of.theta / s;
+        sum += of.area * (1.0 - s.ln());
+    }
+    for of in own {
+        let row = &psi[of.main * width..(of.main + 1) * width];
+        let inner: f64 = own.iter().zip(&*w).map(|(one, w)| row[one.main] * w).sum();
+        sum -= of.area * inner;
     }
     sum
 }
