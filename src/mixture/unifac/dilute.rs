@@ -2,14 +2,12 @@
 
 use std::sync::Arc;
 
-use smallvec::SmallVec;
-
 use crate::mixture::liquid::check_fractions;
 use crate::mixture::{MixtureError, PairGap};
 
 use super::component::{Component, Unifac};
 use super::kernel::HALF_Z;
-use super::tables::UnifacTables;
+use super::tables::{MainIndex, UnifacTables};
 
 /// ψ of all main groups of a model at one temperature; shared by the batch records.
 #[derive(Clone, Debug)]
@@ -68,51 +66,29 @@ impl GroupsAtTemperature {
         self.tables.main_groups().len()
     }
 
-    /// Θ_N / S_N and S_N of a pure component over its own main groups, in the order of `areas`.
-    fn own_terms(&self, one: &Component) -> SmallVec<[OwnTerm; 8]> {
-        let n = self.main_groups();
-        let per_q = 1.0 / one.q;
-        one.areas
-            .iter()
-            .map(|&(main, area)| {
-                let s: f64 = one
-                    .areas
-                    .iter()
-                    .map(|&(other, area)| area * self.psi[other.get() * n + main.get()])
-                    .sum();
-                // the factors 1/q of Θ and S cancel in w
-                OwnTerm {
-                    s: s * per_q,
-                    w: area / s,
-                }
-            })
-            .collect()
-    }
-
-    /// Σ_M A_M E_M of a pure component.
-    fn pure_term(&self, one: &Component, own: &[OwnTerm]) -> f64 {
+    /// Σ_N' A_N' ψ_N'N of a pure component for its own main group `main`: S_N times q.
+    #[inline]
+    fn own_sum(&self, one: &Component, main: MainIndex) -> f64 {
         let n = self.main_groups();
         one.areas
             .iter()
-            .zip(own)
-            .map(|(&(main, area), term)| {
-                let row = &self.psi[main.get() * n..(main.get() + 1) * n];
-                let sum: f64 = one
-                    .areas
-                    .iter()
-                    .zip(own)
-                    .map(|(&(other, _), term)| row[other.get()] * term.w)
-                    .sum();
-                area * (1.0 - term.s.ln() - sum)
-            })
+            .map(|&(other, area)| area * self.psi[other.get() * n + main.get()])
             .sum()
     }
-}
 
-#[derive(Clone, Copy)]
-struct OwnTerm {
-    s: f64,
-    w: f64,
+    /// Σ_M A_M E_M = −Σ_M A_M ln S_M of a pure component: the double sum in E adds up to q.
+    fn pure_term(&self, one: &Component) -> f64 {
+        // one main group: S = 1
+        if one.areas.len() == 1 {
+            return 0.0;
+        }
+        let sum: f64 = one
+            .areas
+            .iter()
+            .map(|&(main, area)| area * self.own_sum(one, main).ln())
+            .sum();
+        one.q * one.q.ln() - sum
+    }
 }
 
 /// Columns are handled four at a time, the rest filled with groups of no surface.
@@ -178,7 +154,7 @@ impl KeysAtTemperature {
             records.push(Key {
                 constant: 1.0 + key.r_flory.ln() - HALF_Z * key.q * (1.0 + (key.r / key.q).ln())
                     + key.q
-                    - groups.pure_term(key, &groups.own_terms(key)),
+                    - groups.pure_term(key),
                 r_flory: key.r_flory,
                 r: key.r,
                 q: key.q,
@@ -241,7 +217,6 @@ impl KeysAtTemperature {
         assert_eq!(out.len(), self.keys.len(), "one result for each key");
         debug_assert_eq!(candidate.model, self.groups.tables.model());
         self.check(candidate)?;
-        let own = self.groups.own_terms(candidate);
         let (ln_r, ln_q) = (candidate.r.ln(), candidate.q.ln());
         let ln_r_flory = self.groups.flory_power * ln_r;
         let per_r_flory = 1.0 / candidate.r_flory;
@@ -252,14 +227,26 @@ impl KeysAtTemperature {
                 + HALF_Z * key.r * q_per_r
                 + key.q * by_surface;
         }
+        // Θ_N/S_N of the candidate; the factors 1/q of Θ and S cancel
+        let mut few = [0.0; 8];
+        let mut many;
+        let w = if candidate.areas.len() <= few.len() {
+            &mut few[..candidate.areas.len()]
+        } else {
+            many = vec![0.0; candidate.areas.len()];
+            &mut many
+        };
+        for (w, &(main, area)) in w.iter_mut().zip(&candidate.areas) {
+            *w = area / self.groups.own_sum(candidate, main);
+        }
         for block in 0..self.blocks {
             let mut s = [0.0; LANES];
             let mut sum = [0.0; LANES];
-            for (&(main, area), term) in candidate.areas.iter().zip(&own) {
+            for (&(main, area), &w) in candidate.areas.iter().zip(&*w) {
                 let [from, to] = &self.psi[main.get() * self.blocks + block];
                 for lane in 0..LANES {
                     s[lane] += area * from[lane];
-                    sum[lane] += term.w * to[lane];
+                    sum[lane] += w * to[lane];
                 }
             }
             let mut e = [0.0; LANES];
@@ -361,13 +348,12 @@ impl HostAtTemperature {
     pub fn ln_gamma_inf(&self, candidate: &Component) -> Result<f64, PairGap> {
         debug_assert_eq!(candidate.model, self.groups.tables.model());
         gap_with(&self.groups.tables, candidate, self.mains)?;
-        let own = self.groups.own_terms(candidate);
         let residual: f64 = candidate
             .areas
             .iter()
             .map(|&(main, area)| area * self.e[main.get()])
             .sum::<f64>()
-            - self.groups.pure_term(candidate, &own);
+            - self.groups.pure_term(candidate);
         let v_flory = candidate.r_flory / self.r_flory;
         let v_per_f = (candidate.r * self.q) / (self.r * candidate.q);
         Ok(residual + 1.0 - v_flory + v_flory.ln()

@@ -304,7 +304,7 @@ impl UnifacState<'_> {
         let mut start = 0;
         for (pure, &end) in self.pure.iter_mut().zip(&mixture.own_ends) {
             let own = &mixture.own[start..end];
-            *pure = pure_term(&self.psi, mixture.width, own, &mut self.w);
+            *pure = pure_term(&self.psi, mixture.width, own);
             start = end;
         }
         self.temperature_k = temperature_k;
@@ -412,10 +412,10 @@ impl UnifacState<'_> {
     /// As [`Self::ln_gamma`].
     pub fn ln_gamma_slope_per_k(&mut self, x: &[f64], out: &mut [f64]) -> Result<(), MixtureError> {
         check_length("results", out.len(), self.mixture.components)?;
-        // before compose: both use the same scratch
-        self.make_slopes();
         self.compose(x)?;
+        self.make_slopes();
         let g = self.mixture.width;
+        self.spare.resize(self.spare.len().max(g), 0.0);
         group_slopes(
             &self.psi,
             &self.psi_slope,
@@ -439,35 +439,25 @@ impl UnifacState<'_> {
             return;
         }
         let mixture = self.mixture;
-        let (n, g) = (mixture.components, mixture.width);
+        let g = mixture.width;
         self.psi_slope.clear();
         self.psi_slope.resize(g * g, 0.0);
         for &(cell, p) in &mixture.interactions {
             self.psi_slope[cell] = self.psi[cell] * p.ln_psi_slope_per_k(self.temperature_k);
         }
         self.pure_slope.clear();
-        self.spare.resize(g.max(n * g), 0.0);
-        for (areas, &q) in mixture.areas.chunks_exact(g).zip(&mixture.q) {
-            for (theta, &area) in self.theta.iter_mut().zip(areas) {
-                *theta = area / q;
-            }
-            group_terms(
-                &self.psi,
-                mixture.mains,
-                &self.theta,
-                &mut self.s,
-                &mut self.w,
-                &mut self.e,
+        let mut start = 0;
+        for &end in &mixture.own_ends {
+            let own = &mixture.own[start..end];
+            self.pure_slope.push(
+                -own.iter()
+                    .map(|of| {
+                        of.area * own_s(&self.psi_slope, g, own, of.main)
+                            / own_s(&self.psi, g, own, of.main)
+                    })
+                    .sum::<f64>(),
             );
-            group_slopes(
-                &self.psi,
-                &self.psi_slope,
-                &self.theta,
-                &self.s,
-                &mut self.spare,
-                &mut self.e,
-            );
-            self.pure_slope.push(dot(areas, &self.e));
+            start = end;
         }
         self.slopes_at_k = self.temperature_k;
     }
@@ -552,27 +542,25 @@ fn check_length(what: &'static str, found: usize, expected: usize) -> Result<(),
 }
 
 /// Σ_M A_M E_M of a pure component, over its own main groups only.
+///
+/// There Σ_M A_M Σ_N Θ_N ψ_MN/S_N = q, so it is −Σ_M A_M ln S_M.
 #[inline]
-fn pure_term(psi: &[f64], width: usize, own: &[OwnMain], w: &mut [f64]) -> f64 {
-    // one main group: S = 1 and E = 0
+fn pure_term(psi: &[f64], width: usize, own: &[OwnMain]) -> f64 {
+    // one main group: S = 1
     if own.len() == 1 {
         return 0.0;
     }
-    let mut sum = 0.0;
-    for (w, of) in w.iter_mut().zip(own) {
-        let s: f64 = own
-            .iter()
-            .map(|other| other.theta * psi[other.main * width + of.main])
-            .sum();
-        *w = of.theta / s;
-        sum += of.area * (1.0 - s.ln());
-    }
-    for of in own {
-        let row = &psi[of.main * width..(of.main + 1) * width];
-        let inner: f64 = own.iter().zip(&*w).map(|(one, w)| row[one.main] * w).sum();
-        sum -= of.area * inner;
-    }
-    sum
+    -own.iter()
+        .map(|of| of.area * own_s(psi, width, own, of.main).ln())
+        .sum::<f64>()
+}
+
+/// S_M of a pure component, or its slope if `psi` holds slopes.
+#[inline]
+fn own_s(psi: &[f64], width: usize, own: &[OwnMain], main: usize) -> f64 {
+    own.iter()
+        .map(|one| one.theta * psi[one.main * width + main])
+        .sum()
 }
 
 /// dE_M/dT = −S'_M/S_M − Σ_N Θ_N (ψ'_MN/S_N − ψ_MN S'_N/S_N²), into `e`.
