@@ -41,7 +41,10 @@ impl GroupsAtTemperature {
                 if ln_psi.abs() > super::kernel::MOST_LN_PSI {
                     return Err(refused);
                 }
-                psi[i * n + j] = ln_psi.exp();
+                // two thirds of the pairs are the diagonal or not published
+                if ln_psi != 0.0 {
+                    psi[i * n + j] = ln_psi.exp();
+                }
             }
         }
         Ok(Self {

@@ -162,6 +162,7 @@ impl UnifacMixture {
 /// E_M = 1 − ln S_M − Σ_N Θ_N ψ_MN / S_N, the residual part is
 /// ln γ_i^R = Σ_M A_iM (E_M − E_M in pure i): the sum over subgroups of the
 /// 1975 paper (eqs. 8–11), taken by main group because ψ depends on those only.
+/// In pure i the last sum adds up to q_i over A_iM, which leaves −Σ_M A_iM ln S_M.
 ///
 /// The combinatorial part is ln γ_i^C = 1 − V' + ln V' − 5 q (1 − V/F + ln(V/F)),
 /// V = r_i/Σ x_j r_j, F = q_i/Σ x_j q_j, V' = V for the original model and the
