@@ -60,6 +60,13 @@ SOURCES = {
     "schrier": "J. Schrier, Hansen solubility parameters, Wolfram Data Repository (2020)",
 }
 # Sets valid up to the critical point and fitted together come before short-range ones.
+# Where CRC and CAS differ by more than 3 % and there is no curve: the one that a
+# third handbook value (from memory) supports; None where neither is trusted.
+DENSITY_DECIDED = {name: "crc" for name in (
+    "2,4-dimethylpentane", "cyclooctane", "trans-decahydronaphthalene", "cyclohexylbenzene", "diethylene glycol", "isobutyl formate",
+    "epsilon-caprolactone", "2-methyltetrahydrofuran", "diethoxymethane", "dibenzyl ether", "diiodomethane", "cyclohexylamine")}
+DENSITY_DECIDED |= {name: "cas" for name in ("acetonylacetone", "dimethyl malonate", "diethyl phthalate", "trifluoroacetic acid")}
+DENSITY_DECIDED |= {"5-methyl-2-hexanone": None}
 DECISIONS = {
     "confirmed": "the value used is confirmed by another source or by a vapor-pressure set within 3 K",
     "unresolved": "no value used: two groups of sources contradict each other and no vapor-pressure set decides",
@@ -68,7 +75,9 @@ DECISIONS = {
     "set-out": "set left out: its temperature of 101.325 kPa is more than 2.9 K off the boiling point, or off the median of the sets",
     "set-out-298": "set left out: more than 35 % off the median of the sets at 298.15 K",
     "order": "two curves; order of the sources",
-    "density-out": "curve left out: more than 3 % off every other source",
+    "density-out": "curve left out: more than 3 % off the other curve",
+    "density-open": "no value used: the handbook value is contradicted by another one",
+    "density-third": "two handbook values contradict each other; a third, from memory, decides",
     "handbook": "the handbook value was measured at 20 to 25 degC, the temperature is not kept",
     "two-sources": "the value used is that of two sources",
     "clapeyron": "value left out: far from Clausius-Clapeyron with an ideal vapor",
@@ -380,6 +389,18 @@ def main():
         rho_crc, rho_source = crc_value(cas, "rho"), "crc"
         if not rho_crc and value(CC, cas, "Vml"):
             rho_crc, rho_source = round(mw / value(CC, cas, "Vml") / 1e3, 2), "cas"
+        rho_cas = mw / value(CC, cas, "Vml") / 1e3 if value(CC, cas, "Vml") else None
+        if rho_cas and rho_cas < 400:
+            rho_cas = None  # a gas
+        no_curve = cas not in PERRY_RHO.index and cas not in VDI_RHO.index
+        if no_curve and (rho_crc and rho_cas and abs(rho_crc / rho_cas - 1) > 0.03 or name in DENSITY_DECIDED):
+            values = {"crc": rho_crc, "cas": rho_cas}
+            picked = DENSITY_DECIDED.get(name)
+            rho_crc, rho_source = values.get(picked), picked
+            for s, v in values.items():
+                if v and s != picked:
+                    conflict("liquid_density", g(round(rho_crc, 2)) if rho_crc else "", picked or "", g(round(v, 2)), s, "kg/m3",
+                             "density-third" if picked else "density-open")
         rho = []
         if cas in PERRY_RHO.index:
             r = PERRY_RHO.loc[cas]
@@ -401,10 +422,8 @@ def main():
                 continue
             d = f(at)
             ref = [x[1](at) for x in rho if x[4] != s and x[2] <= at < x[3]]
-            if rho_crc and 300 < rho_crc and (tb_k or 0) > 298:
-                ref.append(rho_crc)
             if ref and all(abs(d / x - 1) > 0.03 for x in ref):
-                conflict("liquid_density", g(round(ref[-1], 1)), rho_source if rho_crc else "the other curve", g(round(d, 1)), s, "kg/m3",
+                conflict("liquid_density", "", "", g(round(d, 1)), s, "kg/m3",
                          "density-out", g(at))
                 continue
             ok.append((cells, f, lo, hi, s))
@@ -500,7 +519,7 @@ def main():
           ["-"] * 10 + ["K", "kPa", "K", "K", "-"], vapor)
     used = {r[-1] for r in density}
     write("density.csv", facts("Liquid density", used,
-          "curves within 3 % of another source at 298.15 K",
+          "two curves of a substance within 3 % of each other at 298.15 K; handbook values against curves, and against each other where there is no curve",
           ["rackett-molar: molar density in mol/dm3 = a / b^(1 + (1 - T/c)^d)",
            "critical-expansion: density in kg/m3 = rho_c + a q^0.35 + b q^(2/3) + c q + d q^(4/3), q = 1 - T/Tc",
            "constant: a in kg/m3, a handbook value measured at 20 to 25 degC",
