@@ -98,12 +98,12 @@ impl Breaker {
                 continue;
             }
             self.walk.push(atom);
-            stack.extend(
-                molecule
-                    .neighbors(atom)
-                    .iter()
-                    .map(|neighbor| neighbor.atom),
-            );
+            // Ends of the molecule come next, so that what is decided about an
+            // atom and its halogens is settled before the walk goes on.
+            let is_end = |atom: u32| molecule.neighbors(atom).len() == 1;
+            let neighbors = || molecule.neighbors(atom).iter().map(|bond| bond.atom);
+            stack.extend(neighbors().filter(|&atom| !is_end(atom)));
+            stack.extend(neighbors().filter(|&atom| is_end(atom)));
         }
     }
 

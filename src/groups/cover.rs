@@ -62,6 +62,7 @@ pub(super) struct Cover<const W: usize> {
     alive: Vec<bool>,
     options: Vec<u32>,
     queue: Vec<u32>,
+    part_order: Vec<u32>,
     solved: FxHashMap<AtomSet<W>, (Cost, Choice)>,
     /// Indices of the candidates of the best cover.
     pub(super) chosen: Vec<u32>,
@@ -78,6 +79,7 @@ impl<const W: usize> Default for Cover<W> {
             alive: Vec::new(),
             options: Vec::new(),
             queue: Vec::new(),
+            part_order: Vec::new(),
             solved: FxHashMap::default(),
             chosen: Vec::new(),
             uncovered: Vec::new(),
@@ -142,23 +144,65 @@ impl<const W: usize> Cover<W> {
             insert(&mut remaining, atom);
         }
         self.solved.clear();
-        if let Some(remaining) = self.take_forced(atoms, remaining) {
-            if remaining == [0; W] {
-                return Ok(());
-            }
-            if self.best(remaining, order, false, compare)?.is_some() {
-                self.collect(remaining);
-                return Ok(());
-            }
+        if let Some(remaining) = self.take_forced(atoms, remaining)
+            && self.solve_parts(remaining, order, false, compare)?
+        {
+            return Ok(());
         }
         // No complete cover: some atoms stay out, and nothing is forced any more.
         self.chosen.clear();
         self.solved.clear();
         self.alive.fill(true);
-        self.best(remaining, order, true, compare)?;
-        self.collect(remaining);
+        self.solve_parts(remaining, order, true, compare)?;
         self.uncovered.sort_unstable();
         Ok(())
+    }
+
+    /// Solves the parts of a remainder that share no candidate one by one;
+    /// their costs add up, so the best of the parts is the best of the whole.
+    /// False if some part has no cover.
+    fn solve_parts(
+        &mut self,
+        mut remaining: AtomSet<W>,
+        order: &[u32],
+        may_leave: bool,
+        compare: &impl Fn(&[u16], &[u16]) -> std::cmp::Ordering,
+    ) -> Result<bool, NoCover> {
+        let mut part_order = std::mem::take(&mut self.part_order);
+        let mut covered = true;
+        while let Some(first) = order.iter().position(|&atom| contains(&remaining, atom)) {
+            let part = self.part_around(order[first], &remaining);
+            part_order.clear();
+            part_order.extend(order.iter().filter(|&&atom| contains(&part, atom)));
+            if self.best(part, &part_order, may_leave, compare)?.is_none() {
+                covered = false;
+                break;
+            }
+            self.collect(part);
+            remaining = without(&remaining, &part);
+        }
+        self.part_order = part_order;
+        Ok(covered)
+    }
+
+    /// The atoms that chains of shared candidates connect with `atom`.
+    fn part_around(&mut self, atom: u32, remaining: &AtomSet<W>) -> AtomSet<W> {
+        let mut part = [0; W];
+        insert(&mut part, atom);
+        self.queue.clear();
+        self.queue.push(atom);
+        while let Some(atom) = self.queue.pop() {
+            for at in self.of_atom(atom) {
+                let index = self.by_atom[at] as usize;
+                if !self.alive[index] || !is_within(&self.candidates[index].atoms, remaining) {
+                    continue;
+                }
+                let new = without(&self.candidates[index].atoms, &part);
+                self.queue.extend(members(&new));
+                part = std::array::from_fn(|word| part[word] | new[word]);
+            }
+        }
+        part
     }
 
     fn file_by_atom(&mut self, atoms: u32) {
@@ -258,6 +302,8 @@ impl<const W: usize> Cover<W> {
         let atom = order[first];
         let rest = &order[first + 1..];
         let mut winner = (IMPOSSIBLE, Choice::LeaveUncovered(atom));
+        // An atom that is a group by itself never stays out: taking it costs less.
+        let mut may_leave_this = may_leave;
         for at in self.of_atom(atom) {
             let index = self.by_atom[at];
             let candidate = self.candidates[index as usize];
@@ -265,6 +311,7 @@ impl<const W: usize> Cover<W> {
                 continue;
             }
             let after = without(&remaining, &candidate.atoms);
+            may_leave_this &= members(&candidate.atoms).nth(1).is_some();
             let Some(cost) = self.best(after, rest, may_leave, compare)? else {
                 continue;
             };
@@ -275,7 +322,7 @@ impl<const W: usize> Cover<W> {
                 winner = option;
             }
         }
-        if may_leave {
+        if may_leave_this {
             let mut after = remaining;
             after[atom as usize / 64] &= !(1 << (atom % 64));
             if let Some(cost) = self.best(after, rest, may_leave, compare)? {
