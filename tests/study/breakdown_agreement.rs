@@ -122,11 +122,7 @@ fn main() -> Result<(), Fault> {
     Ok(())
 }
 
-fn study(
-    folder: &Path,
-    subject: &Subject,
-    mut outputs: Option<&mut Outputs>,
-) -> Result<(), Fault> {
+fn study(folder: &Path, subject: &Subject, mut outputs: Option<&mut Outputs>) -> Result<(), Fault> {
     let set = GroupSet::built_in(subject.set)?;
     let id = set.id();
     let mut file = csv::Reader::from_path(folder.join(subject.file))?;

@@ -98,7 +98,8 @@ fn every_pattern_is_used_in_its_example() {
                 "{place}: {example} is {}",
                 ours.counts
             );
-            let pattern = Pattern::compile(text).unwrap_or_else(|faults| panic!("{place}: {faults:?}"));
+            let pattern =
+                Pattern::compile(text).unwrap_or_else(|faults| panic!("{place}: {faults:?}"));
             assert!(pattern.is_in(&molecule), "{place}: not found in {example}");
         }
     }
