@@ -9,7 +9,8 @@
 //!    outside, to an atom that is not more electronegative; none with a double
 //!    bond outside to a more electronegative atom (C=O, C=N, C=S) or as a
 //!    three-bonded cation C⁺; two with a lone pair and single bonds only (O, S,
-//!    NH, NR, C⁻, N⁻). Triple bonds in the ring count one electron per end.
+//!    NH, NR, C⁻, N⁻). An atom with a triple bond takes no part, nor does
+//!    silicon, which SMILES cannot write in lower case.
 //! 3. A ring of the ring set (see [`super::rings`]) whose atoms all take part is
 //!    aromatic with 4n+2 electrons, 2 included. A ring of nine or more atoms with
 //!    a two-bonded O or S takes no part: macrocyclic esters are not aromatic.
@@ -29,7 +30,8 @@
 //! - Double bonds are kept inside an aromatic system where a choice exists, so all
 //!   Kekulé spellings of biphenylene and benzocyclobutadiene give one molecule.
 //!   There the bonds between the rings follow the spelling.
-//! - Rings above 24 atoms are never aromatic here.
+//! - Rings above 24 atoms, and rings with a triple bond (benzyne) or silicon,
+//!   are never aromatic here.
 //! - Lower-case rings that turn out not to be aromatic and leave a choice of
 //!   double bonds are refused; there one of the choices is taken.
 //! - The ring set holds every shortest ring of a bridged or symmetrical system,
@@ -63,12 +65,7 @@ pub(super) struct Aromaticity {
 
 impl Aromaticity {
     /// Marks aromatic atoms and bonds of a molecule in a Kekulé form.
-    pub(super) fn perceive(
-        &mut self,
-        molecule: &mut Molecule,
-        rings: &Rings,
-        spelling: &Spelling,
-    ) {
+    pub(super) fn perceive(&mut self, molecule: &mut Molecule, rings: &Rings, spelling: &Spelling) {
         self.electrons.clear();
         for atom in 0..molecule.atoms.len() {
             let electrons = if molecule.atoms[atom].in_ring {
@@ -239,7 +236,10 @@ impl Aromaticity {
                 bond.kekule == 2
                     && bond.in_ring
                     && bond.order != BondOrder::Aromatic
-                    && bond.atoms.iter().any(|&atom| molecule.atoms[atom as usize].aromatic)
+                    && bond
+                        .atoms
+                        .iter()
+                        .any(|&atom| molecule.atoms[atom as usize].aromatic)
             })
             .collect();
         if strays.is_empty() {
@@ -261,7 +261,10 @@ impl Aromaticity {
             bond.order == BondOrder::Aromatic
                 || (bond.in_ring
                     && bond.kekule == 1
-                    && bond.atoms.iter().all(|&atom| !atoms[atom as usize].aromatic))
+                    && bond
+                        .atoms
+                        .iter()
+                        .all(|&atom| !atoms[atom as usize].aromatic))
         });
         if let Ok(pairs) = pairs {
             for index in freed {
@@ -352,7 +355,7 @@ fn electrons_of(molecule: &Molecule, index: u32, sum: u8) -> i8 {
     let atom: &Atom = &molecule.atoms[index as usize];
     let lowest = match atom.element {
         Element::B | Element::N | Element::P => 3,
-        Element::C | Element::Si => 4,
+        Element::C => 4,
         Element::O | Element::S => 2,
         _ => return APART,
     };
@@ -365,6 +368,9 @@ fn electrons_of(molecule: &Molecule, index: u32, sum: u8) -> i8 {
     let mut outside = None;
     for neighbor in molecule.neighbors(index) {
         let bond = &molecule.bonds[neighbor.bond as usize];
+        if bond.kekule > 2 {
+            return APART;
+        }
         if bond.kekule > 1 {
             multiple_bonds += 1;
             if !bond.in_ring {
@@ -376,10 +382,7 @@ fn electrons_of(molecule: &Molecule, index: u32, sum: u8) -> i8 {
         return APART;
     }
     let lone_pair = (outer_electrons(atom.element) - lowest - atom.charge).max(0);
-    let mut electrons = lowest - degree + lone_pair;
-    if electrons > 1 && sum as i8 - molecule.degree(index) as i8 > 1 {
-        electrons = 1;
-    }
+    let electrons = lowest - degree + lone_pair;
     let is_drawn_out =
         outside.is_some_and(|element| is_more_electronegative(element, atom.element));
     match electrons {

@@ -102,7 +102,9 @@ pub enum SmilesFault {
         number: u8,
     },
     /// A ring bond with two different orders.
-    #[error("ring bond {number} has one order where it opens and another where it closes; state it once")]
+    #[error(
+        "ring bond {number} has one order where it opens and another where it closes; state it once"
+    )]
     RingOrder {
         /// Ring bond number.
         number: u8,
@@ -162,7 +164,9 @@ pub enum SmilesFault {
     )]
     AmbiguousKekuleForm,
     /// Direction marks that contradict each other.
-    #[error("the marks `/` and `\\` around this double bond contradict each other; correct or remove them")]
+    #[error(
+        "the marks `/` and `\\` around this double bond contradict each other; correct or remove them"
+    )]
     Direction,
 }
 

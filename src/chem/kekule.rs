@@ -166,11 +166,7 @@ impl Kekule {
 }
 
 /// Whether a lower-case atom needs a ring double bond; settles its hydrogens.
-fn lacks_bond(
-    molecule: &mut Molecule,
-    spelling: &Spelling,
-    index: u32,
-) -> Result<bool, Fault> {
+fn lacks_bond(molecule: &mut Molecule, spelling: &Spelling, index: u32) -> Result<bool, Fault> {
     let atom = molecule.atoms[index as usize];
     if !atom.in_ring {
         return Err(spelling.at(index, SmilesFault::AromaticOutsideRing));
@@ -208,7 +204,13 @@ fn first_of_system(molecule: &Molecule, atom: u32) -> u32 {
         }
         first = first.min(atom);
         let aromatic = |n: &&super::Neighbor| n.order == BondOrder::Aromatic;
-        open.extend(molecule.neighbors(atom).iter().filter(aromatic).map(|n| n.atom));
+        open.extend(
+            molecule
+                .neighbors(atom)
+                .iter()
+                .filter(aromatic)
+                .map(|n| n.atom),
+        );
     }
     first
 }

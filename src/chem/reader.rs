@@ -132,10 +132,7 @@ impl Reader {
             .iter()
             .position(|atom| i32::from(atom.charge).signum() == charge.signum())
             .expect("a sum has the sign of one of its terms");
-        Err((
-            Place::Atom(atom as u32),
-            SmilesFault::NetCharge { charge },
-        ))
+        Err((Place::Atom(atom as u32), SmilesFault::NetCharge { charge }))
     }
 
     /// Atoms of the molecule: heavy ones, and one for H2. Hydrogens are folded.

@@ -179,8 +179,8 @@ impl Rings {
         self.listed.clear();
         self.listed.resize(molecule.bonds.len(), false);
         for bond in 0..molecule.bonds.len() as u32 {
-            let in_fused = molecule.bonds[bond as usize].in_ring
-                && self.shortest[bond as usize] == 0;
+            let in_fused =
+                molecule.bonds[bond as usize].in_ring && self.shortest[bond as usize] == 0;
             if in_fused {
                 self.search(molecule, bond);
             }
@@ -258,8 +258,7 @@ impl Rings {
                         && neighbor.bond != bond
                         && neighbor.bond != by
                         && self.distance[neighbor.atom as usize] != NONE
-                        && self.distance[neighbor.atom as usize] + 1
-                            == self.distance[here as usize]
+                        && self.distance[neighbor.atom as usize] + 1 == self.distance[here as usize]
                 });
             match step {
                 Some((offset, neighbor)) => {

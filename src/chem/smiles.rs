@@ -504,7 +504,8 @@ fn syntax_error(text: &str, error: &Error) -> SmilesError {
         }
     }
     let before = at.checked_sub(1).and_then(|at| text.chars().nth(at));
-    let after_number = before.is_some_and(|character| character == '%' || character.is_ascii_digit());
+    let after_number =
+        before.is_some_and(|character| character == '%' || character.is_ascii_digit());
     let (fault, column) = match text.chars().nth(at) {
         Some(found) => {
             let remedy = match found {
@@ -516,7 +517,9 @@ fn syntax_error(text: &str, error: &Error) -> SmilesError {
                 ']' => "there is no `[` open that it could close",
                 '(' => "a branch follows an atom",
                 _ if found.is_whitespace() => "a SMILES holds no blanks",
-                _ if before == Some('%') || (after_number && text.chars().take(at).any(|c| c == '%')) => {
+                _ if before == Some('%')
+                    || (after_number && text.chars().take(at).any(|c| c == '%')) =>
+                {
                     "a ring number after `%` has two digits"
                 }
                 _ if found.is_ascii_digit() => "a ring number follows an atom",
@@ -551,9 +554,7 @@ pub(super) fn locate(text: &str, (place, mut fault): Fault) -> SmilesError {
     let mut trace = Trace::new();
     let mut nowhere = Nowhere;
     // The line may have a syntax fault further right; the places before it stand.
-    let _ = on_deep_stack(text, || {
-        read(&unambiguous, &mut nowhere, Some(&mut trace))
-    });
+    let _ = on_deep_stack(text, || read(&unambiguous, &mut nowhere, Some(&mut trace)));
     let range = match place {
         Place::Atom(atom) => trace.atom(atom as usize),
         Place::RingNumber(event) => trace.rnum(event as usize),

@@ -6,7 +6,7 @@
 //! meaning or not kept: allene, square-planar, bipyramidal and octahedral
 //! classes; nitrogen with three bonds, which inverts; atoms with two hydrogens
 //! even if one of them is deuterium; a double bond where only one side is
-//! marked. Whether a mark distinguishes anything is decided by
+//! marked, or one end of which is an aromatic atom. Whether a mark distinguishes anything is decided by
 //! [`super::Canonicalizer`].
 
 use super::molecule::{Center, Geometry};
@@ -76,7 +76,10 @@ fn center(
         let first = ligands.iter().map(|&(place, _)| place).min()?;
         ligands.push((first + 1, NONE));
     }
-    let unseen = ligands.iter().filter(|&&(_, ligand)| ligand == NONE).count();
+    let unseen = ligands
+        .iter()
+        .filter(|&&(_, ligand)| ligand == NONE)
+        .count();
     if ligands.len() != 4 || unseen > 1 || usize::from(here.hydrogens) > unseen {
         return None;
     }
@@ -132,7 +135,8 @@ fn side(
     partner: u32,
 ) -> Result<Option<(u32, i8)>, Fault> {
     let here = &molecule.atoms[atom as usize];
-    if !matches!(here.element, Element::C | Element::N) {
+    // The bonds of an aromatic ring cannot carry a direction.
+    if here.aromatic || !matches!(here.element, Element::C | Element::N) {
         return Ok(None);
     }
     let others = molecule.degree(atom) - 1;

@@ -40,7 +40,10 @@ impl Weights {
                 }
             } else {
                 let number = row.required_integer(mass_number)?;
-                if isotopes.iter().any(|&(e, n, _)| (e, n) == (element, number)) {
+                if isotopes
+                    .iter()
+                    .any(|&(e, n, _)| (e, n) == (element, number))
+                {
                     return Err(row.fault(mass_number, "stands twice"));
                 }
                 if (value - f64::from(number)).abs() > 0.2 {
@@ -144,7 +147,12 @@ mod tests {
     fn faulty_tables_are_refused() {
         let head = "# title: t\n# source: s\n# transcribed: d\n# checked: c\n";
         let columns = "symbol,mass_number,atomic_weight\n-,-,g/mol\n";
-        for rows in ["C,,12.011\n", "C,,12.011\nC,,12.011\n", "Xx,,1\n", "C,13,23\n"] {
+        for rows in [
+            "C,,12.011\n",
+            "C,,12.011\nC,,12.011\n",
+            "Xx,,1\n",
+            "C,13,23\n",
+        ] {
             let text = format!("{head}{columns}{rows}");
             assert!(Weights::read("t.csv", &text).is_err(), "{rows}");
         }

@@ -172,7 +172,9 @@ impl Marks {
                 .zip(&states)
                 .filter(|(_, state)| **state == State::Undecided)
                 .flat_map(|(mark, _)| ligands(molecule, mark))
-                .filter(|&atom| atom != NONE && partition.size_of(partition.cell[atom as usize]) > 1)
+                .filter(|&atom| {
+                    atom != NONE && partition.size_of(partition.cell[atom as usize]) > 1
+                })
                 .map(|atom| partition.cell[atom as usize])
                 .min();
             if let Some(cell) = tie {
@@ -227,8 +229,7 @@ impl Marks {
                     vec![[places[center.atom as usize], u32::from(sense.unwrap_or(0))]]
                 }
                 (State::Decided(_), Mark::Geometry(geometry)) => {
-                    let sense =
-                        sense_of_geometry(molecule, geometry, |atom| places[atom as usize]);
+                    let sense = sense_of_geometry(molecule, geometry, |atom| places[atom as usize]);
                     let sense = u32::from(sense.unwrap_or(0));
                     let ends = geometry.ends.map(|end| places[end as usize]);
                     vec![[ends[0], sense], [ends[1], sense]]
@@ -370,9 +371,9 @@ fn ties_in_ring(molecule: &Molecule, partition: &Partition, mark: &Mark) -> bool
     };
     match mark {
         Mark::Center(center) => pairs_in_ring(center.atom, &center.ligands),
-        Mark::Geometry(geometry) => (0..2).all(|end| {
-            pairs_in_ring(geometry.ends[end], &sides(molecule, geometry, end))
-        }),
+        Mark::Geometry(geometry) => {
+            (0..2).all(|end| pairs_in_ring(geometry.ends[end], &sides(molecule, geometry, end)))
+        }
     }
 }
 

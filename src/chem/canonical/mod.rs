@@ -38,7 +38,8 @@ pub struct Keys {
 /// between ligands that differ in constitution, isotopes or marks decided
 /// before, and marks of ring atoms that depend on each other (cis- and
 /// trans-1,4-dimethylcyclohexane). Not decided, and dropped: allenes, atropisomers,
-/// square-planar and higher classes, nitrogen with three bonds, centers with two
+/// square-planar and higher classes, double bonds that end at an aromatic atom,
+/// nitrogen with three bonds, centers with two
 /// hydrogens one of which is deuterium, centers whose two ligands differ only
 /// by ring marks that depend on each other, and the dependent ring marks of a
 /// molecule in which they can be arranged in more than a few hundred ways.

@@ -9,7 +9,9 @@
 //! that of the best order so far, and of branches that an automorphism found on
 //! the way turns into each other only one is walked. The order with the
 //! smallest list of bonds is the canonical one. Ties in the branches hanging
-//! off the skeleton are broken at the end, arbitrarily.
+//! off the skeleton are broken at the end, arbitrarily. A small tie is first
+//! tested directly: if exchanging its atoms, with what refinement moves along,
+//! leaves all bonds in place (a phenyl group turned over), one way is enough.
 //!
 //! Work limit: at most [`MAX_NODES`] branches. Cages (buckminsterfullerene) and
 //! chains of 150 phenyl groups stay far below it. Past it the best order so far
@@ -21,6 +23,9 @@ use crate::chem::Molecule;
 
 /// Most branches that are walked for one molecule.
 pub(super) const MAX_NODES: u32 = 30_000;
+
+/// Largest tie whose atoms are tested for exchange.
+const MAX_TESTED_TIE: usize = 8;
 
 /// Scratch and result of the search.
 #[derive(Debug, Default)]
@@ -39,6 +44,9 @@ pub(super) struct Search {
     orbit: Vec<u32>,
     places: Vec<u32>,
     row: Vec<u32>,
+    image: Vec<u32>,
+    tie: Vec<u32>,
+    trials: [Partition; 2],
     in_skeleton: Vec<bool>,
     open_degree: Vec<u8>,
     stack: Vec<u32>,
@@ -97,10 +105,12 @@ impl Search {
         partition: &mut Partition,
         refiner: &mut Refiner,
     ) -> bool {
-        let needs_search = molecule.ring_count() > 1
-            && partition
+        let needs_search = molecule.ring_count() > 1 && {
+            self.break_exchangeable(molecule, partition, refiner);
+            partition
                 .tied_cell(0, |atom| self.in_skeleton[atom as usize])
-                .is_some();
+                .is_some()
+        };
         if !needs_search {
             break_ties(molecule, partition, refiner);
             self.order.clone_from(&partition.order);
@@ -120,12 +130,7 @@ impl Search {
         &self.certificate
     }
 
-    fn walk(
-        &mut self,
-        molecule: &Molecule,
-        partition: &Partition,
-        refiner: &mut Refiner,
-    ) -> bool {
+    fn walk(&mut self, molecule: &Molecule, partition: &Partition, refiner: &mut Refiner) -> bool {
         self.order.clear();
         self.certificate.clear();
         self.best_path.clear();
@@ -155,6 +160,9 @@ impl Search {
             self.current.copy_from(&level.partition);
             self.current.single_out(atom, refiner);
             let trace = refiner.refine(molecule, &mut self.current);
+            let mut current = std::mem::take(&mut self.current);
+            let trace = trace ^ self.break_exchangeable(molecule, &mut current, refiner);
+            self.current = current;
             self.path.truncate(depth);
             self.path.push(atom);
             self.traces.truncate(depth);
@@ -222,6 +230,47 @@ impl Search {
         }
     }
 
+    /// Breaks ties of the skeleton, first ones first, as long as all atoms of
+    /// the tie can be exchanged; returns a number that depends on the course of
+    /// it and not on the numbering.
+    fn break_exchangeable(
+        &mut self,
+        molecule: &Molecule,
+        partition: &mut Partition,
+        refiner: &mut Refiner,
+    ) -> u64 {
+        let mut trace = 0_u64;
+        let mut from = 0;
+        loop {
+            let in_skeleton = &self.in_skeleton;
+            let Some(cell) = partition.tied_cell(from, |atom| in_skeleton[atom as usize]) else {
+                return trace;
+            };
+            from = cell;
+            let size = partition.size_of(cell) as usize;
+            if size > MAX_TESTED_TIE {
+                return trace;
+            }
+            self.tie.clear();
+            self.tie.extend_from_slice(partition.members(cell));
+            let [first, other] = &mut self.trials;
+            first.copy_from(partition);
+            first.single_out(self.tie[0], refiner);
+            let course = refiner.refine(molecule, first);
+            for &atom in &self.tie[1..] {
+                other.copy_from(partition);
+                other.single_out(atom, refiner);
+                if refiner.refine(molecule, other) != course
+                    || !is_exchange(molecule, first, other, &mut self.image)
+                {
+                    return trace;
+                }
+            }
+            partition.copy_from(first);
+            trace = trace.rotate_left(7) ^ course;
+        }
+    }
+
     fn open_level(&mut self, depth: usize, as_best: bool) {
         if self.levels.len() == depth {
             self.levels.push(Level::default());
@@ -234,9 +283,7 @@ impl Search {
         let level = &mut self.levels[depth];
         level.partition.copy_from(&self.current);
         level.members.clear();
-        level
-            .members
-            .extend_from_slice(self.current.members(cell));
+        level.members.extend_from_slice(self.current.members(cell));
         level.next = 0;
         level.as_best = as_best;
     }
@@ -317,4 +364,38 @@ fn root(orbit: &mut [u32], atom: u32) -> u32 {
         atom = orbit[atom as usize];
     }
     atom
+}
+
+/// Whether taking each single atom of one partition to that of the other, and
+/// leaving the rest in place, keeps all bonds.
+fn is_exchange(
+    molecule: &Molecule,
+    from: &Partition,
+    to: &Partition,
+    image: &mut Vec<u32>,
+) -> bool {
+    image.clear();
+    image.resize(from.order.len(), 0);
+    for (&before, &after) in from.order.iter().zip(&to.order) {
+        let cell = from.cell[before as usize];
+        if from.size_of(cell) == 1 {
+            image[before as usize] = after;
+        } else {
+            if to.cell[before as usize] != cell {
+                return false;
+            }
+            image[before as usize] = before;
+        }
+    }
+    from.order.iter().all(|&atom| {
+        let moved = image[atom as usize];
+        moved == atom
+            || molecule.neighbors(atom).iter().all(|bond| {
+                let end = image[bond.atom as usize];
+                molecule
+                    .neighbors(moved)
+                    .iter()
+                    .any(|other| other.atom == end && other.order == bond.order)
+            })
+    })
 }

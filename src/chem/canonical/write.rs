@@ -189,7 +189,11 @@ impl Writer {
             mass_number = 1 + here.deuterium + 2 * here.tritium;
             deuterium = 0;
         }
-        let hydrogens = if direction != 0 { 1 } else { deuterium + tritium };
+        let hydrogens = if direction != 0 {
+            1
+        } else {
+            deuterium + tritium
+        };
         let is_last_hydrogen = |hydrogen: u8| hydrogen + 1 == hydrogens;
         for (index, &(_, _, _, next)) in self.children.iter().enumerate().rev() {
             let is_last = index + 1 == self.children.len();
@@ -221,7 +225,8 @@ impl Writer {
         }
         if order_of_ligands {
             self.ligands.extend((0..hydrogens).map(|_| NONE));
-            self.ligands.extend(self.children.iter().map(|child| child.3));
+            self.ligands
+                .extend(self.children.iter().map(|child| child.3));
         }
     }
 
@@ -287,8 +292,7 @@ impl Writer {
             self.ligands.push(parent);
         }
         let here = &molecule.atoms()[atom as usize];
-        let hydrogen_is_written =
-            isotopes && here.deuterium + here.tritium > 0 && center.is_some();
+        let hydrogen_is_written = isotopes && here.deuterium + here.tritium > 0 && center.is_some();
         if let Some(center) = center {
             if center.ligands.contains(&NONE) && here.hydrogens > 0 && !hydrogen_is_written {
                 self.ligands.push(NONE);
@@ -315,7 +319,10 @@ impl Writer {
             }
             is_even(&center.ligands, &self.ligands)
         });
-        let hydrogens_apart = if self.hydrogen_directions.get(atom as usize).is_some_and(|&d| d != 0)
+        let hydrogens_apart = if self
+            .hydrogen_directions
+            .get(atom as usize)
+            .is_some_and(|&d| d != 0)
         {
             1
         } else if isotopes {
@@ -475,18 +482,13 @@ impl Writer {
                     && !kept.iter().any(|other| other.bond == neighbor.bond);
                 is_open
                     && molecule.neighbors(neighbor.atom).iter().any(|beyond| {
-                        kept.iter().any(|other| {
-                            other.ends.contains(&beyond.atom) && beyond.atom != ligand
-                        })
+                        kept.iter()
+                            .any(|other| other.ends.contains(&beyond.atom) && beyond.atom != ligand)
                     })
             })
         };
-        let best = others().min_by_key(|neighbor| {
-            (
-                misleads(neighbor.atom),
-                self.times[neighbor.atom as usize],
-            )
-        });
+        let best = others()
+            .min_by_key(|neighbor| (misleads(neighbor.atom), self.times[neighbor.atom as usize]));
         match best {
             Some(best)
                 if misleads(best.atom)
