@@ -18,10 +18,12 @@ use super::{BondOrder, Element, Molecule};
 pub(super) fn aromatic_n_oxides(molecule: &mut Molecule, spelling: &mut Spelling) {
     for atom in 0..molecule.atoms.len() as u32 {
         let here = molecule.atoms[atom as usize];
-        if spelling.lower_case[atom as usize] && here.element == Element::N && here.charge == 0 {
-            if let Some(bond) = double_bonded_oxygen(molecule, atom) {
-                separate(molecule, spelling, atom, bond);
-            }
+        if spelling.lower_case[atom as usize]
+            && here.element == Element::N
+            && here.charge == 0
+            && let Some(bond) = double_bonded_oxygen(molecule, atom)
+        {
+            separate(molecule, spelling, atom, bond);
         }
     }
 }

@@ -236,10 +236,11 @@ impl Reader {
                 }
             }
         }
-        if let [hydrogen] = molecule.atoms.as_mut_slice() {
-            if hydrogen.element == Element::H && hydrogen.hydrogens == 1 {
-                settle_isotopes_of_h2(hydrogen);
-            }
+        if let [hydrogen] = molecule.atoms.as_mut_slice()
+            && hydrogen.element == Element::H
+            && hydrogen.hydrogens == 1
+        {
+            settle_isotopes_of_h2(hydrogen);
         }
         Ok(())
     }

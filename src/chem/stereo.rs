@@ -27,10 +27,11 @@ pub(super) fn keep_marks(
 ) -> Result<(), Fault> {
     if line.has_turns {
         for (at, atom) in line.atoms.iter().enumerate() {
-            if atom.turn != Turn::None && index[at] != NONE {
-                if let Some(center) = center(line, index, molecule, at as u32, atom) {
-                    molecule.centers.push(center);
-                }
+            if atom.turn != Turn::None
+                && index[at] != NONE
+                && let Some(center) = center(line, index, molecule, at as u32, atom)
+            {
+                molecule.centers.push(center);
             }
         }
     }
@@ -108,15 +109,21 @@ fn geometry(
     let ends = here.atoms;
     let mut ligands = [NONE; 2];
     let mut sides = [0; 2];
+    let mut contradiction = None;
     for (end, partner) in [(0, 1), (1, 0)] {
         let atom = ends[end];
-        match side(line, index, molecule, atom, ends[partner])? {
-            Some((ligand, side)) => {
+        match side(line, index, molecule, atom, ends[partner]) {
+            Side::Unmarked => return Ok(None),
+            Side::Marked(ligand, side) => {
                 ligands[end] = ligand;
                 sides[end] = side;
             }
-            None => return Ok(None),
+            Side::Contradiction(at) => contradiction = Some(at),
         }
+    }
+    // Marks at one end alone may belong to double bonds next to this one.
+    if let Some(at) = contradiction {
+        return Err((Place::Atom(at), SmilesFault::Direction));
     }
     Ok(Some(Geometry {
         bond,
@@ -126,18 +133,21 @@ fn geometry(
     }))
 }
 
+/// What the marks say about one end of a double bond.
+enum Side {
+    Unmarked,
+    /// A neighbor ([`NONE`] is the hydrogen) and the side it lies on.
+    Marked(u32, i8),
+    /// Both neighbors lie on one side of this atom of the line.
+    Contradiction(u32),
+}
+
 /// A marked neighbor of one end of a double bond and the side it lies on.
-fn side(
-    line: &Line,
-    index: &[u32],
-    molecule: &Molecule,
-    atom: u32,
-    partner: u32,
-) -> Result<Option<(u32, i8)>, Fault> {
+fn side(line: &Line, index: &[u32], molecule: &Molecule, atom: u32, partner: u32) -> Side {
     let here = &molecule.atoms[atom as usize];
     // The bonds of an aromatic ring cannot carry a direction.
     if here.aromatic || !matches!(here.element, Element::C | Element::N) {
-        return Ok(None);
+        return Side::Unmarked;
     }
     let others = molecule.degree(atom) - 1;
     let has_two_sides = match others {
@@ -146,7 +156,7 @@ fn side(
         _ => false,
     };
     if !has_two_sides {
-        return Ok(None);
+        return Side::Unmarked;
     }
     let mut marked: Option<(u32, i8)> = None;
     for bond in line.bonds.iter().filter(|bond| bond.direction != 0) {
@@ -159,8 +169,7 @@ fn side(
             match marked {
                 None => marked = Some((ligand, side)),
                 Some((_, other)) if other == side => {
-                    let place = Place::Atom(bond.atoms[end]);
-                    return Err((place, SmilesFault::Direction));
+                    return Side::Contradiction(bond.atoms[end]);
                 }
                 // One neighbor in two spellings of the same side: keep a heavy one.
                 Some((NONE, _)) => marked = Some((ligand, side)),
@@ -168,15 +177,14 @@ fn side(
             }
         }
     }
-    Ok(marked.map(|(ligand, side)| {
-        let heavy = molecule
-            .neighbors(atom)
-            .iter()
-            .map(|neighbor| neighbor.atom)
-            .find(|&neighbor| neighbor != partner);
-        match (ligand, heavy) {
-            (NONE, Some(heavy)) => (heavy, -side),
-            _ => (ligand, side),
-        }
-    }))
+    let heavy = molecule
+        .neighbors(atom)
+        .iter()
+        .map(|neighbor| neighbor.atom)
+        .find(|&neighbor| neighbor != partner);
+    match (marked, heavy) {
+        (None, _) => Side::Unmarked,
+        (Some((NONE, side)), Some(heavy)) => Side::Marked(heavy, -side),
+        (Some((ligand, side)), _) => Side::Marked(ligand, side),
+    }
 }

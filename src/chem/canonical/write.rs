@@ -66,21 +66,21 @@ impl Writer {
         text: &mut String,
     ) {
         let with_identity = kept.is_some();
-        if let [hydrogen] = molecule.atoms() {
-            if hydrogen.element == Element::H {
-                write_h2(hydrogen, with_identity, text);
-                return;
-            }
+        if let [hydrogen] = molecule.atoms()
+            && hydrogen.element == Element::H
+        {
+            write_h2(hydrogen, with_identity, text);
+            return;
         }
         self.follow(molecule, order);
         self.walk(molecule, order[0]);
         self.directions.clear();
         self.hydrogen_directions.clear();
-        if let Some(kept) = kept {
-            if !kept.geometries.is_empty() {
-                self.lay_out(molecule, order[0]);
-                self.direct(molecule, kept);
-            }
+        if let Some(kept) = kept
+            && !kept.geometries.is_empty()
+        {
+            self.lay_out(molecule, order[0]);
+            self.direct(molecule, kept);
         }
         self.write_text(molecule, order[0], kept, text);
     }
@@ -293,10 +293,11 @@ impl Writer {
         }
         let here = &molecule.atoms()[atom as usize];
         let hydrogen_is_written = isotopes && here.deuterium + here.tritium > 0 && center.is_some();
-        if let Some(center) = center {
-            if center.ligands.contains(&NONE) && here.hydrogens > 0 && !hydrogen_is_written {
-                self.ligands.push(NONE);
-            }
+        if center.is_some_and(|center| center.ligands.contains(&NONE))
+            && here.hydrogens > 0
+            && !hydrogen_is_written
+        {
+            self.ligands.push(NONE);
         }
         // Ring numbers follow the symbol, which needs the order of the ligands.
         let start = molecule.neighbor_starts[atom as usize] as usize;
