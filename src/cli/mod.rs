@@ -15,6 +15,7 @@ mod progress;
 mod properties;
 mod screen;
 mod tables;
+mod user_tables;
 
 use std::process::ExitCode;
 
@@ -44,13 +45,11 @@ pub fn main() -> ExitCode {
             };
         }
     };
-    let quiet = arguments.quiet;
     match run(&arguments) {
         Ok(exit) => exit.into(),
         Err(CliError::ClosedPipe) => Exit::Done.into(),
         Err(error) => {
             output::complain(&error.to_string());
-            let _ = quiet;
             error.exit().into()
         }
     }
@@ -65,7 +64,10 @@ fn run(arguments: &Arguments) -> Result<Exit, CliError> {
     if let Command::Assemble(_) | Command::Report(_) | Command::Gather(_) = &arguments.command {
         return Err(CliError::NotBuiltIn);
     }
-    let library = Library::built_in(slips)?;
+    let library = match &arguments.tables {
+        None => Library::built_in(slips),
+        Some(folder) => Library::with_user_tables(slips, user_tables::read(folder)?)?,
+    };
     let notes = output::Notes::new(arguments.quiet);
     match &arguments.command {
         Command::Breakdown(command) => breakdown::run(command, &library),

@@ -40,7 +40,7 @@ pub(super) fn for_each(
         let line = position as u64 + 1;
         let found = match library.find(profiler, text) {
             Ok((name, profile)) => {
-                let smiles: Arc<str> = match library.substances.find(text) {
+                let smiles: Arc<str> = match library.substances().find(text) {
                     Ok(substance) => substance.smiles().into(),
                     Err(_) => text.trim().into(),
                 };

@@ -134,7 +134,12 @@ fn record(plan: &Plan) -> RunRecord {
             .fold(Fingerprint::new(), |all, (name, text)| {
                 all.with_section(name, text.as_bytes())
             }),
-        of_user: Vec::new(),
+        of_user: plan
+            .library
+            .user_tables()
+            .iter()
+            .map(|table| table.place.clone())
+            .collect(),
         choices: match plan.library.slips() {
             Slips::AsCirculated => vec!["parameter tables as circulated".into()],
             Slips::Corrected => Vec::new(),
@@ -295,7 +300,7 @@ fn explain(
             )));
         }
     };
-    let smiles = match plan.library.substances.find(&smiles) {
+    let smiles = match plan.library.substances().find(&smiles) {
         Ok(substance) => substance.smiles().to_owned(),
         Err(_) => smiles,
     };

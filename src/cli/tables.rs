@@ -120,7 +120,7 @@ fn overview(library: &Library) -> String {
     }
     text.push_str(&format!(
         "\nMeasured substances: {}\nPure-component methods: {}\nFigures for targets: {}\n",
-        library.substances.len(),
+        library.substances().len(),
         METHODS.len(),
         FIGURES.len()
     ));
@@ -183,7 +183,7 @@ fn groups(library: &Library, name: &str, number: Option<u16>) -> Result<String, 
     }
     if id == SetId::Joback {
         for (term, name, unit) in crate::pure::joback::Term::COLUMNS {
-            let value = library.methods.joback.contribution(number, term);
+            let value = library.methods().joback.contribution(number, term);
             let value = value.map_or("not published".into(), |value| format!("{value} {unit}"));
             text.push_str(&format!("  {name}: {value}\n"));
         }
@@ -335,7 +335,7 @@ fn substances(library: &Library, name: Option<&str>) -> Result<String, CliError>
             TextColumn::text("vapor pressure"),
             TextColumn::text("density"),
         ]);
-        for substance in library.substances.iter() {
+        for substance in library.substances().iter() {
             let range = |range: Option<(f64, f64)>| {
                 range.map_or(String::new(), |(low, high)| {
                     format!("{low:.0} to {high:.0} K")
@@ -351,7 +351,7 @@ fn substances(library: &Library, name: Option<&str>) -> Result<String, CliError>
         }
         return Ok(table.render(output::width()));
     };
-    let substance = match library.substances.find(name) {
+    let substance = match library.substances().find(name) {
         Ok(substance) => substance,
         Err(error) => {
             let mut profiler = crate::evaluate::Profiler::new();

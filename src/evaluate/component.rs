@@ -41,7 +41,7 @@ impl VaporCurve {
                 .map(|found| found.value)
                 .map_err(Absent::clone)
         };
-        let method = library.methods.vapor_pressure;
+        let method = library.methods().vapor_pressure;
         let constants = Constants::new(
             value(Property::BoilingPoint)?,
             value(Property::CriticalTemperature)?,

@@ -1,15 +1,15 @@
 //! Everything published that an evaluation draws on, loaded once.
 
-use std::sync::Arc;
+use std::sync::{Arc, OnceLock};
 
 use thiserror::Error;
 
 use super::error::UnknownMolecule;
 use super::profile::{Known, Profile, Profiler};
 use crate::chem::Keys;
-use crate::data::{DataError, Substance, Substances};
+use crate::data::{DataError, Substance, Substances, TableText, Tables};
 use crate::groups::{GroupSet, GroupsError, SetId};
-use crate::mixture::{ActivityModel, Slips, Unifac};
+use crate::mixture::{ActivityModel, Slips, TableFile, Unifac, UnifacOverlay};
 use crate::pure::PureMethods;
 use crate::quantity::Absent;
 use crate::table::TableError;
@@ -28,15 +28,46 @@ pub enum LibraryError {
     Data(#[from] DataError),
 }
 
+/// A table of a user's folder.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct UserTable {
+    /// Where it belongs, as below `groups/`: `unifac/interactions.csv`.
+    pub place: String,
+    /// Its name in messages.
+    pub file: String,
+    /// Its text.
+    pub text: String,
+}
+
+/// The tables a user may lay over the built-in ones.
+pub const USER_TABLES: [&str; 14] = [
+    "unifac/main_groups.csv",
+    "unifac/subgroups.csv",
+    "unifac/interactions.csv",
+    "unifac/patterns.csv",
+    "unifac-dortmund/main_groups.csv",
+    "unifac-dortmund/subgroups.csv",
+    "unifac-dortmund/interactions-2016.csv",
+    "unifac-dortmund/interactions-2006.csv",
+    "unifac-dortmund/patterns.csv",
+    "substances/substances.csv",
+    "substances/measured.csv",
+    "substances/hansen.csv",
+    "substances/vapor_pressure.csv",
+    "substances/density.csv",
+];
+
 /// Group sets, activity models, pure-component methods and measured data.
+///
+/// What is built in is read when it is first asked for: most commands need a
+/// part only. A user's tables are read, and their faults told, at once.
 #[derive(Debug)]
 pub struct Library {
-    sets: [GroupSet; SetId::ALL.len()],
-    unifac: [Unifac; UNIFAC_MODELS.len()],
-    /// Pure-component methods.
-    pub methods: PureMethods,
-    /// Measured substances.
-    pub substances: Substances,
+    sets: [OnceLock<GroupSet>; SetId::ALL.len()],
+    unifac: [OnceLock<Unifac>; UNIFAC_MODELS.len()],
+    methods: OnceLock<PureMethods>,
+    substances: OnceLock<Substances>,
+    user: Vec<UserTable>,
     slips: Slips,
     /// That a set leaves atoms out, without saying which: finding the words takes
     /// longer than the breakdown, so it waits until somebody reads them.
@@ -50,41 +81,132 @@ const UNIFAC_MODELS: [ActivityModel; 3] = [
     ActivityModel::UnifacDortmund2006,
 ];
 
+const SOUND: &str = "built-in tables are sound (tested), a user's were checked when they came";
+
 impl Library {
     /// What is built into the program; `slips` says whether suspected slips of
     /// the circulated tables are corrected.
-    ///
-    /// # Errors
-    ///
-    /// A built-in table that does not pass its checks, with file, row and column.
-    pub fn built_in(slips: Slips) -> Result<Self, LibraryError> {
-        let [original, dortmund, joback] = SetId::ALL.map(GroupSet::built_in);
-        let [first, second, third] = UNIFAC_MODELS
-            .map(|model| Unifac::built_in(model, slips).expect("every UNIFAC model has tables"));
-        Ok(Self {
-            sets: [original?, dortmund?, joback?],
-            unifac: [first?, second?, third?],
-            methods: PureMethods::built_in(),
-            substances: Substances::built_in()?,
+    pub fn built_in(slips: Slips) -> Self {
+        Self {
+            sets: [const { OnceLock::new() }; SetId::ALL.len()],
+            unifac: [const { OnceLock::new() }; UNIFAC_MODELS.len()],
+            methods: OnceLock::new(),
+            substances: OnceLock::new(),
+            user: Vec::new(),
             slips,
             not_covered: SetId::ALL.map(|set| Absent::NotCovered {
                 set: set.id(),
                 what: "some atoms are in no group".into(),
             }),
-        })
+        }
+    }
+
+    /// The same with a user's tables laid over the built-in ones.
+    ///
+    /// # Errors
+    ///
+    /// A table that does not pass its checks, with file, row and column.
+    pub fn with_user_tables(slips: Slips, user: Vec<UserTable>) -> Result<Self, LibraryError> {
+        let library = Self {
+            user,
+            ..Self::built_in(slips)
+        };
+        for set in SetId::ALL {
+            let _ = library.sets[set as usize].set(library.read_set(set)?);
+        }
+        for (at, model) in UNIFAC_MODELS.into_iter().enumerate() {
+            let _ = library.unifac[at].set(library.read_unifac(model)?);
+        }
+        let _ = library.substances.set(library.read_substances()?);
+        Ok(library)
+    }
+
+    fn user_table(&self, place: &str) -> Option<&UserTable> {
+        self.user.iter().find(|table| table.place == place)
+    }
+
+    fn read_set(&self, set: SetId) -> Result<GroupSet, LibraryError> {
+        let texts = set.built_in_texts();
+        let over = |name: &str| self.user_table(&format!("{}/{name}", set.id()));
+        let groups = layers(texts.groups, over("subgroups.csv"));
+        let patterns = layers(texts.patterns, over("patterns.csv"));
+        Ok(GroupSet::read(set.id(), &groups, &patterns)?)
+    }
+
+    fn read_unifac(&self, model: ActivityModel) -> Result<Unifac, LibraryError> {
+        let folder = model
+            .group_set()
+            .expect("every UNIFAC model has a group set");
+        let interactions = match model {
+            ActivityModel::UnifacDortmund => "interactions-2016.csv",
+            ActivityModel::UnifacDortmund2006 => "interactions-2006.csv",
+            ActivityModel::Unifac | ActivityModel::Ideal => "interactions.csv",
+        };
+        let over = |name: &str| {
+            self.user_table(&format!("{folder}/{name}"))
+                .map(|table| TableFile {
+                    name: &table.file,
+                    text: &table.text,
+                })
+        };
+        let overlay = UnifacOverlay {
+            main_groups: over("main_groups.csv"),
+            subgroups: over("subgroups.csv"),
+            interactions: over(interactions),
+        };
+        Unifac::with_overlays(model, &[overlay], self.slips)
+            .expect("every UNIFAC model has tables")
+            .map_err(LibraryError::from)
+    }
+
+    fn read_substances(&self) -> Result<Substances, LibraryError> {
+        let built_in = Substances::built_in()?;
+        let over = |name: &str| {
+            self.user_table(&format!("substances/{name}.csv"))
+                .map(|table| TableText {
+                    file: &table.file,
+                    text: &table.text,
+                })
+        };
+        let tables = Tables {
+            substances: over("substances"),
+            measured: over("measured"),
+            hansen: over("hansen"),
+            vapor_pressure: over("vapor_pressure"),
+            density: over("density"),
+            conflicts: None,
+        };
+        let none = self
+            .user
+            .iter()
+            .all(|table| !table.place.starts_with("substances/"));
+        if none {
+            Ok(built_in)
+        } else {
+            Ok(built_in.with(&tables)?)
+        }
     }
 
     /// A group set.
     pub fn set(&self, set: SetId) -> &GroupSet {
-        &self.sets[set as usize]
+        self.sets[set as usize].get_or_init(|| self.read_set(set).expect(SOUND))
     }
 
     /// The UNIFAC behind a model; `None` for the ideal mixture.
     pub fn unifac(&self, model: ActivityModel) -> Option<&Unifac> {
-        UNIFAC_MODELS
-            .iter()
-            .position(|&known| known == model)
-            .map(|at| &self.unifac[at])
+        let at = UNIFAC_MODELS.iter().position(|&known| known == model)?;
+        Some(self.unifac[at].get_or_init(|| self.read_unifac(model).expect(SOUND)))
+    }
+
+    /// Pure-component methods.
+    pub fn methods(&self) -> &PureMethods {
+        self.methods.get_or_init(PureMethods::built_in)
+    }
+
+    /// Measured substances.
+    pub fn substances(&self) -> &Substances {
+        self.substances
+            .get_or_init(|| self.read_substances().expect(SOUND))
     }
 
     /// How suspected slips are treated.
@@ -92,9 +214,14 @@ impl Library {
         self.slips
     }
 
+    /// The tables of the user, in the order in which they were found.
+    pub fn user_tables(&self) -> &[UserTable] {
+        &self.user
+    }
+
     /// Every table computed with, as (file name, text): what a fingerprint is taken of.
-    pub fn texts(&self) -> Vec<(&'static str, &'static str)> {
-        let mut all = Vec::new();
+    pub fn texts(&self) -> Vec<(&str, &str)> {
+        let mut all: Vec<(&str, &str)> = Vec::new();
         for set in SetId::ALL {
             let texts = set.built_in_texts();
             all.extend([texts.groups, texts.patterns]);
@@ -123,7 +250,7 @@ impl Library {
 
     /// Measured data of a molecule: of the same identity, else of the same constitution.
     pub fn known(&self, keys: &Keys) -> Option<Known<'_>> {
-        let (substance, flags) = self.substances.find_structure(keys)?;
+        let (substance, flags) = self.substances().find_structure(keys)?;
         Some(Known {
             substance,
             same_identity: flags.is_empty(),
@@ -142,7 +269,7 @@ impl Library {
         text: &str,
     ) -> Result<(Option<Arc<str>>, Profile), UnknownMolecule> {
         let text = text.trim();
-        match self.substances.find(text) {
+        match self.substances().find(text) {
             Ok(substance) => {
                 let profile = profiler
                     .profile(self, substance.smiles())
@@ -169,16 +296,25 @@ impl Library {
     }
 
     pub(super) fn position(&self, substance: &Substance) -> usize {
-        self.substances
+        self.substances()
             .iter()
             .position(|other| std::ptr::eq(other, substance))
             .expect("the substance is one of the library")
     }
 
     pub(super) fn substance(&self, position: usize) -> &Substance {
-        self.substances
+        self.substances()
             .iter()
             .nth(position)
             .expect("positions come from the library")
     }
+}
+
+/// A built-in text and, above it, the one of the user.
+fn layers<'a>(
+    built_in: (&'a str, &'a str),
+    user: Option<&'a UserTable>,
+) -> Vec<(&'a str, &'a str)> {
+    let user = user.map(|table| (table.file.as_str(), table.text.as_str()));
+    [Some(built_in), user].into_iter().flatten().collect()
 }

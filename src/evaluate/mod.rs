@@ -19,7 +19,7 @@ pub use candidate::{Scratch, Verdict};
 pub use component::{MixtureComponent, VaporCurve};
 pub use error::{PlanCause, PlanFault, UnknownMolecule};
 pub use figure::{CATALOG, FIGURES, FigureEntry, FigureKind, figure};
-pub use library::{Library, LibraryError};
+pub use library::{Library, LibraryError, USER_TABLES, UserTable};
 pub use plan::{DEFAULT_MODEL, Plan, PlannedFigure, PlannedTarget};
 pub use profile::{Coverages, Known, Profile, Profiler, properties};
 pub use solution::{MixtureFigure, StatedState, describe_mixture, mole_fractions};

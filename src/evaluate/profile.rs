@@ -204,7 +204,7 @@ pub fn properties(
     let counts = profile.complete_counts(library, SetId::Joback);
     let given = measured_values(known, temperature_k);
     estimate_all(
-        &library.methods,
+        library.methods(),
         counts.as_ref().map(|counts| *counts),
         &profile.facts,
         Given(&given),

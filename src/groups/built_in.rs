@@ -82,6 +82,6 @@ impl GroupSet {
     /// None unless a built-in file is broken, which the tests rule out.
     pub fn built_in(set: SetId) -> Result<Self, GroupsError> {
         let texts = set.built_in_texts();
-        Self::read(set.id(), texts.groups, texts.patterns)
+        Self::read(set.id(), &[texts.groups], &[texts.patterns])
     }
 }

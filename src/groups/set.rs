@@ -50,9 +50,10 @@ pub struct GroupSet {
 }
 
 impl GroupSet {
-    /// Reads a set from the texts of its group table (columns `number`,
-    /// `formula`, `composition`) and its pattern table; each text comes with
-    /// the file name for messages.
+    /// Reads a set from the texts of its group tables (columns `number`,
+    /// `formula`, `composition`) and its pattern tables; each text comes with
+    /// the file name for messages. A group of a later table replaces one of the
+    /// same number; patterns of later tables are added.
     ///
     /// # Errors
     ///
@@ -60,12 +61,24 @@ impl GroupSet {
     /// is no formula, a pattern that does not compile: each with its place.
     pub fn read(
         id: &'static str,
-        groups: (&str, &str),
-        patterns: (&str, &str),
+        group_tables: &[(&str, &str)],
+        pattern_tables: &[(&str, &str)],
     ) -> Result<Self, GroupsError> {
-        let groups = read_groups(&Table::read(groups.0, groups.1)?)?;
-        let (patterns, environments) =
-            read_patterns(&Table::read(patterns.0, patterns.1)?, &groups)?;
+        let mut groups: Vec<Group> = Vec::new();
+        for (file, text) in group_tables {
+            for group in read_groups(&Table::read(file, text)?)? {
+                match groups.binary_search_by_key(&group.number, |known| known.number) {
+                    Ok(at) => groups[at] = group,
+                    Err(at) => groups.insert(at, group),
+                }
+            }
+        }
+        let mut patterns = Vec::new();
+        let mut environments = Environments::default();
+        for (file, text) in pattern_tables {
+            let table = Table::read(file, text)?;
+            read_patterns(&table, &groups, &mut environments, &mut patterns)?;
+        }
         let mut filed = Vec::new();
         let mut starts = [0; KEYS + 1];
         for key in 0..KEYS {
@@ -135,7 +148,10 @@ impl GroupSet {
     pub fn conserves(&self, counts: &GroupCounts, composition: &Composition) -> bool {
         let mut doubled = Composition::default();
         for (number, count) in counts.iter() {
-            match self.group(number).and_then(|group| group.doubled_composition.as_ref()) {
+            match self
+                .group(number)
+                .and_then(|group| group.doubled_composition.as_ref())
+            {
                 Some(composition) => doubled.add_times(composition, count),
                 None => return false,
             }
@@ -178,18 +194,18 @@ fn read_groups(table: &Table) -> Result<Vec<Group>, GroupsError> {
 fn read_patterns(
     table: &Table,
     groups: &[Group],
-) -> Result<(Vec<GroupPattern>, Environments), GroupsError> {
-    let mut environments = Environments::default();
+    environments: &mut Environments,
+    patterns: &mut Vec<GroupPattern>,
+) -> Result<(), GroupsError> {
     let gives = table.column("gives")?;
     let pattern = table.column("pattern")?;
     let rank = table.column("rank")?;
     let example = table.column("example")?;
-    let mut patterns: Vec<GroupPattern> = Vec::with_capacity(table.rows().len());
     for row in table.rows() {
         let counts = read_gives(row, gives, groups)?;
         let text = row.required_text(pattern)?;
         let program =
-            Program::compile(text, &mut environments).map_err(|faults| GroupsError::Pattern {
+            Program::compile(text, environments).map_err(|faults| GroupsError::Pattern {
                 file: table.file().to_owned(),
                 line: row.line(),
                 pattern: text.to_owned(),
@@ -217,7 +233,7 @@ fn read_patterns(
             line: row.line(),
         });
     }
-    Ok((patterns, environments))
+    Ok(())
 }
 
 fn read_gives(

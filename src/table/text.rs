@@ -12,7 +12,12 @@ pub struct Table {
     columns: Vec<String>,
     units: Vec<String>,
     heads_line: u64,
-    rows: Vec<(u64, Vec<String>)>,
+    /// The text of every data cell, one after the other.
+    text: String,
+    /// Where each cell ends in `text`, row by row.
+    ends: Vec<u32>,
+    /// Line of each row.
+    lines: Vec<u64>,
 }
 
 /// The position of a column, looked up once by name.
@@ -23,8 +28,7 @@ pub struct Column(usize);
 #[derive(Clone, Copy, Debug)]
 pub struct Row<'a> {
     table: &'a Table,
-    line: u64,
-    cells: &'a [String],
+    row: usize,
 }
 
 impl Table {
@@ -65,27 +69,29 @@ impl Table {
             .flexible(false)
             .trim(csv::Trim::All)
             .from_reader(&text.as_bytes()[body_start..]);
-        let mut records = Vec::new();
-        for record in reader.records() {
-            let record = record.map_err(|error| TableError::Csv {
-                file: file.to_owned(),
-                line: head_lines + error.position().map_or(0, csv::Position::line),
-                reason: error.to_string(),
-            })?;
+        let mut record = csv::StringRecord::new();
+        let mut next = |record: &mut csv::StringRecord| {
+            let found = reader
+                .read_record(record)
+                .map_err(|error| TableError::Csv {
+                    file: file.to_owned(),
+                    line: head_lines + error.position().map_or(0, csv::Position::line),
+                    reason: error.to_string(),
+                })?;
             let line = head_lines + record.position().map_or(0, csv::Position::line);
-            records.push((line, record.iter().map(str::to_owned).collect::<Vec<_>>()));
-        }
-        let mut records = records.into_iter();
-        let mut next_row = |what: &'static str| {
-            records.next().ok_or_else(|| TableError::Column {
+            Ok::<_, TableError>(found.then_some(line))
+        };
+        let mut heads = |what: &str| match next(&mut record)? {
+            Some(line) => Ok((line, record.iter().map(str::to_owned).collect::<Vec<_>>())),
+            None => Err(TableError::Column {
                 file: file.to_owned(),
                 line: head_lines + 1,
                 column: what.to_owned(),
                 fault: "row is missing",
-            })
+            }),
         };
-        let (heads_line, columns) = next_row("column names")?;
-        let (_, units) = next_row("units")?;
+        let (heads_line, columns) = heads("column names")?;
+        let (_, units) = heads("units")?;
         for (position, column) in columns.iter().enumerate() {
             if columns[..position].contains(column) {
                 return Err(TableError::Column {
@@ -96,14 +102,29 @@ impl Table {
                 });
             }
         }
-        Ok(Self {
+        let mut table = Self {
             file: file.to_owned(),
             facts,
             columns,
             units,
             heads_line,
-            rows: records.collect(),
-        })
+            text: String::with_capacity(text.len() - body_start),
+            ends: Vec::new(),
+            lines: Vec::new(),
+        };
+        while let Some(line) = next(&mut record)? {
+            table.lines.push(line);
+            for cell in &record {
+                table.text.push_str(cell);
+                let end = u32::try_from(table.text.len()).map_err(|_| TableError::Csv {
+                    file: file.to_owned(),
+                    line,
+                    reason: "the table is larger than 4 GiB".into(),
+                })?;
+                table.ends.push(end);
+            }
+        }
+        Ok(table)
     }
 
     /// The file name used in messages.
@@ -182,23 +203,25 @@ impl Table {
 
     /// The data rows, in order.
     pub fn rows(&self) -> impl ExactSizeIterator<Item = Row<'_>> {
-        self.rows.iter().map(|(line, cells)| Row {
-            table: self,
-            line: *line,
-            cells,
-        })
+        (0..self.lines.len()).map(|row| Row { table: self, row })
     }
 }
 
 impl<'a> Row<'a> {
     /// Line of the row in its file, from 1.
     pub fn line(self) -> u64 {
-        self.line
+        self.table.lines[self.row]
     }
 
     /// The cell as text, possibly empty.
     pub fn text(self, column: Column) -> &'a str {
-        &self.cells[column.0]
+        let cell = self.row * self.table.columns.len() + column.0;
+        let end = self.table.ends[cell] as usize;
+        let start = match cell {
+            0 => 0,
+            _ => self.table.ends[cell - 1] as usize,
+        };
+        &self.table.text[start..end]
     }
 
     /// The cell as text that may not be empty.
@@ -254,9 +277,9 @@ impl<'a> Row<'a> {
     pub fn fault(self, column: Column, fault: impl Into<String>) -> TableError {
         TableError::Cell {
             file: self.table.file.clone(),
-            line: self.line,
+            line: self.line(),
             column: self.table.columns[column.0].clone(),
-            found: self.cells[column.0].clone(),
+            found: self.text(column).to_owned(),
             fault: fault.into(),
         }
     }

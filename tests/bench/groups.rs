@@ -12,7 +12,10 @@ const POOL: &str = include_str!("../../examples/entrainer-acetone-methanol/solve
 fn lines() -> Vec<String> {
     let mut reader = csv::Reader::from_reader(POOL.as_bytes());
     let heads = reader.headers().expect("the pool has a header").clone();
-    let column = heads.iter().position(|head| head == "smiles").expect("the pool has SMILES");
+    let column = heads
+        .iter()
+        .position(|head| head == "smiles")
+        .expect("the pool has SMILES");
     let mut smiles = Reader::new();
     reader
         .records()
@@ -31,7 +34,9 @@ fn breakdown(criterion: &mut Criterion) {
         let (mut molecule, mut counts) = (Molecule::default(), GroupCounts::new());
         bencher.iter(|| {
             for line in &lines {
-                reader.read_into(line, &mut molecule).expect("readable, see above");
+                reader
+                    .read_into(line, &mut molecule)
+                    .expect("readable, see above");
                 breaker.load(&molecule);
                 for set in [SetId::Unifac, SetId::Joback] {
                     black_box(breaker.counts(&molecule, &sets[set as usize], &mut counts));
@@ -42,8 +47,10 @@ fn breakdown(criterion: &mut Criterion) {
     for set in SetId::ALL {
         group.bench_function(set.id(), |bencher| {
             let mut reader = Reader::new();
-            let molecules: Vec<Molecule> =
-                lines.iter().map(|line| reader.read(line).expect("readable, see above")).collect();
+            let molecules: Vec<Molecule> = lines
+                .iter()
+                .map(|line| reader.read(line).expect("readable, see above"))
+                .collect();
             let (mut breaker, mut counts) = (Breaker::new(), GroupCounts::new());
             bencher.iter(|| {
                 for molecule in &molecules {
