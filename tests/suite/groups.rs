@@ -220,6 +220,37 @@ fn decided_kinds() {
     }
 }
 
+/// Many independent choices, or choices that hang on chain ends, stay cheap:
+/// none of these is refused as too ambiguous.
+#[test]
+fn large_ambiguous_molecules_are_answered() {
+    let perfluoro = format!("FC(F)(F){}C(F)(F)F", "C(F)(F)".repeat(40));
+    let polyether = format!("COCC{}OC", "OCC".repeat(60));
+    let branched = format!("C{}", "C(C(=O)OC(F)(F)Cl)(OCC)".repeat(12));
+    for smiles in [
+        perfluoro.as_str(),
+        polyether.as_str(),
+        branched.as_str(),
+        "FC1(F)C(F)(F)C(F)(F)C(F)(C(F)(F)C2(F)C(F)(F)C(F)(F)C(F)(F)C3(F)C(F)(F)C(F)(F)C(F)(F)C(F)(F)C32F)C(F)(F)C1(F)F",
+        "NCCCN(CCCN(CCCN(CCCN)CCCN)CCCN(CCCN)CCCN)CCCN(CCCN(CCCN)CCCN)CCCN(CCCN)CCCN",
+    ] {
+        let molecule = read(smiles);
+        for set in sets() {
+            let ours = break_down(&molecule, &set);
+            assert!(
+                matches!(ours.coverage, Coverage::Complete | Coverage::Partial),
+                "{} {smiles}: {:?}",
+                set.id(),
+                ours.coverage
+            );
+        }
+    }
+    let ours = break_down(&read(&polyether), &set("unifac"));
+    assert_eq!(ours.counts.to_string(), "2:62;24:2;25:60");
+    let ours = break_down(&read(&perfluoro), &set("unifac-dortmund"));
+    assert_eq!(ours.counts.to_string(), "74:2;75:40");
+}
+
 /// Kinds for which a set has no group: said so, not forced into others.
 #[test]
 fn uncovered_kinds_stay_uncovered() {
