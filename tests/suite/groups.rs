@@ -146,7 +146,10 @@ fn atoms_are_conserved() {
             let mut doubled = Composition::default();
             for (number, count) in ours.counts.iter() {
                 let group = set.group(number).expect("a group of the set");
-                let atoms = group.doubled_composition.as_ref().expect("no molecule holds an ion");
+                let atoms = group
+                    .doubled_composition
+                    .as_ref()
+                    .expect("no molecule holds an ion");
                 doubled.add_times(atoms, count);
             }
             for &atom in &ours.uncovered {
