@@ -44,8 +44,13 @@ pub(super) fn run(command: &args::Check, library: Library) -> Result<Exit, CliEr
             models.join(", ")
         )?;
     }
-    for (name, wanted) in plan.labels() {
-        writeln!(out, "  target: {name} {wanted}")?;
+    for (name, wanted) in plan.musts() {
+        writeln!(out, "  must: {name} {wanted}")?;
+    }
+    for planned in plan.targets.iter().filter(|planned| planned.target.counts) {
+        let name = &plan.figures[planned.figure].name;
+        let weight = planned.target.weight;
+        writeln!(out, "  score: {name} {}, weight {weight}", planned.wanted)?;
     }
     for note in &plan.notes {
         writeln!(out, "  note: {note}")?;

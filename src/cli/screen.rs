@@ -176,7 +176,7 @@ fn show(
         writeln!(out)?;
     }
     let labels: Vec<TargetLabel<'_>> = plan
-        .labels()
+        .musts()
         .map(|(name, wanted)| TargetLabel { name, wanted })
         .collect();
     out.write_all(outcome_text(&screened.counts, &labels).as_bytes())?;

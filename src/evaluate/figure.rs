@@ -41,6 +41,16 @@ pub struct FigureEntry {
     pub title: &'static str,
 }
 
+impl FigureEntry {
+    /// Whether it is of the second key unless another component is named.
+    pub(super) fn is_of_selected_key(&self) -> bool {
+        matches!(
+            self.kind,
+            FigureKind::CapacityByMole | FigureKind::CapacityByMass
+        )
+    }
+}
+
 const NOTHING: brief::Needs = brief::Needs {
     mixture: false,
     keys: false,

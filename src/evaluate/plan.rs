@@ -202,6 +202,17 @@ impl Plan {
         limits.chain(targets)
     }
 
+    /// The labels of what disqualifies a candidate that misses it.
+    pub fn musts(&self) -> impl Iterator<Item = (&str, &str)> {
+        let limits = self.limits.len();
+        self.labels()
+            .enumerate()
+            .filter_map(move |(position, label)| {
+                let must = position < limits || self.targets[position - limits].target.must;
+                must.then_some(label)
+            })
+    }
+
     fn add_targets(&mut self) {
         for target in self.brief.targets.clone() {
             let entry = figure(target.figure.value).expect("the brief was checked by the catalog");
@@ -209,7 +220,13 @@ impl Plan {
                 Some(at) => self.temperature(at.value),
                 None => 0,
             };
-            let component = target.component.as_ref().map(|component| component.value);
+            let component = match target.component.as_ref().map(|component| component.value) {
+                // The second key is the component that is meant where none is named.
+                named if named == self.keys.map(|keys| keys[1]) && entry.is_of_selected_key() => {
+                    None
+                }
+                other => other,
+            };
             let figure = self.column(entry.kind, entry.figure.id, component, temperature, 0);
             let wanted = target.want.in_table_units(target.dimension).to_string();
             self.targets.push(PlannedTarget {
@@ -270,7 +287,7 @@ impl Plan {
         known.unwrap_or_else(|| {
             let mut name = id.to_owned();
             if let Some(component) = component {
-                name.push_str(&format!("_{}", component + 1));
+                name.push_str(&format!("_component_{}", component + 1));
             }
             if temperature > 0 {
                 let kelvin = self.temperatures[temperature].to_string().replace('.', "_");
