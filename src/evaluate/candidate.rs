@@ -435,6 +435,18 @@ impl Plan {
     /// volatility.
     fn direction(&self, figures: &[Outcome]) -> Option<String> {
         let keys = self.keys?;
+        // Where nothing is distilled, nothing goes overhead.
+        let distilled = self.targets.iter().any(|target| {
+            matches!(
+                self.figures[target.figure].kind,
+                FigureKind::RelativeVolatility
+                    | FigureKind::SeparationFactor
+                    | FigureKind::RelativeVolatilityWithSolvent
+            )
+        });
+        if !distilled {
+            return None;
+        }
         let value = |kind: FigureKind| {
             let at = self
                 .figures

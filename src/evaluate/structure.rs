@@ -119,11 +119,12 @@ pub(super) fn bind(
         let names: Vec<_> = allowed
             .value
             .iter()
+            .filter(|element| **element != Element::H)
             .map(|element| element.symbol())
             .collect();
         add(
             "structure.elements".into(),
-            format!("only H, {}", names.join(", ")),
+            format!("only H and {}", names.join(", ")),
             Rule::Elements {
                 allowed: allowed.value.clone(),
             },

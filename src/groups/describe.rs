@@ -92,6 +92,7 @@ fn name(molecule: &Molecule, index: u32) -> &'static str {
         S if atom.hydrogens > 0 => "a thiol sulfur",
         S if next_to(S) => "a disulfide sulfur",
         S => "a sulfide sulfur",
+        O if atom.hydrogens == 2 => "a water molecule",
         O if atom.charge < 0 && next_to(N) => "an oxygen of a nitro group or N-oxide",
         O if atom.aromatic => "an aromatic ring oxygen",
         O if doubly(C)
