@@ -8,7 +8,7 @@ use super::exit::Exit;
 use super::output;
 use crate::evaluate::{FIGURES, Library};
 use crate::groups::SetId;
-use crate::mixture::{ActivityModel, ModelStatus, RESERVED_MODELS, Unifac};
+use crate::mixture::{ActivityModel, Interaction, ModelStatus, RESERVED_MODELS, Slips, Unifac};
 use crate::pure::{METHODS, Role};
 use crate::quantity::Property;
 use crate::quantity::unit::si_symbol;
@@ -389,7 +389,7 @@ fn substances(library: &Library, name: Option<&str>) -> Result<String, CliError>
     for curve in substance.vapor_pressures() {
         let (low, high) = curve.range_k();
         text.push_str(&format!(
-            "  vapor pressure from {low} K to {high} K: {:?}  ({})\n",
+            "  vapor pressure in Pa from {low} K to {high} K: {}  ({})\n",
             curve.equation(),
             curve.source()
         ));
@@ -397,7 +397,7 @@ fn substances(library: &Library, name: Option<&str>) -> Result<String, CliError>
     for curve in substance.liquid_densities() {
         let (low, high) = curve.range_k();
         text.push_str(&format!(
-            "  liquid density from {low} K to {high} K: {:?}  ({})\n",
+            "  liquid density in kg/m3 from {low} K to {high} K: {}  ({})\n",
             curve.equation(),
             curve.source()
         ));
@@ -412,7 +412,25 @@ fn slips(library: &Library) -> String {
             continue;
         };
         for slip in unifac.tables().slips() {
-            text.push_str(&format!("{}: {slip:?}\n", model.id()));
+            let values = |values: &Interaction| {
+                format!(
+                    "a = {} K, b = {}, c = {} 1/K",
+                    values.a_k, values.b, values.c_per_k
+                )
+            };
+            text.push_str(&format!(
+                "{}: {} to {}\n  as circulated: {}\n  used: {}\n  why: {}\n  evidence: {}\n",
+                model.id(),
+                slip.i,
+                slip.j,
+                values(&slip.circulated),
+                match (&slip.replacement, library.slips()) {
+                    (Some(other), Slips::Corrected) => values(other),
+                    _ => "the same".to_owned(),
+                },
+                slip.reason,
+                slip.evidence
+            ));
         }
     }
     if text.is_empty() {

@@ -1,5 +1,6 @@
 //! Liquid-density curves fitted to measurements.
 
+use std::fmt;
 use std::sync::Arc;
 
 use super::OutOfRange;
@@ -77,6 +78,26 @@ impl DensityEquation {
                 ..
             } => critical_temperature_k,
             Self::Constant { .. } => f64::INFINITY,
+        }
+    }
+}
+
+impl fmt::Display for DensityEquation {
+    /// The equation with its numbers, for K and kg/m³.
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match *self {
+            Self::Rackett { a, b, c, d } => {
+                write!(f, "Rackett, {a:.6}/{b}^(1 + (1 - T/{c})^{d})")
+            }
+            Self::CriticalExpansion {
+                coefficients: [a, b, c, d],
+                critical_temperature_k,
+                critical_density_kg_per_m3,
+            } => write!(
+                f,
+                "expansion about the critical point, {critical_density_kg_per_m3} with {a}, {b}, {c}, {d}, Tc {critical_temperature_k} K"
+            ),
+            Self::Constant { density_kg_per_m3 } => write!(f, "one value, {density_kg_per_m3}"),
         }
     }
 }

@@ -1,5 +1,6 @@
 //! Vapor-pressure curves fitted to measurements.
 
+use std::fmt;
 use std::sync::Arc;
 
 use super::OutOfRange;
@@ -90,6 +91,38 @@ impl VaporPressureEquation {
                 let power = d * t.powf(e);
                 (a + b / t + c * t.ln() + power, (-b / t + c + e * power) / t)
             }
+        }
+    }
+}
+
+impl fmt::Display for VaporPressureEquation {
+    /// The equation with its numbers, for K and Pa.
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match *self {
+            Self::Antoine { a, b, c } => {
+                write!(f, "Antoine, ln P = {a:.6} - {b:.4}/(T + ({c:.4}))")
+            }
+            Self::Wagner {
+                form,
+                coefficients: [a, b, c, d],
+                critical_temperature_k,
+                critical_pressure_pa,
+            } => {
+                let exponents = match form {
+                    WagnerForm::TwoAndAHalfFive => "2.5 and 5",
+                    WagnerForm::ThreeSix => "3 and 6",
+                };
+                write!(
+                    f,
+                    "Wagner with exponents 1, 1.5, {exponents}: {a}, {b}, {c}, {d}, Tc {critical_temperature_k} K, Pc {critical_pressure_pa} Pa"
+                )
+            }
+            Self::ExtendedAntoine {
+                coefficients: [a, b, c, d, e],
+            } => write!(
+                f,
+                "extended Antoine, ln P = {a} + {b}/T + {c} ln T + {d} T^{e}"
+            ),
         }
     }
 }
