@@ -12,6 +12,7 @@ use super::output::{self, Notes};
 use super::progress::Progress;
 use crate::brief::{Brief, Job};
 use crate::evaluate::{CATALOG, Library, Plan, Scratch, Verdict};
+use crate::groups::SetId;
 use crate::mixture::Slips;
 use crate::quantity::unit::{reading_unit, si_symbol, to_table};
 use crate::quantity::{Status, number};
@@ -351,6 +352,20 @@ fn explain(
     let remarks = plan.remarks(&mut scratch);
     if !remarks.is_empty() {
         writeln!(out, "  {remarks}")?;
+    }
+    for set in SetId::ALL {
+        let profile = &scratch.profile;
+        let groups = plan
+            .library
+            .set(set)
+            .describe(&profile.counts[set as usize]);
+        let gaps = profiler.gaps(&plan.library, profile, set);
+        let gaps = if gaps.is_empty() {
+            gaps
+        } else {
+            format!(" ({gaps})")
+        };
+        writeln!(out, "  {}: {groups}{gaps}", set.id())?;
     }
     let mut table = TextTable::new([
         TextColumn::text("figure"),
