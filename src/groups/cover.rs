@@ -395,3 +395,98 @@ impl<const W: usize> Cover<W> {
         self.uncovered = uncovered;
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use std::cmp::Ordering;
+
+    use proptest::prelude::*;
+
+    use super::*;
+
+    /// Uncovered atoms, groups, rank sum and patterns (sorted) of a cover.
+    type Found = (u32, u32, u32, Vec<u16>);
+
+    /// Every cover by trying all, in an order of its own: the plain way.
+    fn by_trying_all(
+        atoms: u32,
+        candidates: &[Candidate<1>],
+        remaining: u64,
+        sofar: &Found,
+        best: &mut Option<Found>,
+    ) {
+        let Some(atom) = (0..atoms).find(|&atom| remaining >> atom & 1 == 1) else {
+            let mut found = sofar.clone();
+            found.3.sort_unstable();
+            if best.as_ref().is_none_or(|best| found < *best) {
+                *best = Some(found);
+            }
+            return;
+        };
+        for candidate in candidates {
+            let set = candidate.atoms[0];
+            if set >> atom & 1 == 1 && set & !remaining == 0 {
+                let mut next = sofar.clone();
+                next.1 += u32::from(candidate.groups);
+                next.2 += u32::from(candidate.rank);
+                next.3.push(candidate.pattern);
+                by_trying_all(atoms, candidates, remaining & !set, &next, best);
+            }
+        }
+        let mut next = sofar.clone();
+        next.0 += 1;
+        by_trying_all(atoms, candidates, remaining & !(1 << atom), &next, best);
+    }
+
+    /// Sorted patterns compared one by one: like the order of counts, a total
+    /// order that adding the same patterns to both sides does not change.
+    fn compare(one: &[u16], other: &[u16]) -> Ordering {
+        let sorted = |patterns: &[u16]| {
+            let mut patterns = patterns.to_vec();
+            patterns.sort_unstable();
+            patterns
+        };
+        sorted(one).cmp(&sorted(other))
+    }
+
+    proptest! {
+        #[test]
+        fn the_best_cover_is_found(
+            atoms in 1_u32..10,
+            sets in prop::collection::vec((1_u64..1024, 1_u16..3, 0_u16..3), 0..14),
+            turn in 0_usize..10,
+        ) {
+            let candidates: Vec<Candidate<1>> = sets
+                .iter()
+                .map(|&(set, groups, rank)| (set & ((1 << atoms) - 1), groups, rank))
+                .filter(|&(set, ..)| set != 0)
+                .enumerate()
+                .map(|(at, (set, groups, rank))| Candidate {
+                    atoms: [set],
+                    pattern: at as u16,
+                    // One group at least for what covers one atom, as everywhere.
+                    groups,
+                    rank,
+                })
+                .collect();
+            let mut cover = Cover::<1> { candidates: candidates.clone(), ..Cover::default() };
+            let mut order: Vec<u32> = (0..atoms).collect();
+            order.rotate_left(turn % atoms as usize);
+            cover.solve(atoms, &order, &compare).expect("far below the work limit");
+
+            let mut wanted = None;
+            let nothing = (0, 0, 0, Vec::new());
+            by_trying_all(atoms, &candidates, (1 << atoms) - 1, &nothing, &mut wanted);
+            let chosen = || cover.chosen.iter().map(|&at| &cover.candidates[at as usize]);
+            let mut patterns: Vec<u16> = chosen().map(|candidate| candidate.pattern).collect();
+            patterns.sort_unstable();
+            let ours = (
+                cover.uncovered.len() as u32,
+                chosen().map(|candidate| u32::from(candidate.groups)).sum::<u32>(),
+                chosen().map(|candidate| u32::from(candidate.rank)).sum::<u32>(),
+                patterns,
+            );
+            prop_assert_eq!(Some(ours), wanted);
+        }
+    }
+}
