@@ -4,6 +4,8 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
 
+use crate::report::RowForm;
+
 /// Ranks solvent candidates for a mixture from published group methods and measured data.
 #[derive(Debug, Parser)]
 #[command(
@@ -59,6 +61,17 @@ pub(super) enum Format {
     Csv,
     /// JSON
     Json,
+}
+
+impl Format {
+    /// The form of streamed rows; `None` for text, which is laid out at the end.
+    pub(super) fn rows(self) -> Option<RowForm> {
+        match self {
+            Self::Text => None,
+            Self::Csv => Some(RowForm::Csv),
+            Self::Json => Some(RowForm::Json),
+        }
+    }
 }
 
 /// Molecules of a look-up.

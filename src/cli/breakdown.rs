@@ -2,7 +2,7 @@
 
 use std::io::Write;
 
-use super::args::{self, Format};
+use super::args;
 use super::error::CliError;
 use super::exit::Exit;
 use super::molecules::{Asked, for_each};
@@ -10,9 +10,7 @@ use super::output;
 use crate::evaluate::{Library, Profiler};
 use crate::groups::{Coverage, SetId};
 use crate::quantity::unit::nearest;
-use crate::report::{
-    BreakdownRow, BreakdownStatus, breakdown_text, write_csv_rows, write_json_rows,
-};
+use crate::report::{BreakdownRow, BreakdownStatus, RowStream, breakdown_text};
 
 /// A row with its texts.
 struct Row {
@@ -43,8 +41,16 @@ impl Row {
 pub(super) fn run(command: &args::Breakdown, library: &Library) -> Result<Exit, CliError> {
     let sets = sets(&command.sets)?;
     let mut profiler = Profiler::new();
-    let mut rows = Vec::new();
     let mut answered = false;
+    // Rows go out as they come, but for text, whose columns need them all.
+    let mut rows = Vec::new();
+    let mut stream = match command.format.rows() {
+        Some(form) => Some(RowStream::begin::<BreakdownRow<'_>>(
+            output::stdout(),
+            form,
+        )?),
+        None => None,
+    };
     for_each(
         &command.molecules,
         library,
@@ -53,22 +59,23 @@ pub(super) fn run(command: &args::Breakdown, library: &Library) -> Result<Exit, 
             for &set in &sets {
                 let row = row(library, profiler, &asked, set);
                 answered |= row.status == BreakdownStatus::Complete;
-                rows.push(row);
+                match &mut stream {
+                    Some(stream) => stream.add(&row.shown())?,
+                    None => rows.push(row),
+                }
             }
             Ok(())
         },
     )?;
-    let mut out = output::stdout();
-    let shown = rows.iter().map(Row::shown);
-    match command.format {
-        Format::Csv => write_csv_rows(&mut out, shown)?,
-        Format::Json => write_json_rows(&mut out, shown)?,
-        Format::Text => {
+    match stream {
+        Some(stream) => stream.end()?,
+        None => {
+            let mut out = output::stdout();
             let readable = rows.iter().map(|row| (row.shown(), row.readable.as_str()));
             out.write_all(breakdown_text(readable, output::width()).as_bytes())?;
+            out.flush()?;
         }
     }
-    out.flush()?;
     Ok(if answered { Exit::Done } else { Exit::Nothing })
 }
 

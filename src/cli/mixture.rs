@@ -14,7 +14,7 @@ use crate::evaluate::{
 use crate::mixture::{ActivityModel, ModelStatus};
 use crate::quantity::unit::{self, nearest};
 use crate::quantity::{Absent, Dimension, REFERENCE_TEMPERATURE_K};
-use crate::report::{MixtureRow, MixtureStatus, mixture_text, write_csv_rows, write_json_rows};
+use crate::report::{MixtureRow, MixtureStatus, RowForm, mixture_text, write_rows};
 
 /// What is asked, from the brief and the options over it.
 struct Question {
@@ -82,8 +82,8 @@ pub(super) fn run(
     let rows: Vec<MixtureRow<'_>> = figures.iter().map(row).collect();
     let mut out = output::stdout();
     match command.format {
-        Format::Csv => write_csv_rows(&mut out, &rows)?,
-        Format::Json => write_json_rows(&mut out, &rows)?,
+        Format::Csv => write_rows(&mut out, RowForm::Csv, &rows)?,
+        Format::Json => write_rows(&mut out, RowForm::Json, &rows)?,
         Format::Text => {
             let names: Vec<&str> = components
                 .iter()

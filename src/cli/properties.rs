@@ -3,23 +3,14 @@
 use std::io::Write;
 use std::sync::Arc;
 
-use super::args::{self, Format};
+use super::args;
 use super::error::CliError;
 use super::exit::Exit;
-use super::molecules::for_each;
+use super::molecules::{Asked, for_each};
 use super::output;
 use crate::evaluate::{Library, Profiler, properties};
-use crate::quantity::unit;
-use crate::quantity::{Dimension, Property};
-use crate::report::{PropertyRow, property_text, write_csv_rows, write_json_rows};
-
-/// Properties of one molecule, or why there are none.
-struct Found {
-    line: u64,
-    name: Arc<str>,
-    smiles: Arc<str>,
-    outcomes: Vec<crate::quantity::Outcome>,
-}
+use crate::quantity::{Absent, Dimension, Outcome, Property, unit};
+use crate::report::{PropertyRow, RowStream, property_text};
 
 pub(super) fn run(command: &args::Properties, library: &Library) -> Result<Exit, CliError> {
     let temperature_k =
@@ -30,82 +21,92 @@ pub(super) fn run(command: &args::Properties, library: &Library) -> Result<Exit,
             }
         })?;
     let mut profiler = Profiler::new();
-    let mut all: Vec<Found> = Vec::new();
+    let mut answered = false;
+    let mut stream = match command.format.rows() {
+        Some(form) => Some(RowStream::begin::<PropertyRow<'_>>(output::stdout(), form)?),
+        None => None,
+    };
     for_each(
         &command.molecules,
         library,
         &mut profiler,
         |profiler, asked| {
-            let outcomes = match &asked.profile {
-                Err(reason) => {
-                    let reason: Arc<str> = reason.as_str().into();
-                    let absent = crate::quantity::Absent::Because(reason);
-                    vec![Err(absent); Property::COUNT]
-                }
-                Ok(profile) => {
-                    let known = library
-                        .known(&profile.keys)
-                        .filter(|_| !command.estimates_only);
-                    let explained = |outcome: crate::quantity::Outcome| {
-                        outcome.map_err(|absent| profiler.explained(library, profile, &absent))
-                    };
-                    properties(library, profile, known, temperature_k)
-                        .into_iter()
-                        .map(explained)
-                        .collect()
-                }
-            };
-            let (line, name, smiles) = (asked.line, asked.name, asked.smiles);
-            all.push(Found {
-                line,
-                name,
-                smiles,
-                outcomes,
-            });
+            let outcomes = outcomes(
+                library,
+                profiler,
+                &asked,
+                command.estimates_only,
+                temperature_k,
+            );
+            answered |= outcomes.iter().any(Result::is_ok);
+            let rows: Vec<_> = rows(&asked, &outcomes, temperature_k).collect();
+            match &mut stream {
+                Some(stream) => rows.iter().try_for_each(|row| stream.add(row))?,
+                None => show(&asked, &rows)?,
+            }
             Ok(())
         },
     )?;
-    let answered = all
-        .iter()
-        .any(|found| found.outcomes.iter().any(Result::is_ok));
-    let mut out = output::stdout();
-    match command.format {
-        Format::Csv => write_csv_rows(
-            &mut out,
-            all.iter().flat_map(|found| rows(found, temperature_k)),
-        )?,
-        Format::Json => write_json_rows(
-            &mut out,
-            all.iter().flat_map(|found| rows(found, temperature_k)),
-        )?,
-        Format::Text => {
-            for found in &all {
-                let name = if found.name.is_empty() {
-                    &found.smiles
-                } else {
-                    &found.name
-                };
-                writeln!(out, "{name}  {}", found.smiles)?;
-                let rows = rows(found, temperature_k);
-                out.write_all(property_text(&rows, output::width()).as_bytes())?;
-                writeln!(out)?;
-            }
-        }
+    if let Some(stream) = stream {
+        stream.end()?;
     }
-    out.flush()?;
     Ok(if answered { Exit::Done } else { Exit::Nothing })
 }
 
-fn rows(found: &Found, temperature_k: f64) -> Vec<PropertyRow<'_>> {
-    let row = |(property, outcome)| {
-        let Found {
-            line, name, smiles, ..
-        } = found;
-        PropertyRow::new(*line, name, smiles, property, temperature_k, outcome)
-    };
+fn outcomes(
+    library: &Library,
+    profiler: &mut Profiler,
+    asked: &Asked,
+    estimates_only: bool,
+    temperature_k: f64,
+) -> Vec<Outcome> {
+    match &asked.profile {
+        Err(reason) => {
+            let reason: Arc<str> = reason.as_str().into();
+            vec![Err(Absent::Because(reason)); Property::COUNT]
+        }
+        Ok(profile) => {
+            let known = library.known(&profile.keys).filter(|_| !estimates_only);
+            properties(library, profile, known, temperature_k)
+                .into_iter()
+                .map(|outcome| {
+                    outcome.map_err(|absent| profiler.explained(library, profile, &absent))
+                })
+                .collect()
+        }
+    }
+}
+
+fn rows<'a>(
+    asked: &'a Asked,
+    outcomes: &'a [Outcome],
+    temperature_k: f64,
+) -> impl Iterator<Item = PropertyRow<'a>> {
     Property::ALL
         .into_iter()
-        .zip(&found.outcomes)
-        .map(row)
-        .collect()
+        .zip(outcomes)
+        .map(move |(property, outcome)| {
+            PropertyRow::new(
+                asked.line,
+                &asked.name,
+                &asked.smiles,
+                property,
+                temperature_k,
+                outcome,
+            )
+        })
+}
+
+/// One molecule for people.
+fn show(asked: &Asked, rows: &[PropertyRow<'_>]) -> Result<(), CliError> {
+    let mut out = output::stdout();
+    let name = if asked.name.is_empty() {
+        &asked.smiles
+    } else {
+        &asked.name
+    };
+    writeln!(out, "{name}  {}", asked.smiles)?;
+    out.write_all(property_text(rows, output::width()).as_bytes())?;
+    writeln!(out)?;
+    Ok(out.flush()?)
 }

@@ -1,7 +1,5 @@
 //! CSV lines written into a byte buffer.
 
-use std::io::{self, Write};
-
 use crate::quantity::number::{write_integer, write_number};
 
 /// One line of CSV under construction, as RFC 4180 has it but for the line end,
@@ -104,26 +102,6 @@ pub trait CsvRow {
 
     /// Appends the row as one line.
     fn write_csv(&self, out: &mut Vec<u8>);
-}
-
-/// Writes a head and rows.
-///
-/// # Errors
-///
-/// What the sink says; a closed pipe comes through as it is.
-pub fn write_csv_rows<R: CsvRow>(
-    sink: &mut impl Write,
-    rows: impl IntoIterator<Item = R>,
-) -> io::Result<()> {
-    let mut buffer = Vec::with_capacity(1 << 10);
-    buffer.extend_from_slice(R::HEAD.as_bytes());
-    buffer.push(b'\n');
-    for row in rows {
-        row.write_csv(&mut buffer);
-        sink.write_all(&buffer)?;
-        buffer.clear();
-    }
-    sink.write_all(&buffer)
 }
 
 #[cfg(test)]

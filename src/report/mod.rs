@@ -12,14 +12,15 @@ mod json;
 mod mixture;
 mod property;
 mod ranking;
+mod stream;
 mod summary;
 mod text_table;
 
 pub use breakdown::{BreakdownRow, BreakdownStatus, breakdown_text};
-pub use csv_line::{CsvLine, CsvRow, write_csv_rows};
-pub use json::write_json_rows;
+pub use csv_line::{CsvLine, CsvRow};
 pub use mixture::{MixtureRow, MixtureStatus, mixture_text};
 pub use property::{PropertyRow, property_text};
 pub use ranking::{FigureColumn, NotRankedRow, RankedRow, RankedTable};
+pub use stream::{RowForm, RowStream, write_rows};
 pub use summary::{TargetLabel, outcome_text};
 pub use text_table::{TextColumn, TextTable};
