@@ -101,7 +101,12 @@ pub(super) struct Properties {
     #[command(flatten)]
     pub(super) molecules: Molecules,
     /// Temperature of what depends on it, such as "25 degC"
-    #[arg(long, value_name = "QUANTITY", default_value = "298.15 K")]
+    #[arg(
+        long,
+        value_name = "QUANTITY",
+        default_value = "298.15 K",
+        allow_hyphen_values = true
+    )]
     pub(super) temperature: String,
     /// Leave measured substance data out
     #[arg(long)]
@@ -124,10 +129,10 @@ pub(super) struct Mixture {
     #[arg(long)]
     pub(super) basis: Option<String>,
     /// Temperature, such as "25 degC"
-    #[arg(long, value_name = "QUANTITY")]
+    #[arg(long, value_name = "QUANTITY", allow_hyphen_values = true)]
     pub(super) temperature: Option<String>,
     /// Pressure, such as "1 atm"
-    #[arg(long, value_name = "QUANTITY")]
+    #[arg(long, value_name = "QUANTITY", allow_hyphen_values = true)]
     pub(super) pressure: Option<String>,
     /// Activity model; may repeat [default: unifac-dortmund]
     #[arg(long = "model", value_name = "MODEL")]

@@ -213,6 +213,14 @@ fn ranking_text<'a>(
             shown.push(target.figure);
         }
     }
+    // The same figures by the other models stand beside them.
+    for &figure in &shown.clone() {
+        shown.extend(
+            plan.other_models(figure)
+                .filter(|other| !shown.contains(other))
+                .collect::<Vec<_>>(),
+        );
+    }
     let mut columns = vec![
         TextColumn::number("rank", ""),
         TextColumn::text("name"),
@@ -234,7 +242,10 @@ fn ranking_text<'a>(
         let mut cells = vec![
             (rank + 1).to_string(),
             name.clone(),
-            format!("{:.4}", row.score),
+            match row.known > 0.0 {
+                true => format!("{:.4}", row.score),
+                false => "–".into(),
+            },
         ];
         for &figure in &shown {
             let dimension = plan.figures[figure].dimension;

@@ -1,12 +1,12 @@
 //! One candidate evaluated by a plan.
 
-use super::component::{MixtureComponent, VaporCurve};
+use super::component::{MixtureComponent, VaporCurve, boiling_range_k};
 use super::figure::FigureKind;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
 use super::profile::{Known, Profile, Profiler, properties};
-use super::solution::{BOILING_RANGE_K, with_liquid};
+use super::solution::with_liquid;
 use crate::chem::SmilesError;
-use crate::mixture::{Component, Unifac, Vapor, relative_volatility};
+use crate::mixture::{Component, Unifac, Vapor, liquid_phases, relative_volatility};
 use crate::pure::Estimates;
 use crate::quantity::{
     Absent, Dimension, Estimate, Flag, Flags, Outcome, REFERENCE_TEMPERATURE_K, Status,
@@ -16,15 +16,25 @@ use crate::quantity::{
 /// volatility beside the solvent is looked at.
 const SOLVENT_FREE_POINTS: [f64; 11] = [0.01, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.99];
 
+/// Positions in [`SOLVENT_FREE_POINTS`] at which the liquid is tested for a
+/// split: the test costs more than all the rest of a row.
+const SPLIT_POINTS: [usize; 3] = [1, 5, 9];
+
+/// ln γ∞ beyond which a value says more of the table than of the molecules:
+/// long alkanes in water come to +25, hydrogen bonds to −6 (from memory of the
+/// compilations in `results/2026-12-01-mixture-models`).
+const PLAUSIBLE_LN_GAMMA_INF: std::ops::RangeInclusive<f64> = -10.0..=40.0;
+
 /// What a plan makes of a candidate.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Verdict {
     /// Every must is met.
     Qualified {
-        /// Weighted geometric mean of the desirabilities of what counts, 0 to 1.
+        /// Weighted geometric mean of the desirabilities of what counts and is
+        /// known, 0 to 1; 1 where nothing counts, 0 where nothing is known.
         score: f64,
-        /// Whether every figure that counts has a value.
-        complete: bool,
+        /// Share of the weights whose figures have a value: 1 where all do.
+        known: f64,
     },
     /// A must is missed.
     Missed {
@@ -80,6 +90,13 @@ impl Scratch {
         self.profiler
             .explained(&plan.library, &self.profile, absent)
     }
+}
+
+/// Relative volatilities α12 of the keys along the solvent-free composition.
+struct AlphaRange {
+    least: f64,
+    most: f64,
+    flags: Flags,
 }
 
 /// A candidate at infinite dilution with the keys, by one model.
@@ -146,7 +163,7 @@ impl Plan {
                     .as_ref()
                     .is_some_and(|keys| keys.ln_gamma_inf(component, &mut together).is_ok());
                 if quick {
-                    together.map(Ok)
+                    together.map(|value| plausible(value, model))
                 } else {
                     keys.map(|key| model.ln_gamma_inf_of(key, component))
                 }
@@ -226,8 +243,16 @@ impl Plan {
                 (-of_component(figure.component)?).exp() * of_key
                     / profile.facts.molar_mass_kg_per_mol
             }
-            FigureKind::RelativeVolatilityWithSolvent => {
-                return self.with_solvent(model, of_candidate, profile, known, &estimates[0]);
+            FigureKind::RelativeVolatilityWithSolvent | FigureKind::SeparationFactorWithSolvent => {
+                let range = self.with_solvent(model, of_candidate, profile, known, &estimates[0]);
+                return range.and_then(|range| {
+                    let value = if figure.kind == FigureKind::SeparationFactorWithSolvent {
+                        range.least.max(1.0 / range.most)
+                    } else {
+                        range.least
+                    };
+                    finite(Estimate::new(value, model.model.id()).flagged(range.flags))
+                });
             }
         };
         finite(calculated(value))
@@ -249,7 +274,7 @@ impl Plan {
         })
     }
 
-    /// The least favorable relative volatility of the keys beside the candidate.
+    /// The relative volatilities of the keys beside the candidate.
     fn with_solvent(
         &self,
         model: &PlannedModel,
@@ -257,7 +282,7 @@ impl Plan {
         profile: &Profile,
         known: Option<Known<'_>>,
         estimates: &Estimates,
-    ) -> Outcome {
+    ) -> Result<AlphaRange, Absent> {
         let because = |text: &str| Absent::Because(text.into());
         let keys = self
             .keys
@@ -291,7 +316,7 @@ impl Plan {
                 second.profile.associates,
                 profile.associates,
             ],
-            range_k: BOILING_RANGE_K,
+            range_k: boiling_range_k([&first.vapor, &second.vapor, &curve].into_iter()),
         };
         let guess_k = self.temperature_k.unwrap_or(350.0);
         let components = model.ternary(keys, dilute.component.as_ref())?;
@@ -302,59 +327,85 @@ impl Plan {
             3,
             guess_k,
             |liquid| {
-                relative_volatility(
+                let points = relative_volatility(
                     liquid,
                     ratio,
                     &SOLVENT_FREE_POINTS,
                     pressure_pa,
                     vapor,
                     guess_k,
-                )
+                )?;
+                // A split would make the volatility that of one liquid that is not there.
+                for point in SPLIT_POINTS.map(|at| &points[at]) {
+                    let feed = 1.0 / (1.0 + ratio);
+                    let x1 = point.x1_solvent_free;
+                    liquid.set_temperature(point.temperature_k)?;
+                    let z = [x1 * feed, (1.0 - x1) * feed, 1.0 - feed];
+                    if liquid_phases(liquid, &z)?.len() > 1 {
+                        return Ok(Err(x1));
+                    }
+                }
+                Ok(Ok(points))
             },
         )?;
-        let least = points
-            .iter()
-            .map(|point| point.alpha)
-            .fold(f64::INFINITY, f64::min);
-        let most = points.iter().map(|point| point.alpha).fold(0.0, f64::max);
+        let points = points.map_err(|x1| {
+            Absent::Because(
+                format!(
+                    "two liquids form beside the candidate (solvent-free, {x1} of {})",
+                    first.name
+                )
+                .into(),
+            )
+        })?;
+        let alphas = || points.iter().map(|point| point.alpha);
         let flags = points
             .iter()
             .fold(Flags::NONE, |flags, point| flags.union(point.flags));
-        let flags = if curve.is_measured() {
-            flags
-        } else {
-            flags.with(Flag::RestsOnEstimate)
-        };
-        finite(Estimate::new(least.max(1.0 / most), model.model.id()).flagged(flags))
+        Ok(AlphaRange {
+            least: alphas().fold(f64::INFINITY, f64::min),
+            most: alphas().fold(0.0, f64::max),
+            flags: if curve.is_measured() {
+                flags
+            } else {
+                flags.with(Flag::RestsOnEstimate)
+            },
+        })
     }
 
     fn verdict(&self, profile: &Profile, figures: &[Outcome]) -> Verdict {
-        let mut missed = None;
+        // The structure is known whatever the figures are, so it decides first.
+        let mut unjudged = None;
         for (label, limit) in self.limits.iter().enumerate() {
             match limit.check(&self.library, profile) {
-                Err(reason) => return Verdict::NotAssessable { label, reason },
                 Ok(None) => {}
                 Ok(Some((value, dimension))) => {
-                    missed.get_or_insert(Verdict::Missed {
+                    return Verdict::Missed {
                         label,
                         value,
                         dimension,
-                    });
+                    };
+                }
+                Err(reason) => {
+                    unjudged.get_or_insert(Verdict::NotAssessable { label, reason });
                 }
             }
         }
-        let (mut sum, mut weights, mut complete) = (0.0, 0.0, true);
+        let mut missed = None;
+        let (mut sum, mut known, mut weights) = (0.0, 0.0, 0.0);
         for (position, planned) in self.targets.iter().enumerate() {
             let target = &planned.target;
             let label = self.limits.len() + position;
+            if target.counts {
+                weights += target.weight;
+            }
             match &figures[planned.figure] {
                 Err(reason) if target.must => {
-                    return Verdict::NotAssessable {
+                    unjudged.get_or_insert_with(|| Verdict::NotAssessable {
                         label,
                         reason: reason.clone(),
-                    };
+                    });
                 }
-                Err(_) => complete &= !target.counts,
+                Err(_) => {}
                 Ok(found) => {
                     if target.must && !target.want.is_met(found.value) {
                         missed.get_or_insert(Verdict::Missed {
@@ -365,18 +416,20 @@ impl Plan {
                     }
                     if target.counts {
                         sum += target.weight * target.want.desirability(found.value).ln();
-                        weights += target.weight;
+                        known += target.weight;
                     }
                 }
             }
         }
-        missed.unwrap_or_else(|| {
-            let score = if weights > 0.0 {
-                (sum / weights).exp()
+        unjudged.or(missed).unwrap_or_else(|| Verdict::Qualified {
+            score: if known > 0.0 {
+                (sum / known).exp()
+            } else if weights > 0.0 {
+                0.0
             } else {
                 1.0
-            };
-            Verdict::Qualified { score, complete }
+            },
+            known: if weights > 0.0 { known / weights } else { 1.0 },
         })
     }
 
@@ -442,6 +495,7 @@ impl Plan {
                 FigureKind::RelativeVolatility
                     | FigureKind::SeparationFactor
                     | FigureKind::RelativeVolatilityWithSolvent
+                    | FigureKind::SeparationFactorWithSolvent
             )
         });
         if !distilled {
@@ -459,13 +513,25 @@ impl Plan {
         let ratio = alpha / selectivity;
         let [first, second] = keys.map(|key| &self.components[key].name);
         let overhead = if alpha > 1.0 { first } else { second };
-        let against = (selectivity > 1.0) != (ratio > 1.0);
+        let against = (selectivity - 1.0) * (ratio - 1.0) < 0.0;
         Some(if !against {
             format!("{overhead} overhead")
         } else if (alpha > 1.0) == (ratio > 1.0) {
             format!("{overhead} overhead, though selectivity works against volatility")
         } else {
             format!("{overhead} overhead, selectivity having reversed the volatility")
+        })
+    }
+}
+
+/// A ln γ∞ that can be one, or the reason why it is not taken for one.
+fn plausible(ln_gamma_inf: f64, model: &PlannedModel) -> Result<f64, Absent> {
+    if PLAUSIBLE_LN_GAMMA_INF.contains(&ln_gamma_inf) {
+        Ok(ln_gamma_inf)
+    } else {
+        Err(Absent::OutsideDomain {
+            method: model.model.id(),
+            what: "ln gamma at infinite dilution lies outside -10 to 40, so an interaction of the table is not fit for this pair",
         })
     }
 }
@@ -490,7 +556,7 @@ impl PlannedModel {
         record
             .ln_gamma_inf(candidate, &mut value)
             .map_err(|gap| record.groups().tables().gap_error(gap).absent())?;
-        Ok(value[0])
+        plausible(value[0], self)
     }
 
     fn ln_gamma_inf_in_host(&self, candidate: &Component) -> Result<f64, Absent> {

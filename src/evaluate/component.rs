@@ -66,6 +66,16 @@ impl VaporCurve {
         }
     }
 
+    /// Temperatures in K between which there is a value; everything where there
+    /// is no curve, which then is the reason that is told.
+    pub(super) fn limits_k(&self) -> (f64, f64) {
+        match self {
+            Self::Measured(curve) => curve.limits_k(),
+            Self::Estimated(curve) => curve.limits_k(),
+            Self::Absent(_) => (0.0, f64::INFINITY),
+        }
+    }
+
     /// What the reader of a value at this temperature has to know.
     pub fn flags_at(&self, temperature_k: f64) -> Flags {
         match self {
@@ -80,6 +90,25 @@ impl VaporCurve {
         matches!(self, Self::Measured(_))
     }
 }
+
+/// Temperatures in K between which boiling points are sought: those that all
+/// curves reach, within [`WIDEST_BOILING_RANGE_K`].
+pub(super) fn boiling_range_k<'a>(curves: impl Iterator<Item = &'a VaporCurve>) -> (f64, f64) {
+    let (low, high) = curves.map(VaporCurve::limits_k).fold(
+        WIDEST_BOILING_RANGE_K,
+        // A hair inside, so that rounding does not step over an end.
+        |(low, high), (from, to)| (low.max(from * (1.0 + 1e-9)), high.min(to * (1.0 - 1e-9))),
+    );
+    // Curves that share no temperature: let the first of them say so.
+    if low < high {
+        (low, high)
+    } else {
+        WIDEST_BOILING_RANGE_K
+    }
+}
+
+/// Widest range in which boiling points are sought, K.
+const WIDEST_BOILING_RANGE_K: (f64, f64) = (120.0, 900.0);
 
 /// A component of the user's mixture.
 #[derive(Clone, Debug)]

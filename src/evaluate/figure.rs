@@ -25,9 +25,12 @@ pub enum FigureKind {
     CapacityByMole,
     /// (1/γ∞) · M(key)/M(candidate): mass of key per mass of candidate.
     CapacityByMass,
-    /// The least favorable relative volatility of the keys along the
-    /// solvent-free composition, candidate added at the stated ratio.
+    /// The smallest α12 of the keys along the solvent-free composition,
+    /// candidate added at the stated ratio.
     RelativeVolatilityWithSolvent,
+    /// The same whichever key goes overhead: the smallest α12, or the smallest
+    /// 1/α12 where that is larger; below 1 an azeotrope is left.
+    SeparationFactorWithSolvent,
 }
 
 /// A figure with its name and what it says.
@@ -69,6 +72,14 @@ const KEYS: brief::Needs = brief::Needs {
     ..NOTHING
 };
 
+const WITH_SOLVENT: brief::Needs = brief::Needs {
+    mixture: true,
+    keys: true,
+    pressure: true,
+    solvent_to_feed: true,
+    ..NOTHING
+};
+
 const fn entry(
     kind: FigureKind,
     id: &'static str,
@@ -87,7 +98,7 @@ const fn entry(
 }
 
 /// Figures of a candidate together with the mixture.
-const OF_MIXTURE: [FigureEntry; 10] = [
+const OF_MIXTURE: [FigureEntry; 11] = [
     entry(
         FigureKind::GammaInfinityOfKey(0),
         "gamma_infinity_first_key",
@@ -161,14 +172,14 @@ const OF_MIXTURE: [FigureEntry; 10] = [
     entry(
         FigureKind::RelativeVolatilityWithSolvent,
         "relative_volatility_with_solvent",
-        brief::Needs {
-            mixture: true,
-            keys: true,
-            pressure: true,
-            solvent_to_feed: true,
-            ..NOTHING
-        },
-        "least favorable relative volatility of the keys over the solvent-free range, at the bubble point",
+        WITH_SOLVENT,
+        "smallest alpha12 over the solvent-free range (1 to 99 mol%), at the bubble point with the solvent; the first key is to go overhead",
+    ),
+    entry(
+        FigureKind::SeparationFactorWithSolvent,
+        "separation_factor_with_solvent",
+        WITH_SOLVENT,
+        "the same whichever key goes overhead; below 1 an azeotrope is left",
     ),
 ];
 

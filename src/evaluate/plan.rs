@@ -13,6 +13,7 @@ use crate::groups::SetId;
 use crate::mixture::{
     ActivityModel, Component, HostAtTemperature, KeysAtTemperature, ModelStatus, Unifac,
 };
+use crate::pure::default_method;
 use crate::quantity::{Absent, Dimension, Property, REFERENCE_TEMPERATURE_K};
 
 /// The model that is used where a brief names none.
@@ -186,6 +187,19 @@ impl Plan {
         self.models.iter().map(|model| model.model)
     }
 
+    /// The columns that hold the same figure of the mixture by the other models.
+    pub fn other_models(&self, figure: usize) -> impl Iterator<Item = usize> {
+        let one = &self.figures[figure];
+        self.figures
+            .iter()
+            .enumerate()
+            .filter_map(move |(at, other)| {
+                let same = (one.kind, one.component, one.temperature)
+                    == (other.kind, other.component, other.temperature);
+                (same && one.model != other.model).then_some(at)
+            })
+    }
+
     /// What lines are counted under when they miss something: structural
     /// limits, then targets, each with what is wanted in words.
     pub fn labels(&self) -> impl Iterator<Item = (&str, &str)> {
@@ -228,6 +242,12 @@ impl Plan {
                 other => other,
             };
             let figure = self.column(entry.kind, entry.figure.id, component, temperature, 0);
+            if !matches!(entry.kind, FigureKind::Property(_)) {
+                // The other models stand beside the one that decides.
+                for model in 1..self.models.len() {
+                    self.column(entry.kind, entry.figure.id, component, temperature, model);
+                }
+            }
             let wanted = target.want.in_table_units(target.dimension).to_string();
             self.targets.push(PlannedTarget {
                 target,
@@ -326,6 +346,17 @@ impl Plan {
                 "no target counts in the score: all that qualify have score 1 and rank by canonical SMILES"
                     .into(),
             );
+        }
+        for planned in &self.targets {
+            let figure = &self.figures[planned.figure];
+            if let FigureKind::Property(property) = figure.kind
+                && default_method(property).is_none()
+            {
+                self.notes.push(format!(
+                    "no method for {} is built in: only candidates with a measured value have one",
+                    figure.name
+                ));
+            }
         }
         if let (Some(temperature_k), Some(mixture)) = (self.temperature_k, &self.brief.mixture)
             && mixture.temperature_k.is_none()

@@ -1,19 +1,17 @@
 //! The user's own mixture: activity and what follows from it.
 
 use super::Library;
-use super::component::MixtureComponent;
+use super::component::{MixtureComponent, boiling_range_k};
 use super::profile::Profile;
 use crate::brief::Basis;
 use crate::groups::SetId;
 use crate::mixture::{
-    ActivityModel, Azeotrope, AzeotropeKind, BubblePoint, Component, Condition, Excess, Extremum,
-    IdealState, Liquid, MassFractions, MixtureError, MoleFractions, Unifac, Vapor, VolumeFractions,
-    azeotropes, bubble_pressure, bubble_temperature, liquid_phases,
+    ActivityModel, Azeotrope, AzeotropeKind, Boiling, Component, Condition, Excess, Extremum,
+    IdealState, Liquid, LiquidPhase, MassFractions, MixtureError, MoleFractions, Unifac, Vapor,
+    VolumeFractions, azeotropes, boiling_pressure, boiling_temperature, bubble_temperature,
+    liquid_phases,
 };
 use crate::quantity::{Absent, Flag, Flags};
-
-/// Temperatures between which boiling points are sought, K.
-pub(super) const BOILING_RANGE_K: (f64, f64) = (120.0, 900.0);
 
 /// A molecule as a UNIFAC model sees it.
 pub(super) fn record(
@@ -143,7 +141,7 @@ pub(super) fn bubble_temperature_k(
     let vapor = Vapor {
         pressures: &pressures,
         associates: &associates,
-        range_k: BOILING_RANGE_K,
+        range_k: range_k(components),
     };
     let guess_k = boiling_guess_k(library, components, x);
     with_liquid(
@@ -170,6 +168,10 @@ fn named_pressure(
         .map_err(|reason| {
             Absent::Because(format!("vapor pressure of {}: {reason}", component.name).into())
         })
+}
+
+fn range_k(components: &[MixtureComponent]) -> (f64, f64) {
+    boiling_range_k(components.iter().map(|component| &component.vapor))
 }
 
 fn associates(components: &[MixtureComponent]) -> Vec<bool> {
@@ -252,23 +254,34 @@ impl Describer<'_> {
         let guess_k = boiling_guess_k(self.library, self.components, self.x);
         let bubble_at_pressure = state.pressure_pa.map(|pressure_pa| {
             self.at(guess_k, |liquid, x, vapor| {
-                bubble_temperature(liquid, x, pressure_pa, vapor, guess_k)
+                boiling_temperature(liquid, x, pressure_pa, vapor, guess_k)
             })
         });
         let temperature_k = match (state.temperature_k, &bubble_at_pressure) {
             (Some(stated), _) => Ok(stated),
-            (None, Some(Ok(point))) => Ok(point.temperature_k),
+            (None, Some(Ok(boiling))) => Ok(boiling.point.temperature_k),
             (None, Some(Err(reason))) => Err(reason.clone()),
             (None, None) => Err(Absent::Because(
                 "neither temperature nor pressure is stated".into(),
             )),
         };
-        self.activity(&temperature_k);
-        self.excess(&temperature_k);
+        let phases = temperature_k
+            .clone()
+            .and_then(|t| self.at(t, |liquid, x, _| liquid_phases(liquid, x)));
+        // What one liquid would have is no longer what is there.
+        let unstable = match &phases {
+            Ok(phases) if phases.len() > 1 => format!(
+                "of one liquid of the stated composition, which is not stable: {} liquids form",
+                phases.len()
+            ),
+            _ => String::new(),
+        };
+        self.activity(&temperature_k, &unstable);
+        self.excess(&temperature_k, &unstable);
         self.volume(&temperature_k);
         self.bubble(state, bubble_at_pressure);
         self.azeotrope(state, guess_k);
-        self.phases(&temperature_k);
+        self.phases(phases);
     }
 
     /// Runs something on the liquid at a temperature.
@@ -284,7 +297,7 @@ impl Describer<'_> {
         let vapor = Vapor {
             pressures: &pressures,
             associates: &associates,
-            range_k: BOILING_RANGE_K,
+            range_k: range_k(self.components),
         };
         with_liquid(
             model.map(|(records, unifac)| (unifac, records)),
@@ -309,6 +322,8 @@ impl Describer<'_> {
             }),
             other => other,
         };
+        // Rounding of terms that cancel, as in a pure component.
+        let value = value.map(|value| value.map(|v| if v.abs() < 1e-11 { 0.0 } else { v }));
         let model = self.model;
         let remark = remark.into();
         self.figures.push(MixtureFigure {
@@ -321,7 +336,7 @@ impl Describer<'_> {
         });
     }
 
-    fn activity(&mut self, temperature_k: &Result<f64, Absent>) {
+    fn activity(&mut self, temperature_k: &Result<f64, Absent>, remark: &str) {
         let n = self.components.len();
         let ln_gamma = temperature_k.clone().and_then(|t| {
             self.at(t, |liquid, x, _| {
@@ -347,12 +362,12 @@ impl Describer<'_> {
         ];
         for (quantity, values) in columns {
             for (component, value) in values.into_iter().enumerate() {
-                self.put(quantity, Some(component), "", value, "");
+                self.put(quantity, Some(component), "", value, remark);
             }
         }
     }
 
-    fn excess(&mut self, temperature_k: &Result<f64, Absent>) {
+    fn excess(&mut self, temperature_k: &Result<f64, Absent>, unstable: &str) {
         let excess = temperature_k
             .clone()
             .and_then(|t| self.at(t, |liquid, x, _| Excess::of(liquid, x)));
@@ -389,6 +404,10 @@ impl Describer<'_> {
             ),
         ];
         for (quantity, unit, value, remark) in rows {
+            let remark = match (remark, unstable) {
+                (only, "") | ("", only) => only.to_owned(),
+                (one, other) => format!("{one}; {other}"),
+            };
             self.put(quantity, None, unit, value, remark);
         }
     }
@@ -414,15 +433,15 @@ impl Describer<'_> {
         self.put("density", None, "kg/m3", density, remark);
     }
 
-    fn bubble(&mut self, state: StatedState, at_pressure: Option<Result<BubblePoint, Absent>>) {
+    fn bubble(&mut self, state: StatedState, at_pressure: Option<Result<Boiling, Absent>>) {
         let at_temperature = state
             .temperature_k
-            .map(|t| self.at(t, |liquid, x, vapor| bubble_pressure(liquid, x, vapor)));
+            .map(|t| self.at(t, |liquid, x, vapor| boiling_pressure(liquid, x, vapor)));
         if let Some(point) = &at_pressure {
             let remark = self.point_remark(point);
             let value = point
                 .as_ref()
-                .map(|p| Some(p.temperature_k))
+                .map(|p| Some(p.point.temperature_k))
                 .map_err(Absent::clone);
             self.put("bubble_temperature", None, "K", value, remark);
         }
@@ -430,7 +449,7 @@ impl Describer<'_> {
             let remark = self.point_remark(point);
             let value = point
                 .as_ref()
-                .map(|p| Some(p.pressure_pa))
+                .map(|p| Some(p.point.pressure_pa))
                 .map_err(Absent::clone);
             self.put("bubble_pressure", None, "Pa", value, remark);
         }
@@ -440,7 +459,7 @@ impl Describer<'_> {
             for component in 0..self.components.len() {
                 let value = point
                     .as_ref()
-                    .map(|p| Some(p.y[component]))
+                    .map(|p| Some(p.point.y[component]))
                     .map_err(Absent::clone);
                 self.put(
                     "vapor_mole_fraction",
@@ -453,9 +472,18 @@ impl Describer<'_> {
         }
     }
 
-    fn point_remark(&self, point: &Result<BubblePoint, Absent>) -> String {
+    fn point_remark(&self, point: &Result<Boiling, Absent>) -> String {
         match point {
-            Ok(point) => self.vapor_remark(point.temperature_k, point.flags),
+            Ok(Boiling { point, liquids }) => {
+                let mut remark = self.vapor_remark(point.temperature_k, point.flags);
+                if liquids.len() > 1 {
+                    if !remark.is_empty() {
+                        remark.push_str("; ");
+                    }
+                    remark.push_str(&format!("{} liquids boil together", liquids.len()));
+                }
+                remark
+            }
             Err(_) => String::new(),
         }
     }
@@ -526,6 +554,13 @@ impl Describer<'_> {
                         temperature,
                         remark.clone(),
                     );
+                    self.put(
+                        "azeotrope_pressure",
+                        None,
+                        "Pa",
+                        Ok(Some(azeotrope.pressure_pa)),
+                        remark.clone(),
+                    );
                     for (component, y) in [azeotrope.y1, 1.0 - azeotrope.y1].into_iter().enumerate()
                     {
                         let quantity = "azeotrope_mole_fraction";
@@ -553,10 +588,7 @@ impl Describer<'_> {
         remark
     }
 
-    fn phases(&mut self, temperature_k: &Result<f64, Absent>) {
-        let phases = temperature_k
-            .clone()
-            .and_then(|t| self.at(t, |liquid, x, _| liquid_phases(liquid, x)));
+    fn phases(&mut self, phases: Result<Vec<LiquidPhase>, Absent>) {
         let (value, remark) = match phases {
             Err(reason) => (Err(reason), String::new()),
             Ok(phases) => {

@@ -22,9 +22,9 @@ mod unifac;
 
 pub use composition::{MassFractions, MoleFractions, SUM_TOLERANCE, VolumeFractions};
 pub use equilibrium::{
-    Azeotrope, AzeotropeKind, BubblePoint, Condition, Extremum, LiquidPhase, Vapor, VaporPressures,
-    VolatilityPoint, azeotropes, bubble_pressure, bubble_temperature, liquid_phases,
-    relative_volatility,
+    Azeotrope, AzeotropeKind, Boiling, BubblePoint, Condition, Extremum, LiquidPhase, Vapor,
+    VaporPressures, VolatilityPoint, azeotropes, boiling_pressure, boiling_temperature,
+    bubble_pressure, bubble_temperature, liquid_phases, relative_volatility,
 };
 pub use error::{MixtureError, PairGap};
 pub use excess::Excess;

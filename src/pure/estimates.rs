@@ -193,6 +193,7 @@ pub fn estimate_all(
         }
     }
 
+    mark_solid(&mut all, temperature_k);
     mark_disorder(&mut all, Property::MeltingPoint, Property::BoilingPoint);
     mark_disorder(
         &mut all,
@@ -355,14 +356,10 @@ impl Molecule<'_> {
             what,
         };
         let mut flags = rests_on(tb).union(rests_on(tc)).union(rests_on(h_vap));
-        match halogenation(self.facts) {
-            Halogenation::Full => {
-                return Err(outside(
-                    "a molecule of halogen without hydrogen as a rule does not burn",
-                ));
-            }
-            Halogenation::Strong => flags = flags.with(Flag::OutsideFamily),
-            Halogenation::Little => {}
+        if burns_doubtfully(self.facts) {
+            return Err(outside(
+                "where halogens are as many as hydrogens it cannot tell whether there is a flash point",
+            ));
         }
         let at_reference = enthalpy_of_vaporization_watson(
             h_vap.value,
@@ -383,20 +380,10 @@ impl Molecule<'_> {
 }
 
 /// Whether halogens take the place of hydrogen so far that burning is in doubt.
-enum Halogenation {
-    Little,
-    Strong,
-    Full,
-}
-
-fn halogenation(facts: &StructureFacts) -> Halogenation {
+fn burns_doubtfully(facts: &StructureFacts) -> bool {
     let of = |element| facts.composition.count(element);
     let halogens = of(Element::F) + of(Element::Cl) + of(Element::Br) + of(Element::I);
-    match of(Element::H) {
-        0 if halogens > 0 => Halogenation::Full,
-        hydrogens if hydrogens < halogens => Halogenation::Strong,
-        _ => Halogenation::Little,
-    }
+    halogens > 0 && halogens >= of(Element::H)
 }
 
 /// The value, or the reason why it is absent: the reader wants the first
@@ -409,6 +396,26 @@ fn rests_on(input: &Estimate) -> Flags {
     match input.status {
         Status::Estimated => Flags::NONE.with(Flag::RestsOnEstimate),
         Status::Measured => Flags::NONE,
+    }
+}
+
+/// Flags what is said of a liquid below a measured melting point. Estimated
+/// ones are too far off to tell.
+fn mark_solid(all: &mut Estimates, temperature_k: f64) {
+    let melts_above = all[Property::MeltingPoint as usize]
+        .as_ref()
+        .is_ok_and(|tm| tm.status == Status::Measured && tm.value > temperature_k);
+    if !melts_above {
+        return;
+    }
+    for property in [
+        Property::LiquidDensity,
+        Property::LiquidViscosity,
+        Property::SurfaceTension,
+    ] {
+        if let Ok(estimate) = &mut all[property as usize] {
+            estimate.flags = estimate.flags.with(Flag::BelowMeltingPoint);
+        }
     }
 }
 

@@ -42,11 +42,13 @@ pub enum Flag {
     VaporAssociationNotModelled,
     /// A correlation was used beyond the range it was fitted on.
     Extrapolated,
+    /// The substance is solid at the temperature: the value is of the supercooled liquid.
+    BelowMeltingPoint,
 }
 
 impl Flag {
     /// Every flag, in bit order.
-    pub const ALL: [Self; 7] = [
+    pub const ALL: [Self; 8] = [
         Self::OutsideTemperatureRange,
         Self::OutsideFamily,
         Self::RestsOnEstimate,
@@ -54,6 +56,7 @@ impl Flag {
         Self::OtherStereoisomer,
         Self::VaporAssociationNotModelled,
         Self::Extrapolated,
+        Self::BelowMeltingPoint,
     ];
 
     /// What it says to a person.
@@ -66,6 +69,7 @@ impl Flag {
             Self::OtherStereoisomer => "data of another stereoisomer or isotope",
             Self::VaporAssociationNotModelled => "vapor association not modelled",
             Self::Extrapolated => "extrapolated beyond the fitted range",
+            Self::BelowMeltingPoint => "solid at this temperature",
         }
     }
 }

@@ -31,7 +31,7 @@ pub(super) enum Finding {
     /// Every must is met.
     Qualified {
         score: f64,
-        complete: bool,
+        known: f64,
         /// Canonical SMILES: decides between equal scores.
         key: String,
         figures: Vec<Option<f64>>,
@@ -71,14 +71,14 @@ impl Entry {
         match &self.finding {
             Finding::Qualified {
                 score,
-                complete,
+                known,
                 key,
                 figures,
                 notes,
             } => {
                 out.push(u8::MAX);
                 out.extend_from_slice(&score.to_le_bytes());
-                out.push(u8::from(*complete));
+                out.extend_from_slice(&known.to_le_bytes());
                 put_text(out, key);
                 put_length(out, figures.len());
                 for figure in figures {
@@ -120,7 +120,7 @@ impl Entry {
         let finding = if tag == u8::MAX {
             Finding::Qualified {
                 score: f64::from_le_bytes(cursor.array()),
-                complete: cursor.array::<1>()[0] == 1,
+                known: f64::from_le_bytes(cursor.array()),
                 key: cursor.text(),
                 figures: (0..cursor.length()).map(|_| cursor.number()).collect(),
                 notes: cursor.text(),
@@ -259,7 +259,7 @@ mod tests {
                 smiles: "CCO".into(),
                 finding: Finding::Qualified {
                     score: 0.25,
-                    complete: false,
+                    known: 0.5,
                     key: "CCO".into(),
                     figures: vec![Some(351.4), None],
                     notes: "n".into(),

@@ -67,8 +67,10 @@ pub struct Ranked {
     pub name: String,
     /// SMILES as given.
     pub smiles: String,
-    /// Score.
+    /// Score; without meaning where nothing that counts is known.
     pub score: f64,
+    /// Share of the weights whose figures have a value.
+    pub known: f64,
     /// Figures in SI, in the order of the plan.
     pub figures: Vec<Option<f64>>,
     /// Remarks.
@@ -98,7 +100,7 @@ struct Done {
 /// Place in the ranking, the best first; the order is total.
 #[derive(Clone, Debug)]
 struct Standing {
-    complete: bool,
+    known: f64,
     score: f64,
     key: String,
     line: u64,
@@ -107,8 +109,8 @@ struct Standing {
 impl Ord for Standing {
     fn cmp(&self, other: &Self) -> std::cmp::Ordering {
         other
-            .complete
-            .cmp(&self.complete)
+            .known
+            .total_cmp(&self.known)
             .then_with(|| other.score.total_cmp(&self.score))
             .then_with(|| self.key.cmp(&other.key))
             .then_with(|| self.line.cmp(&other.line))
@@ -294,9 +296,9 @@ impl Screening<'_> {
                 .expect("verdicts name labels of the plan")
         };
         match verdict {
-            Verdict::Qualified { score, complete } => Finding::Qualified {
+            Verdict::Qualified { score, known } => Finding::Qualified {
                 score,
-                complete,
+                known,
                 notes: self.plan.remarks(scratch),
                 key: scratch.profile.keys.full.clone(),
                 figures: scratch
@@ -348,15 +350,12 @@ impl Screening<'_> {
             }
             let duplicate = relation.is_some_and(|relation| relation.kinship == Kinship::Duplicate);
             if let Finding::Qualified {
-                score,
-                complete,
-                key,
-                ..
+                score, known, key, ..
             } = entry.finding
                 && !duplicate
             {
                 heap.push(Standing {
-                    complete,
+                    known,
                     score,
                     key,
                     line: entry.line,
@@ -500,7 +499,7 @@ impl Screening<'_> {
             Finding::Qualified { .. } if rank.is_none() => {
                 counts.add(Outcome::BelowKept, "");
                 let reason = format!(
-                    "qualified, but {} better ones are kept",
+                    "qualified, but {} others rank before it",
                     self.plan.brief.keep_best
                 );
                 let reason = joined(&reason, stereoisomer.as_deref());
@@ -509,13 +508,13 @@ impl Screening<'_> {
             }
             Finding::Qualified {
                 score,
-                complete,
+                known,
                 figures,
                 notes,
                 ..
             } => {
                 counts.add(Outcome::Ranked, "");
-                counts.ranked_incomplete += u64::from(!complete);
+                counts.ranked_incomplete += u64::from(known < 1.0);
                 let notes = joined(&notes, stereoisomer.as_deref());
                 let (name, smiles) = (entry.name, entry.smiles);
                 let row = Ranked {
@@ -523,6 +522,7 @@ impl Screening<'_> {
                     name,
                     smiles,
                     score,
+                    known,
                     figures,
                     notes,
                 };
@@ -539,7 +539,7 @@ impl Ranked {
             rank: rank as u64 + 1,
             name: &self.name,
             smiles: &self.smiles,
-            score: Some(self.score),
+            score: (self.known > 0.0).then_some(self.score),
             figures: &self.figures,
             line: self.line,
             notes: &self.notes,

@@ -5,11 +5,13 @@
 //! vapors that do not associate. Vapor pressures are the caller's.
 
 mod azeotrope;
+mod boiling;
 mod bubble;
 mod split;
 mod volatility;
 
 pub use azeotrope::{Azeotrope, AzeotropeKind, Condition, Extremum, azeotropes};
+pub use boiling::{Boiling, boiling_pressure, boiling_temperature};
 pub use bubble::{BubblePoint, Vapor, VaporPressures, bubble_pressure, bubble_temperature};
 pub use split::{LiquidPhase, liquid_phases};
 pub use volatility::{VolatilityPoint, relative_volatility};

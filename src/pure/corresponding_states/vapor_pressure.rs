@@ -149,6 +149,12 @@ impl VaporPressureCurve {
         &self.constants
     }
 
+    /// Temperatures in K between which there is a value.
+    pub fn limits_k(&self) -> (f64, f64) {
+        let critical_k = self.constants.critical_temperature_k();
+        (LOWEST_REDUCED_TEMPERATURE * critical_k, critical_k)
+    }
+
     /// Vapor pressure in Pa.
     ///
     /// # Errors
