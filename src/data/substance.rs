@@ -111,7 +111,8 @@ impl Substance {
     ///   0.01 K of its temperature. If neither applies, the outcome is
     ///   [`Absent::OutsideRange`].
     /// - The boiling point is the number stated for 101.325 kPa; failing that,
-    ///   the temperature at which the vapor-pressure curve reaches it.
+    ///   the temperature at which the vapor-pressure curve reaches it, rounded to
+    ///   0.1 K because a curve knows no more; its source says so.
     /// - `temperature_k` does not matter to other properties.
     pub fn measured(&self, property: Property, temperature_k: f64) -> Option<Outcome> {
         match property {
@@ -155,7 +156,14 @@ impl Substance {
         Some(
             curve
                 .saturation_temperature_k(STANDARD_ATMOSPHERE_PA)
-                .map(|t| from_curve(t, None, curve.flags_at(t), curve.source()))
+                .map(|t| {
+                    let source = format!(
+                        "vapor-pressure curve at 101.325 kPa, rounded to 0.1 K: {}",
+                        curve.source()
+                    );
+                    let rounded = (t * 10.0).round() / 10.0;
+                    from_curve(rounded, None, curve.flags_at(t), &Arc::from(source))
+                })
                 .map_err(Absent::from),
         )
     }

@@ -20,6 +20,10 @@ Selection, the same for every substance:
   outside 3 K is left out and recorded. The first set is used, the second is
   kept as its control;
 - density: Perry, else VDI, else the handbook value at 20 to 25 degC;
+- melting point: the first of at least two lists that agree within 3 K;
+- flash point: the median of three lists; of two that agree within 5 K the
+  first; of two that disagree the one a third value supports (FLASH_DECIDED),
+  else the lower, since a flash point shown too high is the dangerous error;
 - disagreements go to conflicts.csv.
 """
 import csv, math, os, re, statistics as st, sys, warnings
@@ -53,8 +57,14 @@ SOURCES = {
     "poling-antoine": "B. E. Poling, J. M. Prausnitz, J. P. O'Connell, The Properties of Gases and Liquids, 5th ed., McGraw-Hill 2001, Appendix A (Antoine)",
     "lb": "K. R. Hall (ed.), Landolt-Boernstein New Series IV/20, Vapor Pressure of Chemicals, Springer 1999-2001 (Antoine)",
     "serat": "F. Z. Serat, A. M. Benkouider, A. Yahiaoui, F. Bagui, Fluid Phase Equilib. 449 (2017) 52-59, doi:10.1016/j.fluid.2017.06.008 (list of evaluated experimental flash points)",
+    "serat-fraction": "F. Z. Serat, A. M. Benkouider, A. Yahiaoui, F. Bagui, Fluid Phase Equilib. 449 (2017) 52-59, doi:10.1016/j.fluid.2017.06.008 (given there with more than two decimals, so perhaps calculated: half of 86 such values are more than 9 K off IEC and NFPA, mostly below)",
     "iec": "IEC 60079-20-1:2010, Table B.1",
     "nfpa": "NFPA 497 (2008), Table 4.4.2",
+    "iec+nfpa": "IEC 60079-20-1:2010, Table B.1, and NFPA 497 (2008), Table 4.4.2",
+    "serat+iec": "F. Z. Serat, A. M. Benkouider, A. Yahiaoui, F. Bagui, Fluid Phase Equilib. 449 (2017) 52-59, doi:10.1016/j.fluid.2017.06.008, and IEC 60079-20-1:2010, Table B.1",
+    "serat+nfpa": "F. Z. Serat, A. M. Benkouider, A. Yahiaoui, F. Bagui, Fluid Phase Equilib. 449 (2017) 52-59, doi:10.1016/j.fluid.2017.06.008, and NFPA 497 (2008), Table 4.4.2",
+    "serat+iec+nfpa": "F. Z. Serat, A. M. Benkouider, A. Yahiaoui, F. Bagui, Fluid Phase Equilib. 449 (2017) 52-59, doi:10.1016/j.fluid.2017.06.008, IEC 60079-20-1:2010, Table B.1, and NFPA 497 (2008), Table 4.4.2",
+    "onm": "J.-C. Bradley, A. Lang, A. Williams, Open Notebook Science melting points",
     "rios": "R. Rios, R. Murcia Belmonte, SN Applied Sciences 4 (2022) 185",
     "alshehri": "A. S. Alshehri, A. K. Tula, F. You, R. Gani, AIChE J. 68 (2022) e17469",
     "schrier": "J. Schrier, Hansen solubility parameters, Wolfram Data Repository (2020)",
@@ -67,6 +77,35 @@ DENSITY_DECIDED = {name: "crc" for name in (
     "epsilon-caprolactone", "2-methyltetrahydrofuran", "diethoxymethane", "dibenzyl ether", "diiodomethane", "cyclohexylamine")}
 DENSITY_DECIDED |= {name: "cas" for name in ("acetonylacetone", "dimethyl malonate", "diethyl phthalate", "trifluoroacetic acid")}
 DENSITY_DECIDED |= {"5-methyl-2-hexanone": None}
+# Vapor-pressure sets that agree with each other because they are of one origin, and are wrong.
+# 4-heptanone: 58 kJ/mol at 298 K, where 2- and 3-heptanone have 47 and this substance in VDI 45.
+# Tetraethylene glycol: 581 K at 101.325 kPa; 470, 518 and 561 K of the smaller ones lead to 600 K.
+SETS_OUT = {"4-heptanone": ("lb", "webbook"), "tetraethylene glycol": ("lb", "webbook")}
+# Melting points of liquids that are hard to crystallize: CRC and CAS copy one value, and
+# others contradict it (methyl acetoacetate 193 K, trimethyl orthoformate 254 and 220 K,
+# glycerol triacetate 276 K). None is used.
+MELTING_OPEN = {
+    "methyl acetoacetate": {"onm": 193.15},
+    "trimethyl orthoformate": {"onm": 254.15},
+    "glycerol triacetate": {"onm": 276.15},
+}
+# Flash points that two lists, or a misprint among three, leave open: the list that a closed-cup
+# value of a further handbook or safety sheet (from memory, in degC) supports.
+FLASH_DECIDED = {
+    "isobutanol": "iec",  # 28
+    "tert-butanol": "nfpa",  # 11
+    "tert-amyl alcohol": "iec",  # 19
+    "2-pentanone": "nfpa",  # 7
+    "methyl isobutyl ketone": "iec",  # 14 to 18
+    "diisobutyl ketone": "serat-fraction",  # 49
+    "phenol": "iec",  # 79
+    "2-methoxyethanol": "iec",  # 39
+    "2-ethoxyethanol": "iec",  # 43
+    "butyric acid": "nfpa",  # 72
+    "diethylenetriamine": "iec",  # 97 to 99
+    "isopropanolamine": "nfpa",  # 77
+}
+FLASH_SAME = 5.0
 DECISIONS = {
     "confirmed": "the value used is confirmed by another source or by a vapor-pressure set within 3 K",
     "unresolved": "no value used: two groups of sources contradict each other and no vapor-pressure set decides",
@@ -81,7 +120,11 @@ DECISIONS = {
     "handbook": "the handbook value was measured at 20 to 25 degC, the temperature is not kept",
     "two-sources": "the value used is that of two sources",
     "clapeyron": "value left out: far from Clausius-Clapeyron with an ideal vapor",
-    "flash-order": "order of the sources; the test methods differ",
+    "set-out-series": "set left out: far from what the isomers or smaller members of its series lead to, though another set of the same origin agrees",
+    "melting-open": "no value used: the lists contradict each other, and the liquid is one that hardly crystallizes",
+    "flash-median": "flash point: the median of three lists",
+    "flash-lower": "flash point: two lists differ by more than 5 K and no third decides; the lower is used, since too high is the dangerous error",
+    "flash-third": "flash point: the lists differ by more than 5 K; a further closed-cup value, from memory, decides",
     "hansen-order": "order of the sources; the lists partly copy one another",
 }
 VP_ORDER = ["poling-wagner", "perry-2-8", "mcgarry", "vdi", "poling-antoine", "lb", "webbook"]
@@ -133,6 +176,9 @@ def identify(name, synonyms, cas):
     if ours != theirs and cas not in OVERRIDE_SMILES:
         sys.exit(f"{name} {cas}: InChI {ours} against {theirs}")
     for other in synonyms:
+        reading = Chem.MolFromSmiles(other)
+        if reading and Chem.MolToSmiles(reading) != smiles and other not in READS_AS_SMILES:
+            sys.exit(f"{name}: the synonym {other} is the SMILES of another molecule")
         if other.endswith("?") or re.fullmatch(r"[A-Z0-9-]+", other):
             continue  # abbreviations are used for many things
         try:
@@ -145,6 +191,8 @@ def identify(name, synonyms, cas):
 
 
 OVERRIDE_SMILES = {}
+# Abbreviations in general use although they are also the SMILES of something else.
+READS_AS_SMILES = {"PC"}
 
 # ------------------------------------------------------------- vapor pressure
 
@@ -254,6 +302,22 @@ def write(name, facts, columns, units, rows):
     print(f"{name}: {len(rows)} rows, {os.path.getsize(path)} bytes")
 
 
+def flash_point(name, lists):
+    """Value, key of the lists that state it, and the decision for those that differ from it."""
+    decided = FLASH_DECIDED.get(name)
+    if decided:
+        return lists[decided], decided, "flash-third"
+    if len(lists) == 3:
+        value, decision = st.median(lists.values()), "flash-median"
+    else:
+        # a value with many decimals was hardly read off an apparatus: it comes last
+        value = next((v for s, v in lists.items() if s != "serat-fraction"), None) or lists["serat-fraction"]
+        decision = "flash-lower"
+        if max(lists.values()) - min(lists.values()) > FLASH_SAME:
+            value = min(lists.values())
+    return value, "+".join(s for s, v in lists.items() if v == value), decision
+
+
 def facts(title, keys, checked, notes=()):
     head = [("title", title)]
     head += [("source", f"{k}: {SOURCES[k]}") for k in SOURCES if k in keys]
@@ -305,6 +369,7 @@ def main():
 
         # boiling point
         sets = vp_sets(cas)
+        left_out = {s: sets.pop(s) for s in SETS_OUT.get(name, ()) if s in sets}
         curves = {s: t_sat(p, lo, hi) for s, (_, p, lo, hi) in sets.items()}
         curves = {s: t for s, t in curves.items() if t}
         tb = {"crc": crc_value(cas, "Tb") or value(CRC_HVAP, cas, "Tb"), "webbook": value(WEB, cas, "Tb"),
@@ -346,6 +411,12 @@ def main():
                                  "confirmed")
 
         # vapor pressure
+        for o, (_, p, lo, hi) in left_out.items():
+            if sets:
+                s = next(s for s in VP_ORDER if s in sets)
+                conflict("vapor_pressure", g(round(sets[s][1](298.15), 1)), s, g(round(p(298.15), 1)), o, "Pa", "set-out-series", "298.15")
+            else:
+                conflict("vapor_pressure", g(round(chosen[1], 3)), chosen[0], g(round(t_sat(p, lo, hi), 3)), o, "K", "set-out-series")
         ranked = []
         for order, s in enumerate(VP_ORDER):
             if s not in sets:
@@ -448,7 +519,10 @@ def main():
         tm = {"crc": crc_value(cas, "Tm"), "webbook": value(WEB, cas, "Tm"), "cas": value(CC, cas, "Tm")}
         tm = {s: v for s, v in tm.items() if v}
         group = agreeing(tm, 3.0) if tm else []
-        if len(group) >= 2:
+        if name in MELTING_OPEN:
+            for o, v in (tm | MELTING_OPEN[name]).items():
+                conflict("melting_point", "", "", g(round(v, 3)), o, "K", "melting-open")
+        elif len(group) >= 2:
             s = group[0]
             measured.append([name, "melting_point", g(round(tm[s], 3)), "K", "", "", s])
             for o, v in tm.items():
@@ -471,15 +545,17 @@ def main():
                     good = False
             if good:
                 measured.append([name, "enthalpy_of_vaporization", g(h), "J/mol", "", "", "crc"])
-        flash = {"serat": value(SERAT, cas, "T_flash"), "iec": value(IEC, cas, "T_flash"), "nfpa": value(NFPA, cas, "T_flash")}
-        flash = {s: v for s, v in flash.items() if v}
+        listed = value(SERAT, cas, "T_flash")
+        whole = listed and abs(listed * 100 - round(listed * 100)) < 1e-6
+        flash = {"serat" if whole else "serat-fraction": listed, "iec": value(IEC, cas, "T_flash"), "nfpa": value(NFPA, cas, "T_flash")}
+        flash = {s: round(v, 3) for s, v in flash.items() if v}
         if flash:
-            s = next(iter(flash))
-            if tb_k is None or flash[s] < tb_k:
-                measured.append([name, "flash_point", g(round(flash[s], 3)), "K", "", "", s])
+            t_flash, s, decision = flash_point(name, flash)
+            if tb_k is None or t_flash < tb_k:
+                measured.append([name, "flash_point", g(t_flash), "K", "", "", s])
                 for o, v in flash.items():
-                    if abs(v - flash[s]) > 10:
-                        conflict("flash_point", g(round(flash[s], 3)), s, g(round(v, 3)), o, "K", "flash-order")
+                    if abs(v - t_flash) > FLASH_SAME:
+                        conflict("flash_point", g(t_flash), s, g(v), o, "K", decision)
 
         # Hansen
         rows = {}
@@ -503,7 +579,7 @@ def main():
           ["name", "synonyms", "family", "cas", "smiles", "formula"], ["-"] * 6, substances)
     used = {r[-1] for r in measured}
     write("measured.csv", facts("Measured constants of common substances", used,
-          "boiling and melting points: confirmed by a second source or a vapor-pressure set within 3 K; enthalpies of vaporization against Clausius-Clapeyron",
+          "boiling and melting points: confirmed by a second source or a vapor-pressure set within 3 K; enthalpies of vaporization against Clausius-Clapeyron; flash points: lists compared, see conflicts.csv",
           ["boiling_point is at the stated pressure; enthalpy_of_vaporization at the normal boiling point; enthalpy_of_fusion at the melting point"]),
           ["substance", "property", "value", "unit", "temperature", "pressure", "source"], ["-", "-", "-", "-", "K", "kPa", "-"], measured)
     used = {r[-1] for r in vapor}
@@ -532,7 +608,7 @@ def main():
     used = set(SOURCES)
     write("conflicts.csv", facts("Disagreements between the sources, and what was done", {r[4] for r in conflicts} | {r[6] for r in conflicts},
           "made by tests/scripts/make_substances.py; every disagreement above 3 K (boiling, melting point), 1 K (vapor pressure at 101.325 kPa), 1 % (two density curves), "
-          "2 % (density against handbook), 10 K (flash point), 1 MPa^0.5 (Hansen)")
+          "2 % (density against handbook), 5 K (flash point), 1 MPa^0.5 (Hansen)")
           + [("decision", f"{k}: {v}") for k, v in DECISIONS.items() if any(r[-1] == k for r in conflicts)],
           ["substance", "property", "temperature", "used", "used_source", "other", "other_source", "unit", "decision"],
           ["-", "-", "K"] + ["-"] * 6, conflicts)
