@@ -4,6 +4,7 @@ use crate::mixture::{Liquid, MixtureError};
 use crate::numeric::{RootTolerance, bracketed_root, rising_root};
 use crate::quantity::Flags;
 
+use super::boiling::MOST_RISE_K;
 use super::bubble::{Vapor, bubble_temperature_into, named};
 use super::split::{LiquidPhase, liquid_phases};
 
@@ -145,7 +146,7 @@ impl Search<'_> {
         match self.condition {
             Condition::Pressure(pressure_pa) => {
                 let mut partial = [0.0; 2];
-                self.guess_k = bubble_temperature_into(
+                let found = bubble_temperature_into(
                     liquid,
                     &x,
                     pressure_pa,
@@ -153,7 +154,20 @@ impl Search<'_> {
                     self.guess_k,
                     &mut ln_gamma,
                     &mut partial,
-                )?;
+                );
+                match found {
+                    Ok(temperature_k) => self.guess_k = temperature_k,
+                    // One liquid of nearly immiscible substances boils far below
+                    // anything real; only the sign of ln α is wanted of it.
+                    Err(fault @ MixtureError::NotBracketed { .. }) => {
+                        liquid.set_temperature(self.vapor.range_k.0)?;
+                        if self.pressure(liquid, &x)?.0 < pressure_pa {
+                            return Err(fault);
+                        }
+                        liquid.ln_gamma(&x, &mut ln_gamma)?;
+                    }
+                    Err(fault) => return Err(fault),
+                }
             }
             Condition::Temperature(_) => liquid.ln_gamma(&x, &mut ln_gamma)?,
         }
@@ -224,7 +238,7 @@ impl Search<'_> {
         if let Condition::Pressure(pressure_pa) = self.condition {
             // one unstable liquid exerts more pressure than its split, so the split boils higher
             let start_k = liquid.temperature_k();
-            let high_k = (start_k + 60.0).min(self.vapor.range_k.1);
+            let high_k = (start_k + MOST_RISE_K).min(self.vapor.range_k.1);
             let tolerance = RootTolerance {
                 residual: 1e-10,
                 width: 1e-15,

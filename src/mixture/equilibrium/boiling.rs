@@ -16,7 +16,11 @@ pub struct Boiling {
 
 /// How far above the bubble point of the unstable single liquid the true one is
 /// sought, K: no pair of the reference azeotropes differs by half of it.
-const MOST_RISE_K: f64 = 150.0;
+pub(super) const MOST_RISE_K: f64 = 150.0;
+
+/// How far below it is sought: where one of the liquids is much the more
+/// volatile, the split may boil a little lower.
+const MOST_FALL_K: f64 = 40.0;
 
 /// Pressure and vapor at the bubble point of whatever liquids the mixture forms.
 ///
@@ -40,8 +44,7 @@ pub fn boiling_pressure(
 /// Temperature and vapor at the bubble point of whatever liquids the mixture forms.
 ///
 /// Starts from the bubble point of the single liquid; where that is unstable
-/// the true one lies higher, since splitting lowers the bubble pressure. The
-/// liquid is left at the temperature found.
+/// the true one mostly lies higher. The liquid is left at the temperature found.
 ///
 /// # Errors
 ///
@@ -58,8 +61,9 @@ pub fn boiling_temperature(
     if liquids.len() == 1 {
         return Ok(Boiling { point, liquids });
     }
-    let low = point.temperature_k;
-    let high = (low + MOST_RISE_K).min(vapor.range_k.1);
+    let start = point.temperature_k;
+    let low = (start - MOST_FALL_K).max(vapor.range_k.0);
+    let high = (start + MOST_RISE_K).min(vapor.range_k.1);
     let tolerance = RootTolerance {
         residual: 1e-10,
         width: 1e-9,
@@ -75,9 +79,9 @@ pub fn boiling_temperature(
             Ok(excess)
         },
         (low, high),
-        low + 1.0,
+        start,
         // Trouton's rule, as for a single liquid.
-        10.5 / low,
+        10.5 / start,
         tolerance,
     );
     match (found, last) {
