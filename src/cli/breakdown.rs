@@ -7,9 +7,9 @@ use super::error::CliError;
 use super::exit::Exit;
 use super::molecules::{Asked, for_each};
 use super::output;
+use super::tables::set_named;
 use crate::evaluate::{Library, Profiler};
 use crate::groups::{Coverage, SetId};
-use crate::quantity::unit::nearest;
 use crate::report::{BreakdownRow, BreakdownStatus, RowStream, breakdown_text};
 
 /// A row with its texts.
@@ -83,17 +83,7 @@ fn sets(names: &[String]) -> Result<Vec<SetId>, CliError> {
     if names.is_empty() {
         return Ok(SetId::ALL.to_vec());
     }
-    let known = |name: &String| {
-        SetId::from_id(name).ok_or_else(|| {
-            let near = nearest(name, SetId::ALL.map(SetId::id))
-                .map_or(String::new(), |near| format!("; did you mean `{near}`?"));
-            CliError::Usage(format!(
-                "there is no group set `{name}`{near}\n  sets: {}",
-                SetId::ALL.map(SetId::id).join(", ")
-            ))
-        })
-    };
-    names.iter().map(known).collect()
+    names.iter().map(|name| set_named(name)).collect()
 }
 
 fn row(library: &Library, profiler: &mut Profiler, asked: &Asked, set: SetId) -> Row {

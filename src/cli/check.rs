@@ -62,7 +62,7 @@ pub(super) fn run(command: &args::Check, library: Library) -> Result<Exit, CliEr
         )?;
     }
     if plan.brief.pool.is_some() {
-        let mut pool = open_pool(&plan)?;
+        let mut pool = open_pool(&plan, None)?;
         let mut batch = Batch::default();
         let (mut lines, mut unusable) = (0_u64, 0_u64);
         loop {

@@ -6,13 +6,14 @@ use super::args::{self, Format};
 use super::error::CliError;
 use super::exit::Exit;
 use super::output::{self, Notes};
+use super::tables::meant;
 use crate::brief::{Basis, Brief, Job, checked_fractions};
 use crate::evaluate::{
     CATALOG, DEFAULT_MODEL, Library, MixtureComponent, MixtureFigure, Profiler, StatedState,
     describe_mixture, mole_fractions,
 };
 use crate::mixture::{ActivityModel, ModelStatus};
-use crate::quantity::unit::{self, nearest};
+use crate::quantity::unit;
 use crate::quantity::{Absent, Dimension, REFERENCE_TEMPERATURE_K};
 use crate::report::{MixtureRow, MixtureStatus, RowForm, mixture_text, write_rows};
 
@@ -235,10 +236,9 @@ fn models(names: &[String]) -> Result<Vec<ActivityModel>, CliError> {
                 )));
             }
             None => {
-                let near = nearest(name, built_in)
-                    .map_or(String::new(), |near| format!("; did you mean `{near}`?"));
                 return Err(CliError::Usage(format!(
-                    "there is no model `{name}`{near}\n  models: {}",
+                    "there is no model `{name}`{}\n  models: {}",
+                    meant(name, built_in),
                     built_in.join(", ")
                 )));
             }

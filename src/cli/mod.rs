@@ -39,9 +39,11 @@ pub fn main() -> ExitCode {
                 error.kind(),
                 ErrorKind::DisplayHelp | ErrorKind::DisplayVersion
             );
-            return match error.print() {
-                Ok(()) if asked => Exit::Done.into(),
-                Ok(()) | Err(_) => Exit::Wrong.into(),
+            // That nobody listens to the end does not make it another case.
+            let _ = error.print();
+            return match asked {
+                true => Exit::Done.into(),
+                false => Exit::Wrong.into(),
             };
         }
     };

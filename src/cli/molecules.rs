@@ -77,7 +77,7 @@ pub(super) fn for_each(
                 let found = Asked {
                     line: line.line,
                     name: line.name.into(),
-                    smiles: line.smiles.unwrap_or_default().into(),
+                    smiles: line.smiles.unwrap_or(line.text).into(),
                     profile,
                 };
                 each(profiler, found)?;

@@ -18,9 +18,9 @@ use crate::quantity::unit::{reading_unit, si_symbol, to_table};
 use crate::quantity::{Status, number};
 use crate::report::{TargetLabel, TextColumn, TextTable, outcome_text};
 use crate::run::{
-    BriefRecord, Fingerprint, RunRecord, StopFlag, TablesRecord, make_folder, remove_stale,
+    BriefRecord, FileError, Fingerprint, RunRecord, StopFlag, TablesRecord, make_folder,
 };
-use crate::screen::{Columns, FILES, Pool, Screened, Screening};
+use crate::screen::{Columns, FILES, Pool, PoolError, Screened, Screening, StoppableReader};
 
 pub(super) fn run(
     command: &args::Screen,
@@ -34,14 +34,6 @@ pub(super) fn run(
     for note in &plan.notes {
         notes.say(&format!("note: {note}"));
     }
-    let pool = open_pool(&plan)?;
-    let folder = match &command.out {
-        Some(folder) => folder.clone(),
-        None => default_folder(&command.brief),
-    };
-    make_folder(&folder)?;
-    remove_stale(&folder, &FILES)?;
-
     let stop = StopFlag::new();
     let raised = stop.clone();
     // Without a handler the run just cannot be stopped gently.
@@ -56,6 +48,19 @@ pub(super) fn run(
             "warning: Ctrl-C will end the run at once: {error}"
         ));
     }
+    let pool = match open_pool(&plan, Some(&stop)) {
+        Err(CliError::Pool(PoolError::Read { .. })) if stop.is_raised() => {
+            notes.say("stopped before a line was read; no file is written");
+            return Ok(Exit::Stopped);
+        }
+        pool => pool?,
+    };
+    let folder = match &command.out {
+        Some(folder) => folder.clone(),
+        None => default_folder(&command.brief),
+    };
+    make_folder(&folder)?;
+    spare_input(&plan, &command.brief, &folder)?;
     let progress = Progress::new(notes);
     let screening = Screening {
         plan: &plan,
@@ -64,15 +69,13 @@ pub(super) fn run(
         stop: &stop,
         listener: &progress,
     };
-    let screened = screening.run(pool, record(&plan))?;
+    let screened = screening.run(pool, record(&plan, command.estimates_only))?;
 
-    let mut out = output::stdout();
-    show(&mut out, &plan, &screened, &folder, command.show)?;
-    if let Some(wanted) = &command.explain {
-        writeln!(out)?;
-        explain(&mut out, &plan, &screened, wanted)?;
+    match tell(command, &plan, &screened, &folder) {
+        // The files are there all the same, and the code tells of them.
+        Ok(()) | Err(CliError::ClosedPipe) => {}
+        Err(error) => return Err(error),
     }
-    out.flush()?;
     Ok(if screened.stopped {
         Exit::Stopped
     } else if screened.ranking.is_empty() {
@@ -80,6 +83,39 @@ pub(super) fn run(
     } else {
         Exit::Done
     })
+}
+
+/// Refuses to write over what is read.
+fn spare_input(plan: &Plan, brief: &Path, folder: &Path) -> Result<(), CliError> {
+    let full = |path: &Path| std::fs::canonicalize(path).ok();
+    let inputs = [Some(brief.to_owned()), plan.brief.pool_path()];
+    for input in inputs.iter().flatten() {
+        let same =
+            |file: &str| full(&folder.join(file)).is_some_and(|output| Some(output) == full(input));
+        if let Some(file) = FILES.into_iter().find(|file| same(file)) {
+            return Err(CliError::Usage(format!(
+                "{} would be overwritten by the {file} of this run\n  choose another folder with --out",
+                input.display()
+            )));
+        }
+    }
+    Ok(())
+}
+
+fn tell(
+    command: &args::Screen,
+    plan: &Plan,
+    screened: &Screened,
+    folder: &Path,
+) -> Result<(), CliError> {
+    let mut out = output::stdout();
+    show(&mut out, plan, screened, folder, command.show)?;
+    if let Some(wanted) = &command.explain {
+        writeln!(out)?;
+        explain(&mut out, plan, screened, folder, wanted)?;
+    }
+    out.flush()?;
+    Ok(())
 }
 
 /// Loads a brief and binds it.
@@ -90,8 +126,8 @@ pub(super) fn plan(file: &Path, library: Library, use_measured: bool) -> Result<
         .map_err(|faults| CliError::Plan { file: name, faults })
 }
 
-/// Opens the pool of a plan.
-pub(super) fn open_pool(plan: &Plan) -> Result<Pool, CliError> {
+/// Opens the pool of a plan; with a flag, standard input is left when it is raised.
+pub(super) fn open_pool(plan: &Plan, stop: Option<&StopFlag>) -> Result<Pool, CliError> {
     let brief = &plan.brief;
     let settings = brief
         .pool
@@ -112,7 +148,13 @@ pub(super) fn open_pool(plan: &Plan) -> Result<Pool, CliError> {
     };
     Ok(match brief.pool_path() {
         Some(path) => Pool::open(&path, columns)?,
-        None => Pool::from_reader(Box::new(io::stdin()), "standard input", None, columns)?,
+        None => {
+            let source: Box<dyn io::Read + Send> = match stop {
+                Some(stop) => Box::new(StoppableReader::new(io::stdin(), stop.clone())),
+                None => Box::new(io::stdin()),
+            };
+            Pool::from_reader(source, "standard input", None, columns)?
+        }
     })
 }
 
@@ -126,7 +168,12 @@ fn default_folder(brief: &Path) -> PathBuf {
     Path::new("results").join(name)
 }
 
-fn record(plan: &Plan) -> RunRecord {
+fn record(plan: &Plan, estimates_only: bool) -> RunRecord {
+    let as_circulated = plan.library.slips() == Slips::AsCirculated;
+    let choices = [
+        (as_circulated, "parameter tables as circulated"),
+        (estimates_only, "measured data of candidates left out"),
+    ];
     let tables = TablesRecord {
         fingerprint: plan
             .library
@@ -141,10 +188,11 @@ fn record(plan: &Plan) -> RunRecord {
             .iter()
             .map(|table| table.place.clone())
             .collect(),
-        choices: match plan.library.slips() {
-            Slips::AsCirculated => vec!["parameter tables as circulated".into()],
-            Slips::Corrected => Vec::new(),
-        },
+        choices: choices
+            .into_iter()
+            .filter(|(taken, _)| *taken)
+            .map(|(_, choice)| choice.to_owned())
+            .collect(),
     };
     let brief = BriefRecord::new(&plan.brief.file, &plan.brief.text);
     let mut record = RunRecord::new("screen", brief, tables);
@@ -176,8 +224,9 @@ fn show(
         }
         writeln!(out)?;
     }
-    let labels: Vec<TargetLabel<'_>> = plan
-        .musts()
+    let musts = musts(plan);
+    let labels: Vec<TargetLabel<'_>> = musts
+        .iter()
         .map(|(name, wanted)| TargetLabel { name, wanted })
         .collect();
     out.write_all(outcome_text(&screened.counts, &labels).as_bytes())?;
@@ -200,6 +249,27 @@ fn show(
         "Estimates are for choosing experiments. Before handling a candidate read its safety data\n\
          sheet (flammability, toxicity, peroxides) and follow local codes and licensed practice."
     )
+}
+
+/// What a line can fall at, with what is wanted: lines are counted by name, so
+/// two musts on one figure are told together.
+fn musts(plan: &Plan) -> Vec<(&str, String)> {
+    let limits = plan.labels().count() - plan.targets.len();
+    let is_must = |at: usize| at < limits || plan.targets[at - limits].target.must;
+    let mut musts: Vec<(&str, String)> = Vec::new();
+    for (at, (name, wanted)) in plan.labels().enumerate() {
+        if !is_must(at) {
+            continue;
+        }
+        match musts.iter_mut().find(|(known, _)| *known == name) {
+            Some((_, all)) => {
+                all.push_str("; ");
+                all.push_str(wanted);
+            }
+            None => musts.push((name, wanted.to_owned())),
+        }
+    }
+    musts
 }
 
 /// The top of the ranking: the figures that targets are set on, with units.
@@ -263,106 +333,127 @@ fn ranking_text<'a>(
     table.render(output::width())
 }
 
-/// Tells all about one candidate of the pool.
+/// A line of the pool as the files of the run tell of it.
+struct Told {
+    line: u64,
+    name: String,
+    smiles: String,
+    /// What became of it.
+    outcome: String,
+}
+
+/// The line that goes by a name, else the first one of a molecule.
+///
+/// The files of the run are asked, not the pool: it may have been standard
+/// input, and whether a line is a duplicate or kept is decided in them.
+fn look_up(
+    plan: &Plan,
+    screened: &Screened,
+    folder: &Path,
+    wanted: &str,
+    molecule: Option<&str>,
+) -> Result<Option<Told>, CliError> {
+    let mut profiler = crate::evaluate::Profiler::new();
+    let mut found: Option<(bool, Told)> = None;
+    let mut consider = |line: u64, name: &str, smiles: &str, outcome: &dyn Fn() -> String| {
+        let by_name = !wanted.is_empty() && name.eq_ignore_ascii_case(wanted);
+        let is_better = found
+            .as_ref()
+            .is_none_or(|(known, told)| (by_name, told.line) > (*known, line));
+        let mut same = || {
+            molecule.is_some_and(|key| {
+                profiler
+                    .profile(&plan.library, smiles)
+                    .is_ok_and(|profile| profile.keys.full == key)
+            })
+        };
+        if is_better && (by_name || same()) {
+            let (name, smiles, outcome) = (name.to_owned(), smiles.to_owned(), outcome());
+            let told = Told {
+                line,
+                name,
+                smiles,
+                outcome,
+            };
+            found = Some((by_name, told));
+        }
+    };
+    for (rank, row) in screened.ranking.iter().enumerate() {
+        let outcome = || {
+            let mut outcome = format!("rank {} with score {:.4}", rank + 1, row.score);
+            if !row.notes.is_empty() {
+                outcome.push_str(&format!("\n  {}", row.notes));
+            }
+            outcome
+        };
+        consider(row.line, &row.name, &row.smiles, &outcome);
+    }
+    let path = folder.join(FILES[1]);
+    let unreadable =
+        |reason: String| CliError::File(FileError::new(&path, io::Error::other(reason)));
+    let mut rows = csv::Reader::from_path(&path).map_err(|error| unreadable(error.to_string()))?;
+    let mut row = csv::StringRecord::new();
+    while rows
+        .read_record(&mut row)
+        .map_err(|error| unreadable(error.to_string()))?
+    {
+        let line = row[0]
+            .parse()
+            .map_err(|_| unreadable(format!("`{}` is no line", &row[0])))?;
+        let outcome = || format!("{}: {}", &row[3], &row[7]);
+        consider(line, &row[1], &row[2], &outcome);
+    }
+    Ok(found.map(|(_, told)| told))
+}
+
+/// Tells all about one candidate, of the pool or not.
 fn explain(
     out: &mut impl Write,
     plan: &Plan,
     screened: &Screened,
+    folder: &Path,
     wanted: &str,
 ) -> Result<(), CliError> {
     let mut scratch = Scratch::new();
     let mut profiler = crate::evaluate::Profiler::new();
-    let full = plan
-        .library
-        .find(&mut profiler, wanted)
-        .ok()
-        .map(|(_, profile)| profile.keys.full);
-    let mut found = None;
-    if plan.brief.pool_path().is_some() {
-        let mut pool = open_pool(plan)?;
-        let mut batch = crate::screen::Batch::default();
-        'pool: loop {
-            pool.read_batch(&mut batch, 1024)?;
-            if batch.is_empty() {
-                break;
-            }
-            for index in 0..batch.len() {
-                let line = batch.line(index);
-                let Ok(smiles) = line.smiles else { continue };
-                let same = line.name.eq_ignore_ascii_case(wanted.trim())
-                    || full.as_ref().is_some_and(|full| {
-                        profiler
-                            .profile(&plan.library, smiles)
-                            .is_ok_and(|profile| profile.keys.full == *full)
-                    });
-                if same {
-                    found = Some((line.line, line.name.to_owned(), smiles.to_owned()));
-                    break 'pool;
-                }
-            }
+    let wanted = wanted.trim();
+    let molecule = plan.library.find(&mut profiler, wanted).ok();
+    let key = molecule
+        .as_ref()
+        .map(|(_, profile)| profile.keys.full.as_str());
+    let told = look_up(plan, screened, folder, wanted, key)?;
+    let smiles = match (&told, key) {
+        (Some(told), _) => {
+            let Told {
+                line,
+                name,
+                smiles,
+                outcome,
+            } = told;
+            writeln!(out, "{name}  {smiles}  (line {line})\n  {outcome}")?;
+            smiles.as_str()
         }
-    }
-    let (line, name, smiles) = match (found, &full) {
-        (Some((line, name, smiles)), _) => (Some(line), name, smiles),
         // Not of the pool: told all the same, as if it were.
-        (None, Some(_)) => (None, wanted.trim().to_owned(), wanted.trim().to_owned()),
+        (None, Some(key)) => {
+            writeln!(out, "{wanted}  {key}  (not in the pool)")?;
+            key
+        }
         (None, None) => {
             return Err(CliError::Usage(format!(
                 "--explain: no candidate of the pool is called `{wanted}`, and it is no SMILES or known name"
             )));
         }
     };
-    let smiles = match plan.library.substances().find(&smiles) {
-        Ok(substance) => substance.smiles().to_owned(),
-        Err(_) => smiles,
+    // Why a line is refused stands in the files already.
+    let Ok(verdict) = plan.evaluate(&mut scratch, smiles) else {
+        return Ok(());
     };
-    match line {
-        Some(line) => writeln!(out, "{name}  {smiles}  (line {line})")?,
-        None => writeln!(out, "{name}  {smiles}  (not in the pool)")?,
-    }
-    let verdict = match plan.evaluate(&mut scratch, &smiles) {
-        Ok(verdict) => verdict,
-        Err(error) => {
-            writeln!(out, "  refused: {error}")?;
-            return Ok(());
+    if told.is_none() {
+        writeln!(out, "  {}", in_words(plan, &mut scratch, &verdict))?;
+        let remarks = plan.remarks(&mut scratch);
+        if !remarks.is_empty() {
+            writeln!(out, "  {remarks}")?;
         }
-    };
-    let rank = line.and_then(|line| screened.ranking.iter().position(|row| row.line == line));
-    let labels: Vec<_> = plan.labels().collect();
-    match (&verdict, rank) {
-        (Verdict::Qualified { score, .. }, Some(rank)) => {
-            writeln!(out, "  rank {} with score {score:.4}", rank + 1)?;
-        }
-        (Verdict::Qualified { score, .. }, None) => {
-            writeln!(
-                out,
-                "  qualified with score {score:.4}, but not in the ranking that is kept"
-            )?;
-        }
-        (
-            Verdict::Missed {
-                label,
-                value,
-                dimension,
-            },
-            _,
-        ) => {
-            let (name, wanted) = labels[*label];
-            let value = number::short(to_table(*value, *dimension));
-            writeln!(
-                out,
-                "  not qualified: {name} is {value} {}, wanted {wanted}",
-                si_symbol(*dimension)
-            )?;
-        }
-        (Verdict::NotAssessable { label, reason }, _) => {
-            let reason = scratch.explained(plan, reason);
-            writeln!(out, "  not assessable: {}: {reason}", labels[*label].0)?;
-        }
-    }
-    let remarks = plan.remarks(&mut scratch);
-    if !remarks.is_empty() {
-        writeln!(out, "  {remarks}")?;
     }
     for set in SetId::ALL {
         let profile = &scratch.profile;
@@ -436,4 +527,33 @@ fn explain(
     }
     out.write_all(table.render(output::width()).as_bytes())?;
     Ok(())
+}
+
+/// What would become of a candidate that is not of the pool.
+fn in_words(plan: &Plan, scratch: &mut Scratch, verdict: &Verdict) -> String {
+    let label = |at: usize| {
+        plan.labels()
+            .nth(at)
+            .expect("verdicts name labels of the plan")
+    };
+    match verdict {
+        Verdict::Qualified { score, .. } => format!("would qualify with score {score:.4}"),
+        Verdict::Missed {
+            label: at,
+            value,
+            dimension,
+        } => {
+            let (name, wanted) = label(*at);
+            let value = number::short(to_table(*value, *dimension));
+            let unit = match si_symbol(*dimension) {
+                "" => String::new(),
+                symbol => format!(" {symbol}"),
+            };
+            format!("would not qualify: {name} is {value}{unit}, wanted {wanted}")
+        }
+        Verdict::NotAssessable { label: at, reason } => {
+            let reason = scratch.explained(plan, reason);
+            format!("not assessable: {}: {reason}", label(*at).0)
+        }
+    }
 }

@@ -8,10 +8,10 @@ use super::exit::Exit;
 use super::output;
 use crate::evaluate::{FIGURES, Library};
 use crate::groups::SetId;
-use crate::mixture::{ActivityModel, Interaction, ModelStatus, RESERVED_MODELS, Slips, Unifac};
+use crate::mixture::{ActivityModel, Interaction, ModelStatus, RESERVED_MODELS, Unifac};
 use crate::pure::{METHODS, Role};
 use crate::quantity::Property;
-use crate::quantity::unit::si_symbol;
+use crate::quantity::unit::{nearest, si_symbol};
 use crate::report::{TextColumn, TextTable};
 
 pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, CliError> {
@@ -36,13 +36,21 @@ pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, Cli
     Ok(Exit::Done)
 }
 
-fn set_named(name: &str) -> Result<SetId, CliError> {
+/// The group set of this name.
+pub(super) fn set_named(name: &str) -> Result<SetId, CliError> {
+    let known = SetId::ALL.map(SetId::id);
     SetId::from_id(name).ok_or_else(|| {
         CliError::Usage(format!(
-            "there is no group set `{name}`\n  sets: {}",
-            SetId::ALL.map(SetId::id).join(", ")
+            "there is no group set `{name}`{}\n  sets: {}",
+            meant(name, known),
+            known.join(", ")
         ))
     })
+}
+
+/// The name of a list that was meant, in words; empty where none is near.
+pub(super) fn meant<'n>(name: &str, known: impl IntoIterator<Item = &'n str>) -> String {
+    nearest(name, known).map_or(String::new(), |near| format!("; did you mean `{near}`?"))
 }
 
 fn unifac_named<'l>(library: &'l Library, name: &str) -> Result<&'l Unifac, CliError> {
@@ -53,9 +61,14 @@ fn unifac_named<'l>(library: &'l Library, name: &str) -> Result<&'l Unifac, CliE
         Some(ModelStatus::Reserved) => Err(CliError::Usage(format!(
             "the model `{name}` is not built in yet"
         ))),
-        None => Err(CliError::Usage(format!(
-            "there is no model `{name}`\n  models with tables: unifac, unifac-dortmund, unifac-dortmund-2006"
-        ))),
+        None => {
+            let with_tables = ["unifac", "unifac-dortmund", "unifac-dortmund-2006"];
+            Err(CliError::Usage(format!(
+                "there is no model `{name}`{}\n  models with tables: {}",
+                meant(name, with_tables),
+                with_tables.join(", ")
+            )))
+        }
     }
 }
 
@@ -217,16 +230,11 @@ fn pair(library: &Library, model: &str, first: u16, second: u16) -> Result<Strin
             None => text.push_str(&format!("  {i} to {j}: not published\n")),
             Some(pair) => {
                 let used = pair.used;
-                text.push_str(&format!(
-                    "  {i} to {j}: a = {} K, b = {}, c = {} 1/K\n",
-                    used.a_k, used.b, used.c_per_k
-                ));
+                text.push_str(&format!("  {i} to {j}: {}\n", parameters(&used)));
                 if let Some(slip) = pair.slip {
                     text.push_str(&format!(
-                        "    as circulated: a = {} K, b = {}, c = {} 1/K\n    {}\n",
-                        slip.circulated.a_k,
-                        slip.circulated.b,
-                        slip.circulated.c_per_k,
+                        "    as circulated: {}\n    {}\n",
+                        parameters(&slip.circulated),
                         slip.reason
                     ));
                 }
@@ -238,6 +246,13 @@ fn pair(library: &Library, model: &str, first: u16, second: u16) -> Result<Strin
         text.push_str(&format!("    {source}\n"));
     }
     Ok(text)
+}
+
+fn parameters(pair: &Interaction) -> String {
+    format!(
+        "a = {} K, b = {}, c = {} 1/K",
+        pair.a_k, pair.b, pair.c_per_k
+    )
 }
 
 fn coverage(library: &Library, model: &str) -> Result<String, CliError> {
@@ -412,22 +427,15 @@ fn slips(library: &Library) -> String {
             continue;
         };
         for slip in unifac.tables().slips() {
-            let values = |values: &Interaction| {
-                format!(
-                    "a = {} K, b = {}, c = {} 1/K",
-                    values.a_k, values.b, values.c_per_k
-                )
-            };
             text.push_str(&format!(
-                "{}: {} to {}\n  as circulated: {}\n  used: {}\n  why: {}\n  evidence: {}\n",
+                "{}: main groups {} and {}\n  as circulated: {}\n  used: {}\n  why suspected: {}\n  what the choice rests on: {}\n",
                 model.id(),
                 slip.i,
                 slip.j,
-                values(&slip.circulated),
-                match (&slip.replacement, library.slips()) {
-                    (Some(other), Slips::Corrected) => values(other),
-                    _ => "the same".to_owned(),
-                },
+                parameters(&slip.circulated),
+                slip.replacement
+                    .as_ref()
+                    .map_or("the circulated values, for want of better ones".into(), parameters),
                 slip.reason,
                 slip.evidence
             ));

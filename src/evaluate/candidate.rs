@@ -1,6 +1,6 @@
 //! One candidate evaluated by a plan.
 
-use super::component::{MixtureComponent, VaporCurve, boiling_range_k};
+use super::component::{VaporCurve, boiling_range_k};
 use super::figure::FigureKind;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
 use super::profile::{Known, Profile, Profiler, properties};
@@ -443,12 +443,6 @@ impl Plan {
             }
             remarks.push_str(text);
         };
-        let same = |component: &&MixtureComponent| {
-            component.profile.keys.full == scratch.profile.keys.full
-        };
-        if let Some(component) = self.components.iter().find(same) {
-            add(&format!("{} is in the mixture already", component.name));
-        }
         let mut told: Vec<usize> = Vec::new();
         for target in &self.targets {
             if told.contains(&target.figure) {

@@ -142,7 +142,12 @@ impl MixtureComponent {
             || name.unwrap_or_else(|| text.trim().into()),
             |known| Arc::clone(known.substance.name()),
         );
-        let vapor = VaporCurve::of(library, &profile, known);
+        let vapor = match VaporCurve::of(library, &profile, known) {
+            VaporCurve::Absent(reason) => {
+                VaporCurve::Absent(profiler.explained(library, &profile, &reason))
+            }
+            curve => curve,
+        };
         let known = known.map(|known| (library.position(known.substance), known.same_identity));
         Ok(Self {
             name,

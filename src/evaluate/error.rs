@@ -9,7 +9,7 @@ use crate::groups::pattern::PatternFault;
 
 /// A text that is neither a known name nor a readable SMILES.
 #[derive(Clone, Debug, PartialEq, Error)]
-#[error("`{text}` is neither a SMILES ({smiles}) nor a known name ({name})")]
+#[error("{}", told(text, smiles, name))]
 pub struct UnknownMolecule {
     /// The text.
     pub text: String,
@@ -17,6 +17,16 @@ pub struct UnknownMolecule {
     pub smiles: SmilesError,
     /// Why it is no name.
     pub name: NameError,
+}
+
+/// Characters beyond which a text is no name anybody mistyped.
+const LONGEST_NAME: usize = 100;
+
+fn told(text: &str, smiles: &SmilesError, name: &NameError) -> String {
+    match text.char_indices().nth(LONGEST_NAME) {
+        None => format!("`{text}` is neither a SMILES ({smiles}) nor a known name ({name})"),
+        Some((end, _)) => format!("`{}…` is no SMILES ({smiles})", &text[..end]),
+    }
 }
 
 /// A fault of a brief that shows only beside the tables and data.

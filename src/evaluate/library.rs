@@ -240,6 +240,12 @@ impl Library {
                 .into_iter()
                 .map(|file| (file.file, file.text)),
         );
+        // By place: where the user keeps the folder does not matter.
+        all.extend(
+            self.user
+                .iter()
+                .map(|table| (table.place.as_str(), table.text.as_str())),
+        );
         all
     }
 

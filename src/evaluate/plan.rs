@@ -124,8 +124,7 @@ impl Plan {
             .map(|k| k.value);
         let state = match &brief.mixture {
             None => MixtureState::default(),
-            Some(mixture) => MixtureState::of(&library, mixture, &components, model_ids[0])
-                .map_err(|cause| vec![PlanFault { place: None, cause }])?,
+            Some(mixture) => MixtureState::of(&library, mixture, &components, model_ids[0])?,
         };
         notes.extend(state.notes);
         let models: Vec<_> = model_ids
@@ -138,11 +137,11 @@ impl Plan {
         for model in &models {
             for (component, record) in components.iter().zip(&model.components) {
                 if let Err(reason) = record {
-                    notes.push(format!(
-                        "{} in {}: {reason}",
-                        component.name,
-                        model.model.id()
-                    ));
+                    let of_component = matches!(reason, Absent::NotCovered { .. });
+                    notes.push(match of_component {
+                        true => format!("{}: {reason}", model.model.id()),
+                        false => format!("{} in {}: {reason}", component.name, model.model.id()),
+                    });
                 }
             }
         }
@@ -421,6 +420,8 @@ pub(super) fn find_components(
     };
     let mut profiler = Profiler::new();
     let mut found: Vec<MixtureComponent> = Vec::new();
+    // Positions of those found: others may be faulty themselves.
+    let mut positions: Vec<usize> = Vec::new();
     for (position, text) in mixture.components.iter().enumerate() {
         let place = Some(text.place);
         match MixtureComponent::find(library, &mut profiler, &text.value, true) {
@@ -430,12 +431,13 @@ pub(super) fn find_components(
                     .position(|other| other.profile.keys.full == component.profile.keys.full);
                 if let Some(first) = same {
                     let cause = PlanCause::SameComponent {
-                        first: first + 1,
+                        first: positions[first] + 1,
                         second: position + 1,
                     };
                     faults.push(PlanFault { place, cause });
                 }
                 found.push(component);
+                positions.push(position);
             }
             Err(error) => faults.push(PlanFault {
                 place,
@@ -460,7 +462,11 @@ impl MixtureState {
         mixture: &crate::brief::Mixture,
         components: &[MixtureComponent],
         model: ActivityModel,
-    ) -> Result<Self, PlanCause> {
+    ) -> Result<Self, Vec<PlanFault>> {
+        let fault = |place, cause| {
+            let place = Some(place);
+            vec![PlanFault { place, cause }]
+        };
         let stated_k = mixture.temperature_k.as_ref().map(|t| t.value);
         let mole_fractions = match &mixture.fractions {
             None => None,
@@ -472,8 +478,9 @@ impl MixtureState {
                     mixture.basis,
                     stated_k.unwrap_or(REFERENCE_TEMPERATURE_K),
                 )
-                .map_err(|reason| PlanCause::Mixture {
-                    reason: reason.to_string(),
+                .map_err(|reason| {
+                    let reason = format!("the fractions cannot be converted: {reason}");
+                    fault(fractions.place, PlanCause::Mixture { reason })
                 })?,
             ),
         };
@@ -494,8 +501,9 @@ impl MixtureState {
                 };
                 let found =
                     solution::bubble_temperature_k(library, components, model, &x, pressure.value);
-                Some(found.map_err(|reason| PlanCause::NoTemperature {
-                    reason: reason.to_string(),
+                Some(found.map_err(|reason| {
+                    let reason = reason.to_string();
+                    fault(pressure.place, PlanCause::NoTemperature { reason })
                 })?)
             }
         };
@@ -530,7 +538,7 @@ impl PlannedModel {
         };
         let records: Vec<Result<Component, Absent>> = components
             .iter()
-            .map(|component| solution::record(library, unifac, set, &component.profile))
+            .map(|component| solution::record_of_component(library, unifac, set, component))
             .collect();
         let groups = match temperature_k {
             None => Err(none()),

@@ -47,7 +47,7 @@ pub fn mole_fractions(
             MoleFractions::from_mass(&w, &masses).map_err(absent)?
         }
         Basis::Volume => {
-            let volumes = molar_volumes(library, components, temperature_k)?.0;
+            let volumes = molar_volumes(library, components, temperature_k)?;
             let phi = VolumeFractions::new(values).map_err(absent)?;
             MoleFractions::from_volume(&phi, &volumes).map_err(absent)?
         }
@@ -66,19 +66,24 @@ fn molar_volumes(
     library: &Library,
     components: &[MixtureComponent],
     temperature_k: f64,
-) -> Result<(Vec<f64>, Flags), Absent> {
-    let mut flags = Flags::NONE;
-    let mut volumes = Vec::with_capacity(components.len());
-    for component in components {
-        let (volume, more) = component
-            .molar_volume_m3_per_mol(library, temperature_k)
-            .map_err(|reason| {
-                Absent::Because(format!("density of {}: {reason}", component.name).into())
-            })?;
-        volumes.push(volume);
-        flags = flags.union(more);
-    }
-    Ok((volumes, flags))
+) -> Result<Vec<f64>, Absent> {
+    components
+        .iter()
+        .map(|component| molar_volume(library, component, temperature_k).map(|found| found.0))
+        .collect()
+}
+
+fn molar_volume(
+    library: &Library,
+    component: &MixtureComponent,
+    temperature_k: f64,
+) -> Result<(f64, Flags), Absent> {
+    component
+        .molar_volume_m3_per_mol(library, temperature_k)
+        .map_err(|reason| {
+            let reason = explained(library, component, &reason);
+            Absent::Because(format!("density of {}: {reason}", component.name).into())
+        })
 }
 
 /// Does something with the liquid of a model; `None` for the model is the
@@ -111,20 +116,36 @@ fn records(
     ) else {
         return Ok(None);
     };
-    let all = components.iter().map(|component| {
-        record(library, unifac, set, &component.profile).map_err(|reason| match reason {
-            Absent::NotCovered { .. } => {
-                let mut profiler = super::Profiler::new();
-                let what = profiler.gaps(library, &component.profile, set);
-                Absent::NotCovered {
-                    set: set.id(),
-                    what: format!("{}: {what}", component.name).into(),
-                }
-            }
-            other => other,
-        })
-    });
+    let all = components
+        .iter()
+        .map(|component| record_of_component(library, unifac, set, component));
     all.collect::<Result<_, _>>().map(Some)
+}
+
+/// A component of the mixture as a UNIFAC model sees it; where it is not
+/// covered, the reason names it: reasons of candidates do not.
+pub(super) fn record_of_component(
+    library: &Library,
+    unifac: &Unifac,
+    set: SetId,
+    component: &MixtureComponent,
+) -> Result<Component, Absent> {
+    record(library, unifac, set, &component.profile).map_err(|reason| match reason {
+        Absent::NotCovered { .. } => {
+            let mut profiler = super::Profiler::new();
+            let what = profiler.gaps(library, &component.profile, set);
+            Absent::NotCovered {
+                set: set.id(),
+                what: format!("{}: {what}", component.name).into(),
+            }
+        }
+        other => other,
+    })
+}
+
+/// A reason for absence in a component, in a chemist's words.
+fn explained(library: &Library, component: &MixtureComponent, reason: &Absent) -> Absent {
+    super::Profiler::new().explained(library, &component.profile, reason)
 }
 
 /// Bubble temperature of a mixture by a model.
@@ -238,6 +259,16 @@ pub fn describe_mixture(
     };
     describer.all(state);
     describer.figures
+}
+
+/// Remarks one after the other, without the empty ones.
+fn joined(remarks: &[&str]) -> String {
+    let told: Vec<&str> = remarks
+        .iter()
+        .copied()
+        .filter(|remark| !remark.is_empty())
+        .collect();
+    told.join("; ")
 }
 
 struct Describer<'a> {
@@ -413,12 +444,25 @@ impl Describer<'_> {
     }
 
     fn volume(&mut self, temperature_k: &Result<f64, Absent>) {
-        let found = temperature_k
-            .clone()
-            .and_then(|t| molar_volumes(self.library, self.components, t));
+        // What is not there takes no room: its volume need not be known.
+        let found = temperature_k.clone().and_then(|t| {
+            let present = self
+                .components
+                .iter()
+                .zip(self.x)
+                .filter(|(_, x)| **x > 0.0);
+            present
+                .map(|(component, x)| {
+                    let (volume, flags) = molar_volume(self.library, component, t)?;
+                    Ok((x * volume, flags))
+                })
+                .try_fold((0.0, Flags::NONE), |(sum, all), part: Result<_, Absent>| {
+                    let (volume, flags) = part?;
+                    Ok((sum + volume, all.union(flags)))
+                })
+        });
         let (volume, density, remark) = match found {
-            Ok((volumes, flags)) => {
-                let volume: f64 = self.x.iter().zip(&volumes).map(|(x, v)| x * v).sum();
+            Ok((volume, flags)) => {
                 let masses = molar_masses(self.components);
                 let mass: f64 = self.x.iter().zip(&masses).map(|(x, m)| x * m).sum();
                 let mut remark = String::from("volumes of the pure liquids add up");
@@ -531,7 +575,12 @@ impl Describer<'_> {
                     Condition::Pressure(pressure_pa) => format!("at {pressure_pa} Pa"),
                     Condition::Temperature(temperature_k) => format!("at {temperature_k} K"),
                 };
-                let remark = format!("no azeotrope {at} by this model");
+                let mut remark = format!("no azeotrope {at} by this model");
+                let flags = match associates(self.components).contains(&true) {
+                    true => Flags::NONE.with(Flag::VaporAssociationNotModelled),
+                    false => Flags::NONE,
+                };
+                remark = joined(&[&remark, &self.vapor_remark(start_k, flags)]);
                 self.put("azeotrope_temperature", None, "K", Ok(None), remark.clone());
                 for component in 0..2 {
                     self.put(
@@ -580,12 +629,8 @@ impl Describer<'_> {
             AzeotropeKind::Homogeneous => remark.push_str(", one liquid"),
             AzeotropeKind::Heterogeneous { .. } => remark.push_str(", two liquids"),
         }
-        let more = self.vapor_remark(azeotrope.temperature_k, azeotrope.flags);
-        if !more.is_empty() {
-            remark.push_str("; ");
-            remark.push_str(&more);
-        }
-        remark
+        let vapor = self.vapor_remark(azeotrope.temperature_k, azeotrope.flags);
+        joined(&[&remark, &vapor])
     }
 
     fn phases(&mut self, phases: Result<Vec<LiquidPhase>, Absent>) {

@@ -119,12 +119,19 @@ pub(super) fn bind(
         let names: Vec<_> = allowed
             .value
             .iter()
-            .filter(|element| **element != Element::H)
+            .filter(|&&element| element != Element::H)
             .map(|element| element.symbol())
             .collect();
         add(
             "structure.elements".into(),
-            format!("only H and {}", names.join(", ")),
+            format!(
+                "only {}",
+                ["H"]
+                    .into_iter()
+                    .chain(names)
+                    .collect::<Vec<_>>()
+                    .join(", ")
+            ),
             Rule::Elements {
                 allowed: allowed.value.clone(),
             },

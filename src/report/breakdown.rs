@@ -87,8 +87,10 @@ pub fn breakdown_text<'a>(
     let mut last = None;
     for (row, readable) in rows {
         // A molecule is named once, on the first of its rows.
-        let molecule = match last.replace(row.line) {
-            Some(line) if line == row.line => "",
+        // Arguments and lines of a file are both counted from 1.
+        let this = (row.line, row.name, row.smiles);
+        let molecule = match last.replace(this) {
+            Some(known) if known == this => "",
             _ if row.name.is_empty() => row.smiles,
             _ => row.name,
         };

@@ -9,6 +9,8 @@ mod ledger;
 mod pool;
 mod screening;
 mod sorter;
+mod stoppable;
 
 pub use pool::{Batch, Columns, LineFault, Pool, PoolError, PoolLine};
 pub use screening::{FILES, Ranked, ScreenError, Screened, Screening};
+pub use stoppable::StoppableReader;

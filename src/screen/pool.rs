@@ -169,6 +169,8 @@ pub struct PoolLine<'b> {
     pub smiles: Result<&'b str, LineFault>,
     /// The name, empty where there is none.
     pub name: &'b str,
+    /// Where there is no SMILES: the line as it stands, or its beginning.
+    pub text: &'b str,
     batch: &'b Batch,
     cells: (usize, usize),
 }
@@ -188,6 +190,8 @@ struct Entry {
     line: u64,
     smiles: Result<Range<usize>, LineFault>,
     name: Range<usize>,
+    /// The line as it stands; empty unless it is faulty.
+    text: Range<usize>,
     carried: (usize, usize),
 }
 
@@ -222,6 +226,7 @@ impl Batch {
             line: entry.line,
             smiles: entry.smiles.clone().map(|range| &self.text[range]),
             name: &self.text[entry.name.clone()],
+            text: &self.text[entry.text.clone()],
             batch: self,
             cells: entry.carried,
         }
@@ -408,14 +413,8 @@ impl Pool {
                 continue;
             }
             self.found_any = true;
-            let faulty = |fault| Entry {
-                line,
-                smiles: Err(fault),
-                name: 0..0,
-                carried: (0, 0),
-            };
             let entry = if cut {
-                faulty(LineFault::TooLong)
+                Err(LineFault::TooLong)
             } else {
                 match self.layout {
                     Layout::Lines => split_line(&bytes, batch, line),
@@ -425,8 +424,14 @@ impl Pool {
                         cells,
                     } => self.split_record(&mut bytes, batch, line, [smiles, cells], name)?,
                 }
-                .unwrap_or_else(faulty)
             };
+            let entry = entry.unwrap_or_else(|fault| Entry {
+                line,
+                smiles: Err(fault),
+                name: 0..0,
+                text: batch.keep(&as_it_stands(&bytes)),
+                carried: (0, 0),
+            });
             batch.entries.push(entry);
         }
         if batch.is_empty() && !self.found_any {
@@ -623,6 +628,7 @@ impl Pool {
             line,
             smiles: Ok(batch.keep(text(smiles))),
             name: name.map_or(0..0, |position| batch.keep(text(position))),
+            text: 0..0,
             carried: (first, batch.carried.len()),
         }))
     }
@@ -638,8 +644,27 @@ fn split_line(bytes: &[u8], batch: &mut Batch, line: u64) -> Result<Entry, LineF
         line,
         smiles: Ok(batch.keep(smiles)),
         name: batch.keep(name.trim()),
+        text: 0..0,
         carried: (0, 0),
     })
+}
+
+/// Most characters of a faulty line that are shown.
+const SHOWN: usize = 200;
+
+/// The first physical line of what was read, cut where it is long.
+fn as_it_stands(bytes: &[u8]) -> String {
+    let line = bytes
+        .split(|&byte| byte == b'\n')
+        .next()
+        .unwrap_or_default();
+    // A character has at most four bytes; the rest of a long line is not looked at.
+    let text = String::from_utf8_lossy(&line[..line.len().min(4 * SHOWN + 4)]);
+    let text = text.trim();
+    match text.char_indices().nth(SHOWN) {
+        Some((end, _)) => format!("{}…", &text[..end]),
+        None => text.to_owned(),
+    }
 }
 
 /// CSV cells of one record.

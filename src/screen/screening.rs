@@ -17,7 +17,7 @@ use crate::quantity::{Absent, Dimension, number, unit};
 use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedRow, RankedTable};
 use crate::run::{
     Counts, Event, FileError, Fingerprint, InputRecord, Listener, NewFile, Outcome, RunRecord,
-    StopFlag,
+    StopFlag, remove_stale,
 };
 
 /// Lines that are evaluated between two looks at the stop flag.
@@ -156,12 +156,12 @@ impl Screening<'_> {
         let mut ledger = Ledger::new(self.folder);
         let mut identities = Identities::new(self.folder);
         let mut input = Fingerprint::new();
-        let (mut lines, mut qualified, mut stopped) = (0, 0, false);
+        let (mut lines, mut qualified) = (0, 0);
 
         let mut batch = Batch::default();
         let mut next = Batch::default();
-        pool.read_batch(&mut batch, BATCH_LINES)?;
-        while !batch.is_empty() {
+        let mut stopped = self.was_left(pool.read_batch(&mut batch, BATCH_LINES))?;
+        while !stopped && !batch.is_empty() {
             if self.stop.is_raised() {
                 stopped = true;
                 break;
@@ -173,7 +173,7 @@ impl Screening<'_> {
                     || pool.read_batch(&mut next, BATCH_LINES),
                 )
             });
-            read?;
+            stopped = self.was_left(read)?;
             for done in done {
                 ledger.add(&done.records).map_err(temporary)?;
                 for (line, constitution, full) in done.identities {
@@ -202,7 +202,13 @@ impl Screening<'_> {
         });
         let carried: Vec<&str> = carried.iter().map(String::as_str).collect();
         let table = RankedTable::new(figures.collect(), &carried);
-        let (ranking, counts) = self.write(&mut ledger, kept, &table)?;
+        let Written {
+            ranking,
+            counts,
+            files,
+        } = self.write(&mut ledger, kept, &table)?;
+        // Until here the results of an earlier run stay as they are.
+        self.all_or_none(self.put_in_place(files))?;
 
         record.input = self.plan.brief.pool.as_ref().map(|pool| InputRecord {
             file: pool.file.value.clone(),
@@ -218,7 +224,7 @@ impl Screening<'_> {
         } else {
             0.0
         };
-        record.put_in_place(self.folder)?;
+        self.all_or_none(record.put_in_place(self.folder))?;
         self.listener.hear(Event::Finished {
             ending: record.ended,
             counts: &counts,
@@ -229,6 +235,31 @@ impl Screening<'_> {
             stopped,
             table,
         })
+    }
+
+    /// Puts the tables into place; the record of an earlier run, which vouches
+    /// for other ones, goes first.
+    fn put_in_place(&self, files: [NewFile; 2]) -> Result<(), FileError> {
+        remove_stale(self.folder, &[RunRecord::FILE_NAME])?;
+        files.into_iter().try_for_each(NewFile::put_in_place)
+    }
+
+    /// Takes back the files that are in place when one of them failed.
+    fn all_or_none<T>(&self, written: Result<T, FileError>) -> Result<T, FileError> {
+        if written.is_err() {
+            // The error is what matters; without `run.json` no run is vouched for.
+            let _ = remove_stale(self.folder, &FILES);
+        }
+        written
+    }
+
+    /// Whether reading ended because the run was asked to stop.
+    fn was_left(&self, read: Result<(), PoolError>) -> Result<bool, PoolError> {
+        match read {
+            Ok(()) => Ok(false),
+            Err(PoolError::Read { .. }) if self.stop.is_raised() => Ok(true),
+            Err(error) => Err(error),
+        }
     }
 
     fn evaluate(&self, batch: &Batch) -> Vec<Done> {
@@ -262,7 +293,7 @@ impl Screening<'_> {
         let (smiles, finding) = match line.smiles {
             Err(fault) => {
                 let reason = format!("the line {fault}");
-                ("", fell(Outcome::Refused, fault.reason(), reason))
+                (line.text, fell(Outcome::Refused, fault.reason(), reason))
             }
             Ok(smiles) => match self.plan.evaluate(scratch, smiles) {
                 Err(error) => (
@@ -299,7 +330,10 @@ impl Screening<'_> {
             Verdict::Qualified { score, known } => Finding::Qualified {
                 score,
                 known,
-                notes: self.plan.remarks(scratch),
+                notes: joined(
+                    &self.plan.remarks(scratch),
+                    self.as_component(scratch).as_deref(),
+                ),
                 key: scratch.profile.keys.full.clone(),
                 figures: scratch
                     .figures
@@ -336,6 +370,15 @@ impl Screening<'_> {
                 }
             }
         }
+    }
+
+    /// That a candidate is in the mixture already: it ranks like any other, but
+    /// adding it is not adding a solvent.
+    fn as_component(&self, scratch: &Scratch) -> Option<String> {
+        let key = &scratch.profile.keys.full;
+        let mut components = self.plan.components.iter();
+        let at = components.position(|component| component.profile.keys.full == *key)?;
+        Some(format!("is component {} of the mixture", at + 1))
     }
 
     /// The lines that stay in the ranking, best first.
@@ -377,7 +420,7 @@ impl Screening<'_> {
         ledger: &mut WrittenLedger,
         kept: Kept,
         table: &RankedTable,
-    ) -> Result<(Vec<Ranked>, Counts), FileError> {
+    ) -> Result<Written, FileError> {
         let [ranked_name, not_ranked_name, _] = FILES;
         let mut not_ranked = NewFile::begin(&self.folder.join(not_ranked_name))?;
         let mut ranked = NewFile::begin(&self.folder.join(ranked_name))?;
@@ -428,9 +471,11 @@ impl Screening<'_> {
             rows.push(row);
         }
         ranked.add(&out)?;
-        not_ranked.put_in_place()?;
-        ranked.put_in_place()?;
-        Ok((rows, counts))
+        Ok(Written {
+            ranking: rows,
+            counts,
+            files: [not_ranked, ranked],
+        })
     }
 
     /// Counts an entry; a kept one comes back with its rank, any other is
@@ -546,6 +591,13 @@ impl Ranked {
             carried,
         }
     }
+}
+
+/// The tables of a run, whole but not in place yet.
+struct Written {
+    ranking: Vec<Ranked>,
+    counts: Counts,
+    files: [NewFile; 2],
 }
 
 /// The ranking before its rows are read again, and the lines that are related

@@ -1,15 +1,16 @@
-//! The integration tests, one module for each room.
-//! Integration tests, one module a room.
-//! Integration tests, one module for each room.
 //! The one integration binary: a module for each room.
 
 mod brief;
 mod chem;
+mod cli;
 mod data;
+mod evaluate;
 mod groups;
 mod mixture;
 mod pure;
 mod quantity;
 mod report;
 mod run;
+mod screen;
 mod tables;
+mod workbench;
