@@ -124,7 +124,7 @@ pub enum SmilesFault {
     },
     /// A bracket atom short of hydrogens.
     #[error(
-        "{} with {bonds} bond{} is a radical; state its hydrogens, for example [{element}H]",
+        "{} with {bonds} bond{} is a radical; state all hydrogens it has",
         charged_name(*element, *charge),
         if *bonds == 1 { "" } else { "s" }
     )]

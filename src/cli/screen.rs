@@ -14,7 +14,7 @@ use crate::brief::{Brief, Job};
 use crate::evaluate::{CATALOG, Library, Plan, Scratch, Verdict};
 use crate::groups::SetId;
 use crate::mixture::Slips;
-use crate::quantity::unit::{reading_unit, si_symbol, to_table};
+use crate::quantity::unit::{reading_text, reading_unit, si_symbol, to_table};
 use crate::quantity::{Status, number};
 use crate::report::{TargetLabel, TextColumn, TextTable, outcome_text};
 use crate::run::{
@@ -321,10 +321,7 @@ fn ranking_text<'a>(
             let dimension = plan.figures[figure].dimension;
             cells.push(match row.figures[figure] {
                 None => "–".into(),
-                Some(value) => number::for_reading(match reading_unit(dimension) {
-                    Some(unit) => unit.from_si(value),
-                    None => value,
-                }),
+                Some(value) => reading_text(value, dimension),
             });
         }
         cells.push(row.notes.clone());
@@ -502,8 +499,10 @@ fn explain(
                 }
                 [
                     figure.name.clone(),
-                    number::for_reading(to_table(found.value, figure.dimension)),
-                    si_symbol(figure.dimension).into(),
+                    reading_text(found.value, figure.dimension),
+                    reading_unit(figure.dimension)
+                        .map_or("", |unit| unit.symbol)
+                        .into(),
                     wanted,
                     desirability,
                     method.into(),

@@ -266,7 +266,7 @@ impl fmt::Display for Absent {
                 high_k,
             } => write!(
                 f,
-                "{method}: {temperature_k} K is outside {low_k} K to {high_k} K"
+                "{method}: {temperature_k:.2} K is outside {low_k:.2} K to {high_k:.2} K"
             ),
             Self::OutsideDomain { method, what } => write!(f, "{method}: {what}"),
             Self::NotConverged {

@@ -10,6 +10,8 @@ use std::fmt;
 
 use thiserror::Error;
 
+use super::number;
+
 /// What a quantity measures; decides the units it may be written in.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub enum Dimension {
@@ -541,6 +543,19 @@ pub const fn column_suffix(dimension: Dimension) -> &'static str {
         Dimension::Viscosity => "_pa_s",
         Dimension::SurfaceTension => "_n_per_m",
         Dimension::SolubilityParameter => "_sqrt_mpa",
+    }
+}
+
+/// A value as people read it, in the unit of [`reading_unit`]: four digits, but
+/// a temperature to a hundredth of a kelvin, as it is stated.
+pub fn reading_text(value_si: f64, dimension: Dimension) -> String {
+    let shown = match reading_unit(dimension) {
+        Some(unit) => unit.from_si(value_si),
+        None => value_si,
+    };
+    match dimension {
+        Dimension::Temperature => format!("{shown:.2}"),
+        _ => number::for_reading(shown),
     }
 }
 

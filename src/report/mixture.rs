@@ -106,13 +106,17 @@ pub fn mixture_text(rows: &[MixtureRow<'_>], components: &[&str], width: Option<
                 (row.quantity, row.component, row.model) == (quantity, component, *model)
             });
             let mut cell = match row.and_then(|row| row.value) {
+                Some(value) if row.is_some_and(|row| row.unit == "K") => format!("{value:.2}"),
                 Some(value) => number::for_reading(value),
                 None => "–".to_owned(),
             };
             if let Some(row) = row {
                 row.unit.clone_into(&mut cells[2]);
                 if !row.detail.is_empty() {
-                    let note = format!("{model}: {}", row.detail);
+                    let note = match row.detail.starts_with(*model) {
+                        true => row.detail.clone(),
+                        false => format!("{model}: {}", row.detail),
+                    };
                     let mark = match notes.iter().position(|known| *known == note) {
                         Some(known) => known + 1,
                         None => {

@@ -7,7 +7,7 @@ use super::json::rounded;
 use super::text_table::{TextColumn, TextTable};
 use crate::quantity::number::{self, LOOK_UP_DIGITS};
 use crate::quantity::unit::{reading_unit, si_symbol, to_table};
-use crate::quantity::{Outcome, Property};
+use crate::quantity::{Dimension, Outcome, Property};
 
 /// One property of one molecule, in the unit of tables.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -154,7 +154,11 @@ pub fn property_text<'a>(
                     true => value,
                     false => unit.from_si(value),
                 };
-                (number::for_reading(shown), unit.symbol)
+                let shown = match row.property.dimension() {
+                    Dimension::Temperature => format!("{shown:.2}"),
+                    _ => number::for_reading(shown),
+                };
+                (shown, unit.symbol)
             }
         };
         table.add([

@@ -3,8 +3,8 @@
 use super::csv_line::{CsvLine, CsvRow};
 use super::text_table::{TextColumn, TextTable};
 use crate::quantity::Dimension;
-use crate::quantity::number::{self, RUN_DIGITS};
-use crate::quantity::unit::{column_suffix, reading_unit, to_table};
+use crate::quantity::number::RUN_DIGITS;
+use crate::quantity::unit::{column_suffix, reading_text, reading_unit, to_table};
 use crate::run;
 
 /// A figure with a column of its own in the ranking.
@@ -143,10 +143,7 @@ impl RankedTable {
             for (figure, value) in self.figures.iter().zip(row.figures) {
                 cells.push(match value {
                     None => "–".into(),
-                    Some(value) => number::for_reading(match reading_unit(figure.dimension) {
-                        Some(unit) => unit.from_si(*value),
-                        None => *value,
-                    }),
+                    Some(value) => reading_text(*value, figure.dimension),
                 });
             }
             table.add(cells);
