@@ -16,11 +16,15 @@ use crate::groups::SetId;
 use crate::mixture::Slips;
 use crate::quantity::unit::{reading_text, reading_unit, si_symbol, to_table};
 use crate::quantity::{Status, number};
-use crate::report::{TargetLabel, TextColumn, TextTable, outcome_text};
+use crate::report::{
+    FigureColumn, RankedRow, RankedTable, TargetLabel, TextColumn, TextTable, outcome_text,
+};
 use crate::run::{
     BriefRecord, FileError, Fingerprint, RunRecord, StopFlag, TablesRecord, make_folder,
 };
-use crate::screen::{Columns, FILES, Pool, PoolError, Screened, Screening, StoppableReader};
+use crate::screen::{
+    Columns, FILES, Pool, PoolError, Ranked, Screened, Screening, StoppableReader,
+};
 
 pub(super) fn run(
     command: &args::Screen,
@@ -213,7 +217,7 @@ fn show(
     writeln!(out, "{}", plan.brief.heading())?;
     writeln!(out)?;
     if !screened.ranking.is_empty() {
-        let shown = screened.ranking.iter().take(most).enumerate();
+        let shown = &screened.ranking[..most.min(screened.ranking.len())];
         out.write_all(ranking_text(plan, shown).as_bytes())?;
         if screened.ranking.len() > most {
             writeln!(
@@ -273,61 +277,33 @@ fn musts(plan: &Plan) -> Vec<(&str, String)> {
 }
 
 /// The top of the ranking: the figures that targets are set on, with units.
-fn ranking_text<'a>(
-    plan: &Plan,
-    rows: impl Iterator<Item = (usize, &'a crate::screen::Ranked)>,
-) -> String {
+fn ranking_text(plan: &Plan, rows: &[Ranked]) -> String {
     let mut shown: Vec<usize> = Vec::new();
     for target in &plan.targets {
-        if !shown.contains(&target.figure) {
-            shown.push(target.figure);
+        // The same figure by the other models stands beside it.
+        for figure in std::iter::once(target.figure).chain(plan.other_models(target.figure)) {
+            if !shown.contains(&figure) {
+                shown.push(figure);
+            }
         }
     }
-    // The same figures by the other models stand beside them.
-    for &figure in &shown.clone() {
-        shown.extend(
-            plan.other_models(figure)
-                .filter(|other| !shown.contains(other))
-                .collect::<Vec<_>>(),
-        );
-    }
-    let mut columns = vec![
-        TextColumn::number("rank", ""),
-        TextColumn::text("name"),
-        TextColumn::number("score", ""),
-    ];
-    for &figure in &shown {
-        let figure = &plan.figures[figure];
-        let unit = reading_unit(figure.dimension).map_or("", |unit| unit.symbol);
-        columns.push(TextColumn::number(figure.name.replace('_', " "), unit));
-    }
-    columns.push(TextColumn::text("remarks"));
-    let mut table = TextTable::new(columns);
-    for (rank, row) in rows {
-        let name = if row.name.is_empty() {
-            &row.smiles
-        } else {
-            &row.name
-        };
-        let mut cells = vec![
-            (rank + 1).to_string(),
-            name.clone(),
-            match row.known > 0.0 {
-                true => format!("{:.4}", row.score),
-                false => "–".into(),
-            },
-        ];
-        for &figure in &shown {
-            let dimension = plan.figures[figure].dimension;
-            cells.push(match row.figures[figure] {
-                None => "–".into(),
-                Some(value) => reading_text(value, dimension),
-            });
-        }
-        cells.push(row.notes.clone());
-        table.add(cells);
-    }
-    table.render(output::width())
+    let columns = shown.iter().map(|&at| FigureColumn {
+        name: plan.figures[at].name.clone(),
+        dimension: plan.figures[at].dimension,
+    });
+    let table = RankedTable::new(columns.collect(), &[]);
+    let figures: Vec<Vec<Option<f64>>> = rows
+        .iter()
+        .map(|row| shown.iter().map(|&at| row.figures[at]).collect())
+        .collect();
+    let rows = rows.iter().zip(&figures).enumerate();
+    table.text(
+        rows.map(|(rank, (row, figures))| RankedRow {
+            figures,
+            ..row.as_row(rank, &[])
+        }),
+        output::width(),
+    )
 }
 
 /// A line of the pool as the files of the run tell of it.

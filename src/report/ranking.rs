@@ -113,8 +113,8 @@ impl RankedTable {
         line.end();
     }
 
-    /// The ranking for people: rank, name, score and figures in the units
-    /// people read.
+    /// The ranking for people: rank, name, score, figures in the units people
+    /// read, and notes.
     pub fn text<'a>(
         &self,
         rows: impl IntoIterator<Item = RankedRow<'a>>,
@@ -129,6 +129,7 @@ impl RankedTable {
             let unit = reading_unit(figure.dimension).map_or("", |unit| unit.symbol);
             TextColumn::number(figure.name.replace('_', " "), unit)
         }));
+        columns.push(TextColumn::text("remarks"));
         let mut table = TextTable::new(columns);
         for row in rows {
             let name = match row.name {
@@ -146,6 +147,7 @@ impl RankedTable {
                     Some(value) => reading_text(*value, figure.dimension),
                 });
             }
+            cells.push(row.notes.to_owned());
             table.add(cells);
         }
         table.render(width)
