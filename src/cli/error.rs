@@ -18,7 +18,7 @@ pub(super) enum CliError {
     NotBuiltIn,
     #[error("{0}")]
     Usage(String),
-    #[error("{argument}: {fault}\n  {}", fault.remedy())]
+    #[error("{argument} {fault}\n  {}", fault.remedy())]
     Quantity {
         argument: &'static str,
         fault: UnitError,
