@@ -1,22 +1,19 @@
 //! `groupsmith check`.
 
 use std::io::Write;
-use std::sync::Arc;
 
 use super::args;
 use super::error::CliError;
 use super::exit::Exit;
 use super::output;
-use super::screen::open_pool;
+use super::screen::{bind, open_pool};
 use crate::brief::{Brief, Job};
-use crate::evaluate::{CATALOG, Library, Plan};
+use crate::evaluate::{CATALOG, Library};
 use crate::screen::Batch;
 
 pub(super) fn run(command: &args::Check, library: Library) -> Result<Exit, CliError> {
     let brief = Brief::load(&command.brief, &CATALOG, Job::Check)?;
-    let name = brief.file.to_string();
-    let plan = Plan::new(Arc::new(library), brief, true)
-        .map_err(|faults| CliError::Plan { file: name, faults })?;
+    let plan = bind(brief, library, true)?;
     let mut out = output::stdout();
     writeln!(out, "{}: sound", plan.brief.heading())?;
     for (position, component) in plan.components.iter().enumerate() {
@@ -62,7 +59,7 @@ pub(super) fn run(command: &args::Check, library: Library) -> Result<Exit, CliEr
         )?;
     }
     if plan.brief.pool.is_some() {
-        let mut pool = open_pool(&plan, None)?;
+        let mut pool = open_pool(&plan.brief, None)?;
         let mut batch = Batch::default();
         let (mut lines, mut unusable) = (0_u64, 0_u64);
         loop {

@@ -29,10 +29,12 @@ pub(super) enum CliError {
     Molecule(#[from] UnknownMolecule),
     #[error(transparent)]
     Brief(#[from] BriefError),
-    #[error("{}", told(file, .faults))]
+    #[error("{}", told(file, .faults, .pool.as_deref()))]
     Plan {
         file: String,
         faults: Vec<PlanFault>,
+        /// What is wrong with the pool besides.
+        pool: Option<String>,
     },
     #[error(transparent)]
     Library(#[from] LibraryError),
@@ -90,13 +92,14 @@ impl From<ScreenError> for CliError {
     }
 }
 
-fn told(file: &str, faults: &[PlanFault]) -> String {
+fn told(file: &str, faults: &[PlanFault], pool: Option<&str>) -> String {
     faults
         .iter()
         .map(|fault| match fault.place {
             Some(place) => format!("{file}:{}: {}", place.line, fault.cause),
             None => format!("{file}: {}", fault.cause),
         })
+        .chain(pool.map(str::to_owned))
         .collect::<Vec<_>>()
         .join("\n")
 }

@@ -34,7 +34,8 @@ pub(super) fn run(
     if command.threads == Some(0) {
         return Err(CliError::Usage("--threads has to be at least 1".into()));
     }
-    let plan = plan(&command.brief, library, !command.estimates_only)?;
+    let brief = Brief::load(&command.brief, &CATALOG, Job::Screen)?;
+    let plan = bind(brief, library, !command.estimates_only)?;
     for note in &plan.notes {
         notes.say(&format!("note: {note}"));
     }
@@ -52,7 +53,7 @@ pub(super) fn run(
             "warning: Ctrl-C will end the run at once: {error}"
         ));
     }
-    let pool = match open_pool(&plan, Some(&stop)) {
+    let pool = match open_pool(&plan.brief, Some(&stop)) {
         Err(CliError::Pool(PoolError::Read { .. })) if stop.is_raised() => {
             notes.say("stopped before a line was read; no file is written");
             return Ok(Exit::Stopped);
@@ -122,17 +123,30 @@ fn tell(
     Ok(())
 }
 
-/// Loads a brief and binds it.
-pub(super) fn plan(file: &Path, library: Library, use_measured: bool) -> Result<Plan, CliError> {
-    let brief = Brief::load(file, &CATALOG, Job::Screen)?;
-    let name = brief.file.to_string();
-    Plan::new(Arc::new(library), brief, use_measured)
-        .map_err(|faults| CliError::Plan { file: name, faults })
+/// Binds a brief; what is wrong with its pool is told together with the rest.
+pub(super) fn bind(brief: Brief, library: Library, use_measured: bool) -> Result<Plan, CliError> {
+    let file = brief.file.to_string();
+    // Only a regular file can be opened twice.
+    let pool_fault = match brief.pool_path() {
+        Some(path) if path.is_file() || !path.exists() => open_pool(&brief, None).err(),
+        _ => None,
+    };
+    match (
+        Plan::new(Arc::new(library), brief, use_measured),
+        pool_fault,
+    ) {
+        (Ok(plan), None) => Ok(plan),
+        (Ok(_), Some(fault)) => Err(fault),
+        (Err(faults), pool) => Err(CliError::Plan {
+            file,
+            faults,
+            pool: pool.map(|fault| fault.to_string()),
+        }),
+    }
 }
 
-/// Opens the pool of a plan; with a flag, standard input is left when it is raised.
-pub(super) fn open_pool(plan: &Plan, stop: Option<&StopFlag>) -> Result<Pool, CliError> {
-    let brief = &plan.brief;
+/// Opens the pool of a brief; with a flag, standard input is left when it is raised.
+pub(super) fn open_pool(brief: &Brief, stop: Option<&StopFlag>) -> Result<Pool, CliError> {
     let settings = brief
         .pool
         .as_ref()
