@@ -14,8 +14,8 @@ use crate::brief::{Brief, Job};
 use crate::evaluate::{CATALOG, Library, Plan, Scratch, Verdict};
 use crate::groups::SetId;
 use crate::mixture::Slips;
-use crate::quantity::unit::{reading_text, reading_unit, si_symbol, to_table};
-use crate::quantity::{Status, number};
+use crate::quantity::Status;
+use crate::quantity::unit::{reading_text, reading_unit, table_text};
 use crate::report::{
     FigureColumn, RankedRow, RankedTable, TargetLabel, TextColumn, TextTable, outcome_text,
 };
@@ -272,13 +272,8 @@ fn show(
 /// What a line can fall at, with what is wanted: lines are counted by name, so
 /// two musts on one figure are told together.
 fn musts(plan: &Plan) -> Vec<(&str, String)> {
-    let limits = plan.labels().count() - plan.targets.len();
-    let is_must = |at: usize| at < limits || plan.targets[at - limits].target.must;
     let mut musts: Vec<(&str, String)> = Vec::new();
-    for (at, (name, wanted)) in plan.labels().enumerate() {
-        if !is_must(at) {
-            continue;
-        }
+    for (name, wanted) in plan.musts() {
         match musts.iter_mut().find(|(known, _)| *known == name) {
             Some((_, all)) => {
                 all.push_str("; ");
@@ -533,12 +528,8 @@ fn in_words(plan: &Plan, scratch: &mut Scratch, verdict: &Verdict) -> String {
             dimension,
         } => {
             let (name, wanted) = label(*at);
-            let value = number::short(to_table(*value, *dimension));
-            let unit = match si_symbol(*dimension) {
-                "" => String::new(),
-                symbol => format!(" {symbol}"),
-            };
-            format!("would not qualify: {name} is {value}{unit}, wanted {wanted}")
+            let value = table_text(*value, *dimension);
+            format!("would not qualify: {name} is {value}, wanted {wanted}")
         }
         Verdict::NotAssessable { label: at, reason } => {
             let reason = scratch.explained(plan, reason);

@@ -559,8 +559,10 @@ impl PlannedModel {
             .unifac
             .as_ref()
             .expect("a host belongs to a UNIFAC model");
-        host.ln_gamma_inf(candidate)
-            .map_err(|gap| unifac.tables().gap_error(gap).absent())
+        let value = host
+            .ln_gamma_inf(candidate)
+            .map_err(|gap| unifac.tables().gap_error(gap).absent())?;
+        plausible(value, self)
     }
 
     /// The two keys and a candidate as the model sees them; `None` for the ideal mixture.

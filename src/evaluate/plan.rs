@@ -8,7 +8,7 @@ use super::figure::{FigureKind, figure};
 use super::profile::Profiler;
 use super::structure::{StructureLimit, bind};
 use super::{Library, solution};
-use crate::brief::{Basis, Brief, SolventToFeed, Target};
+use crate::brief::{self, Basis, Brief, SolventToFeed, Target};
 use crate::groups::SetId;
 use crate::mixture::{
     ActivityModel, Component, HostAtTemperature, KeysAtTemperature, ModelStatus, Unifac,
@@ -346,6 +346,16 @@ impl Plan {
                     .into(),
             );
         }
+        let by_mass = |mixture: &brief::Mixture| {
+            let ratio = mixture.solvent_to_feed.as_ref();
+            ratio.is_some_and(|ratio| ratio.value.basis == Basis::Mass)
+        };
+        if self.mole_fractions.is_none() && self.brief.mixture.as_ref().is_some_and(by_mass) {
+            self.notes.push(
+                "solvent_to_feed counts mass and the mixture states no fractions: an even feed by mole is taken"
+                    .into(),
+            );
+        }
         for planned in &self.targets {
             let figure = &self.figures[planned.figure];
             if let FigureKind::Property(property) = figure.kind
@@ -367,7 +377,9 @@ impl Plan {
         }
     }
 
-    /// Solvent-to-feed ratio by mole for a candidate of this molar mass.
+    /// Solvent-to-feed ratio by mole for a candidate of this molar mass; a ratio
+    /// by mass is turned at the stated composition of the feed (an even one
+    /// where none is stated, with a note).
     pub(super) fn solvent_to_feed(&self, molar_mass_kg_per_mol: f64) -> Option<f64> {
         let ratio = self.brief.mixture.as_ref()?.solvent_to_feed.as_ref()?.value;
         let SolventToFeed { ratio, basis } = ratio;
@@ -390,7 +402,7 @@ impl Plan {
 }
 
 /// The models of a brief; the default where it names none.
-pub(super) fn planned_models(brief: &Brief) -> Vec<ActivityModel> {
+fn planned_models(brief: &Brief) -> Vec<ActivityModel> {
     let named = brief
         .mixture
         .as_ref()
@@ -410,7 +422,7 @@ pub(super) fn planned_models(brief: &Brief) -> Vec<ActivityModel> {
 }
 
 /// The components of a brief; what is wrong with them goes to `faults`.
-pub(super) fn find_components(
+fn find_components(
     library: &Library,
     brief: &Brief,
     faults: &mut Vec<PlanFault>,

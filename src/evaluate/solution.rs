@@ -435,10 +435,7 @@ impl Describer<'_> {
             ),
         ];
         for (quantity, unit, value, remark) in rows {
-            let remark = match (remark, unstable) {
-                (only, "") | ("", only) => only.to_owned(),
-                (one, other) => format!("{one}; {other}"),
-            };
+            let remark = joined(&[remark, unstable]);
             self.put(quantity, None, unit, value, remark);
         }
     }
@@ -519,14 +516,14 @@ impl Describer<'_> {
     fn point_remark(&self, point: &Result<Boiling, Absent>) -> String {
         match point {
             Ok(Boiling { point, liquids }) => {
-                let mut remark = self.vapor_remark(point.temperature_k, point.flags);
-                if liquids.len() > 1 {
-                    if !remark.is_empty() {
-                        remark.push_str("; ");
-                    }
-                    remark.push_str(&format!("{} liquids boil together", liquids.len()));
-                }
-                remark
+                let together = match liquids.len() {
+                    1 => String::new(),
+                    count => format!("{count} liquids boil together"),
+                };
+                joined(&[
+                    &self.vapor_remark(point.temperature_k, point.flags),
+                    &together,
+                ])
             }
             Err(_) => String::new(),
         }

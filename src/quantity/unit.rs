@@ -553,9 +553,23 @@ pub fn reading_text(value_si: f64, dimension: Dimension) -> String {
         Some(unit) => unit.from_si(value_si),
         None => value_si,
     };
+    digits_for_reading(shown, dimension)
+}
+
+/// The digits of [`reading_text`] for a value that is in its unit already.
+pub fn digits_for_reading(shown: f64, dimension: Dimension) -> String {
     match dimension {
         Dimension::Temperature => format!("{shown:.2}"),
         _ => number::for_reading(shown),
+    }
+}
+
+/// A value with its unit, as tables show it: `351.44 K`.
+pub fn table_text(value_si: f64, dimension: Dimension) -> String {
+    let shown = number::short(to_table(value_si, dimension));
+    match si_symbol(dimension) {
+        "" => shown,
+        symbol => format!("{shown} {symbol}"),
     }
 }
 

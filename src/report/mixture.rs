@@ -5,7 +5,9 @@ use serde::Serialize;
 use super::csv_line::{CsvLine, CsvRow};
 use super::json::rounded;
 use super::text_table::{TextColumn, TextTable};
+use crate::quantity::Dimension;
 use crate::quantity::number::{self, LOOK_UP_DIGITS};
+use crate::quantity::unit::digits_for_reading;
 
 /// What stands behind a value of a mixture.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
@@ -106,7 +108,9 @@ pub fn mixture_text(rows: &[MixtureRow<'_>], components: &[&str], width: Option<
                 (row.quantity, row.component, row.model) == (quantity, component, *model)
             });
             let mut cell = match row.and_then(|row| row.value) {
-                Some(value) if row.is_some_and(|row| row.unit == "K") => format!("{value:.2}"),
+                Some(value) if row.is_some_and(|row| row.unit == "K") => {
+                    digits_for_reading(value, Dimension::Temperature)
+                }
                 Some(value) => number::for_reading(value),
                 None => "–".to_owned(),
             };

@@ -6,8 +6,8 @@ use super::csv_line::{CsvLine, CsvRow};
 use super::json::rounded;
 use super::text_table::{TextColumn, TextTable};
 use crate::quantity::number::{self, LOOK_UP_DIGITS};
-use crate::quantity::unit::{reading_unit, si_symbol, to_table};
-use crate::quantity::{Dimension, Outcome, Property};
+use crate::quantity::unit::{digits_for_reading, reading_unit, si_symbol, to_table};
+use crate::quantity::{Outcome, Property};
 
 /// One property of one molecule, in the unit of tables.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -154,10 +154,7 @@ pub fn property_text<'a>(
                     true => value,
                     false => unit.from_si(value),
                 };
-                let shown = match row.property.dimension() {
-                    Dimension::Temperature => format!("{shown:.2}"),
-                    _ => number::for_reading(shown),
-                };
+                let shown = digits_for_reading(shown, row.property.dimension());
                 (shown, unit.symbol)
             }
         };

@@ -12,8 +12,8 @@ use super::identity::{Identities, Kinship, Relation, RelationLog, Relations, Wri
 use super::ledger::{Entry, Finding, Ledger, WrittenLedger};
 use super::pool::{Batch, Pool, PoolError, PoolLine};
 use crate::evaluate::{Plan, Scratch, Verdict};
-use crate::quantity::unit::si_symbol;
-use crate::quantity::{Absent, Dimension, number, unit};
+use crate::quantity::Absent;
+use crate::quantity::unit::table_text;
 use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedRow, RankedTable};
 use crate::run::{
     Counts, Event, FileError, Fingerprint, InputRecord, Listener, NewFile, Outcome, RunRecord,
@@ -352,7 +352,10 @@ impl Screening<'_> {
                     label: name.to_owned(),
                     value: Some((value, dimension)),
                     wanted: wanted.to_owned(),
-                    reason: format!("{name} is {}, wanted {wanted}", in_words(value, dimension)),
+                    reason: format!(
+                        "{name} is {}, wanted {wanted}",
+                        table_text(value, dimension)
+                    ),
                 }
             }
             Verdict::NotAssessable {
@@ -544,7 +547,7 @@ impl Screening<'_> {
             Finding::Qualified { .. } if rank.is_none() => {
                 counts.add(Outcome::BelowKept, "");
                 let reason = format!(
-                    "qualified, but {} others rank before it",
+                    "qualified, but the {} that are kept rank before it",
                     self.plan.brief.keep_best
                 );
                 let reason = joined(&reason, stereoisomer.as_deref());
@@ -618,13 +621,4 @@ fn joined(text: &str, more: Option<&str>) -> String {
 /// 128 bits of a key: two different keys of one pool practically never share them.
 fn hash(key: &str) -> u128 {
     Fingerprint::of(key.as_bytes()).value()
-}
-
-/// A value with its unit, as tables show it.
-fn in_words(value: f64, dimension: Dimension) -> String {
-    let shown = number::short(unit::to_table(value, dimension));
-    match si_symbol(dimension) {
-        "" => shown,
-        symbol => format!("{shown} {symbol}"),
-    }
 }
