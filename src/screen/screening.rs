@@ -547,7 +547,7 @@ impl Screening<'_> {
             Finding::Qualified { .. } if rank.is_none() => {
                 counts.add(Outcome::BelowKept, "");
                 let reason = format!(
-                    "qualified, but the {} that are kept rank before it",
+                    "qualified, but ranks below the {} kept",
                     self.plan.brief.keep_best
                 );
                 let reason = joined(&reason, stereoisomer.as_deref());

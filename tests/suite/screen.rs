@@ -263,10 +263,7 @@ best = 3
         reason("heavy water").contains("isotopologue of line 7"),
         "{reasons:?}"
     );
-    assert_eq!(
-        reason("octane"),
-        "qualified, but the 3 that are kept rank before it"
-    );
+    assert_eq!(reason("octane"), "qualified, but ranks below the 3 kept");
     assert!(reason("broken").starts_with("column 3:"), "{reasons:?}");
     assert_eq!(bench.not_ranked("figure")[0].1, "boiling_point");
     assert_eq!(bench.not_ranked("wanted")[0].1, "at least 315 K");
@@ -471,7 +468,7 @@ fn one_candidate_is_explained_whatever_became_of_it() {
         ("propane", "(line 3)\n  not-qualified: boiling_point is "),
         (
             "octane",
-            "(line 6)\n  below-kept: qualified, but the 1 that are kept rank before it",
+            "(line 6)\n  below-kept: qualified, but ranks below the 1 kept",
         ),
         ("broken", "(line 5)\n  refused: column 3: "),
         (
