@@ -6,6 +6,7 @@ mod cli;
 mod data;
 mod evaluate;
 mod groups;
+mod independent;
 mod mixture;
 mod pure;
 mod quantity;
