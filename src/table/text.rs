@@ -38,6 +38,19 @@ impl Table {
     ///
     /// A missing fact in the head, a duplicate column, a row of another length.
     pub fn read(file: &str, text: &str) -> Result<Self, TableError> {
+        Self::read_stating(&REQUIRED_FACTS, file, text)
+    }
+
+    /// The same for a table that need not state where it comes from in its head.
+    ///
+    /// # Errors
+    ///
+    /// As [`read`](Self::read), but for the facts.
+    pub fn read_bare(file: &str, text: &str) -> Result<Self, TableError> {
+        Self::read_stating(&[], file, text)
+    }
+
+    fn read_stating(required: &[&'static str], file: &str, text: &str) -> Result<Self, TableError> {
         let text = text.strip_prefix('\u{feff}').unwrap_or(text);
         let mut facts = Vec::new();
         let mut head_lines = 0;
@@ -52,7 +65,7 @@ impl Table {
             head_lines += 1;
             body_start += line.len();
         }
-        for fact in REQUIRED_FACTS {
+        for &fact in required {
             if !facts
                 .iter()
                 .any(|(key, value)| key == fact && !value.is_empty())
