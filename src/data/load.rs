@@ -110,10 +110,10 @@ pub(super) fn load(
 }
 
 /// The sources that the head of a table names: `key: reference`.
-struct Sources<'a>(FxHashMap<&'a str, Arc<str>>);
+pub(super) struct Sources<'a>(FxHashMap<&'a str, Arc<str>>);
 
 impl<'a> Sources<'a> {
-    fn of(table: &'a Table) -> Self {
+    pub(super) fn of(table: &'a Table) -> Self {
         Self(
             table
                 .facts("source")
@@ -124,7 +124,7 @@ impl<'a> Sources<'a> {
     }
 
     /// The reference a cell stands for; a text that is no key stands for itself.
-    fn get(&self, row: Row<'_>, column: Column) -> Result<Arc<str>, TableError> {
+    pub(super) fn get(&self, row: Row<'_>, column: Column) -> Result<Arc<str>, TableError> {
         let text = row.required_text(column)?;
         Ok(self.0.get(text).map_or_else(|| Arc::from(text), Arc::clone))
     }
@@ -865,7 +865,7 @@ impl DensityColumns {
     }
 }
 
-fn positive(row: Row<'_>, column: Column) -> Result<f64, TableError> {
+pub(super) fn positive(row: Row<'_>, column: Column) -> Result<f64, TableError> {
     let value = row.required_number(column)?;
     if value > 0.0 {
         Ok(value)

@@ -7,6 +7,8 @@
 //! formula against structure, CAS check digits, duplicates) and refuses a
 //! layer with file, row and column of everything that is wrong with it.
 //!
+//! Measured data of pairs of substances are in [`pairs`].
+//!
 //! Estimates nothing and opens no file. Entry points: [`Substances::built_in`],
 //! [`Substances::find`],
 //! [`Substances::find_structure`], [`Substance::measured`].
@@ -17,6 +19,7 @@ mod density;
 mod error;
 mod load;
 mod name;
+pub mod pairs;
 mod structure;
 mod substance;
 mod substances;

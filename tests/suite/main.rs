@@ -8,6 +8,7 @@ mod evaluate;
 mod groups;
 mod independent;
 mod mixture;
+mod pairs;
 mod pure;
 mod quantity;
 mod report;
