@@ -137,7 +137,7 @@ pub(super) struct Mixture {
     /// Activity model; may repeat [default: unifac-dortmund]
     #[arg(long = "model", value_name = "MODEL")]
     pub(super) models: Vec<String>,
-    /// Leave measured substance data out
+    /// Leave measured data of substances and pairs out
     #[arg(long)]
     pub(super) estimates_only: bool,
     #[arg(long, value_enum, default_value_t)]

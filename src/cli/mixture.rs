@@ -10,7 +10,7 @@ use super::tables::meant;
 use crate::brief::{Basis, Brief, Job, checked_fractions};
 use crate::evaluate::{
     CATALOG, DEFAULT_MODEL, Library, MixtureComponent, MixtureFigure, Profiler, StatedState,
-    describe_mixture, mole_fractions,
+    describe_mixture, measured_at_dilution, mole_fractions,
 };
 use crate::mixture::{ActivityModel, ModelStatus};
 use crate::quantity::unit;
@@ -74,11 +74,25 @@ pub(super) fn run(
     )
     .map_err(|reason| CliError::Usage(format!("the composition cannot be converted: {reason}")))?;
 
-    let figures: Vec<MixtureFigure> = question
+    let mut figures: Vec<MixtureFigure> = question
         .models
         .iter()
         .flat_map(|&model| describe_mixture(library, &components, &x, question.state, model))
         .collect();
+    let boiling_k = || {
+        let found = figures
+            .iter()
+            .find(|figure| figure.quantity == "bubble_temperature")?;
+        found.value.as_ref().ok().copied().flatten()
+    };
+    if let Some(temperature_k) = question.state.temperature_k.or_else(boiling_k) {
+        figures.extend(measured_at_dilution(
+            library,
+            &components,
+            &x,
+            temperature_k,
+        ));
+    }
     let answered = figures.iter().any(|figure| figure.value.is_ok());
     let rows: Vec<MixtureRow<'_>> = figures.iter().map(row).collect();
     let mut out = output::stdout();
@@ -108,7 +122,13 @@ pub(super) fn run(
 
 fn row(figure: &MixtureFigure) -> MixtureRow<'_> {
     let (value, status, detail) = match &figure.value {
-        Ok(value) => (*value, MixtureStatus::Calculated, figure.remark.clone()),
+        Ok(value) => {
+            let status = match figure.measured {
+                true => MixtureStatus::Measured,
+                false => MixtureStatus::Calculated,
+            };
+            (*value, status, figure.remark.clone())
+        }
         Err(reason @ Absent::NotConverged { .. }) => {
             (None, MixtureStatus::NotConverged, reason.to_string())
         }
@@ -119,7 +139,7 @@ fn row(figure: &MixtureFigure) -> MixtureRow<'_> {
         component: figure.component.map(|component| component as u32 + 1),
         value,
         unit: figure.unit,
-        model: figure.model.id(),
+        model: figure.model.map_or("measured", ActivityModel::id),
         status,
         detail,
     }

@@ -1,11 +1,13 @@
 //! One candidate evaluated by a plan.
 
 use super::component::{VaporCurve, boiling_range_k};
+use super::dilution::{MeasuredDilutions, origin};
 use super::figure::FigureKind;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
 use super::profile::{Known, Profile, Profiler, properties};
 use super::solution::with_liquid;
 use crate::chem::SmilesError;
+use crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
 use crate::mixture::{Component, Unifac, Vapor, liquid_phases, relative_volatility};
 use crate::pure::Estimates;
 use crate::quantity::{
@@ -19,11 +21,6 @@ const SOLVENT_FREE_POINTS: [f64; 11] = [0.01, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7,
 /// Positions in [`SOLVENT_FREE_POINTS`] at which the liquid is tested for a
 /// split: the test costs more than all the rest of a row.
 const SPLIT_POINTS: [usize; 3] = [1, 5, 9];
-
-/// ln γ∞ beyond which a value says more of the table than of the molecules:
-/// long alkanes in water come to +25, hydrogen bonds to −6 (from memory of the
-/// compilations in `results/2026-12-01-mixture-models`).
-const PLAUSIBLE_LN_GAMMA_INF: std::ops::RangeInclusive<f64> = -10.0..=40.0;
 
 /// What a plan makes of a candidate.
 #[derive(Clone, Debug, PartialEq)]
@@ -63,6 +60,7 @@ pub struct Scratch {
     pub figures: Vec<Outcome>,
     /// Its properties at each temperature of the plan.
     estimates: Vec<Estimates>,
+    measured: MeasuredDilutions,
     dilute: Vec<Dilute>,
 }
 
@@ -80,6 +78,7 @@ impl Scratch {
             profile: Profile::default(),
             figures: Vec::new(),
             estimates: Vec::new(),
+            measured: MeasuredDilutions::default(),
             dilute: Vec::new(),
         }
     }
@@ -107,6 +106,17 @@ struct Dilute {
     keys: [Result<f64, Absent>; 2],
 }
 
+impl Dilute {
+    /// Puts measured values of the keys in place of the model's.
+    fn prefer(&mut self, measured: &MeasuredDilutions, keys: Option<[usize; 2]>) {
+        for (value, key) in self.keys.iter_mut().zip(keys.into_iter().flatten()) {
+            if let Some(ln_gamma) = measured.of_component(key) {
+                *value = Ok(ln_gamma);
+            }
+        }
+    }
+}
+
 impl Plan {
     /// Evaluates a candidate; its figures and keys are left in `scratch`.
     ///
@@ -121,6 +131,7 @@ impl Plan {
             profile,
             figures,
             estimates,
+            measured,
             dilute,
             ..
         } = scratch;
@@ -134,11 +145,16 @@ impl Plan {
                 .iter()
                 .map(|&t| properties(&self.library, profile, known, t)),
         );
+        self.measured_dilutions(profile, measured);
         dilute.clear();
-        dilute.extend(self.models.iter().map(|model| self.dilute(model, profile)));
+        dilute.extend(self.models.iter().map(|model| {
+            let mut of_model = self.dilute(model, profile);
+            of_model.prefer(measured, self.keys);
+            of_model
+        }));
         figures.clear();
         for figure in &self.figures {
-            let outcome = self.figure(figure, profile, known, estimates, dilute);
+            let outcome = self.figure(figure, profile, known, estimates, measured, dilute);
             figures.push(outcome);
         }
         Ok(self.verdict(profile, figures))
@@ -178,6 +194,7 @@ impl Plan {
         profile: &Profile,
         known: Option<Known<'_>>,
         estimates: &[Estimates],
+        measured: &MeasuredDilutions,
         dilute: &[Dilute],
     ) -> Outcome {
         if let FigureKind::Property(property) = figure.kind {
@@ -200,6 +217,9 @@ impl Plan {
             {
                 return of_keys(key).copied();
             }
+            if let Some(ln_gamma) = measured.of_component(selected) {
+                return Ok(ln_gamma);
+            }
             if model.unifac.is_none() {
                 return Ok(0.0);
             }
@@ -211,7 +231,9 @@ impl Plan {
             FigureKind::GammaInfinityOfKey(key) => of_keys(key)?.exp(),
             FigureKind::GammaInfinityOfComponent => of_component(figure.component)?.exp(),
             FigureKind::GammaInfinityOfCandidate => {
-                if model.unifac.is_none() {
+                if let Some(ln_gamma) = measured.of_candidate() {
+                    ln_gamma.exp()
+                } else if model.unifac.is_none() {
                     1.0
                 } else {
                     let candidate = of_candidate.component.as_ref().map_err(Absent::clone)?;
@@ -228,7 +250,8 @@ impl Plan {
                 } else {
                     alpha
                 };
-                return finite(calculated(value).flagged(self.vapor_flags(temperature_k)));
+                let alpha = calculated(value).flagged(self.vapor_flags(temperature_k));
+                return finite(self.marked(alpha, figure, measured));
             }
             FigureKind::CapacityByMole => (-of_component(figure.component)?).exp(),
             FigureKind::CapacityByMass => {
@@ -255,7 +278,7 @@ impl Plan {
                 });
             }
         };
-        finite(calculated(value))
+        finite(self.marked(calculated(value), figure, measured))
     }
 
     /// Flags of figures that rest on the vapor pressures of the keys.
@@ -444,6 +467,7 @@ impl Plan {
             remarks.push_str(text);
         };
         let mut told: Vec<usize> = Vec::new();
+        let mut origins: Vec<String> = Vec::new();
         for target in &self.targets {
             if told.contains(&target.figure) {
                 continue;
@@ -462,6 +486,14 @@ impl Plan {
                     if found.status == Status::Measured {
                         add(&format!("{name} measured"));
                     }
+                    let planned = &self.figures[target.figure];
+                    for (of, value) in self.rests_on(planned, &scratch.measured) {
+                        let told = value.map(|value| origin(of, value));
+                        origins.extend(told.filter(|told| !origins.contains(told)));
+                    }
+                    if found.status == Status::Estimated && found.source.is_some() {
+                        add(&format!("{name} mixes measured and estimated values"));
+                    }
                     for flag in found
                         .flags
                         .iter()
@@ -471,6 +503,9 @@ impl Plan {
                     }
                 }
             }
+        }
+        for origin in &origins {
+            add(origin);
         }
         if let Some(direction) = self.direction(&scratch.figures) {
             add(&direction);
@@ -520,7 +555,7 @@ impl Plan {
 
 /// A ln γ∞ that can be one, or the reason why it is not taken for one.
 fn plausible(ln_gamma_inf: f64, model: &PlannedModel) -> Result<f64, Absent> {
-    if PLAUSIBLE_LN_GAMMA_INF.contains(&ln_gamma_inf) {
+    if PLAUSIBLE_LN_GAMMA_INFINITY.contains(&ln_gamma_inf) {
         Ok(ln_gamma_inf)
     } else {
         Err(Absent::OutsideDomain {

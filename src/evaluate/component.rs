@@ -6,6 +6,7 @@ use super::Library;
 use super::error::UnknownMolecule;
 use super::profile::{Known, Profile, Profiler, properties};
 use crate::data::VaporPressure;
+use crate::data::pairs::PairIdentity;
 use crate::pure::corresponding_states::{Constants, VaporPressureCurve};
 use crate::quantity::{Absent, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
 
@@ -119,6 +120,8 @@ pub struct MixtureComponent {
     pub profile: Profile,
     /// Position of the measured substance, where there is one.
     known: Option<(usize, bool)>,
+    /// What it is called in the pair tables; empty where measured data are left out.
+    pub(super) in_pairs: PairIdentity,
     /// Vapor pressure.
     pub vapor: VaporCurve,
 }
@@ -138,6 +141,10 @@ impl MixtureComponent {
     ) -> Result<Self, UnknownMolecule> {
         let (name, profile) = library.find(profiler, text)?;
         let known = library.known(&profile.keys).filter(|_| use_measured);
+        let in_pairs = match use_measured {
+            true => library.pairs().identify(&profile.keys),
+            false => PairIdentity::default(),
+        };
         let name = known.filter(|known| known.same_identity).map_or_else(
             || name.unwrap_or_else(|| text.trim().into()),
             |known| Arc::clone(known.substance.name()),
@@ -153,6 +160,7 @@ impl MixtureComponent {
             name,
             profile,
             known,
+            in_pairs,
             vapor,
         })
     }

@@ -7,6 +7,7 @@ use thiserror::Error;
 use super::error::UnknownMolecule;
 use super::profile::{Known, Profile, Profiler};
 use crate::chem::Keys;
+use crate::data::pairs::{PairTables, Pairs};
 use crate::data::{DataError, Substance, Substances, TableText, Tables};
 use crate::groups::{GroupSet, GroupsError, SetId};
 use crate::mixture::{ActivityModel, Slips, TableFile, Unifac, UnifacOverlay};
@@ -40,7 +41,7 @@ pub struct UserTable {
 }
 
 /// The tables a user may lay over the built-in ones.
-pub const USER_TABLES: [&str; 14] = [
+pub const USER_TABLES: [&str; 17] = [
     "unifac/main_groups.csv",
     "unifac/subgroups.csv",
     "unifac/interactions.csv",
@@ -55,6 +56,9 @@ pub const USER_TABLES: [&str; 14] = [
     "substances/hansen.csv",
     "substances/vapor_pressure.csv",
     "substances/density.csv",
+    "pairs/gamma_infinity.csv",
+    "pairs/excess_volume.csv",
+    "pairs/activity_parameters.csv",
 ];
 
 /// Group sets, activity models, pure-component methods and measured data.
@@ -67,6 +71,8 @@ pub struct Library {
     unifac: [OnceLock<Unifac>; UNIFAC_MODELS.len()],
     methods: OnceLock<PureMethods>,
     substances: OnceLock<Substances>,
+    /// Of the user alone: none are built in.
+    pairs: Pairs,
     user: Vec<UserTable>,
     slips: Slips,
     /// That a set leaves atoms out, without saying which: finding the words takes
@@ -92,6 +98,7 @@ impl Library {
             unifac: [const { OnceLock::new() }; UNIFAC_MODELS.len()],
             methods: OnceLock::new(),
             substances: OnceLock::new(),
+            pairs: Pairs::default(),
             user: Vec::new(),
             slips,
             not_covered: SetId::ALL.map(|set| Absent::NotCovered {
@@ -107,7 +114,7 @@ impl Library {
     ///
     /// A table that does not pass its checks, with file, row and column.
     pub fn with_user_tables(slips: Slips, user: Vec<UserTable>) -> Result<Self, LibraryError> {
-        let library = Self {
+        let mut library = Self {
             user,
             ..Self::built_in(slips)
         };
@@ -118,6 +125,7 @@ impl Library {
             let _ = library.unifac[at].set(library.read_unifac(model)?);
         }
         let _ = library.substances.set(library.read_substances()?);
+        library.pairs = library.read_pairs()?;
         Ok(library)
     }
 
@@ -159,15 +167,27 @@ impl Library {
             .map_err(LibraryError::from)
     }
 
+    /// The user's table of measured data at a place.
+    fn user_text(&self, place: &str) -> Option<TableText<'_>> {
+        self.user_table(place).map(|table| TableText {
+            file: &table.file,
+            text: &table.text,
+        })
+    }
+
+    /// Pair tables name substances, so those of the user have to be sound before.
+    fn read_pairs(&self) -> Result<Pairs, LibraryError> {
+        let tables = PairTables {
+            gamma_infinity: self.user_text("pairs/gamma_infinity.csv"),
+            excess_volume: self.user_text("pairs/excess_volume.csv"),
+            activity_parameters: self.user_text("pairs/activity_parameters.csv"),
+        };
+        Ok(Pairs::read(self.substances(), &tables)?)
+    }
+
     fn read_substances(&self) -> Result<Substances, LibraryError> {
         let built_in = Substances::built_in()?;
-        let over = |name: &str| {
-            self.user_table(&format!("substances/{name}.csv"))
-                .map(|table| TableText {
-                    file: &table.file,
-                    text: &table.text,
-                })
-        };
+        let over = |name: &str| self.user_text(&format!("substances/{name}.csv"));
         let tables = Tables {
             substances: over("substances"),
             measured: over("measured"),
@@ -207,6 +227,11 @@ impl Library {
     pub fn substances(&self) -> &Substances {
         self.substances
             .get_or_init(|| self.read_substances().expect(SOUND))
+    }
+
+    /// Measured data of pairs.
+    pub fn pairs(&self) -> &Pairs {
+        &self.pairs
     }
 
     /// How suspected slips are treated.

@@ -7,6 +7,7 @@
 
 mod candidate;
 mod component;
+mod dilution;
 mod error;
 mod figure;
 mod library;
@@ -22,4 +23,6 @@ pub use figure::{CATALOG, FIGURES, FigureEntry, FigureKind, figure};
 pub use library::{Library, LibraryError, USER_TABLES, UserTable};
 pub use plan::{DEFAULT_MODEL, Plan, PlannedFigure, PlannedTarget};
 pub use profile::{Coverages, Known, Profile, Profiler, properties};
-pub use solution::{MixtureFigure, StatedState, describe_mixture, mole_fractions};
+pub use solution::{
+    MixtureFigure, StatedState, describe_mixture, measured_at_dilution, mole_fractions,
+};

@@ -4,6 +4,7 @@ use super::Library;
 use super::component::{MixtureComponent, boiling_range_k};
 use super::profile::Profile;
 use crate::brief::Basis;
+use crate::data::pairs::PairValue;
 use crate::groups::SetId;
 use crate::mixture::{
     ActivityModel, Azeotrope, AzeotropeKind, Boiling, Component, Condition, Excess, Extremum,
@@ -11,7 +12,7 @@ use crate::mixture::{
     VolumeFractions, azeotropes, boiling_pressure, boiling_temperature, bubble_temperature,
     liquid_phases,
 };
-use crate::quantity::{Absent, Flag, Flags};
+use crate::quantity::{Absent, Flag, Flags, number};
 
 /// A molecule as a UNIFAC model sees it.
 pub(super) fn record(
@@ -231,8 +232,10 @@ pub struct MixtureFigure {
     pub component: Option<usize>,
     /// SI unit; empty for a bare number.
     pub unit: &'static str,
-    /// The model.
-    pub model: ActivityModel,
+    /// The model; `None` for a measured value that stands beside the models.
+    pub model: Option<ActivityModel>,
+    /// Whether the value is taken from measurements.
+    pub measured: bool,
     /// The value, nothing where nothing is the answer (no azeotrope), or why there is none.
     pub value: Result<Option<f64>, Absent>,
     /// What the reader has to know.
@@ -259,6 +262,45 @@ pub fn describe_mixture(
     };
     describer.all(state);
     describer.figures
+}
+
+/// What is measured of components at infinite dilution, to stand beside the
+/// models: where one component is the whole mixture, γ∞ of the others in it.
+pub fn measured_at_dilution(
+    library: &Library,
+    components: &[MixtureComponent],
+    x: &[f64],
+    temperature_k: f64,
+) -> Vec<MixtureFigure> {
+    let Some(solvent) = x.iter().position(|&x| x == 1.0) else {
+        return Vec::new();
+    };
+    let solvent = &components[solvent].in_pairs;
+    let found = components.iter().enumerate().filter_map(|(at, solute)| {
+        let pairs = library.pairs();
+        let found = pairs.gamma_infinity(&solute.in_pairs, solvent, temperature_k)?;
+        Some((at, found))
+    });
+    found
+        .flat_map(|(component, found)| {
+            let row = |quantity, of: fn(f64) -> f64| MixtureFigure {
+                quantity,
+                component: Some(component),
+                unit: "",
+                model: None,
+                measured: true,
+                value: found
+                    .as_ref()
+                    .map(|found| Some(of(found.value)))
+                    .map_err(Absent::clone),
+                remark: found.as_ref().map_or(String::new(), ToString::to_string),
+            };
+            [
+                row("ln_activity_coefficient", |ln_gamma| ln_gamma),
+                row("activity_coefficient", f64::exp),
+            ]
+        })
+        .collect()
 }
 
 /// Remarks one after the other, without the empty ones.
@@ -355,15 +397,14 @@ impl Describer<'_> {
         };
         // Rounding of terms that cancel, as in a pure component.
         let value = value.map(|value| value.map(|v| if v.abs() < 1e-11 { 0.0 } else { v }));
-        let model = self.model;
-        let remark = remark.into();
         self.figures.push(MixtureFigure {
             quantity,
             component,
             unit,
-            model,
+            model: Some(self.model),
+            measured: false,
             value,
-            remark,
+            remark: remark.into(),
         });
     }
 
@@ -458,20 +499,55 @@ impl Describer<'_> {
                     Ok((sum + volume, all.union(flags)))
                 })
         });
+        let excess = match temperature_k {
+            Ok(temperature_k) => self.excess_volume(*temperature_k),
+            Err(_) => None,
+        };
+        let mut measured = false;
         let (volume, density, remark) = match found {
-            Ok((volume, flags)) => {
+            Ok((ideal, flags)) => {
                 let masses = molar_masses(self.components);
                 let mass: f64 = self.x.iter().zip(&masses).map(|(x, m)| x * m).sum();
-                let mut remark = String::from("volumes of the pure liquids add up");
-                if !flags.is_empty() {
-                    remark.push_str(&format!("; {flags}"));
-                }
+                let (volume, how) = match excess {
+                    Some(Ok(excess)) => {
+                        measured = !flags.contains(Flag::RestsOnEstimate);
+                        let shown = number::text(1e6 * excess.value, 4);
+                        let how =
+                            format!("with the excess volume measured {excess}: {shown} cm3/mol");
+                        (ideal + excess.value, how)
+                    }
+                    Some(Err(reason)) => (
+                        ideal,
+                        format!("volumes of the pure liquids add up; {reason}"),
+                    ),
+                    None => (ideal, String::from("volumes of the pure liquids add up")),
+                };
+                let remark = joined(&[&how, &flags.to_string()]);
                 (Ok(Some(volume)), Ok(Some(mass / volume)), remark)
             }
             Err(reason) => (Err(reason.clone()), Err(reason), String::new()),
         };
         self.put("molar_volume", None, "m3/mol", volume, remark.clone());
         self.put("density", None, "kg/m3", density, remark);
+        let of_volume = self.figures.iter_mut().rev().take(2);
+        of_volume.for_each(|figure| figure.measured = measured);
+    }
+
+    /// Measured excess volume, where two components are present and it is known.
+    fn excess_volume(&self, temperature_k: f64) -> Option<Result<PairValue, Absent>> {
+        let mut present = self
+            .components
+            .iter()
+            .zip(self.x)
+            .filter(|(_, x)| **x > 0.0);
+        let (Some((first, x1)), Some((second, _)), None) =
+            (present.next(), present.next(), present.next())
+        else {
+            return None;
+        };
+        self.library
+            .pairs()
+            .excess_volume(&first.in_pairs, &second.in_pairs, *x1, temperature_k)
     }
 
     fn bubble(&mut self, state: StatedState, at_pressure: Option<Result<Boiling, Absent>>) {
