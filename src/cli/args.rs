@@ -211,6 +211,13 @@ pub(super) enum TablesWhat {
         /// Name, synonym, CAS number or SMILES of one
         name: Option<String>,
     },
+    /// Measured data of pairs from --tables: all, of one substance, or of two in full
+    Pairs {
+        /// Name, synonym, CAS number or SMILES of one
+        first: Option<String>,
+        /// The same of the other
+        second: Option<String>,
+    },
     /// The pattern language
     Patterns,
     /// Suspected slips of circulated tables and what is used instead

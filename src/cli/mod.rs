@@ -11,6 +11,7 @@ mod exit;
 mod mixture;
 mod molecules;
 mod output;
+mod pair_tables;
 mod progress;
 mod properties;
 mod screen;

@@ -5,7 +5,7 @@ use std::io::Write;
 use super::args::{self, TablesWhat};
 use super::error::CliError;
 use super::exit::Exit;
-use super::output;
+use super::{output, pair_tables};
 use crate::evaluate::{FIGURES, Library};
 use crate::groups::SetId;
 use crate::mixture::{ActivityModel, Interaction, ModelStatus, RESERVED_MODELS, Unifac};
@@ -27,6 +27,14 @@ pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, Cli
         Some(TablesWhat::Methods) => methods(),
         Some(TablesWhat::Figures) => figures(),
         Some(TablesWhat::Substances { name }) => substances(library, name.as_deref())?,
+        Some(TablesWhat::Pairs { first, second }) => {
+            let asked: Vec<&str> = [first, second]
+                .into_iter()
+                .flatten()
+                .map(String::as_str)
+                .collect();
+            pair_tables::text(library, &asked)?
+        }
         Some(TablesWhat::Patterns) => include_str!("../groups/pattern/reference.md").to_owned(),
         Some(TablesWhat::Slips) => slips(library),
     };
@@ -132,14 +140,15 @@ fn overview(library: &Library) -> String {
         }
     }
     text.push_str(&format!(
-        "\nMeasured substances: {}\nPure-component methods: {}\nFigures for targets: {}\n",
+        "\nMeasured substances: {}\nMeasured pairs: {}\nPure-component methods: {}\nFigures for targets: {}\n",
         library.substances().len(),
+        library.pairs().iter().count(),
         METHODS.len(),
         FIGURES.len()
     ));
     text.push_str(
         "\nMore: groupsmith tables groups SET [NUMBER], pair MODEL FIRST SECOND, coverage MODEL,\n\
-         methods, figures, substances [NAME], patterns, slips\n",
+         methods, figures, substances [NAME], pairs [FIRST [SECOND]], patterns, slips\n",
     );
     text
 }

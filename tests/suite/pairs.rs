@@ -618,3 +618,53 @@ fn a_measured_gamma_changes_the_rank() {
         without[..2]
     );
 }
+
+#[test]
+fn pair_tables_are_shown() {
+    let gamma = format!("{GAMMA}ethanol,water,3.76,298.15,0.05,A. Author\n");
+    let volume = format!("{VOLUME}ethanol,water,-4.2,1.4,,298.15,0.1,0.9,B. Author\n");
+    let activity = format!(
+        "{ACTIVITY}ethanol,water,nrtl,g12-g22,K,-50,700,a+bT,0.1,-0.2,0.3,,,,,,,300,360,C. Author\n\
+         acetone,water,van-laar,log10,-,0.9,0.7,,,,,,,,,,,320,350,C. Author\n"
+    );
+    let (_bench, folder) = own(&[
+        ("gamma_infinity", &gamma),
+        ("excess_volume", &volume),
+        ("activity_parameters", &activity),
+    ]);
+    let shown = |names: &[&str]| {
+        let said = say(&[&["--tables", &folder, "tables", "pairs"][..], names].concat());
+        assert_eq!(said.code, 0, "{}", said.err);
+        said.out
+    };
+    let all = [&[][..], &["acetone"][..], &["O", "64-17-5"][..]].map(shown);
+    insta::assert_snapshot!(all.join("\n"));
+    assert!(shown(&["toluene"]).starts_with("no pair data of toluene"));
+    let said = say(&["tables", "pairs", "ethanoll"]);
+    assert!(
+        said.code == 2 && said.err.contains("near it: `ethanol`"),
+        "{said:?}"
+    );
+}
+
+/// A pair may name a substance that only the user's own list knows.
+#[test]
+fn a_substance_of_the_user_may_stand_in_a_pair() {
+    let gamma = format!("{GAMMA}house blend base,water,3.76,298.15,,A. Author\n");
+    let (bench, folder) = own(&[("gamma_infinity", &gamma)]);
+    let said = say(&["--tables", &folder, "tables", "pairs"]);
+    assert!(
+        said.code == 2 && said.err.contains("is neither a known name nor a SMILES"),
+        "{said:?}"
+    );
+    bench.write(
+        "own/substances/substances.csv",
+        "# title: t\n# source: s\n# transcribed: d\n# checked: c\nname,synonyms,cas,smiles,formula\n\
+         -,-,-,-,-\nhouse blend base,,,CCCCOCCOCCOCCC,\n",
+    );
+    let said = say(&["--tables", &folder, "tables", "pairs"]);
+    assert!(
+        said.code == 0 && said.out.contains("house blend base"),
+        "{said:?}"
+    );
+}
