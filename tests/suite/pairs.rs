@@ -68,7 +68,7 @@ fn substances_are_named_by_name_number_or_smiles() {
     assert!((found.value - 3.9f64.ln()).abs() < 1e-12);
     assert_eq!(
         found.to_string(),
-        "at 298.15 K (ln gamma to 0.05); A. Author"
+        "at 298.15 K, ln gamma to 0.05 (A. Author)"
     );
     assert!((at(316.0).unwrap().value - 4.1f64.ln()).abs() < 1e-12);
     assert_eq!(
@@ -93,7 +93,7 @@ fn between_temperatures_ln_gamma_is_linear_in_the_inverse() {
         .unwrap()
         .unwrap();
     assert!((found.value - 15f64.ln() / 2.0).abs() < 1e-12);
-    assert_eq!(found.to_string(), "between 300 K and 320 K; a; b");
+    assert_eq!(found.to_string(), "between 300 K and 320 K (a; b)");
 }
 
 #[test]
@@ -429,7 +429,7 @@ fn a_measured_excess_volume_gives_the_density_of_ethanol_and_water() {
         assert!(off.abs() < 2e-3, "{ethanol}: {off}");
         assert_eq!(status, "measured");
         assert!(
-            detail.contains("excess volume measured at 298.15 K; US National"),
+            detail.contains("excess volume measured at 298.15 K (US National"),
             "{detail}"
         );
         let (off, status, detail) = of(&[]);
@@ -502,7 +502,7 @@ fn an_excess_volume_alone_measures_no_volume() {
     assert_eq!(status, "calculated");
     assert_eq!(
         detail,
-        "with the excess volume measured at 298.15 K; invented: -1 cm3/mol; rests on other estimates"
+        "with the excess volume measured at 298.15 K (invented): -1 cm3/mol; rests on other estimates"
     );
     let (status, detail) = of(&["--estimates-only"]);
     assert_eq!(status, "calculated");
@@ -544,7 +544,7 @@ fn a_measured_gamma_stands_beside_the_models_at_infinite_dilution() {
             "",
             "measured",
             "measured",
-            "at 298.15 K; A. Author"
+            "at 298.15 K (A. Author)"
         ]
     );
     assert_eq!(row(&rows, "activity_coefficient", "ideal")[2], "1");
@@ -595,15 +595,15 @@ fn a_measured_gamma_changes_the_rank() {
     assert_eq!([&*name, &*selectivity, &*ideal], ["hexanol", "60", "60"]);
     assert_eq!(
         remarks,
-        "selectivity_infinite_dilution measured; gamma infinity of acetone measured at 328.5 K; invented; \
-         gamma infinity of methanol measured between 320 K and 340 K; invented; invented too"
+        "selectivity_infinite_dilution measured; gamma infinity of acetone measured at 328.5 K (invented); \
+         gamma infinity of methanol measured between 320 K and 340 K (invented; invented too)"
     );
     let [name, _, ideal, remarks] = screened(Some(&one), &[]);
     assert_eq!([&*name, &*ideal], ["hexanol", "30"]);
     assert_eq!(
         remarks,
         "selectivity_infinite_dilution mixes measured and estimated values; \
-         gamma infinity of acetone measured at 328.5 K; invented"
+         gamma infinity of acetone measured at 328.5 K (invented)"
     );
     // Too far from the temperature: the model's value, and it is said.
     let elsewhere = format!("{GAMMA}acetone,OCCO,30,298.15,,invented\n");

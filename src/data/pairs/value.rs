@@ -36,7 +36,7 @@ pub struct PairValue {
     pub source: Arc<str>,
 }
 
-/// Temperature and source in words: `at 298.15 K; A. Author 1999`.
+/// Temperature and source in words: `at 298.15 K (A. Author 1999)`.
 impl fmt::Display for PairValue {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         let (low, high) = self.temperatures_k;
@@ -46,13 +46,12 @@ impl fmt::Display for PairValue {
             write!(f, "between {low} K and {high} K")?;
         }
         if let Some(uncertainty) = self.uncertainty {
-            write!(f, " (ln gamma to {uncertainty})")?;
+            write!(f, ", ln gamma to {uncertainty}")?;
         }
-        write!(f, "; {}", self.source)?;
         if !self.flags.is_empty() {
-            write!(f, "; {}", self.flags)?;
+            write!(f, ", {}", self.flags)?;
         }
-        Ok(())
+        write!(f, " ({})", self.source)
     }
 }
 
