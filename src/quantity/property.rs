@@ -50,11 +50,15 @@ pub enum Property {
     HansenHydrogenBonding,
     /// log10 of the octanol–water partition coefficient.
     LogPOctanolWater,
+    /// Molar heat capacity of the liquid less that of the solid at the melting point.
+    HeatCapacityChangeOfFusion,
+    /// Evaporation rate of a film against that of n-butyl acetate, which is 1.
+    RelativeEvaporationRate,
 }
 
 impl Property {
     /// How many properties there are; the length of [`Property::ALL`].
-    pub const COUNT: usize = 21;
+    pub const COUNT: usize = 23;
 
     /// Every property, in display order; `ALL[p as usize] == p`.
     pub const ALL: [Self; Self::COUNT] = [
@@ -79,6 +83,8 @@ impl Property {
         Self::HansenPolar,
         Self::HansenHydrogenBonding,
         Self::LogPOctanolWater,
+        Self::HeatCapacityChangeOfFusion,
+        Self::RelativeEvaporationRate,
     ];
 
     /// The name used in briefs, CSV and JSON.
@@ -105,6 +111,8 @@ impl Property {
             Self::HansenPolar => "hansen_polar",
             Self::HansenHydrogenBonding => "hansen_hydrogen_bonding",
             Self::LogPOctanolWater => "log_p_octanol_water",
+            Self::HeatCapacityChangeOfFusion => "heat_capacity_change_of_fusion",
+            Self::RelativeEvaporationRate => "relative_evaporation_rate",
         }
     }
 
@@ -123,13 +131,17 @@ impl Property {
             | Self::FlashPoint => Dimension::Temperature,
             Self::CriticalPressure | Self::VaporPressure => Dimension::Pressure,
             Self::CriticalVolume => Dimension::MolarVolume,
-            Self::AcentricFactor | Self::LogPOctanolWater => Dimension::Number,
+            Self::AcentricFactor | Self::LogPOctanolWater | Self::RelativeEvaporationRate => {
+                Dimension::Number
+            }
             Self::LiquidDensity => Dimension::Density,
             Self::EnthalpyOfVaporization
             | Self::EnthalpyOfFusion
             | Self::IdealGasEnthalpyOfFormation
             | Self::IdealGasGibbsEnergyOfFormation => Dimension::MolarEnergy,
-            Self::IdealGasHeatCapacity => Dimension::MolarHeatCapacity,
+            Self::IdealGasHeatCapacity | Self::HeatCapacityChangeOfFusion => {
+                Dimension::MolarHeatCapacity
+            }
             Self::LiquidViscosity => Dimension::Viscosity,
             Self::SurfaceTension => Dimension::SurfaceTension,
             Self::HansenDispersion | Self::HansenPolar | Self::HansenHydrogenBonding => {
