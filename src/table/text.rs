@@ -4,6 +4,27 @@ use super::TableError;
 
 const REQUIRED_FACTS: [&str; 4] = ["title", "source", "transcribed", "checked"];
 
+/// Who writes a table, which decides how much of its form is asked for.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Author {
+    Program,
+    User,
+}
+
+/// The text of a line of the head, `None` past its end.
+///
+/// Spreadsheets put quotes around a line that holds a comma and add a comma for every empty cell.
+fn head_line(line: &str, author: Author) -> Option<&str> {
+    match (line.strip_prefix('#'), author) {
+        (comment, Author::Program) => comment,
+        (Some(comment), Author::User) => Some(comment.trim_end().trim_end_matches(',')),
+        (None, Author::User) => {
+            let comment = line.strip_prefix("\"#")?.trim_end().trim_end_matches(',');
+            Some(comment.strip_suffix('"').unwrap_or(comment))
+        }
+    }
+}
+
 /// A table file, split into head, columns and rows; nothing is interpreted yet.
 #[derive(Clone, Debug)]
 pub struct Table {
@@ -38,25 +59,30 @@ impl Table {
     ///
     /// A missing fact in the head, a duplicate column, a row of another length.
     pub fn read(file: &str, text: &str) -> Result<Self, TableError> {
-        Self::read_stating(&REQUIRED_FACTS, file, text)
+        Self::read_as(file, text, Author::Program)
     }
 
-    /// The same for a table that need not state where it comes from in its head.
+    /// The same for a table that a user keeps, perhaps in a spreadsheet: the
+    /// head may lack facts or be missing, and rows of blank cells are passed over.
     ///
     /// # Errors
     ///
-    /// As [`read`](Self::read), but for the facts.
-    pub fn read_bare(file: &str, text: &str) -> Result<Self, TableError> {
-        Self::read_stating(&[], file, text)
+    /// Those of [`read`](Self::read), without the missing facts; columns parted by
+    /// anything but commas; no row of units.
+    pub fn read_user(file: &str, text: &str) -> Result<Self, TableError> {
+        Self::read_as(file, text, Author::User)
     }
 
-    fn read_stating(required: &[&'static str], file: &str, text: &str) -> Result<Self, TableError> {
+    fn read_as(file: &str, text: &str, author: Author) -> Result<Self, TableError> {
         let text = text.strip_prefix('\u{feff}').unwrap_or(text);
+        // the CSV reader counts the two characters of a line end to different lines
+        let unix = text.contains('\r').then(|| text.replace("\r\n", "\n"));
+        let text = unix.as_deref().unwrap_or(text);
         let mut facts = Vec::new();
         let mut head_lines = 0;
         let mut body_start = 0;
         for line in text.split_inclusive('\n') {
-            let Some(comment) = line.strip_prefix('#') else {
+            let Some(comment) = head_line(line, author) else {
                 break;
             };
             if let Some((key, value)) = comment.split_once(':') {
@@ -65,6 +91,10 @@ impl Table {
             head_lines += 1;
             body_start += line.len();
         }
+        let required: &[&'static str] = match author {
+            Author::Program => &REQUIRED_FACTS,
+            Author::User => &[],
+        };
         for &fact in required {
             if !facts
                 .iter()
@@ -104,9 +134,27 @@ impl Table {
             }),
         };
         let (heads_line, columns) = heads("column names")?;
+        if let [one] = columns.as_slice()
+            && one.contains([';', '\t'])
+        {
+            return Err(TableError::Column {
+                file: file.to_owned(),
+                line: heads_line,
+                column: one.clone(),
+                fault: "is several: columns are parted by commas, not by `;` or tabs, and numbers have a decimal point",
+            });
+        }
         let (_, units) = heads("units")?;
+        if author == Author::User && !matches!(units[0].as_str(), "-" | "") {
+            return Err(TableError::Column {
+                file: file.to_owned(),
+                line: heads_line,
+                column: columns[0].clone(),
+                fault: "has data right below it, where the row of units belongs (`-` under a column without one)",
+            });
+        }
         for (position, column) in columns.iter().enumerate() {
-            if columns[..position].contains(column) {
+            if !column.is_empty() && columns[..position].contains(column) {
                 return Err(TableError::Column {
                     file: file.to_owned(),
                     line: heads_line,
@@ -126,6 +174,9 @@ impl Table {
             lines: Vec::new(),
         };
         while let Some(line) = next(&mut record)? {
+            if author == Author::User && record.iter().all(str::is_empty) {
+                continue;
+            }
             table.lines.push(line);
             for cell in &record {
                 table.text.push_str(cell);
@@ -194,13 +245,37 @@ impl Table {
         if self.units[column.0] == unit {
             Ok(column)
         } else {
-            Err(TableError::Unit {
+            Err(self.unit_fault(column, unit))
+        }
+    }
+
+    /// Whether every column is one of those known, so that none is overlooked
+    /// because its name is misspelled.
+    ///
+    /// # Errors
+    ///
+    /// [`TableError::Column`] for the first that is not.
+    pub fn knows_only(&self, known: &[&str]) -> Result<(), TableError> {
+        let other = |column: &&String| !column.is_empty() && !known.contains(&column.as_str());
+        match self.columns.iter().find(other) {
+            None => Ok(()),
+            Some(column) => Err(TableError::Column {
                 file: self.file.clone(),
-                line: self.heads_line + 1,
-                column: name.to_owned(),
-                found: self.units[column.0].clone(),
-                expected: unit.to_owned(),
-            })
+                line: self.heads_line,
+                column: column.clone(),
+                fault: "is none of this table (remarks go into a column `notes`)",
+            }),
+        }
+    }
+
+    /// A fault of the unit of a column.
+    pub fn unit_fault(&self, column: Column, expected: &str) -> TableError {
+        TableError::Unit {
+            file: self.file.clone(),
+            line: self.heads_line + 1,
+            column: self.columns[column.0].clone(),
+            found: self.units[column.0].clone(),
+            expected: expected.to_owned(),
         }
     }
 
@@ -327,6 +402,30 @@ mod tests {
                 fact: "source"
             }
         );
+    }
+
+    #[test]
+    fn a_user_s_table_may_come_from_a_spreadsheet() {
+        let text = "\u{feff}\"# source: k: A, B\",\r\nname,r\r\n-,m\r\na,1\r\n,\r\nb,2\r\n";
+        let table = Table::read_user("a.csv", text).unwrap();
+        assert_eq!(table.fact("source"), Some("k: A, B"));
+        let lines: Vec<_> = table.rows().map(Row::line).collect();
+        assert_eq!(lines, [4, 6]);
+        for (text, wanted) in [
+            (
+                "name;r\n-;m\na;1,5\n",
+                "a.csv:1: column `name;r` is several: columns are parted by commas, not by `;` or tabs, and numbers have a decimal point",
+            ),
+            (
+                "name,r\na,1\n",
+                "a.csv:1: column `name` has data right below it, where the row of units belongs (`-` under a column without one)",
+            ),
+        ] {
+            let error = Table::read_user("a.csv", text).unwrap_err();
+            assert_eq!(error.to_string(), wanted);
+        }
+        let error = Table::read_user("a.csv", "name,t\n-,-\n").unwrap();
+        assert!(error.knows_only(&["name"]).is_err());
     }
 
     #[test]

@@ -94,7 +94,7 @@ impl Loader<'_> {
         let Some(TableText { file, text }) = text else {
             return;
         };
-        if let Err(fault) = Table::read_bare(file, text).and_then(|table| rows(self, &table)) {
+        if let Err(fault) = Table::read_user(file, text).and_then(|table| rows(self, &table)) {
             self.faults.push(fault);
         }
     }
