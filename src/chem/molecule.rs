@@ -158,6 +158,23 @@ impl Molecule {
             .any(|atom| atom.isotope.is_some() || atom.deuterium > 0 || atom.tritium > 0)
     }
 
+    /// Whether it has a carboxyl group, COOH: the vapor of such a substance associates.
+    pub fn has_carboxyl(&self) -> bool {
+        (0..self.atoms().len() as u32).any(|carbon| {
+            let oxygen = |order: BondOrder, with_hydrogen: bool| {
+                self.neighbors(carbon).iter().any(|bond| {
+                    let atom = &self.atoms()[bond.atom as usize];
+                    bond.order == order
+                        && atom.element == Element::O
+                        && (atom.hydrogens > 0) == with_hydrogen
+                })
+            };
+            self.atoms()[carbon as usize].element == Element::C
+                && oxygen(BondOrder::Double, false)
+                && oxygen(BondOrder::Single, true)
+        })
+    }
+
     /// Element counts, hydrogens included.
     pub fn composition(&self) -> Composition {
         let mut composition = Composition::default();

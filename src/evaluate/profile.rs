@@ -3,7 +3,7 @@
 use smallvec::SmallVec;
 
 use super::Library;
-use crate::chem::{BondOrder, Canonicalizer, Element, Keys, Molecule, Reader, SmilesError};
+use crate::chem::{Canonicalizer, Keys, Molecule, Reader, SmilesError};
 use crate::data::Substance;
 use crate::groups::{Breakdown, Breaker, Coverage, GroupCounts, SetId};
 use crate::pure::{Estimates, Given, StructureFacts, estimate_all};
@@ -115,7 +115,7 @@ impl Profiler {
         }
         profile.facts =
             StructureFacts::new(molecule.composition(), molecule.molar_mass_kg_per_mol());
-        profile.associates = has_carboxyl(molecule);
+        profile.associates = molecule.has_carboxyl();
         Ok(())
     }
 
@@ -144,23 +144,6 @@ impl Profiler {
         }
         absent.clone()
     }
-}
-
-fn has_carboxyl(molecule: &Molecule) -> bool {
-    (0..molecule.atoms().len() as u32).any(|carbon| {
-        let around = molecule.neighbors(carbon);
-        let oxygen = |order: BondOrder, with_hydrogen: bool| {
-            around.iter().any(|bond| {
-                let atom = &molecule.atoms()[bond.atom as usize];
-                bond.order == order
-                    && atom.element == Element::O
-                    && (atom.hydrogens > 0) == with_hydrogen
-            })
-        };
-        molecule.atoms()[carbon as usize].element == Element::C
-            && oxygen(BondOrder::Double, false)
-            && oxygen(BondOrder::Single, true)
-    })
 }
 
 /// Measured data of a molecule.
