@@ -64,3 +64,16 @@ pub enum TableError {
         fault: String,
     },
 }
+
+impl TableError {
+    /// File name and line, from 1; line 0 where the whole head is meant.
+    pub fn place(&self) -> (&str, u64) {
+        match self {
+            Self::Csv { file, line, .. }
+            | Self::Column { file, line, .. }
+            | Self::Unit { file, line, .. }
+            | Self::Cell { file, line, .. } => (file, *line),
+            Self::MissingFact { file, .. } => (file, 0),
+        }
+    }
+}
