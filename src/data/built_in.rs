@@ -18,5 +18,7 @@ pub(super) const TABLES: Tables<'static> = Tables {
     hansen: table!("hansen.csv"),
     vapor_pressure: table!("vapor_pressure.csv"),
     density: table!("density.csv"),
+    hansen_spheres: None,
+    supply: None,
     conflicts: table!("conflicts.csv"),
 };

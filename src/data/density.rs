@@ -3,17 +3,15 @@
 use std::fmt;
 use std::sync::Arc;
 
-use super::OutOfRange;
+use super::points::POINT_STRETCH_K;
+use super::{OutOfRange, Points};
 use crate::quantity::{Flag, Flags};
-
-/// How far a single handbook value may be used from the temperature at which it was measured, in K.
-const POINT_STRETCH_K: f64 = 10.0;
 
 /// The part of the absolute temperature by which a curve may be used below its range.
 const STRETCH: f64 = 0.1;
 
 /// A published density equation with its coefficients, for K and kg/m³.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub enum DensityEquation {
     /// Rackett's equation with four fitted coefficients:
     /// `ρ = M a / b^(1 + (1 − T/c)^d)`.
@@ -45,6 +43,8 @@ pub enum DensityEquation {
         /// In kg/m³.
         density_kg_per_m3: f64,
     },
+    /// Measured densities in kg/m³, straight in T between them.
+    Points(Points),
 }
 
 impl DensityEquation {
@@ -67,6 +67,7 @@ impl DensityEquation {
                     + d * q * third
             }
             Self::Constant { density_kg_per_m3 } => density_kg_per_m3,
+            Self::Points(ref points) => points.value(temperature_k),
         }
     }
 
@@ -77,7 +78,7 @@ impl DensityEquation {
                 critical_temperature_k,
                 ..
             } => critical_temperature_k,
-            Self::Constant { .. } => f64::INFINITY,
+            Self::Constant { .. } | Self::Points(_) => f64::INFINITY,
         }
     }
 }
@@ -98,6 +99,7 @@ impl fmt::Display for DensityEquation {
                 "expansion about the critical point, {critical_density_kg_per_m3} with {a}, {b}, {c}, {d}, Tc {critical_temperature_k} K"
             ),
             Self::Constant { density_kg_per_m3 } => write!(f, "one value, {density_kg_per_m3}"),
+            Self::Points(ref points) => points.fmt(f),
         }
     }
 }
@@ -108,8 +110,8 @@ impl fmt::Display for DensityEquation {
 ///
 /// Inside the range as published. Past it a value is given with
 /// [`Flag::Extrapolated`]: curves down to 0.9 times their lower end and never
-/// past their upper end (most end at the critical point); a single value up to
-/// 10 K to either side, which costs about 1 %.
+/// past their upper end (most end at the critical point); single values and
+/// measured points up to 10 K to either side, which costs about 1 % where there is one point only.
 #[derive(Clone, Debug, PartialEq)]
 pub struct LiquidDensity {
     equation: DensityEquation,
@@ -122,7 +124,7 @@ impl LiquidDensity {
     /// The curve; `None` if it is not between 100 and 10,000 kg/m³ from its
     /// lower end to nine tenths of its upper one.
     ///
-    /// `low_k` is less than `high_k`, both positive.
+    /// `low_k` is not above `high_k`, both positive.
     pub fn new(
         equation: DensityEquation,
         low_k: f64,
@@ -130,7 +132,9 @@ impl LiquidDensity {
         source: Arc<str>,
     ) -> Option<Self> {
         let limits_k = match equation {
-            DensityEquation::Constant { .. } => (low_k - POINT_STRETCH_K, high_k + POINT_STRETCH_K),
+            DensityEquation::Constant { .. } | DensityEquation::Points(_) => {
+                (low_k - POINT_STRETCH_K, high_k + POINT_STRETCH_K)
+            }
             _ => (
                 low_k * (1.0 - STRETCH),
                 high_k.min(equation.critical_temperature_k()),
@@ -175,6 +179,11 @@ impl LiquidDensity {
         } else {
             Flags::NONE.with(Flag::Extrapolated)
         }
+    }
+
+    /// Whether the curve is no equation, but measured points.
+    pub fn is_points(&self) -> bool {
+        matches!(self.equation, DensityEquation::Points(_))
     }
 
     pub(super) fn covers(&self, temperature_k: f64) -> bool {

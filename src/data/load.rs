@@ -6,24 +6,19 @@ use std::sync::Arc;
 use rustc_hash::{FxHashMap, FxHashSet};
 use smallvec::smallvec;
 
+use super::agreement::{DENSITY_MISS, Stated};
 use super::cas::{CasFault, CasNumber};
 use super::structure::{Match, StructureIndex};
-use super::substance::is_normal_pressure;
+use super::substance::{BOILING_POINT_MISS_K, is_normal_pressure, misses};
 use super::substances::Named;
 use super::vapor_pressure::{VaporPressureEquation, WagnerForm};
 use super::{
-    Conflict, Constant, DataError, DensityEquation, LiquidDensity, Substance, Substances,
-    VaporPressure, name,
+    Conflict, Constant, DataError, DensityEquation, HansenSphere, LiquidDensity, Price, Substance,
+    Substances, Supply, VaporPressure, name,
 };
 use crate::chem::{Canonicalizer, Composition, Keys, Molecule, Reader};
 use crate::quantity::{Dimension, Property, unit};
 use crate::table::{Column, Row, Table, TableError};
-
-/// By how much a vapor-pressure curve may miss a stated boiling point, in K.
-const BOILING_POINT_MISS_K: f64 = 3.0;
-
-/// By how much a stated density may differ from the substance's curve, as a part of it.
-const DENSITY_MISS: f64 = 0.05;
 
 /// A table file: its name for messages and its text.
 #[derive(Clone, Copy, Debug)]
@@ -49,16 +44,44 @@ pub struct Tables<'a> {
     pub vapor_pressure: Option<TableText<'a>>,
     /// Density coefficients and values.
     pub density: Option<TableText<'a>>,
+    /// Spheres of good solvents, one solute a row.
+    pub hansen_spheres: Option<TableText<'a>>,
+    /// Prices, availability, notes.
+    pub supply: Option<TableText<'a>>,
     /// Disagreements between sources.
     pub conflicts: Option<TableText<'a>>,
 }
 
+impl<'a> Tables<'a> {
+    /// The files there are, in the order in which they are read.
+    pub(super) fn texts(&self) -> Vec<TableText<'a>> {
+        [
+            self.substances,
+            self.measured,
+            self.hansen,
+            self.vapor_pressure,
+            self.density,
+            self.hansen_spheres,
+            self.supply,
+            self.conflicts,
+        ]
+        .into_iter()
+        .flatten()
+        .collect()
+    }
+}
+
 /// What one layer has brought so far.
-struct Layer<'a> {
-    all: &'a mut Substances,
-    faults: Vec<TableError>,
-    reader: Reader,
-    molecule: Molecule,
+pub(super) struct Layer<'a> {
+    pub(super) all: &'a mut Substances,
+    pub(super) faults: Vec<TableError>,
+    pub(super) reader: Reader,
+    pub(super) molecule: Molecule,
+    /// Whether the layer is a user's: its form is less strict, its numbers are
+    /// compared with those already there.
+    pub(super) of_user: bool,
+    /// Numbers to be looked at again when the layer is read to its end.
+    pub(super) stated: Vec<Stated>,
     canonicalizer: Canonicalizer,
     keys: Keys,
     /// The structures so far, if they are to be compared.
@@ -70,10 +93,12 @@ struct Layer<'a> {
 }
 
 #[derive(Clone, Copy, PartialEq, Eq, Hash)]
-enum Kind {
+pub(super) enum Kind {
     Constants,
     VaporPressures,
     Densities,
+    PointCurves,
+    Supplies,
 }
 
 /// Adds a layer to the substances. Given an index of the structures so far, it
@@ -88,6 +113,8 @@ pub(super) fn load(
         faults: Vec::new(),
         reader: Reader::new(),
         molecule: Molecule::default(),
+        of_user: structures.is_some(),
+        stated: Vec::new(),
         canonicalizer: Canonicalizer::new(),
         keys: Keys::default(),
         structures,
@@ -99,14 +126,21 @@ pub(super) fn load(
     layer.read(tables.hansen, Layer::hansen);
     layer.read(tables.vapor_pressure, Layer::vapor_pressure);
     layer.read(tables.density, Layer::density);
+    layer.read(tables.hansen_spheres, Layer::hansen_spheres);
+    layer.read(tables.supply, Layer::supply);
     layer.read(tables.conflicts, Layer::conflicts);
-    if layer.faults.is_empty() {
-        Ok(layer.structures)
-    } else {
-        Err(DataError::Tables {
-            faults: layer.faults,
-        })
+    layer.agree();
+    let mut faults = layer.faults;
+    if faults.is_empty() {
+        return Ok(layer.structures);
     }
+    // some are found at the end, but a reader mends file by file
+    let files = tables.texts();
+    faults.sort_by_key(|fault| {
+        let (file, line) = fault.place();
+        (files.iter().position(|text| text.file == file), line)
+    });
+    Err(DataError::Tables { faults })
 }
 
 /// The sources that the head of a table names: `key: reference`.
@@ -139,7 +173,12 @@ impl Layer<'_> {
         let Some(TableText { file, text }) = text else {
             return;
         };
-        if let Err(fault) = Table::read(file, text).and_then(|table| rows(self, &table)) {
+        let read = if self.of_user {
+            Table::read_user
+        } else {
+            Table::read
+        };
+        if let Err(fault) = read(file, text).and_then(|table| rows(self, &table)) {
             self.faults.push(fault);
         }
     }
@@ -164,19 +203,22 @@ impl Layer<'_> {
     }
 
     /// Where the next value of this layer goes: behind the layer's own, before older ones.
-    fn place(&mut self, substance: u32, kind: Kind) -> usize {
+    pub(super) fn place(&mut self, substance: u32, kind: Kind) -> usize {
         let fresh = self.fresh.entry((substance, kind)).or_default();
         *fresh += 1;
         *fresh - 1
     }
 
-    fn fresh(&self, substance: u32, kind: Kind) -> usize {
+    pub(super) fn fresh(&self, substance: u32, kind: Kind) -> usize {
         self.fresh.get(&(substance, kind)).copied().unwrap_or(0)
     }
 
     // ------------------------------------------------------------ substances
 
     fn substances(&mut self, table: &Table) -> Result<(), TableError> {
+        table.knows_only(&[
+            "name", "synonyms", "cas", "smiles", "formula", "family", "notes",
+        ])?;
         let columns = SubstanceColumns {
             name: table.column("name")?,
             synonyms: table.column("synonyms")?,
@@ -305,6 +347,8 @@ impl Layer<'_> {
             constants: Vec::new(),
             vapor_pressures: Vec::new(),
             densities: Vec::new(),
+            point_curves: Vec::new(),
+            supplies: Vec::new(),
         });
         position
     }
@@ -435,8 +479,18 @@ impl Layer<'_> {
         let property = table.column("property")?;
         let value = table.column("value")?;
         let unit = table.column("unit")?;
-        let temperature = table.column_in("temperature", "K")?;
-        let pressure = table.column_in("pressure", "kPa")?;
+        table.knows_only(&[
+            "substance",
+            "property",
+            "value",
+            "unit",
+            "temperature",
+            "pressure",
+            "source",
+            "notes",
+        ])?;
+        let temperature = Given::of(table, "temperature", Dimension::Temperature)?;
+        let pressure = Given::of(table, "pressure", Dimension::Pressure)?;
         let source = table.column("source")?;
         self.each_row(table, |layer, row| {
             let position = layer.find(row, substance)?;
@@ -446,22 +500,51 @@ impl Layer<'_> {
             let constant = Constant {
                 property: quantity,
                 value: in_si(row, value, unit, quantity.dimension())?,
-                temperature_k: row.number(temperature)?,
-                pressure_pa: row.number(pressure)?.map(|kpa| 1000.0 * kpa),
+                temperature_k: temperature.map_or(Ok(None), |given| given.si(row))?,
+                pressure_pa: pressure.map_or(Ok(None), |given| given.si(row))?,
                 source: sources.get(row, source)?,
             };
             if quantity.depends_on_temperature() && constant.temperature_k.is_none() {
-                return Err(row.fault(temperature, "is blank, and the property depends on it"));
+                let column = temperature.map_or(property, |given| given.column);
+                return Err(row.fault(
+                    column,
+                    match temperature {
+                        Some(_) => "is blank, and the property depends on it",
+                        None => "depends on temperature, and there is no column `temperature`",
+                    },
+                ));
+            }
+            if let (Some(t), Some(given)) = (constant.temperature_k, temperature)
+                && t <= 0.0
+            {
+                return Err(row.fault(given.column, "is not above absolute zero"));
             }
             if quantity == Property::BoilingPoint
-                && !constant.pressure_pa.is_some_and(|pressure| pressure > 0.0)
+                && constant.pressure_pa.is_none_or(|pressure| pressure <= 0.0)
             {
-                return Err(row.fault(pressure, "has to be a positive number for a boiling point"));
+                return Err(match pressure {
+                    Some(given) => row.fault(
+                        given.column,
+                        "has to be a positive number for a boiling point",
+                    ),
+                    None => row.fault(
+                        property,
+                        "needs its pressure, and there is no column `pressure`",
+                    ),
+                });
             }
             if must_be_positive(quantity) && constant.value <= 0.0 {
                 return Err(row.fault(value, "is not positive"));
             }
-            layer.add_constant(row, property, position, constant)
+            let looked_at_again = layer.of_user || quantity.depends_on_temperature();
+            let stated = looked_at_again.then(|| Stated {
+                substance: position,
+                constant: constant.clone(),
+                place: row.fault(value, ""),
+            });
+            layer.add_constant(row, property, position, constant)?;
+            layer.stated.extend(stated);
+            Ok(())
         });
         Ok(())
     }
@@ -475,11 +558,7 @@ impl Layer<'_> {
     ) -> Result<(), TableError> {
         let fresh = self.fresh(position, Kind::Constants);
         let constants = &mut self.all.substances[position as usize].constants;
-        let same = |other: &&Constant| {
-            other.property == constant.property
-                && other.temperature_k == constant.temperature_k
-                && other.pressure_pa == constant.pressure_pa
-        };
+        let same = |other: &&Constant| other.is_of_same_state(&constant);
         if let Some(other) = constants[..fresh].iter().find(same) {
             return Err(row.fault(
                 column,
@@ -502,28 +581,142 @@ impl Layer<'_> {
             (Property::HansenPolar, "polar"),
             (Property::HansenHydrogenBonding, "hydrogen_bonding"),
         ];
-        let mut columns = [(Property::HansenDispersion, substance); 3];
-        for (slot, (property, name)) in columns.iter_mut().zip(parts) {
-            *slot = (property, table.column_in(name, "MPa^0.5")?);
+        table.knows_only(&[
+            "substance",
+            "dispersion",
+            "polar",
+            "hydrogen_bonding",
+            "source",
+            "notes",
+        ])?;
+        let mut columns = Vec::with_capacity(parts.len());
+        for (property, name) in parts {
+            columns.push((property, Given::required(table, name, HANSEN)?));
         }
         let source = table.column("source")?;
         self.each_row(table, |layer, row| {
             let position = layer.find(row, substance)?;
             let source = sources.get(row, source)?;
-            for (property, column) in columns {
-                let value = row.required_number(column)?;
-                if !(0.0..=60.0).contains(&value) {
-                    return Err(row.fault(column, "is not between 0 and 60 MPa^0.5"));
-                }
+            for &(property, given) in &columns {
+                let column = given.column;
                 let constant = Constant {
                     property,
-                    value: 1000.0 * value,
+                    value: given.hansen(row)?,
                     temperature_k: None,
                     pressure_pa: None,
                     source: Arc::clone(&source),
                 };
+                let stated = layer.of_user.then(|| Stated {
+                    substance: position,
+                    constant: constant.clone(),
+                    place: row.fault(column, ""),
+                });
                 layer.add_constant(row, column, position, constant)?;
+                layer.stated.extend(stated);
             }
+            Ok(())
+        });
+        Ok(())
+    }
+
+    fn hansen_spheres(&mut self, table: &Table) -> Result<(), TableError> {
+        let sources = Sources::of(table);
+        table.knows_only(&[
+            "solute",
+            "dispersion",
+            "polar",
+            "hydrogen_bonding",
+            "radius",
+            "source",
+            "notes",
+        ])?;
+        let solute = table.column("solute")?;
+        let dispersion = Given::required(table, "dispersion", HANSEN)?;
+        let polar = Given::required(table, "polar", HANSEN)?;
+        let hydrogen_bonding = Given::required(table, "hydrogen_bonding", HANSEN)?;
+        let radius = Given::required(table, "radius", HANSEN)?;
+        let source = table.column("source")?;
+        let mut seen = Vec::new();
+        let mut fresh = Vec::new();
+        self.each_row(table, |_, row| {
+            let text = row.required_text(solute)?;
+            let folded = name::folded(text);
+            if seen.contains(&folded) {
+                return Err(row.fault(solute, "stands twice"));
+            }
+            let radius_sqrt_pa = radius.hansen(row)?;
+            if radius_sqrt_pa == 0.0 {
+                return Err(row.fault(radius.column, "is not positive"));
+            }
+            fresh.push(HansenSphere {
+                solute: Arc::from(text),
+                centre_sqrt_pa: [
+                    dispersion.hansen(row)?,
+                    polar.hansen(row)?,
+                    hydrogen_bonding.hansen(row)?,
+                ],
+                radius_sqrt_pa,
+                source: sources.get(row, source)?,
+            });
+            seen.push(folded);
+            Ok(())
+        });
+        self.all.spheres.splice(0..0, fresh);
+        Ok(())
+    }
+
+    fn supply(&mut self, table: &Table) -> Result<(), TableError> {
+        let sources = Sources::of(table);
+        table.knows_only(&[
+            "substance",
+            "price",
+            "price_unit",
+            "availability",
+            "notes",
+            "source",
+        ])?;
+        let substance = table.column("substance")?;
+        let price = table.optional_column("price");
+        let price_unit = table.optional_column("price_unit");
+        let availability = table.optional_column("availability");
+        let notes = table.optional_column("notes");
+        let source = table.column("source")?;
+        let text = |row: Row<'_>, column: Option<Column>| {
+            column.map_or_else(|| Arc::from(""), |column| Arc::from(row.text(column)))
+        };
+        self.each_row(table, |layer, row| {
+            let position = layer.find(row, substance)?;
+            let price = match price {
+                Some(column) => match row.number(column)? {
+                    Some(amount) => {
+                        let unit = price_unit.map_or("", |column| row.text(column));
+                        let fault = match amount < 0.0 {
+                            true => (column, "is negative".to_owned()),
+                            false => (
+                                price_unit.unwrap_or(column),
+                                format!("needs a unit of the form EUR/kg, found `{unit}`"),
+                            ),
+                        };
+                        let price = Price::new(amount, unit);
+                        Some(price.ok_or_else(|| row.fault(fault.0, fault.1))?)
+                    }
+                    None => None,
+                },
+                None => None,
+            };
+            let supply = Supply {
+                price,
+                availability: text(row, availability),
+                notes: text(row, notes),
+                source: sources.get(row, source)?,
+            };
+            let supplies = &layer.all.substances[position as usize].supplies;
+            if supplies[..layer.fresh(position, Kind::Supplies)].contains(&supply) {
+                return Err(row.fault(substance, "stands twice with the same words"));
+            }
+            let place = layer.place(position, Kind::Supplies);
+            let at = &mut layer.all.substances[position as usize];
+            at.supplies.insert(place, supply);
             Ok(())
         });
         Ok(())
@@ -546,6 +739,13 @@ impl Layer<'_> {
                 )
             })?;
             layer.check_boiling_points(row, columns.equation, position, &curve)?;
+            let fresh = layer.fresh(position, Kind::VaporPressures);
+            let before = &layer.all.substances[position as usize].vapor_pressures[..fresh];
+            if before.iter().any(|other| {
+                other.equation() == curve.equation() && other.range_k() == curve.range_k()
+            }) {
+                return Err(row.fault(columns.substance, "has this very curve already"));
+            }
             let place = layer.place(position, Kind::VaporPressures);
             let curves = &mut layer.all.substances[position as usize].vapor_pressures;
             curves.insert(place, curve);
@@ -566,18 +766,21 @@ impl Layer<'_> {
         // the preferred normal boiling point and every one at another pressure
         let mut normal_seen = false;
         for constant in constants {
-            let Some(pressure) = constant.pressure_pa else {
+            let point = match constant.property {
+                Property::BoilingPoint => constant.pressure_pa.map(|p| (constant.value, p)),
+                Property::VaporPressure => constant.temperature_k.map(|t| (t, constant.value)),
+                _ => None,
+            };
+            let Some((temperature_k, pressure)) = point else {
                 continue;
             };
-            if constant.property != Property::BoilingPoint
-                || is_normal_pressure(pressure) && std::mem::replace(&mut normal_seen, true)
+            if constant.property == Property::BoilingPoint
+                && is_normal_pressure(pressure)
+                && std::mem::replace(&mut normal_seen, true)
             {
                 continue;
             }
-            let at = |t: f64| curve.pressure_pa(t).ok();
-            let low = at(constant.value - BOILING_POINT_MISS_K);
-            let high = at(constant.value + BOILING_POINT_MISS_K);
-            if low.is_some_and(|low| low > pressure) || high.is_some_and(|high| high < pressure) {
+            if misses(curve, temperature_k, pressure, BOILING_POINT_MISS_K) {
                 let gives = match curve.saturation_temperature_k(pressure) {
                     Ok(t) => format!("{t:.2} K"),
                     Err(error) => error.to_string(),
@@ -585,9 +788,8 @@ impl Layer<'_> {
                 return Err(row.fault(
                     column,
                     format!(
-                        "the curve gives {gives} at {} kPa, the stated boiling point is {} K",
+                        "the curve gives {gives} at {} kPa, the stated boiling point is {temperature_k} K",
                         pressure / 1000.0,
-                        constant.value
                     ),
                 ));
             }
@@ -611,6 +813,13 @@ impl Layer<'_> {
                 )
             })?;
             layer.check_densities(row, columns.equation, position, &curve)?;
+            let fresh = layer.fresh(position, Kind::Densities);
+            let before = &layer.all.substances[position as usize].densities[..fresh];
+            if before.iter().any(|other| {
+                other.equation() == curve.equation() && other.range_k() == curve.range_k()
+            }) {
+                return Err(row.fault(columns.substance, "has this very curve already"));
+            }
             let place = layer.place(position, Kind::Densities);
             let curves = &mut layer.all.substances[position as usize].densities;
             curves.insert(place, curve);
@@ -699,6 +908,64 @@ impl Layer<'_> {
             Ok(())
         });
         Ok(())
+    }
+}
+
+/// What a Hansen parameter measures.
+const HANSEN: Dimension = Dimension::SolubilityParameter;
+
+/// A column of one dimension, in whatever unit the units row names.
+#[derive(Clone, Copy)]
+struct Given<'t> {
+    column: Column,
+    symbol: &'t str,
+    dimension: Dimension,
+}
+
+impl<'t> Given<'t> {
+    /// The column, which may be missing.
+    fn of(table: &'t Table, name: &str, dimension: Dimension) -> Result<Option<Self>, TableError> {
+        match table.optional_column(name) {
+            None => Ok(None),
+            Some(_) => Self::required(table, name, dimension).map(Some),
+        }
+    }
+
+    fn required(table: &'t Table, name: &str, dimension: Dimension) -> Result<Self, TableError> {
+        let column = table.column(name)?;
+        let symbol = table.unit(column);
+        let given = Self {
+            column,
+            symbol,
+            dimension,
+        };
+        // 300 is sound in every unit of every dimension
+        match unit::parse(&format!("300 {symbol}"), dimension) {
+            Ok(_) => Ok(given),
+            Err(_) => Err(table.unit_fault(column, unit::si_symbol(dimension))),
+        }
+    }
+
+    /// The number of a row in SI.
+    fn si(self, row: Row<'_>) -> Result<Option<f64>, TableError> {
+        let Some(number) = row.number(self.column)? else {
+            return Ok(None);
+        };
+        to_si(number, self.symbol, self.dimension)
+            .map(Some)
+            .map_err(|fault| row.fault(self.column, fault))
+    }
+
+    /// A Hansen parameter in Pa^0.5.
+    fn hansen(self, row: Row<'_>) -> Result<f64, TableError> {
+        let value = self
+            .si(row)?
+            .ok_or_else(|| row.fault(self.column, "is blank"))?;
+        if (0.0..=60_000.0).contains(&value) {
+            Ok(value)
+        } else {
+            Err(row.fault(self.column, "is not between 0 and 60 MPa^0.5"))
+        }
     }
 }
 
@@ -894,17 +1161,23 @@ fn in_si(
     unit: Column,
     dimension: Dimension,
 ) -> Result<f64, TableError> {
-    let number = row.required_number(value)?;
-    let symbol = row.text(unit);
+    to_si(row.required_number(value)?, row.text(unit), dimension)
+        .map_err(|fault| row.fault(unit, fault))
+}
+
+/// A number in a unit of the dimension, in SI; else what is wrong with the unit.
+fn to_si(number: f64, symbol: &str, dimension: Dimension) -> Result<f64, String> {
     match dimension {
         Dimension::Number if symbol == "-" || symbol.is_empty() => Ok(number),
-        // the common case, kept from being written out and read again
+        // the common cases, kept from being written out and read again
         Dimension::SolubilityParameter if symbol == unit::si_symbol(dimension) => {
             Ok(1000.0 * number)
         }
+        Dimension::Pressure if symbol == "kPa" => Ok(1000.0 * number),
         _ if symbol == unit::si_symbol(dimension) => Ok(number),
-        _ => unit::parse(&format!("{number} {symbol}"), dimension)
-            .map_err(|error| row.fault(unit, error.to_string())),
+        _ => {
+            unit::parse(&format!("{number} {symbol}"), dimension).map_err(|error| error.to_string())
+        }
     }
 }
 
@@ -918,5 +1191,6 @@ fn must_be_positive(property: Property) -> bool {
             | Property::HansenPolar
             | Property::HansenHydrogenBonding
             | Property::LogPOctanolWater
+            | Property::HeatCapacityChangeOfFusion
     )
 }

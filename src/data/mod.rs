@@ -13,22 +13,29 @@
 //! [`Substances::find`],
 //! [`Substances::find_structure`], [`Substance::measured`].
 
+mod agreement;
 mod built_in;
 mod cas;
+mod clapeyron;
 mod density;
 mod error;
 mod load;
 mod name;
 pub mod pairs;
+mod points;
 mod structure;
 mod substance;
 mod substances;
+mod supply;
 mod vapor_pressure;
 
 pub use cas::CasNumber;
+pub use clapeyron::ClapeyronEnthalpy;
 pub use density::{DensityEquation, LiquidDensity};
 pub use error::{DataError, NameError, OutOfRange};
 pub use load::{TableText, Tables};
+pub use points::{PointCurve, Points, Straight};
 pub use substance::{Constant, Substance};
 pub use substances::{Conflict, Substances};
+pub use supply::{HansenSphere, Price, Supply};
 pub use vapor_pressure::{VaporPressure, VaporPressureEquation, WagnerForm};

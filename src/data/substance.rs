@@ -2,15 +2,22 @@
 
 use std::sync::Arc;
 
-use super::{CasNumber, LiquidDensity, VaporPressure};
+use smallvec::SmallVec;
+
+use super::{CasNumber, LiquidDensity, PointCurve, Supply, VaporPressure};
 use crate::chem::Composition;
-use crate::quantity::{Absent, Estimate, Flags, Outcome, Property, STANDARD_ATMOSPHERE_PA, Status};
+use crate::quantity::{
+    Absent, Estimate, Flag, Flags, Outcome, Property, STANDARD_ATMOSPHERE_PA, Status,
+};
+
+/// By how much a vapor-pressure curve may miss a stated boiling point, in K.
+pub(super) const BOILING_POINT_MISS_K: f64 = 3.0;
 
 /// Relative width around the standard atmosphere in which a boiling point counts as normal.
 const NORMAL_PRESSURE_WIDTH: f64 = 1e-3;
 
 /// Half-width in K within which a measured point at one temperature answers for another.
-const SAME_TEMPERATURE_K: f64 = 0.01;
+pub(super) const SAME_TEMPERATURE_K: f64 = 0.01;
 
 /// One measured number.
 #[derive(Clone, Debug, PartialEq)]
@@ -40,6 +47,8 @@ pub struct Substance {
     pub(super) constants: Vec<Constant>,
     pub(super) vapor_pressures: Vec<VaporPressure>,
     pub(super) densities: Vec<LiquidDensity>,
+    pub(super) point_curves: Vec<PointCurve>,
+    pub(super) supplies: Vec<Supply>,
 }
 
 impl Substance {
@@ -83,9 +92,18 @@ impl Substance {
         &self.constants
     }
 
-    /// The preferred vapor-pressure curve.
+    /// Every measured number of a property, the preferred one first.
+    pub fn values(&self, property: Property) -> impl Iterator<Item = &Constant> {
+        self.constants
+            .iter()
+            .filter(move |constant| constant.property == property)
+    }
+
+    /// The preferred vapor-pressure curve for work over a range of
+    /// temperatures: the first equation, else measured points.
     pub fn vapor_pressure(&self) -> Option<&VaporPressure> {
-        self.vapor_pressures.first()
+        let equation = self.vapor_pressures.iter().find(|curve| !curve.is_points());
+        equation.or(self.vapor_pressures.first())
     }
 
     /// Every vapor-pressure curve, the preferred one first.
@@ -93,9 +111,10 @@ impl Substance {
         &self.vapor_pressures
     }
 
-    /// The preferred density curve.
+    /// The preferred density curve: the first equation, else measured points.
     pub fn liquid_density(&self) -> Option<&LiquidDensity> {
-        self.densities.first()
+        let equation = self.densities.iter().find(|curve| !curve.is_points());
+        equation.or(self.densities.first())
     }
 
     /// Every density curve, the preferred one first.
@@ -103,16 +122,31 @@ impl Substance {
         &self.densities
     }
 
+    /// Curves through measured points of viscosity, surface tension and ideal-gas
+    /// heat capacity, the preferred one of a property first.
+    pub fn point_curves(&self) -> &[PointCurve] {
+        &self.point_curves
+    }
+
+    /// Price and availability, the user's latest statement first.
+    pub fn supplies(&self) -> &[Supply] {
+        &self.supplies
+    }
+
     /// The measured value of a property, `None` if nothing is held about it.
     ///
-    /// - A property that depends on temperature is taken from the first curve
-    ///   whose range holds `temperature_k`, else from the first that may be
-    ///   stretched so far, then with a flag; a single number counts within
-    ///   0.01 K of its temperature. If neither applies, the outcome is
-    ///   [`Absent::OutsideRange`].
+    /// - A property that depends on temperature is the number stated within
+    ///   0.01 K of `temperature_k`; else it is taken from the first curve (an
+    ///   equation, or the lines between measured points) whose range holds the
+    ///   temperature, else from the first that may be stretched so far, then with
+    ///   a flag. If none applies, the outcome is [`Absent::OutsideRange`].
     /// - The boiling point is the number stated for 101.325 kPa; failing that,
     ///   the temperature at which the vapor-pressure curve reaches it, rounded to
     ///   0.1 K because a curve knows no more; its source says so.
+    /// - Boiling point and vapor pressure are flagged [`Flag::Inconsistent`]
+    ///   where a boiling point and a curve of different layers part by more than 3 K.
+    /// - The enthalpy of vaporization is that at the normal boiling point; one
+    ///   stated for another temperature does not answer for it.
     /// - `temperature_k` does not matter to other properties.
     pub fn measured(&self, property: Property, temperature_k: f64) -> Option<Outcome> {
         match property {
@@ -123,34 +157,59 @@ impl Substance {
             Property::LiquidDensity => self
                 .point(property, temperature_k)
                 .or_else(|| self.density_at(temperature_k)),
-            property if property.depends_on_temperature() => self.point(property, temperature_k),
+            property if property.depends_on_temperature() => self
+                .point(property, temperature_k)
+                .or_else(|| self.between_points(property, temperature_k)),
+            Property::EnthalpyOfVaporization => self
+                .values(property)
+                .find(|constant| constant.temperature_k.is_none())
+                .map(|constant| Ok(constant.estimate())),
             property => self
-                .constants
-                .iter()
-                .find(|constant| constant.property == property)
+                .values(property)
+                .next()
                 .map(|constant| Ok(constant.estimate())),
         }
     }
 
     fn point(&self, property: Property, temperature_k: f64) -> Option<Outcome> {
-        self.constants
-            .iter()
+        self.values(property)
             .find(|constant| {
-                constant.property == property
-                    && constant
-                        .temperature_k
-                        .is_some_and(|t| (t - temperature_k).abs() <= SAME_TEMPERATURE_K)
+                constant
+                    .temperature_k
+                    .is_some_and(|t| (t - temperature_k).abs() <= SAME_TEMPERATURE_K)
             })
             .map(|constant| Ok(constant.estimate()))
     }
 
-    fn boiling_point(&self) -> Option<Outcome> {
-        let stated = self.constants.iter().find(|constant| {
-            constant.property == Property::BoilingPoint
-                && constant.pressure_pa.is_some_and(is_normal_pressure)
+    /// The preferred boiling point stated for 101.325 kPa.
+    pub(super) fn stated_boiling_point(&self) -> Option<&Constant> {
+        self.values(Property::BoilingPoint)
+            .find(|constant| constant.pressure_pa.is_some_and(is_normal_pressure))
+    }
+
+    /// [`Flag::Inconsistent`] where the curve misses the stated boiling point.
+    fn flags_of_boiling_point(&self, curve: &VaporPressure) -> Flags {
+        let parted = self.stated_boiling_point().is_some_and(|constant| {
+            misses(
+                curve,
+                constant.value,
+                STANDARD_ATMOSPHERE_PA,
+                BOILING_POINT_MISS_K,
+            )
         });
-        if let Some(constant) = stated {
-            return Some(Ok(constant.estimate()));
+        if parted {
+            Flags::NONE.with(Flag::Inconsistent)
+        } else {
+            Flags::NONE
+        }
+    }
+
+    fn boiling_point(&self) -> Option<Outcome> {
+        if let Some(constant) = self.stated_boiling_point() {
+            let flags = self
+                .vapor_pressure()
+                .map_or(Flags::NONE, |curve| self.flags_of_boiling_point(curve));
+            return Some(Ok(constant.estimate().flagged(flags)));
         }
         let curve = self.vapor_pressure()?;
         Some(
@@ -168,17 +227,41 @@ impl Substance {
         )
     }
 
-    fn vapor_pressure_at(&self, temperature_k: f64) -> Option<Outcome> {
-        let curve = preferred(
+    /// The curve that answers at a temperature: the first that covers it, else
+    /// the first that can be stretched to it, else the first.
+    fn vapor_pressure_at_best(&self, temperature_k: f64) -> Option<&VaporPressure> {
+        preferred(
             &self.vapor_pressures,
             |curve| (curve.covers(temperature_k), curve.limits_k()),
             temperature_k,
-        )?;
+        )
+    }
+
+    /// The same among equations, whose slope is better than that of points; points failing that.
+    pub(super) fn curve_for_slope(&self, temperature_k: f64) -> Option<&VaporPressure> {
+        let equations: SmallVec<[&VaporPressure; 4]> = self
+            .vapor_pressures
+            .iter()
+            .filter(|curve| !curve.is_points())
+            .collect();
+        preferred(
+            &equations,
+            |curve| (curve.covers(temperature_k), curve.limits_k()),
+            temperature_k,
+        )
+        .copied()
+        .or_else(|| self.vapor_pressure_at_best(temperature_k))
+    }
+
+    fn vapor_pressure_at(&self, temperature_k: f64) -> Option<Outcome> {
+        let curve = self.vapor_pressure_at_best(temperature_k)?;
         Some(
             curve
                 .pressure_pa(temperature_k)
                 .map(|p| {
-                    let flags = curve.flags_at(temperature_k);
+                    let flags = curve
+                        .flags_at(temperature_k)
+                        .union(self.flags_of_boiling_point(curve));
                     from_curve(p, Some(temperature_k), flags, curve.source())
                 })
                 .map_err(Absent::from),
@@ -201,6 +284,41 @@ impl Substance {
                 .map_err(Absent::from),
         )
     }
+
+    fn between_points(&self, property: Property, temperature_k: f64) -> Option<Outcome> {
+        let of_property: SmallVec<[&PointCurve; 2]> = self
+            .point_curves
+            .iter()
+            .filter(|curve| curve.property() == property)
+            .collect();
+        let curve = preferred(
+            &of_property,
+            |curve| (curve.covers(temperature_k), curve.limits_k()),
+            temperature_k,
+        )?;
+        Some(
+            curve
+                .value(temperature_k)
+                .map(|value| {
+                    let flags = curve.flags_at(temperature_k);
+                    from_curve(value, Some(temperature_k), flags, curve.source())
+                })
+                .map_err(Absent::from),
+        )
+    }
+}
+
+/// Whether a curve misses a measured boiling point by more than `width_k`;
+/// one that does not reach it does not.
+pub(super) fn misses(
+    curve: &VaporPressure,
+    temperature_k: f64,
+    pressure_pa: f64,
+    width_k: f64,
+) -> bool {
+    let at = |t: f64| curve.pressure_pa(t).ok();
+    at(temperature_k - width_k).is_some_and(|low| low > pressure_pa)
+        || at(temperature_k + width_k).is_some_and(|high| high < pressure_pa)
 }
 
 pub(super) fn is_normal_pressure(pressure_pa: f64) -> bool {
@@ -226,6 +344,18 @@ fn preferred<C>(
 }
 
 impl Constant {
+    /// Whether the other number is of the same property at the same temperature and pressure.
+    pub fn is_of_same_state(&self, other: &Self) -> bool {
+        let same = |one: Option<f64>, other: Option<f64>, width: f64| match (one, other) {
+            (Some(one), Some(other)) => (one - other).abs() <= width,
+            (one, other) => one == other,
+        };
+        let width_pa = NORMAL_PRESSURE_WIDTH * self.pressure_pa.unwrap_or(0.0);
+        self.property == other.property
+            && same(self.temperature_k, other.temperature_k, SAME_TEMPERATURE_K)
+            && same(self.pressure_pa, other.pressure_pa, width_pa)
+    }
+
     fn estimate(&self) -> Estimate {
         from_curve(self.value, self.temperature_k, Flags::NONE, &self.source)
     }

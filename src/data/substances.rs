@@ -7,9 +7,11 @@ use smallvec::SmallVec;
 
 use super::cas::{CasFault, CasNumber};
 use super::structure::{Match, StructureIndex};
-use super::{DataError, NameError, Substance, TableText, Tables, built_in, load, name};
+use super::{
+    DataError, HansenSphere, NameError, Substance, TableText, Tables, built_in, load, name,
+};
 use crate::chem::Keys;
-use crate::quantity::{Flag, Flags};
+use crate::quantity::{Flag, Flags, Property};
 
 /// How many names an error message offers.
 const SUGGESTIONS: usize = 3;
@@ -23,6 +25,7 @@ pub struct Substances {
     pub(super) by_name: FxHashMap<Box<str>, Named>,
     pub(super) by_cas: FxHashMap<CasNumber, u32>,
     pub(super) conflicts: Vec<Conflict>,
+    pub(super) spheres: Vec<HansenSphere>,
     /// Made at the first look-up by structure: most runs of one command need none.
     pub(super) structures: OnceLock<StructureIndex>,
 }
@@ -59,6 +62,17 @@ pub struct Conflict {
     pub decision: Arc<str>,
 }
 
+impl Conflict {
+    /// Whether it is about this property.
+    pub fn is_about(&self, property: Property) -> bool {
+        let hansen = matches!(
+            property,
+            Property::HansenDispersion | Property::HansenPolar | Property::HansenHydrogenBonding
+        );
+        *self.property == *property.id() || hansen && &*self.property == "hansen"
+    }
+}
+
 impl Substances {
     /// The built-in table.
     ///
@@ -74,18 +88,7 @@ impl Substances {
 
     /// The files of the built-in layer.
     pub fn built_in_texts() -> Vec<TableText<'static>> {
-        let tables = built_in::TABLES;
-        [
-            tables.substances,
-            tables.measured,
-            tables.hansen,
-            tables.vapor_pressure,
-            tables.density,
-            tables.conflicts,
-        ]
-        .into_iter()
-        .flatten()
-        .collect()
+        built_in::TABLES.texts()
     }
 
     /// Number of substances.
@@ -106,6 +109,41 @@ impl Substances {
     /// The disagreements between sources that the tables record.
     pub fn conflicts(&self) -> &[Conflict] {
         &self.conflicts
+    }
+
+    /// The disagreements about a property of a substance of this collection, in
+    /// the order of the tables; those about Hansen parameters answer for all three.
+    pub fn conflicts_about(
+        &self,
+        substance: &Substance,
+        property: Property,
+    ) -> impl Iterator<Item = &Conflict> {
+        self.conflicts_of(substance)
+            .filter(move |conflict| conflict.is_about(property))
+    }
+
+    /// The disagreements about a substance of this collection, in the order of the tables.
+    pub fn conflicts_of(&self, substance: &Substance) -> impl Iterator<Item = &Conflict> {
+        let position = self
+            .substances
+            .iter()
+            .position(|other| std::ptr::eq(other, substance));
+        self.conflicts
+            .iter()
+            .filter(move |conflict| Some(conflict.substance) == position)
+    }
+
+    /// Spheres of good solvents, a user's before those that are built in.
+    pub fn hansen_spheres(&self) -> &[HansenSphere] {
+        &self.spheres
+    }
+
+    /// The sphere of a solute; case, spaces and hyphens do not matter.
+    pub fn hansen_sphere(&self, solute: &str) -> Option<&HansenSphere> {
+        let folded = name::folded(solute);
+        self.spheres
+            .iter()
+            .find(|sphere| name::folded(&sphere.solute) == folded)
     }
 
     /// The substance of this name, synonym or CAS number.

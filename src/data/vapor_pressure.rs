@@ -3,7 +3,8 @@
 use std::fmt;
 use std::sync::Arc;
 
-use super::OutOfRange;
+use super::points::POINT_STRETCH_K;
+use super::{OutOfRange, Points};
 use crate::quantity::{Flag, Flags};
 
 /// The part of the absolute temperature by which a curve may be used below its
@@ -20,7 +21,7 @@ pub enum WagnerForm {
 }
 
 /// A published vapor-pressure equation with its coefficients, for K and Pa.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub enum VaporPressureEquation {
     /// Antoine: `ln(P/Pa) = a − b / (T/K + c)`.
     ///
@@ -55,6 +56,8 @@ pub enum VaporPressureEquation {
         /// The coefficients a to e.
         coefficients: [f64; 5],
     },
+    /// Measured pressures in Pa, between which ln P is straight in 1/T.
+    Points(Points),
 }
 
 impl VaporPressureEquation {
@@ -91,6 +94,7 @@ impl VaporPressureEquation {
                 let power = d * t.powf(e);
                 (a + b / t + c * t.ln() + power, (-b / t + c + e * power) / t)
             }
+            Self::Points(ref points) => points.ordinate_and_slope(t),
         }
     }
 }
@@ -123,6 +127,7 @@ impl fmt::Display for VaporPressureEquation {
                 f,
                 "extended Antoine, ln P = {a} + {b}/T + {c} ln T + {d} T^{e}"
             ),
+            Self::Points(ref points) => points.fmt(f),
         }
     }
 }
@@ -134,8 +139,9 @@ impl fmt::Display for VaporPressureEquation {
 /// Inside the range as published. Past it a value is given with
 /// [`Flag::Extrapolated`] down to 0.9 times the lower end and, for Antoine
 /// only, up to 1.1 times the upper end: the other equations reach to the
-/// critical point, beyond which there is no vapor pressure. The stretch ends
-/// earlier where the curve stops rising with temperature.
+/// critical point, beyond which there is no vapor pressure. Measured points
+/// reach 10 K past the outermost. The stretch ends earlier where the curve
+/// stops rising with temperature.
 #[derive(Clone, Debug, PartialEq)]
 pub struct VaporPressure {
     equation: VaporPressureEquation,
@@ -190,10 +196,16 @@ impl VaporPressure {
             }
             limit
         };
-        let low_limit = stretched(low_k, low_k * (1.0 - STRETCH));
-        let high_limit = match equation {
-            VaporPressureEquation::Antoine { .. } => stretched(high_k, high_k * (1.0 + STRETCH)),
-            _ => high_inside,
+        let (low_limit, high_limit) = match equation {
+            VaporPressureEquation::Antoine { .. } => (
+                stretched(low_k, low_k * (1.0 - STRETCH)),
+                stretched(high_k, high_k * (1.0 + STRETCH)),
+            ),
+            VaporPressureEquation::Points(_) => (
+                stretched(low_k, low_k - POINT_STRETCH_K),
+                stretched(high_k, high_k + POINT_STRETCH_K),
+            ),
+            _ => (stretched(low_k, low_k * (1.0 - STRETCH)), high_inside),
         };
         Ok(Self {
             equation,
@@ -305,5 +317,25 @@ impl VaporPressure {
             t = next;
         }
         Ok(t)
+    }
+
+    /// The temperature in K at which the vapor pressure is `pressure_pa`, and
+    /// how it grows with pressure, `dT/dP = 1 / (P d ln P/dT)`, in K/Pa.
+    ///
+    /// # Errors
+    ///
+    /// Those of [`saturation_temperature_k`](Self::saturation_temperature_k).
+    pub fn saturation_temperature_and_slope(
+        &self,
+        pressure_pa: f64,
+    ) -> Result<(f64, f64), OutOfRange> {
+        let temperature_k = self.saturation_temperature_k(pressure_pa)?;
+        let (_, slope) = self.equation.ln_pressure_and_slope(temperature_k);
+        Ok((temperature_k, 1.0 / (pressure_pa * slope)))
+    }
+
+    /// Whether the curve is no equation, but measured points.
+    pub fn is_points(&self) -> bool {
+        matches!(self.equation, VaporPressureEquation::Points(_))
     }
 }

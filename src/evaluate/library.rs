@@ -41,7 +41,7 @@ pub struct UserTable {
 }
 
 /// The tables a user may lay over the built-in ones.
-pub const USER_TABLES: [&str; 17] = [
+pub const USER_TABLES: [&str; 19] = [
     "unifac/main_groups.csv",
     "unifac/subgroups.csv",
     "unifac/interactions.csv",
@@ -59,6 +59,8 @@ pub const USER_TABLES: [&str; 17] = [
     "pairs/gamma_infinity.csv",
     "pairs/excess_volume.csv",
     "pairs/activity_parameters.csv",
+    "substances/hansen_spheres.csv",
+    "substances/supply.csv",
 ];
 
 /// Group sets, activity models, pure-component methods and measured data.
@@ -194,6 +196,8 @@ impl Library {
             hansen: over("hansen"),
             vapor_pressure: over("vapor_pressure"),
             density: over("density"),
+            hansen_spheres: over("hansen_spheres"),
+            supply: over("supply"),
             conflicts: None,
         };
         let none = self

@@ -9,6 +9,7 @@ mod groups;
 mod independent;
 mod mixture;
 mod pairs;
+mod own_data;
 mod pure;
 mod quantity;
 mod report;
