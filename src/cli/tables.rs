@@ -6,12 +6,13 @@ use super::args::{self, TablesWhat};
 use super::error::CliError;
 use super::exit::Exit;
 use super::{output, pair_tables};
+use crate::data::{Substance, Substances};
 use crate::evaluate::{FIGURES, Library};
 use crate::groups::SetId;
 use crate::mixture::{ActivityModel, Interaction, ModelStatus, RESERVED_MODELS, Unifac};
 use crate::pure::{METHODS, Role};
 use crate::quantity::Property;
-use crate::quantity::unit::{nearest, si_symbol};
+use crate::quantity::unit::{nearest, si_symbol, table_text};
 use crate::report::{TextColumn, TextTable};
 
 pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, CliError> {
@@ -397,36 +398,149 @@ fn substances(library: &Library, name: Option<&str>) -> Result<String, CliError>
         let synonyms: Vec<&str> = substance.synonyms().iter().map(|name| &**name).collect();
         text.push_str(&format!("  also: {}\n", synonyms.join("; ")));
     }
-    for constant in substance.constants() {
-        let property = constant.property;
-        let value = crate::quantity::unit::to_table(constant.value, property.dimension());
-        let at = constant
-            .temperature_k
-            .map_or(String::new(), |t| format!(" at {t} K"));
-        text.push_str(&format!(
-            "  {}: {value} {}{at}  ({})\n",
-            property.id(),
-            si_symbol(property.dimension()),
-            constant.source
-        ));
+    text.push_str(&measured_of(library.substances(), substance));
+    Ok(text)
+}
+
+/// Everything measured about a substance: numbers with the disagreements behind
+/// them, curves, the check of the enthalpy of vaporization, supply.
+fn measured_of(substances: &Substances, substance: &Substance) -> String {
+    let mut text = String::new();
+    for property in Property::ALL {
+        for (position, constant) in substance.values(property).enumerate() {
+            let state = [
+                constant.temperature_k.map(|t| format!(" at {t} K")),
+                constant
+                    .pressure_pa
+                    .map(|p| format!(" at {} kPa", p / 1000.0)),
+            ];
+            let not_used = substance
+                .values(property)
+                .take(position)
+                .any(|other| other.is_of_same_state(constant));
+            text.push_str(&format!(
+                "  {}: {}{}{}  ({})\n",
+                property.id(),
+                table_text(constant.value, property.dimension()),
+                state.into_iter().flatten().collect::<String>(),
+                if not_used { ", not used" } else { "" },
+                constant.source
+            ));
+        }
     }
     for curve in substance.vapor_pressures() {
-        let (low, high) = curve.range_k();
-        text.push_str(&format!(
-            "  vapor pressure in Pa from {low} K to {high} K: {}  ({})\n",
+        text.push_str(&curve_line(
+            "vapor pressure in Pa",
+            curve.range_k(),
             curve.equation(),
-            curve.source()
+            curve.source(),
         ));
     }
     for curve in substance.liquid_densities() {
-        let (low, high) = curve.range_k();
-        text.push_str(&format!(
-            "  liquid density in kg/m3 from {low} K to {high} K: {}  ({})\n",
+        text.push_str(&curve_line(
+            "liquid density in kg/m3",
+            curve.range_k(),
             curve.equation(),
-            curve.source()
+            curve.source(),
         ));
     }
-    Ok(text)
+    for curve in substance.point_curves() {
+        let property = curve.property();
+        text.push_str(&curve_line(
+            &format!("{} in {}", property.id(), si_symbol(property.dimension())),
+            curve.range_k(),
+            curve.points(),
+            curve.source(),
+        ));
+    }
+    text.push_str(&clapeyron_lines(substance));
+    for conflict in substances.conflicts_of(substance) {
+        let at = conflict
+            .temperature_k
+            .map_or(String::new(), |t| format!(" at {t} K"));
+        let used = match &*conflict.used {
+            "" => "none used".to_owned(),
+            used => format!("{used} used ({})", conflict.used_source),
+        };
+        text.push_str(&format!(
+            "  sources differ, {}{at} in {}: {used}, {} ({})\n    {}\n",
+            conflict.property,
+            conflict.unit,
+            conflict.other,
+            conflict.other_source,
+            conflict.decision
+        ));
+    }
+    if let Some(sphere) = substances.hansen_sphere(substance.name()) {
+        let [dispersion, polar, hydrogen_bonding] = sphere.centre_sqrt_pa.map(|v| v / 1e3);
+        text.push_str(&format!(
+            "  Hansen sphere in MPa^0.5: centre {dispersion} {polar} {hydrogen_bonding}, radius {}  ({})\n",
+            sphere.radius_sqrt_pa / 1e3,
+            sphere.source
+        ));
+    }
+    for supply in substance.supplies() {
+        let parts = [
+            supply.price.as_ref().map(ToString::to_string),
+            Some(supply.availability.to_string()),
+            Some(supply.notes.to_string()),
+        ];
+        let parts: Vec<String> = parts
+            .into_iter()
+            .flatten()
+            .filter(|part| !part.is_empty())
+            .collect();
+        text.push_str(&format!(
+            "  supply: {}  ({})\n",
+            parts.join("; "),
+            supply.source
+        ));
+    }
+    text
+}
+
+fn curve_line(
+    what: &str,
+    (low, high): (f64, f64),
+    equation: &dyn std::fmt::Display,
+    source: &str,
+) -> String {
+    let range = if low < high {
+        format!("from {low} K to {high} K")
+    } else {
+        format!("at {low} K")
+    };
+    format!("  {what} {range}: {equation}  ({source})\n")
+}
+
+/// Each measured enthalpy of vaporization beside that of the vapor-pressure curve.
+fn clapeyron_lines(substance: &Substance) -> String {
+    let property = Property::EnthalpyOfVaporization;
+    let mut text = String::new();
+    for constant in substance.values(property) {
+        let boiling_k = || {
+            let boiling = substance.measured(Property::BoilingPoint, 0.0)?;
+            Some(boiling.ok()?.value)
+        };
+        let Some(temperature_k) = constant.temperature_k.or_else(boiling_k) else {
+            continue;
+        };
+        match substance.clapeyron_enthalpy(temperature_k) {
+            None => {}
+            Some(Ok(found)) => text.push_str(&format!(
+                "  {} at {temperature_k:.2} K by the vapor-pressure curve: {:.0} J/mol ({:+.1} %), delta Z {:.3}\n",
+                property.id(),
+                found.enthalpy_j_per_mol,
+                100.0 * (found.enthalpy_j_per_mol / constant.value - 1.0),
+                found.delta_z
+            )),
+            Some(Err(reason)) => text.push_str(&format!(
+                "  {} at {temperature_k:.2} K by the vapor-pressure curve: not known ({reason})\n",
+                property.id()
+            )),
+        }
+    }
+    text
 }
 
 fn slips(library: &Library) -> String {
