@@ -6,12 +6,12 @@ use std::sync::Arc;
 
 use super::load::{Kind, Layer};
 use super::points::{PointCurve, Points, Straight};
-use super::substance::{BOILING_POINT_MISS_K, SAME_TEMPERATURE_K, misses};
+use super::substance::{BOILING_POINT_MISS_K, SAME_TEMPERATURE_K, is_normal_pressure, misses};
 use super::{
     Conflict, Constant, DensityEquation, LiquidDensity, Substance, VaporPressure,
     VaporPressureEquation,
 };
-use crate::quantity::{Dimension, Property, unit};
+use crate::quantity::{Dimension, Property, number, unit};
 use crate::table::TableError;
 
 /// By how much a stated density may differ from the substance's curve, as a part of it.
@@ -24,6 +24,9 @@ pub(super) const DENSITY_MISS: f64 = 0.05;
 /// half are within 1 % and 95 % within 5 % where the critical point is known; the
 /// two that are further off than this are named in `groups/substances/README.md`.
 pub(super) const ENTHALPY_MISS: f64 = 0.09;
+
+/// Significant digits of the other value of a disagreement: a curve knows no more.
+const CURVE_DIGITS: u32 = 6;
 
 /// What a user's number is remembered for: its place, for a fault found later.
 pub(super) struct Stated {
@@ -243,30 +246,43 @@ impl Layer<'_> {
             .filter(|other| parts(property, constant.value, other.value))
             .map(|other| (other.value, Arc::clone(&other.source)));
         let curve = || {
-            let pressure_pa = constant
-                .pressure_pa
-                .filter(|_| property == Property::BoilingPoint)?;
+            let (t, p) = match property {
+                Property::BoilingPoint => (constant.value, constant.pressure_pa?),
+                Property::VaporPressure => (constant.temperature_k?, constant.value),
+                _ => return None,
+            };
             let older = self.fresh(one.substance, Kind::VaporPressures);
             let curve = substance.vapor_pressures[older..]
                 .iter()
-                .find(|curve| misses(curve, constant.value, pressure_pa, BOILING_POINT_MISS_K))?;
-            let t = curve.saturation_temperature_k(pressure_pa).ok()?;
-            Some((t, Arc::clone(curve.source())))
+                .find(|curve| misses(curve, t, p, BOILING_POINT_MISS_K))?;
+            let value = match property {
+                Property::BoilingPoint => curve.saturation_temperature_k(p).ok()?,
+                _ => curve.pressure_pa(t).ok()?,
+            };
+            Some((value, Arc::clone(curve.source())))
         };
         let Some((other, other_source)) = older.or_else(curve) else {
             return;
         };
-        let text = |value: f64| Arc::from(unit::to_table(value, dimension).to_string());
+        let text = |value: f64| Arc::from(number::short(unit::to_table(value, dimension)));
+        let at = match constant.pressure_pa {
+            Some(pressure_pa) if !is_normal_pressure(pressure_pa) => {
+                format!("at {} kPa: ", number::short(pressure_pa / 1000.0))
+            }
+            _ => String::new(),
+        };
         self.all.conflicts.push(Conflict {
             substance: one.substance as usize,
             property: Arc::from(property.id()),
             temperature_k: constant.temperature_k,
             used: text(constant.value),
             used_source: Arc::clone(&constant.source),
-            other: text((other * 1e4).round() / 1e4),
+            other: Arc::from(number::text(unit::to_table(other, dimension), CURVE_DIGITS)),
             other_source,
             unit: Arc::from(unit::si_symbol(dimension)),
-            decision: Arc::from("a user's value goes before those that are built in"),
+            decision: Arc::from(format!(
+                "{at}a user's value goes before those that are built in"
+            )),
         });
     }
 }

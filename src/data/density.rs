@@ -197,8 +197,11 @@ impl LiquidDensity {
     /// [`OutOfRange::Temperature`] past the [limits](Self::limits_k).
     pub fn density_kg_per_m3(&self, temperature_k: f64) -> Result<f64, OutOfRange> {
         let (low_k, high_k) = self.limits_k;
-        if (low_k..=high_k).contains(&temperature_k) {
-            Ok(self.equation.density_kg_per_m3(temperature_k))
+        let density = self.equation.density_kg_per_m3(temperature_k);
+        // the line through two points close together may leave what is possible
+        let sound = density > 0.0 && density.is_finite();
+        if (low_k..=high_k).contains(&temperature_k) && sound {
+            Ok(density)
         } else {
             Err(OutOfRange::Temperature {
                 temperature_k,

@@ -1165,19 +1165,21 @@ fn in_si(
         .map_err(|fault| row.fault(unit, fault))
 }
 
-/// A number in a unit of the dimension, in SI; else what is wrong with the unit.
+/// A number in a unit of the dimension, in SI and finite; else what is wrong with it.
 fn to_si(number: f64, symbol: &str, dimension: Dimension) -> Result<f64, String> {
-    match dimension {
-        Dimension::Number if symbol == "-" || symbol.is_empty() => Ok(number),
+    let value = match dimension {
+        Dimension::Number if symbol == "-" || symbol.is_empty() => number,
         // the common cases, kept from being written out and read again
-        Dimension::SolubilityParameter if symbol == unit::si_symbol(dimension) => {
-            Ok(1000.0 * number)
-        }
-        Dimension::Pressure if symbol == "kPa" => Ok(1000.0 * number),
-        _ if symbol == unit::si_symbol(dimension) => Ok(number),
-        _ => {
-            unit::parse(&format!("{number} {symbol}"), dimension).map_err(|error| error.to_string())
-        }
+        Dimension::SolubilityParameter if symbol == unit::si_symbol(dimension) => 1000.0 * number,
+        Dimension::Pressure if symbol == "kPa" => 1000.0 * number,
+        _ if symbol == unit::si_symbol(dimension) => number,
+        _ => unit::parse(&format!("{number} {symbol}"), dimension)
+            .map_err(|error| error.to_string())?,
+    };
+    if value.is_finite() {
+        Ok(value)
+    } else {
+        Err("is not a finite number in SI".into())
     }
 }
 

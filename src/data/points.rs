@@ -96,13 +96,13 @@ impl Points {
 }
 
 impl fmt::Display for Points {
-    /// How many points there are and how they are joined.
+    /// How many points there are and how they are joined; the value where there is one.
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match *self.points {
-            [_] => f.write_str("one measured point"),
+            [(_, value)] => write!(f, "{value}"),
             ref points => write!(
                 f,
-                "{} measured points, {}",
+                "{} points, {}",
                 points.len(),
                 match self.straight {
                     Straight::InTemperature => "straight in T",
@@ -185,7 +185,7 @@ impl PointCurve {
     pub fn value(&self, temperature_k: f64) -> Result<f64, OutOfRange> {
         let (low_k, high_k) = self.limits_k();
         let value = self.points.value(temperature_k);
-        if (low_k..=high_k).contains(&temperature_k) && value > 0.0 {
+        if (low_k..=high_k).contains(&temperature_k) && value > 0.0 && value.is_finite() {
             Ok(value)
         } else {
             Err(OutOfRange::Temperature {

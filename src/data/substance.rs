@@ -344,16 +344,21 @@ fn preferred<C>(
 }
 
 impl Constant {
-    /// Whether the other number is of the same property at the same temperature and pressure.
+    /// Whether the other number is of the same property in the same state:
+    /// within 0.01 K and a thousandth of the pressure, where these matter to it.
     pub fn is_of_same_state(&self, other: &Self) -> bool {
         let same = |one: Option<f64>, other: Option<f64>, width: f64| match (one, other) {
             (Some(one), Some(other)) => (one - other).abs() <= width,
             (one, other) => one == other,
         };
+        let takes_temperature = self.property.depends_on_temperature()
+            || self.property == Property::EnthalpyOfVaporization;
+        let takes_pressure = takes_temperature || self.property == Property::BoilingPoint;
         let width_pa = NORMAL_PRESSURE_WIDTH * self.pressure_pa.unwrap_or(0.0);
         self.property == other.property
-            && same(self.temperature_k, other.temperature_k, SAME_TEMPERATURE_K)
-            && same(self.pressure_pa, other.pressure_pa, width_pa)
+            && (!takes_temperature
+                || same(self.temperature_k, other.temperature_k, SAME_TEMPERATURE_K))
+            && (!takes_pressure || same(self.pressure_pa, other.pressure_pa, width_pa))
     }
 
     fn estimate(&self) -> Estimate {

@@ -168,7 +168,9 @@ impl VaporPressure {
                 VaporPressureEquation::Antoine { c, .. } => t + c > 0.0,
                 _ => true,
             };
-            right_branch && ln_p.is_finite() && slope.is_finite() && slope > 0.0
+            // the pressure itself has to be a number other than zero
+            let has_pressure = ln_p.abs() < f64::MAX.ln();
+            right_branch && has_pressure && slope.is_finite() && slope > 0.0
         };
         const STEPS: u32 = 24;
         let high_inside = match equation {

@@ -113,6 +113,47 @@ fn values_between_points_say_so_and_end_soon_after_them() {
     }
 }
 
+/// Two points a hair apart may not lead to a density that no liquid has, nor a
+/// number too large for SI to one without end.
+#[test]
+fn what_leaves_the_tables_is_finite() {
+    let table = oil("glow oil,liquid_density,900,kg/m3,300,,own\n\
+         glow oil,liquid_density,800,kg/m3,300.5,,own\n");
+    let steep = table.find("glow oil").unwrap();
+    assert!(
+        steep
+            .measured(Property::LiquidDensity, 300.25)
+            .unwrap()
+            .is_ok()
+    );
+    assert!(
+        steep
+            .measured(Property::LiquidDensity, 309.0)
+            .unwrap()
+            .is_err()
+    );
+    let measured = format!("{MEASURED}glow oil,boiling_point,400,K,,1e306,own\n");
+    let found = faults(&[("substances.csv", SUBSTANCES), ("measured.csv", &measured)]);
+    assert_eq!(
+        found,
+        ["measured.csv:3: column `pressure`: is not a finite number in SI (found `1e306`)"]
+    );
+}
+
+/// A temperature that does not matter to a property does not make a second value of it.
+#[test]
+fn a_property_without_temperature_stands_once() {
+    let measured = format!(
+        "{MEASURED}toluene,flash_point,277,K,,,own\ntoluene,flash_point,281,K,298.15,,own\n"
+    );
+    assert_eq!(
+        faults(&[("measured.csv", &measured)]),
+        [
+            "measured.csv:4: column `property`: stands twice for this substance: 277 and 281 (found `flash_point`)"
+        ]
+    );
+}
+
 #[test]
 fn a_user_s_points_go_before_a_built_in_curve_where_they_reach() {
     let rows = "toluene,liquid_density,870,kg/m3,290,,own\n\
