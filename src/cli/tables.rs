@@ -6,13 +6,13 @@ use super::args::{self, TablesWhat};
 use super::error::CliError;
 use super::exit::Exit;
 use super::{output, pair_tables};
-use crate::data::{Substance, Substances};
+use crate::data::{HansenSphere, Substance, Substances};
 use crate::evaluate::{FIGURES, Library};
 use crate::groups::SetId;
 use crate::mixture::{ActivityModel, Interaction, ModelStatus, RESERVED_MODELS, Unifac};
 use crate::pure::{METHODS, Role};
-use crate::quantity::Property;
-use crate::quantity::unit::{nearest, si_symbol, table_text};
+use crate::quantity::unit::{self, nearest, si_symbol, table_text};
+use crate::quantity::{Dimension, Property};
 use crate::report::{TextColumn, TextTable};
 
 pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, CliError> {
@@ -386,7 +386,14 @@ fn substances(library: &Library, name: Option<&str>) -> Result<String, CliError>
                 .and_then(|profile| library.known(&profile.keys));
             match found {
                 Some(known) => known.substance,
-                None => return Err(CliError::Usage(error.to_string())),
+                // a polymer, say, of which nothing but its sphere is known
+                None => {
+                    return library
+                        .substances()
+                        .hansen_sphere(name)
+                        .map(|sphere| format!("{}\n{}", sphere.solute, sphere_line(sphere)))
+                        .ok_or_else(|| CliError::Usage(error.to_string()));
+                }
             }
         }
     };
@@ -472,12 +479,7 @@ fn measured_of(substances: &Substances, substance: &Substance) -> String {
         ));
     }
     if let Some(sphere) = substances.hansen_sphere(substance.name()) {
-        let [dispersion, polar, hydrogen_bonding] = sphere.centre_sqrt_pa.map(|v| v / 1e3);
-        text.push_str(&format!(
-            "  Hansen sphere in MPa^0.5: centre {dispersion} {polar} {hydrogen_bonding}, radius {}  ({})\n",
-            sphere.radius_sqrt_pa / 1e3,
-            sphere.source
-        ));
+        text.push_str(&sphere_line(sphere));
     }
     for supply in substance.supplies() {
         let parts = [
@@ -497,6 +499,17 @@ fn measured_of(substances: &Substances, substance: &Substance) -> String {
         ));
     }
     text
+}
+
+fn sphere_line(sphere: &HansenSphere) -> String {
+    let [dispersion, polar, hydrogen_bonding] = sphere
+        .centre_sqrt_pa
+        .map(|value| unit::to_table(value, Dimension::SolubilityParameter));
+    format!(
+        "  Hansen sphere in MPa^0.5: centre {dispersion} {polar} {hydrogen_bonding}, radius {}  ({})\n",
+        unit::to_table(sphere.radius_sqrt_pa, Dimension::SolubilityParameter),
+        sphere.source
+    )
 }
 
 fn curve_line(

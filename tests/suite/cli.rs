@@ -888,6 +888,39 @@ fn tables_tell_what_is_built_in() {
 }
 
 #[test]
+fn a_substance_is_shown_with_what_is_used_and_why() {
+    let bench = Bench::new();
+    bench.write(
+        "own/substances/measured.csv",
+        "substance,property,value,unit,temperature,pressure,source\n-,-,-,-,degC,mbar,-\n\
+         acetone,boiling_point,20,degC,,200,own still\n\
+         acetone,boiling_point,49.5,degC,,1013.25,own still\n\
+         acetone,liquid_density,790,kg/m3,20,,own\n\
+         acetone,liquid_viscosity,0.32,mPa s,20,,own\n\
+         acetone,liquid_viscosity,0.26,mPa s,40,,own\n\
+         acetone,enthalpy_of_vaporization,31,kJ/mol,25,,own\n",
+    );
+    bench.write(
+        "own/substances/supply.csv",
+        "substance,price,price_unit,availability,notes,source\n-,-,-,-,-,-\n\
+         acetone,0.9,EUR/kg,tank,dry,offer of May\n",
+    );
+    bench.write(
+        "own/substances/hansen_spheres.csv",
+        "solute,dispersion,polar,hydrogen_bonding,radius,source\n\
+         -,MPa^0.5,MPa^0.5,MPa^0.5,MPa^0.5,-\nPoly-X,18,6,7,8,own\n",
+    );
+    let folder = bench.argument("own");
+    let shown = |name: &str| {
+        let said = say(&["--tables", &folder, "tables", "substances", name]);
+        assert_eq!((said.code, said.err.as_str()), (0, ""), "{name}");
+        said.out
+    };
+    let told = shown("acetone") + &shown("poly x");
+    insta::assert_snapshot!("substance", told);
+}
+
+#[test]
 fn a_reader_who_has_heard_enough_is_no_error() {
     for arguments in [
         &["tables", "substances"][..],
