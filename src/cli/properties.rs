@@ -9,6 +9,7 @@ use super::exit::Exit;
 use super::molecules::{Asked, for_each};
 use super::output;
 use crate::evaluate::{Library, Profiler, properties};
+use crate::pure::Estimates;
 use crate::quantity::{Absent, Dimension, Outcome, Property, unit};
 use crate::report::{PropertyRow, RowStream, property_text};
 
@@ -31,15 +32,15 @@ pub(super) fn run(command: &args::Properties, library: &Library) -> Result<Exit,
         library,
         &mut profiler,
         |profiler, asked| {
-            let outcomes = outcomes(
+            let found = outcomes(
                 library,
                 profiler,
                 &asked,
                 command.estimates_only,
                 temperature_k,
             );
-            answered |= outcomes.iter().any(Result::is_ok);
-            let rows: Vec<_> = rows(&asked, &outcomes, temperature_k).collect();
+            answered |= found.shown.iter().any(Result::is_ok);
+            let rows: Vec<_> = rows(&asked, &found, temperature_k).collect();
             match &mut stream {
                 Some(stream) => rows.iter().try_for_each(|row| stream.add(row))?,
                 None => show(&asked, &rows)?,
@@ -53,47 +54,62 @@ pub(super) fn run(command: &args::Properties, library: &Library) -> Result<Exit,
     Ok(if answered { Exit::Done } else { Exit::Nothing })
 }
 
+/// The properties of a molecule, in the order of [`Property::ALL`].
+struct Found {
+    /// Measured where known, else estimated.
+    shown: Vec<Outcome>,
+    /// By the methods alone; `None` where nothing is measured.
+    estimates: Option<Estimates>,
+}
+
 fn outcomes(
     library: &Library,
     profiler: &mut Profiler,
     asked: &Asked,
     estimates_only: bool,
     temperature_k: f64,
-) -> Vec<Outcome> {
-    match &asked.profile {
+) -> Found {
+    let profile = match &asked.profile {
+        Ok(profile) => profile,
         Err(reason) => {
             let reason: Arc<str> = reason.as_str().into();
-            vec![Err(Absent::Because(reason)); Property::COUNT]
+            return Found {
+                shown: vec![Err(Absent::Because(reason)); Property::COUNT],
+                estimates: None,
+            };
         }
-        Ok(profile) => {
-            let known = library.known(&profile.keys).filter(|_| !estimates_only);
-            properties(library, profile, known, temperature_k)
-                .into_iter()
-                .map(|outcome| {
-                    outcome.map_err(|absent| profiler.explained(library, profile, &absent))
-                })
-                .collect()
-        }
+    };
+    let known = library.known(&profile.keys).filter(|_| !estimates_only);
+    Found {
+        shown: properties(library, profile, known, temperature_k)
+            .into_iter()
+            .map(|outcome| outcome.map_err(|absent| profiler.explained(library, profile, &absent)))
+            .collect(),
+        estimates: known.map(|_| properties(library, profile, None, temperature_k)),
     }
 }
 
 fn rows<'a>(
     asked: &'a Asked,
-    outcomes: &'a [Outcome],
+    found: &'a Found,
     temperature_k: f64,
 ) -> impl Iterator<Item = PropertyRow<'a>> {
     Property::ALL
         .into_iter()
-        .zip(outcomes)
+        .zip(&found.shown)
         .map(move |(property, outcome)| {
-            PropertyRow::new(
+            let row = PropertyRow::new(
                 asked.line,
                 &asked.name,
                 &asked.smiles,
                 property,
                 temperature_k,
                 outcome,
-            )
+            );
+            match &found.estimates {
+                Some(estimates) => row.beside(&estimates[property as usize]),
+                None => row,
+            }
         })
 }
 

@@ -161,4 +161,17 @@ impl Property {
                 | Self::SurfaceTension
         )
     }
+
+    /// Whether its value is counted from a zero of its own, so that a share of
+    /// it means something: not a temperature, a heat of formation, a logarithm.
+    pub const fn has_natural_zero(self) -> bool {
+        !matches!(self.dimension(), Dimension::Temperature)
+            && !matches!(
+                self,
+                Self::AcentricFactor
+                    | Self::IdealGasEnthalpyOfFormation
+                    | Self::IdealGasGibbsEnergyOfFormation
+                    | Self::LogPOctanolWater
+            )
+    }
 }

@@ -7,7 +7,7 @@ use super::json::rounded;
 use super::text_table::{TextColumn, TextTable};
 use crate::quantity::number::{self, LOOK_UP_DIGITS};
 use crate::quantity::unit::{digits_for_reading, reading_unit, si_symbol, to_table};
-use crate::quantity::{Outcome, Property};
+use crate::quantity::{Dimension, Outcome, Property, Status};
 
 /// One property of one molecule, in the unit of tables.
 #[derive(Clone, Debug, PartialEq, Serialize)]
@@ -41,6 +41,14 @@ pub struct PropertyRow<'a> {
     pub status: &'static str,
     /// Flags and source, or the reason for the absence.
     pub detail: String,
+    /// What the method says where the value is measured, in the same unit.
+    #[serde(serialize_with = "rounded")]
+    pub estimated_value: Option<f64>,
+    /// Identifier of that method; empty where there is no such value.
+    pub estimated_method: &'static str,
+    /// The estimate less the measured value, in the same unit.
+    #[serde(serialize_with = "rounded")]
+    pub difference: Option<f64>,
 }
 
 impl<'a> PropertyRow<'a> {
@@ -80,6 +88,9 @@ impl<'a> PropertyRow<'a> {
                     method: estimate.method,
                     status: estimate.status.id(),
                     detail,
+                    estimated_value: None,
+                    estimated_method: "",
+                    difference: None,
                 }
             }
             Err(absent) => Self {
@@ -95,14 +106,33 @@ impl<'a> PropertyRow<'a> {
                 method: "",
                 status: "absent",
                 detail: absent.to_string(),
+                estimated_value: None,
+                estimated_method: "",
+                difference: None,
             },
         }
+    }
+
+    /// The same row with what the methods say without measured data: shown
+    /// where the value is measured and the methods have one.
+    #[must_use]
+    pub fn beside(mut self, estimate: &Outcome) -> Self {
+        let (Some(measured), Ok(estimate)) = (self.value, estimate) else {
+            return self;
+        };
+        if self.status == Status::Measured.id() && estimate.status == Status::Estimated {
+            let value = to_table(estimate.value, self.property.dimension());
+            self.estimated_value = Some(value);
+            self.estimated_method = estimate.method;
+            self.difference = Some(value - measured);
+        }
+        self
     }
 }
 
 impl CsvRow for PropertyRow<'_> {
-    const HEAD: &'static str =
-        "line,name,smiles,property,temperature_k,value,unit,low,high,method,status,detail";
+    const HEAD: &'static str = "line,name,smiles,property,temperature_k,value,unit,low,high,method,status,detail,\
+         estimated_value,estimated_method,difference";
 
     fn write_csv(&self, out: &mut Vec<u8>) {
         let mut line = CsvLine::new(out);
@@ -117,7 +147,10 @@ impl CsvRow for PropertyRow<'_> {
             .number_or_empty(self.high, LOOK_UP_DIGITS)
             .text(self.method)
             .text(self.status)
-            .text(&self.detail);
+            .text(&self.detail)
+            .number_or_empty(self.estimated_value, LOOK_UP_DIGITS)
+            .text(self.estimated_method)
+            .number_or_empty(self.difference, LOOK_UP_DIGITS);
         line.end();
     }
 }
@@ -129,7 +162,8 @@ fn property_id<S: serde::Serializer>(
     serializer.serialize_str(property.id())
 }
 
-/// The properties of one molecule for people, in the units people read.
+/// The properties of one molecule for people, in the units people read; where
+/// a value is measured, what the methods say and how far off it is.
 pub fn property_text<'a>(
     rows: impl IntoIterator<Item = &'a PropertyRow<'a>>,
     width: Option<usize>,
@@ -139,34 +173,74 @@ pub fn property_text<'a>(
         TextColumn::number("value", ""),
         TextColumn::text("unit"),
         TextColumn::number("at", "K"),
-        TextColumn::text("status"),
-        TextColumn::text("method"),
+        TextColumn::text("by"),
+        TextColumn::number("estimate", ""),
+        TextColumn::number("difference", ""),
+        TextColumn::number("", "%"),
+        TextColumn::text("estimated by"),
         TextColumn::text("detail"),
     ]);
     for row in rows {
-        let unit = reading_unit(row.property.dimension());
-        let (value, symbol) = match (row.value, unit) {
-            (None, _) => (String::from("–"), ""),
-            (Some(value), None) => (number::for_reading(value), ""),
-            (Some(value), Some(unit)) => {
-                // Where tables and readers share a unit, the value is in it already.
-                let shown = match unit.symbol == row.unit {
-                    true => value,
-                    false => unit.from_si(value),
-                };
-                let shown = digits_for_reading(shown, row.property.dimension());
-                (shown, unit.symbol)
-            }
+        let dimension = row.property.dimension();
+        let shown = |value: Option<f64>| value.map(|value| in_reading_unit(value, dimension));
+        let symbol = match row.value {
+            Some(_) => reading_unit(dimension).map_or("", |unit| unit.symbol),
+            None => "",
+        };
+        let value =
+            shown(row.value).map_or("–".into(), |value| digits_for_reading(value, dimension));
+        let estimate = shown(row.estimated_value);
+        let (difference, percent) = match (row.value, row.difference) {
+            (Some(measured), Some(difference)) => (
+                signed(digits_for_reading(
+                    in_reading_unit(difference, dimension),
+                    dimension,
+                )),
+                percent(difference, measured, row.property),
+            ),
+            _ => (String::new(), String::new()),
         };
         table.add([
             row.property.id().into(),
             value,
             symbol.into(),
             row.temperature_k.map(number::short).unwrap_or_default(),
-            row.status.into(),
+            // A measured value says so in place of a method, an absent one in its detail.
             row.method.into(),
+            estimate.map_or(String::new(), |value| digits_for_reading(value, dimension)),
+            difference,
+            percent,
+            row.estimated_method.into(),
             row.detail.clone(),
         ]);
     }
     table.render(width)
+}
+
+/// A value of a table, or a difference of two, in the unit that people read;
+/// none of these has its zero elsewhere.
+pub(super) fn in_reading_unit(value: f64, dimension: Dimension) -> f64 {
+    match reading_unit(dimension) {
+        // Where tables and readers share a unit, the value is in it already.
+        Some(unit) if unit.symbol != si_symbol(dimension) => unit.from_si(value),
+        _ => value,
+    }
+}
+
+/// A difference with its sign, whichever way it points.
+pub(super) fn signed(digits: String) -> String {
+    match digits.starts_with('-') {
+        true => digits,
+        false => format!("+{digits}"),
+    }
+}
+
+/// A difference in percent of the measured value; empty where that says
+/// nothing, as of a temperature or of what is counted from a chosen zero.
+pub(super) fn percent(difference: f64, measured: f64, property: Property) -> String {
+    if property.has_natural_zero() && measured > 0.0 {
+        signed(format!("{:.1}", 100.0 * difference / measured))
+    } else {
+        String::new()
+    }
 }

@@ -71,7 +71,7 @@ fn heads_of_csv_are_those_relied_upon() {
         ),
         (
             &["properties", "CCO"][..],
-            "line,name,smiles,property,temperature_k,value,unit,low,high,method,status,detail",
+            "line,name,smiles,property,temperature_k,value,unit,low,high,method,status,detail,estimated_value,estimated_method,difference",
         ),
         (
             &["mixture", "--component", "CCO", "--temperature", "300 K"][..],
@@ -139,13 +139,12 @@ fn a_row_that_cannot_be_answered_tells_why_and_spares_the_code() {
     for command in ["breakdown", "properties"] {
         let said = say(&[command, "CCO", "C(", "--format", "csv"]);
         assert_eq!(said.code, 0, "{command}");
-        let bad: Vec<Vec<String>> = csv_rows(&said.out)
-            .into_iter()
-            .filter(|row| row[0] == "2")
-            .collect();
+        let rows = csv_rows(&said.out);
+        let at = rows[0].iter().position(|head| head == "detail").unwrap();
+        let bad: Vec<_> = rows.iter().filter(|row| row[0] == "2").collect();
         assert!(!bad.is_empty());
         for row in bad {
-            let detail = row.last().unwrap();
+            let detail = &row[at];
             assert!(
                 detail.contains("column 3: the line ends too early"),
                 "{detail}"
@@ -956,6 +955,66 @@ fn an_output_that_takes_nothing_is_a_failure() {
     assert_eq!(output.status.code(), Some(3));
     let err = String::from_utf8(output.stderr).unwrap();
     assert!(err.contains("cannot write the output"), "{err}");
+}
+
+/// The cells of a row by their column.
+fn cells_of<'r>(rows: &'r [Vec<String>], property: &str, columns: &[&str]) -> Vec<&'r str> {
+    let at = |name: &str| rows[0].iter().position(|head| head == name).unwrap();
+    let row = rows[1..].iter().find(|row| row[at("property")] == property);
+    let row = row.unwrap_or_else(|| panic!("no row {property}"));
+    columns.iter().map(|name| row[at(name)].as_str()).collect()
+}
+
+#[test]
+fn an_estimate_stands_beside_a_measured_value() {
+    let columns = [
+        "value",
+        "status",
+        "estimated_value",
+        "estimated_method",
+        "difference",
+    ];
+    let said = say(&["properties", "acetone", "--format", "csv"]);
+    let rows = csv_rows(&said.out);
+    let boiling = cells_of(&rows, "boiling_point", &columns);
+    // Joback and Reid print 322.11 K for acetone.
+    assert_eq!(boiling[1..4], ["measured", "322.11", "joback-reid"]);
+    let [value, difference] = [boiling[0], boiling[4]].map(|cell| cell.parse::<f64>().unwrap());
+    close(value + difference, 322.11, 1e-9);
+    // Nothing is compared where nothing is measured, or no method is built in.
+    let critical = cells_of(&rows, "critical_temperature", &columns);
+    assert_eq!(critical[1..], ["estimated", "", "", ""]);
+    let hansen = cells_of(&rows, "hansen_polar", &columns);
+    assert_eq!(hansen[1..], ["measured", "", "", ""]);
+
+    let said = say(&[
+        "properties",
+        "acetone",
+        "--estimates-only",
+        "--format",
+        "csv",
+    ]);
+    let rows = csv_rows(&said.out);
+    let boiling = cells_of(&rows, "boiling_point", &columns);
+    assert_eq!(boiling, ["322.11", "estimated", "", "", ""]);
+
+    let said = say(&["properties", "acetone"]);
+    let line = |name: &str| {
+        said.out
+            .lines()
+            .find(|line| line.starts_with(name))
+            .unwrap()
+    };
+    // A share of a temperature says nothing, one of a density does.
+    assert!(line("boiling_point").contains("322.11"), "{}", said.out);
+    assert!(said.out.contains("difference"), "{}", said.out);
+    let percent = |line: &str| {
+        line.split_whitespace()
+            .filter(|word| word.starts_with(['+', '-']))
+            .count()
+    };
+    assert_eq!(percent(line("boiling_point")), 1);
+    assert_eq!(percent(line("liquid_density")), 2);
 }
 
 const HEAD: &str = "# title: own values\n# source: own fit\n# transcribed: today\n# checked: no\n";

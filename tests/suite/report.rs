@@ -72,7 +72,7 @@ fn properties() -> Vec<PropertyRow<'static>> {
         .with(Flag::RestsOnEstimate);
     vec![
         row(Property::MolarMass, Ok(Estimate::new(0.046_069, "formula"))),
-        row(Property::BoilingPoint, Ok(measured)),
+        row(Property::BoilingPoint, Ok(measured)).beside(&Ok(Estimate::new(337.54, "some-method"))),
         row(
             Property::VaporPressure,
             Ok(Estimate::new(7_872.0 / 3.0, "some-method").at(298.15)),
