@@ -177,7 +177,6 @@ pub fn property_text<'a>(
         TextColumn::number("estimate", ""),
         TextColumn::number("difference", ""),
         TextColumn::number("", "%"),
-        TextColumn::text("estimated by"),
         TextColumn::text("detail"),
     ]);
     for row in rows {
@@ -210,8 +209,10 @@ pub fn property_text<'a>(
             estimate.map_or(String::new(), |value| digits_for_reading(value, dimension)),
             difference,
             percent,
-            row.estimated_method.into(),
-            row.detail.clone(),
+            match row.estimated_method {
+                "" => row.detail.clone(),
+                method => format!("estimate by {method}; {}", row.detail),
+            },
         ]);
     }
     table.render(width)
