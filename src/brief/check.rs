@@ -8,8 +8,8 @@ use super::error::{Cause, Fault, Faults};
 use super::fractions::checked_fractions;
 use super::place::{Located, Place};
 use super::raw::{
-    self, Field, RawAssembly, RawBrief, RawMixture, RawPool, RawQuantity, RawRange, RawReference,
-    RawSolventToFeed, RawStructure, RawTarget,
+    self, Field, RawAssembly, RawBrief, RawData, RawMixture, RawPool, RawQuantity, RawRange,
+    RawReference, RawSolventToFeed, RawStructure, RawTarget,
 };
 use super::structure::{CountRange, GroupLimit, PatternLimit, Structure};
 use super::target::{Direction, Target, Want};
@@ -152,6 +152,7 @@ impl Check<'_> {
             mixture: raw
                 .mixture
                 .and_then(|mixture| self.mixture(mixture, job == Job::Mixture)),
+            data_folder: raw.data.and_then(|data| self.data_folder(data)),
             pool: raw.pool.and_then(|pool| self.pool(pool)),
             assembly: raw.assembly.map(|assembly| self.assembly(assembly)),
             structure: self.structure(raw.structure),
@@ -429,6 +430,20 @@ impl Check<'_> {
             },
             raw.place,
         ))
+    }
+
+    fn data_folder(&mut self, raw: RawData) -> Option<Located<String>> {
+        if raw.folder.is_absent() {
+            self.fault(
+                raw.place,
+                Cause::Missing {
+                    section: "`[data]`".into(),
+                    key: "folder",
+                    example: "folder = \"lab\"",
+                },
+            );
+        }
+        raw.folder.given()
     }
 
     fn pool(&mut self, raw: RawPool) -> Option<Pool> {

@@ -96,6 +96,12 @@ pub(super) struct RawMixture {
 }
 
 #[derive(Debug)]
+pub(super) struct RawData {
+    pub(super) place: Place,
+    pub(super) folder: Field<String>,
+}
+
+#[derive(Debug)]
 pub(super) struct RawPool {
     pub(super) place: Place,
     pub(super) file: Field<String>,
@@ -163,6 +169,7 @@ pub(super) struct RawBrief {
     pub(super) title: Field<String>,
     pub(super) purpose: Field<String>,
     pub(super) mixture: Option<RawMixture>,
+    pub(super) data: Option<RawData>,
     pub(super) pool: Option<RawPool>,
     pub(super) assembly: Option<RawAssembly>,
     pub(super) structure: RawStructure,
@@ -176,7 +183,7 @@ pub(super) struct RawBrief {
 }
 
 /// Words people try for a key that is called otherwise.
-const SYNONYMS: [(&str, &str); 18] = [
+const SYNONYMS: [(&str, &str); 20] = [
     ("max", "at_most"),
     ("maximum", "at_most"),
     ("min", "at_least"),
@@ -191,6 +198,8 @@ const SYNONYMS: [(&str, &str); 18] = [
     ("component", "components"),
     ("composition", "fractions"),
     ("path", "file"),
+    ("dir", "folder"),
+    ("directory", "folder"),
     ("groups", "group"),
     ("patterns", "pattern"),
     ("smarts", "pattern"),
@@ -278,6 +287,7 @@ impl<'a> Reader<'a> {
                 "title",
                 "purpose",
                 "mixture",
+                "data",
                 "pool",
                 "assembly",
                 "structure",
@@ -296,6 +306,13 @@ impl<'a> Reader<'a> {
         };
         if let Some(mut section) = self.section(root, "mixture") {
             brief.mixture = Some(self.mixture(&mut section));
+        }
+        if let Some(mut section) = self.section(root, "data") {
+            self.refuse_unknown(&mut section, &["folder"]);
+            brief.data = Some(RawData {
+                place: section.place,
+                folder: self.text(&section, "folder", "folder = \"lab\""),
+            });
         }
         if let Some(mut section) = self.section(root, "pool") {
             self.refuse_unknown(&mut section, &["file", "name_column", "smiles_column"]);
@@ -769,6 +786,7 @@ impl<'a> Reader<'a> {
                     "limits" => "limits = { \"OH\" = 2 }",
                     "solvent_to_feed" => "solvent_to_feed = { ratio = 2.0, basis = \"mole\" }",
                     "mixture" => "[mixture]",
+                    "data" => "[data]",
                     "pool" => "[pool]",
                     "keep" => "[keep]",
                     "assembly" => "[assembly]",

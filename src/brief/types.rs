@@ -124,7 +124,7 @@ pub struct Assembly {
 pub struct Brief {
     /// Name of the brief in messages.
     pub file: Arc<str>,
-    /// Folder of the brief: what `pool.file` is relative to.
+    /// Folder of the brief: what `pool.file` and `data.folder` are relative to.
     pub folder: PathBuf,
     /// The text of the brief as it stands, for the run record.
     pub text: Arc<str>,
@@ -134,6 +134,8 @@ pub struct Brief {
     pub purpose: Option<Located<String>>,
     /// The mixture.
     pub mixture: Option<Mixture>,
+    /// Folder of the user's measured data as written: relative to the brief.
+    pub data_folder: Option<Located<String>>,
     /// The candidate list.
     pub pool: Option<Pool>,
     /// The assembly search.
@@ -151,6 +153,12 @@ impl Brief {
     pub fn pool_path(&self) -> Option<PathBuf> {
         let file = &self.pool.as_ref()?.file.value;
         (file != "-").then(|| self.folder.join(Path::new(file)))
+    }
+
+    /// Path of the folder of measured data; `None` if the brief names none.
+    pub fn data_path(&self) -> Option<PathBuf> {
+        let folder = &self.data_folder.as_ref()?.value;
+        Some(self.folder.join(Path::new(folder)))
     }
 
     /// The title, or the name of the file where there is none.

@@ -26,6 +26,9 @@ pub(super) struct Arguments {
     /// Folder of tables laid over the built-in ones (same folder and file names as groups/)
     #[arg(long, global = true, value_name = "DIR")]
     pub(super) tables: Option<PathBuf>,
+    /// Folder of your own measured data: substances.csv, measured.csv, vapor_pressure.csv, …
+    #[arg(long, global = true, value_name = "DIR")]
+    pub(super) data: Option<PathBuf>,
 }
 
 /// The commands.
@@ -226,6 +229,6 @@ pub(super) enum TablesWhat {
 
 #[derive(Debug, Args)]
 pub(super) struct Check {
-    /// The brief
-    pub(super) brief: PathBuf,
+    /// The brief; may be left out where --data names a folder to check
+    pub(super) brief: Option<PathBuf>,
 }

@@ -6,15 +6,29 @@ use super::args;
 use super::error::CliError;
 use super::exit::Exit;
 use super::output;
+use super::own_data;
 use super::screen::{bind, open_pool};
+use super::user_tables::Sources;
 use crate::brief::{Brief, Job};
-use crate::evaluate::{CATALOG, Library};
+use crate::evaluate::CATALOG;
 use crate::screen::Batch;
 
-pub(super) fn run(command: &args::Check, library: Library) -> Result<Exit, CliError> {
-    let brief = Brief::load(&command.brief, &CATALOG, Job::Check)?;
-    let plan = bind(brief, library, true)?;
+pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, CliError> {
     let mut out = output::stdout();
+    let Some(file) = &command.brief else {
+        if !sources.name_data() {
+            return Err(CliError::Usage(
+                "nothing to check is given\n  give a brief, or a folder of measured data with --data"
+                    .into(),
+            ));
+        }
+        own_data::tell(&mut out, &sources.library(None)?)?;
+        out.flush()?;
+        return Ok(Exit::Done);
+    };
+    let brief = Brief::load(file, &CATALOG, Job::Check)?;
+    let library = sources.library(Some(&brief))?;
+    let plan = bind(brief, library, true)?;
     writeln!(out, "{}: sound", plan.brief.heading())?;
     for (position, component) in plan.components.iter().enumerate() {
         let vapor = if component.vapor.is_measured() {
@@ -82,6 +96,10 @@ pub(super) fn run(command: &args::Check, library: Library) -> Result<Exit, CliEr
             "  kept in the ranking: at most {}",
             plan.brief.keep_best
         )?;
+    }
+    if !plan.library.user_tables().is_empty() {
+        writeln!(out)?;
+        own_data::tell(&mut out, &plan.library)?;
     }
     out.flush()?;
     Ok(Exit::Done)

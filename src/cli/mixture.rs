@@ -7,6 +7,7 @@ use super::error::CliError;
 use super::exit::Exit;
 use super::output::{self, Notes};
 use super::tables::meant;
+use super::user_tables::Sources;
 use crate::brief::{Basis, Brief, Job, checked_fractions};
 use crate::evaluate::{
     CATALOG, DEFAULT_MODEL, Library, MixtureComponent, MixtureFigure, Profiler, StatedState,
@@ -28,10 +29,15 @@ struct Question {
 
 pub(super) fn run(
     command: &args::Mixture,
-    library: &Library,
+    sources: &Sources<'_>,
     notes: Notes,
 ) -> Result<Exit, CliError> {
-    let question = question(command)?;
+    let brief = match &command.file {
+        Some(file) => Some(Brief::load(file, &CATALOG, Job::Mixture)?),
+        None => None,
+    };
+    let library = &sources.library(brief.as_ref())?;
+    let question = question(command, brief)?;
     let mut profiler = Profiler::new();
     let use_measured = !command.estimates_only;
     let components: Vec<MixtureComponent> = question
@@ -145,11 +151,7 @@ fn row(figure: &MixtureFigure) -> MixtureRow<'_> {
     }
 }
 
-fn question(command: &args::Mixture) -> Result<Question, CliError> {
-    let brief = match &command.file {
-        Some(file) => Brief::load(file, &CATALOG, Job::Mixture)?.mixture,
-        None => None,
-    };
+fn question(command: &args::Mixture, brief: Option<Brief>) -> Result<Question, CliError> {
     let quantity = |text: &Option<String>, argument, dimension| match text {
         None => Ok(None),
         Some(text) => unit::parse(text, dimension)
@@ -170,7 +172,7 @@ fn question(command: &args::Mixture) -> Result<Question, CliError> {
         },
         models: models(&command.models)?,
     };
-    if let Some(brief) = brief {
+    if let Some(brief) = brief.and_then(|brief| brief.mixture) {
         if question.components.is_empty() {
             question.components = brief
                 .components

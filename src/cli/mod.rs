@@ -12,6 +12,7 @@ mod mixture;
 mod molecules;
 mod output;
 mod pair_tables;
+mod own_data;
 mod progress;
 mod properties;
 mod screen;
@@ -26,9 +27,7 @@ use clap::error::ErrorKind;
 use args::{Arguments, Command};
 use error::CliError;
 use exit::Exit;
-
-use crate::evaluate::Library;
-use crate::mixture::Slips;
+use user_tables::Sources;
 
 /// Runs the command named on the command line.
 pub fn main() -> ExitCode {
@@ -59,26 +58,15 @@ pub fn main() -> ExitCode {
 }
 
 fn run(arguments: &Arguments) -> Result<Exit, CliError> {
-    let slips = if arguments.as_circulated {
-        Slips::AsCirculated
-    } else {
-        Slips::Corrected
-    };
-    if let Command::Assemble(_) | Command::Report(_) | Command::Gather(_) = &arguments.command {
-        return Err(CliError::NotBuiltIn);
-    }
-    let library = match &arguments.tables {
-        None => Library::built_in(slips),
-        Some(folder) => Library::with_user_tables(slips, user_tables::read(folder)?)?,
-    };
     let notes = output::Notes::new(arguments.quiet);
+    let sources = Sources::new(arguments, notes);
     match &arguments.command {
-        Command::Breakdown(command) => breakdown::run(command, &library),
-        Command::Properties(command) => properties::run(command, &library),
-        Command::Mixture(command) => mixture::run(command, &library, notes),
-        Command::Screen(command) => screen::run(command, library, notes),
-        Command::Tables(command) => tables::run(command, &library),
-        Command::Check(command) => check::run(command, library),
+        Command::Breakdown(command) => breakdown::run(command, &sources.library(None)?),
+        Command::Properties(command) => properties::run(command, &sources.library(None)?),
+        Command::Mixture(command) => mixture::run(command, &sources, notes),
+        Command::Screen(command) => screen::run(command, &sources, notes),
+        Command::Tables(command) => tables::run(command, &sources.library(None)?),
+        Command::Check(command) => check::run(command, &sources),
         Command::Assemble(_) | Command::Report(_) | Command::Gather(_) => Err(CliError::NotBuiltIn),
     }
 }

@@ -10,6 +10,7 @@ use super::error::CliError;
 use super::exit::Exit;
 use super::output::{self, Notes};
 use super::progress::Progress;
+use super::user_tables::Sources;
 use crate::brief::{Brief, Job};
 use crate::evaluate::{CATALOG, Library, Plan, Scratch, Verdict};
 use crate::groups::SetId;
@@ -28,13 +29,14 @@ use crate::screen::{
 
 pub(super) fn run(
     command: &args::Screen,
-    library: Library,
+    sources: &Sources<'_>,
     notes: Notes,
 ) -> Result<Exit, CliError> {
     if command.threads == Some(0) {
         return Err(CliError::Usage("--threads has to be at least 1".into()));
     }
     let brief = Brief::load(&command.brief, &CATALOG, Job::Screen)?;
+    let library = sources.library(Some(&brief))?;
     let plan = bind(brief, library, !command.estimates_only)?;
     for note in &plan.notes {
         notes.say(&format!("note: {note}"));

@@ -4,6 +4,7 @@ mod brief;
 mod chem;
 mod cli;
 mod data;
+mod data_folder;
 mod evaluate;
 mod groups;
 mod independent;
