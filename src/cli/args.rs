@@ -83,7 +83,8 @@ pub(super) struct Molecules {
     /// SMILES or names of built-in substances
     #[arg(value_name = "SMILES|NAME")]
     pub(super) molecules: Vec<String>,
-    /// File of molecules: CSV with a `smiles` column, or `SMILES name` lines; `-` is standard input
+    /// File of molecules: CSV with a `smiles`, `name` or `cas` column, or `SMILES name` lines; `-` is
+    /// standard input
     #[arg(long, value_name = "FILE")]
     pub(super) from: Option<PathBuf>,
 }

@@ -6,7 +6,7 @@ use super::args;
 use super::error::CliError;
 use super::exit::Exit;
 use super::molecules::{Asked, for_each};
-use super::output;
+use super::output::{self, Notes};
 use super::tables::set_named;
 use crate::evaluate::{Library, Profiler};
 use crate::groups::{Coverage, SetId};
@@ -38,7 +38,11 @@ impl Row {
     }
 }
 
-pub(super) fn run(command: &args::Breakdown, library: &Library) -> Result<Exit, CliError> {
+pub(super) fn run(
+    command: &args::Breakdown,
+    library: &Library,
+    notes: Notes,
+) -> Result<Exit, CliError> {
     let sets = sets(&command.sets)?;
     let mut profiler = Profiler::new();
     let mut answered = false;
@@ -55,6 +59,7 @@ pub(super) fn run(command: &args::Breakdown, library: &Library) -> Result<Exit, 
         &command.molecules,
         library,
         &mut profiler,
+        notes,
         |profiler, asked| {
             for &set in &sets {
                 let row = row(library, profiler, &asked, set);

@@ -74,6 +74,9 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
     }
     if plan.brief.pool.is_some() {
         let mut pool = open_pool(&plan.brief, None)?;
+        for note in pool.notes() {
+            writeln!(out, "  note: {note}")?;
+        }
         let mut batch = Batch::default();
         let (mut lines, mut unusable) = (0_u64, 0_u64);
         loop {
@@ -83,7 +86,7 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
             }
             lines += batch.len() as u64;
             unusable += (0..batch.len())
-                .filter(|&at| batch.line(at).smiles.is_err())
+                .filter(|&at| batch.line(at).resolved(&plan.library).is_err())
                 .count() as u64;
         }
         writeln!(

@@ -61,8 +61,8 @@ fn run(arguments: &Arguments) -> Result<Exit, CliError> {
     let notes = output::Notes::new(arguments.quiet);
     let sources = Sources::new(arguments, notes);
     match &arguments.command {
-        Command::Breakdown(command) => breakdown::run(command, &sources.library(None)?),
-        Command::Properties(command) => properties::run(command, &sources.library(None)?),
+        Command::Breakdown(command) => breakdown::run(command, &sources.library(None)?, notes),
+        Command::Properties(command) => properties::run(command, &sources.library(None)?, notes),
         Command::Mixture(command) => mixture::run(command, &sources, notes),
         Command::Screen(command) => screen::run(command, &sources, notes),
         Command::Tables(command) => tables::run(command, &sources.library(None)?),

@@ -6,8 +6,10 @@ use std::sync::Arc;
 
 use super::args::Molecules;
 use super::error::CliError;
+use super::output::Notes;
 use crate::evaluate::{Library, Profile, Profiler};
-use crate::screen::{Batch, Columns, Pool};
+use crate::quantity::{Estimate, Property};
+use crate::screen::{Batch, Columns, Pool, Resolved};
 
 /// One molecule asked for.
 pub(super) struct Asked {
@@ -19,6 +21,8 @@ pub(super) struct Asked {
     pub(super) smiles: Arc<str>,
     /// Its profile, or why the line is no molecule.
     pub(super) profile: Result<Profile, String>,
+    /// Measured values that stand beside it in the file.
+    pub(super) measured: Vec<(Property, Estimate)>,
 }
 
 /// Lines of a file that are read at a time.
@@ -29,6 +33,7 @@ pub(super) fn for_each(
     asked: &Molecules,
     library: &Library,
     profiler: &mut Profiler,
+    notes: Notes,
     mut each: impl FnMut(&mut Profiler, Asked) -> Result<(), CliError>,
 ) -> Result<(), CliError> {
     if asked.molecules.is_empty() && asked.from.is_none() {
@@ -49,6 +54,7 @@ pub(super) fn for_each(
                     name: name.unwrap_or_default(),
                     smiles,
                     profile: Ok(profile),
+                    measured: Vec::new(),
                 }
             }
             Err(error) => Asked {
@@ -56,12 +62,16 @@ pub(super) fn for_each(
                 name: Arc::default(),
                 smiles: text.trim().into(),
                 profile: Err(error.to_string()),
+                measured: Vec::new(),
             },
         };
         each(profiler, found)?;
     }
     if let Some(file) = &asked.from {
         let mut pool = open(file)?;
+        for note in pool.notes() {
+            notes.say(&format!("note: {note}"));
+        }
         let mut batch = Batch::default();
         loop {
             pool.read_batch(&mut batch, BATCH_LINES)?;
@@ -70,15 +80,21 @@ pub(super) fn for_each(
             }
             for index in 0..batch.len() {
                 let line = batch.line(index);
-                let profile = match line.smiles {
-                    Ok(smiles) => profiler.profile(library, smiles).map_err(|e| e.to_string()),
-                    Err(fault) => Err(format!("the line {fault}")),
-                };
-                let found = Asked {
-                    line: line.line,
-                    name: line.name.into(),
-                    smiles: line.smiles.unwrap_or(line.text).into(),
-                    profile,
+                let found = match line.resolved(library) {
+                    Ok(Resolved { smiles, name }) => Asked {
+                        line: line.line,
+                        name: name.into(),
+                        smiles: smiles.into(),
+                        profile: profiler.profile(library, smiles).map_err(|e| e.to_string()),
+                        measured: line.measured().collect(),
+                    },
+                    Err(fault) => Asked {
+                        line: line.line,
+                        name: line.name.into(),
+                        smiles: line.text.into(),
+                        profile: Err(fault.to_string()),
+                        measured: Vec::new(),
+                    },
                 };
                 each(profiler, found)?;
             }

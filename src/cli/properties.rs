@@ -7,13 +7,17 @@ use super::args;
 use super::error::CliError;
 use super::exit::Exit;
 use super::molecules::{Asked, for_each};
-use super::output;
-use crate::evaluate::{Library, Profiler, properties};
+use super::output::{self, Notes};
+use crate::evaluate::{Library, Profiler, properties, properties_with};
 use crate::pure::Estimates;
 use crate::quantity::{Absent, Dimension, Outcome, Property, unit};
 use crate::report::{PropertyRow, RowStream, property_text};
 
-pub(super) fn run(command: &args::Properties, library: &Library) -> Result<Exit, CliError> {
+pub(super) fn run(
+    command: &args::Properties,
+    library: &Library,
+    notes: Notes,
+) -> Result<Exit, CliError> {
     let temperature_k =
         unit::parse(&command.temperature, Dimension::Temperature).map_err(|fault| {
             CliError::Quantity {
@@ -31,6 +35,7 @@ pub(super) fn run(command: &args::Properties, library: &Library) -> Result<Exit,
         &command.molecules,
         library,
         &mut profiler,
+        notes,
         |profiler, asked| {
             let found = outcomes(
                 library,
@@ -80,12 +85,17 @@ fn outcomes(
         }
     };
     let known = library.known(&profile.keys).filter(|_| !estimates_only);
+    let own = match estimates_only {
+        true => &[],
+        false => &asked.measured[..],
+    };
+    let is_measured = known.is_some() || !own.is_empty();
     Found {
-        shown: properties(library, profile, known, temperature_k)
+        shown: properties_with(library, profile, known, own, temperature_k)
             .into_iter()
             .map(|outcome| outcome.map_err(|absent| profiler.explained(library, profile, &absent)))
             .collect(),
-        estimates: known.map(|_| properties(library, profile, None, temperature_k)),
+        estimates: is_measured.then(|| properties(library, profile, None, temperature_k)),
     }
 }
 

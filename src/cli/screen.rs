@@ -15,8 +15,8 @@ use crate::brief::{Brief, Job};
 use crate::evaluate::{CATALOG, Library, Plan, Scratch, Verdict};
 use crate::groups::SetId;
 use crate::mixture::Slips;
-use crate::quantity::Status;
 use crate::quantity::unit::{reading_text, reading_unit, table_text};
+use crate::quantity::{Estimate, Property, Status};
 use crate::report::{
     FigureColumn, RankedRow, RankedTable, TargetLabel, TextColumn, TextTable, outcome_text,
 };
@@ -24,8 +24,11 @@ use crate::run::{
     BriefRecord, FileError, Fingerprint, RunRecord, StopFlag, TablesRecord, make_folder,
 };
 use crate::screen::{
-    Columns, FILES, Pool, PoolError, Ranked, Screened, Screening, StoppableReader,
+    Batch, Columns, FILES, Pool, PoolError, Ranked, Screened, Screening, StoppableReader,
 };
+
+/// Lines of the pool that are read at a time, where that is done here.
+const BATCH_LINES: usize = 4096;
 
 pub(super) fn run(
     command: &args::Screen,
@@ -62,6 +65,9 @@ pub(super) fn run(
         }
         pool => pool?,
     };
+    for note in pool.notes() {
+        notes.say(&format!("note: {note}"));
+    }
     let folder = match &command.out {
         Some(folder) => folder.clone(),
         None => default_folder(&command.brief),
@@ -161,11 +167,7 @@ pub(super) fn open_pool(brief: &Brief, stop: Option<&StopFlag>) -> Result<Pool, 
         .name_column
         .as_ref()
         .map(|column| column.value.as_str());
-    let default = Columns::default();
-    let columns = Columns {
-        smiles: smiles.unwrap_or(default.smiles),
-        name: name.unwrap_or(default.name),
-    };
+    let columns = Columns { smiles, name };
     Ok(match brief.pool_path() {
         Some(path) => Pool::open(&path, columns)?,
         None => {
@@ -390,6 +392,29 @@ fn look_up(
     Ok(found.map(|(_, told)| told))
 }
 
+/// The measured values that stand on a line of the pool; none where the pool
+/// cannot be read a second time.
+fn own_values(plan: &Plan, line: u64) -> Result<Vec<(Property, Estimate)>, CliError> {
+    if plan.brief.pool_path().is_none_or(|path| !path.is_file()) {
+        return Ok(Vec::new());
+    }
+    let mut pool = open_pool(&plan.brief, None)?;
+    if !pool.has_measured() {
+        return Ok(Vec::new());
+    }
+    let mut batch = Batch::default();
+    loop {
+        pool.read_batch(&mut batch, BATCH_LINES)?;
+        if batch.is_empty() {
+            return Ok(Vec::new());
+        }
+        let mut lines = (0..batch.len()).map(|at| batch.line(at));
+        if let Some(found) = lines.find(|found| found.line == line) {
+            return Ok(found.measured().collect());
+        }
+    }
+}
+
 /// Tells all about one candidate, of the pool or not.
 fn explain(
     out: &mut impl Write,
@@ -429,7 +454,11 @@ fn explain(
         }
     };
     // Why a line is refused stands in the files already.
-    let Ok(verdict) = plan.evaluate(&mut scratch, smiles) else {
+    let own = match &told {
+        Some(told) => own_values(plan, told.line)?,
+        None => Vec::new(),
+    };
+    let Ok(verdict) = plan.evaluate_with(&mut scratch, smiles, &own) else {
         return Ok(());
     };
     if told.is_none() {

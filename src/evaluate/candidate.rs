@@ -4,14 +4,14 @@ use super::component::{VaporCurve, boiling_range_k};
 use super::dilution::{MeasuredDilutions, origin};
 use super::figure::FigureKind;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
-use super::profile::{Known, Profile, Profiler, properties};
+use super::profile::{Known, Profile, Profiler, properties_with};
 use super::solution::with_liquid;
 use crate::chem::SmilesError;
 use crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
 use crate::mixture::{Component, Unifac, Vapor, liquid_phases, relative_volatility};
 use crate::pure::Estimates;
 use crate::quantity::{
-    Absent, Dimension, Estimate, Flag, Flags, Outcome, REFERENCE_TEMPERATURE_K, Status,
+    Absent, Dimension, Estimate, Flag, Flags, Outcome, Property, REFERENCE_TEMPERATURE_K, Status,
 };
 
 /// Solvent-free mole fractions of the first key at which the relative
@@ -124,6 +124,21 @@ impl Plan {
     ///
     /// The line is no molecule that Groupsmith takes.
     pub fn evaluate(&self, scratch: &mut Scratch, smiles: &str) -> Result<Verdict, SmilesError> {
+        self.evaluate_with(scratch, smiles, &[])
+    }
+
+    /// The same with measured values of the user's own, which go before those of
+    /// the tables; left out where the plan leaves measured data out.
+    ///
+    /// # Errors
+    ///
+    /// As [`evaluate`](Self::evaluate).
+    pub fn evaluate_with(
+        &self,
+        scratch: &mut Scratch,
+        smiles: &str,
+        own: &[(Property, Estimate)],
+    ) -> Result<Verdict, SmilesError> {
         scratch
             .profiler
             .profile_into(&self.library, smiles, &mut scratch.profile)?;
@@ -139,11 +154,12 @@ impl Plan {
             .library
             .known(&profile.keys)
             .filter(|_| self.use_measured);
+        let own = if self.use_measured { own } else { &[] };
         estimates.clear();
         estimates.extend(
             self.temperatures
                 .iter()
-                .map(|&t| properties(&self.library, profile, known, t)),
+                .map(|&t| properties_with(&self.library, profile, known, own, t)),
         );
         self.measured_dilutions(profile, measured);
         dilute.clear();

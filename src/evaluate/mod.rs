@@ -11,6 +11,7 @@ mod dilution;
 mod error;
 mod figure;
 mod library;
+mod naming;
 mod plan;
 mod profile;
 mod solution;
@@ -21,8 +22,9 @@ pub use component::{MixtureComponent, VaporCurve};
 pub use error::{PlanCause, PlanFault, UnknownMolecule};
 pub use figure::{CATALOG, FIGURES, FigureEntry, FigureKind, figure};
 pub use library::{Library, LibraryError, USER_TABLES, UserTable};
+pub use naming::NoSubstance;
 pub use plan::{DEFAULT_MODEL, Plan, PlannedFigure, PlannedTarget};
-pub use profile::{Coverages, Known, Profile, Profiler, properties};
 pub use solution::{
     MixtureFigure, StatedState, describe_mixture, measured_at_dilution, mole_fractions,
 };
+pub use profile::{Coverages, Known, Profile, Profiler, properties, properties_with};

@@ -184,8 +184,22 @@ pub fn properties(
     known: Option<Known<'_>>,
     temperature_k: f64,
 ) -> Estimates {
+    properties_with(library, profile, known, &[], temperature_k)
+}
+
+/// The same with measured values of the user's own, which go before those of
+/// the tables: at their temperature, where the property depends on one. At
+/// other temperatures the tables come first, and an own density is carried
+/// over where they have none.
+pub fn properties_with(
+    library: &Library,
+    profile: &Profile,
+    known: Option<Known<'_>>,
+    own: &[(Property, Estimate)],
+    temperature_k: f64,
+) -> Estimates {
     let counts = profile.complete_counts(library, SetId::Joback);
-    let given = measured_values(known, temperature_k);
+    let given = given_values(measured_values(known, temperature_k), own, temperature_k);
     estimate_all(
         library.methods(),
         counts.as_ref().map(|counts| *counts),
@@ -194,3 +208,39 @@ pub fn properties(
         temperature_k,
     )
 }
+
+/// Own values and those of the tables in the order in which they count.
+fn given_values(
+    mut of_tables: GivenValues,
+    own: &[(Property, Estimate)],
+    temperature_k: f64,
+) -> GivenValues {
+    if own.is_empty() {
+        return of_tables;
+    }
+    let distance_k = |value: &Estimate| {
+        value
+            .temperature_k
+            .map_or(0.0, |t| (t - temperature_k).abs())
+    };
+    let is_here = |value: &Estimate| distance_k(value) <= SAME_TEMPERATURE_K;
+    let mut given: GivenValues = own
+        .iter()
+        .filter(|(_, value)| is_here(value))
+        .cloned()
+        .collect();
+    for (property, value) in &mut given {
+        if property.depends_on_temperature() {
+            value.temperature_k = Some(temperature_k);
+        }
+    }
+    given.append(&mut of_tables);
+    let mut elsewhere: SmallVec<[&(Property, Estimate); 4]> =
+        own.iter().filter(|(_, value)| !is_here(value)).collect();
+    elsewhere.sort_by(|(_, one), (_, other)| distance_k(one).total_cmp(&distance_k(other)));
+    given.extend(elsewhere.into_iter().cloned());
+    given
+}
+
+/// Two temperatures nearer than this are one, K.
+const SAME_TEMPERATURE_K: f64 = 0.01;

@@ -162,6 +162,19 @@ impl Property {
         )
     }
 
+    /// Whether a value of zero or less makes no sense.
+    pub const fn is_always_positive(self) -> bool {
+        !matches!(
+            self,
+            Self::AcentricFactor
+                | Self::IdealGasEnthalpyOfFormation
+                | Self::IdealGasGibbsEnergyOfFormation
+                | Self::HansenPolar
+                | Self::HansenHydrogenBonding
+                | Self::LogPOctanolWater
+        )
+    }
+
     /// Whether its value is counted from a zero of its own, so that a share of
     /// it means something: not a temperature, a heat of formation, a logarithm.
     pub const fn has_natural_zero(self) -> bool {

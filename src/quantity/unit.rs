@@ -464,6 +464,15 @@ pub fn parse(text: &str, wanted: Dimension) -> Result<f64, UnitError> {
     Ok(value_si)
 }
 
+/// The unit of a dimension by any of its spellings; `None` for a bare number.
+///
+/// # Errors
+///
+/// As [`parse`] has of a unit: none, unknown, or of another dimension.
+pub fn named(unit: &str, wanted: Dimension) -> Result<Option<&'static Unit>, UnitError> {
+    read(&format!("1 {unit}"), wanted).map(|(_, unit)| unit)
+}
+
 /// Reads a width such as `5 degC` (which is 5 K) into SI.
 ///
 /// # Errors

@@ -6,11 +6,15 @@
 
 mod identity;
 mod ledger;
+mod measured_column;
 mod pool;
+mod resolved;
 mod screening;
 mod sorter;
 mod stoppable;
 
-pub use pool::{Batch, Columns, LineFault, Pool, PoolError, PoolLine};
+pub use measured_column::ColumnFault;
+pub use pool::{Batch, Columns, LineFault, Pool, PoolError, PoolLine, Stated};
+pub use resolved::{Resolved, Unresolved};
 pub use screening::{FILES, Ranked, ScreenError, Screened, Screening};
 pub use stoppable::StoppableReader;

@@ -14,6 +14,9 @@ use std::sync::atomic::{AtomicU64, Ordering};
 use flate2::bufread::MultiGzDecoder;
 use thiserror::Error;
 
+use super::measured_column::{ColumnFault, MeasuredColumn, MeasuredHeads};
+use crate::quantity::{Estimate, Property};
+
 /// Longest physical line that is looked at, in bytes; the SMILES in it has a
 /// limit of its own.
 const LINE_LIMIT: usize = 64 * 1024;
@@ -57,19 +60,23 @@ pub enum PoolError {
     },
     /// Not a text file.
     #[error(
-        "{name} is not a text file (a zero byte near its start); wanted: CSV with a `smiles` column, or `SMILES name` lines, either of them plain or .gz"
+        "{name} is not a text file (a zero byte near its start); wanted: CSV with a `smiles`, `name` or `cas` column, or `SMILES name` lines, either of them plain or .gz"
     )]
     NotText {
         /// The file.
         name: String,
     },
-    /// A CSV without the one column that is needed.
-    #[error("{name}: no column is headed `{wanted}`; its columns are {}", columns.iter().map(|column| format!("`{column}`")).collect::<Vec<_>>().join(", "))]
-    NoSmilesColumn {
+    /// A CSV without a column that is needed.
+    #[error(
+        "{name}: no column is headed {}; its columns are {}",
+        quoted(wanted, " or "),
+        quoted(columns, ", ")
+    )]
+    NoColumn {
         /// The file.
         name: String,
-        /// The column that is needed.
-        wanted: String,
+        /// The columns one of which is needed.
+        wanted: Vec<String>,
         /// The columns it has.
         columns: Vec<String>,
     },
@@ -81,6 +88,16 @@ pub enum PoolError {
         /// The column.
         column: String,
     },
+    /// A column of measured values that cannot be used.
+    #[error("{name}: the column `{column}` {fault}")]
+    Measured {
+        /// The file.
+        name: String,
+        /// The column.
+        column: String,
+        /// What is wrong with it.
+        fault: ColumnFault,
+    },
     /// The header line itself cannot be read.
     #[error("{name}: the header line {fault}")]
     Header {
@@ -91,8 +108,13 @@ pub enum PoolError {
     },
 }
 
+fn quoted(names: &[String], between: &str) -> String {
+    let names: Vec<String> = names.iter().map(|name| format!("`{name}`")).collect();
+    names.join(between)
+}
+
 /// Why one line of a pool is not even a candidate.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Error)]
+#[derive(Clone, Debug, PartialEq, Eq, Error)]
 pub enum LineFault {
     /// Bytes that are not UTF-8.
     #[error("is not UTF-8 text from byte {0} on")]
@@ -111,53 +133,90 @@ pub enum LineFault {
         /// Cells of the header.
         wanted: usize,
     },
-    /// Nothing in the `smiles` cell.
-    #[error("has nothing in its `smiles` cell")]
-    NoSmiles,
+    /// Nothing that says which molecule it is.
+    #[error("names no molecule: its {} empty", match .cells { 1 => "cell of SMILES is", _ => "cells of SMILES, name and CAS number are" })]
+    NoMolecule {
+        /// How many cells there are to name one.
+        cells: usize,
+    },
+    /// A measured value that is none.
+    #[error("has `{value}` in its column `{column}`, {why}")]
+    Value {
+        /// The column.
+        column: Arc<str>,
+        /// The cell.
+        value: Arc<str>,
+        /// What is wrong with it.
+        why: &'static str,
+    },
 }
 
 impl LineFault {
     /// A short name to count refusals by.
-    pub const fn reason(self) -> &'static str {
+    pub const fn reason(&self) -> &'static str {
         match self {
             Self::NotUtf8(_) => "not-text",
             Self::TooLong => "line-too-long",
             Self::OpenQuote => "open-quote",
             Self::Cells { .. } => "cell-count",
-            Self::NoSmiles => "no-smiles",
+            Self::NoMolecule { .. } => "no-molecule",
+            Self::Value { .. } => "measured-value",
         }
     }
 }
 
-/// Heads of the columns that are looked for in a CSV pool; case does not matter.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+/// Heads of the columns that are looked for in a CSV pool, where they are not
+/// the usual ones; case does not matter.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub struct Columns<'a> {
-    /// The column of SMILES; has to be there.
-    pub smiles: &'a str,
-    /// The column of names.
-    pub name: &'a str,
+    /// The column of SMILES; `None` for `smiles`, which may be missing where
+    /// there are names or CAS numbers.
+    pub smiles: Option<&'a str>,
+    /// The column of names; `None` for `name`, which may be missing.
+    pub name: Option<&'a str>,
 }
 
-impl Default for Columns<'_> {
-    fn default() -> Self {
-        Self {
-            smiles: "smiles",
-            name: "name",
-        }
-    }
-}
+/// Head of the column of CAS numbers.
+const CAS: &str = "cas";
 
 /// How a pool is laid out.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 enum Layout {
-    /// CSV; where the wanted cells are.
-    Csv {
-        smiles: usize,
-        name: Option<usize>,
-        cells: usize,
-    },
+    /// CSV.
+    Csv(Cells),
     /// `SMILES name` lines.
     Lines,
+}
+
+/// Where the wanted cells of a CSV line are.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+struct Cells {
+    smiles: Option<usize>,
+    name: Option<usize>,
+    cas: Option<usize>,
+    /// How many there are in all.
+    all: usize,
+}
+
+impl Cells {
+    /// Whether the other columns are carried along with this one among them.
+    fn carries(&self, position: usize) -> bool {
+        Some(position) != self.smiles && Some(position) != self.name
+    }
+}
+
+/// How a line says which molecule it is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Stated<'b> {
+    /// By its structure.
+    Smiles(&'b str),
+    /// By name, CAS number or both; at least one is not empty.
+    Named {
+        /// The name.
+        name: &'b str,
+        /// The CAS number.
+        cas: &'b str,
+    },
 }
 
 /// One line of a [`Batch`].
@@ -165,34 +224,45 @@ enum Layout {
 pub struct PoolLine<'b> {
     /// Line in the file, from 1.
     pub line: u64,
-    /// The SMILES as it stands (trimmed), or why there is none.
-    pub smiles: Result<&'b str, LineFault>,
+    /// The molecule as it stands, or why there is none.
+    pub molecule: Result<Stated<'b>, &'b LineFault>,
     /// The name, empty where there is none.
     pub name: &'b str,
-    /// Where there is no SMILES: the line as it stands, or its beginning.
+    /// Of a faulty line: the line as it stands, or its beginning.
     pub text: &'b str,
     batch: &'b Batch,
-    cells: (usize, usize),
+    entry: &'b Entry,
 }
 
 impl<'b> PoolLine<'b> {
     /// The cells of the other columns, in the order of [`Pool::carried`].
     pub fn carried(&self) -> impl Iterator<Item = &'b str> + use<'b> {
         let batch = self.batch;
-        batch.carried[self.cells.0..self.cells.1]
+        batch.carried[self.entry.carried.clone()]
             .iter()
             .map(|range| &batch.text[range.clone()])
+    }
+
+    /// The measured values of the line, in the order of their columns.
+    pub fn measured(&self) -> impl Iterator<Item = (Property, Estimate)> + use<'b> {
+        let batch = self.batch;
+        batch.values[self.entry.values.clone()]
+            .iter()
+            .map(|&(column, value)| batch.columns[column].estimate(value))
     }
 }
 
 #[derive(Clone, Debug)]
 struct Entry {
     line: u64,
+    /// The SMILES; empty where the molecule is named.
     smiles: Result<Range<usize>, LineFault>,
     name: Range<usize>,
+    cas: Range<usize>,
     /// The line as it stands; empty unless it is faulty.
     text: Range<usize>,
-    carried: (usize, usize),
+    carried: Range<usize>,
+    values: Range<usize>,
 }
 
 /// Some consecutive lines of a pool; the memory is reused.
@@ -201,6 +271,9 @@ pub struct Batch {
     text: String,
     entries: Vec<Entry>,
     carried: Vec<Range<usize>>,
+    /// Measured values in SI, with their column.
+    values: Vec<(usize, f64)>,
+    columns: Arc<[MeasuredColumn]>,
 }
 
 impl Batch {
@@ -222,13 +295,21 @@ impl Batch {
     /// The line at a position.
     pub fn line(&self, index: usize) -> PoolLine<'_> {
         let entry = &self.entries[index];
+        let text = |range: &Range<usize>| &self.text[range.clone()];
+        let name = text(&entry.name);
         PoolLine {
             line: entry.line,
-            smiles: entry.smiles.clone().map(|range| &self.text[range]),
-            name: &self.text[entry.name.clone()],
-            text: &self.text[entry.text.clone()],
+            molecule: entry.smiles.as_ref().map(|smiles| match text(smiles) {
+                "" => Stated::Named {
+                    name,
+                    cas: text(&entry.cas),
+                },
+                smiles => Stated::Smiles(smiles),
+            }),
+            name,
+            text: text(&entry.text),
             batch: self,
-            cells: entry.carried,
+            entry,
         }
     }
 
@@ -236,6 +317,7 @@ impl Batch {
         self.text.clear();
         self.entries.clear();
         self.carried.clear();
+        self.values.clear();
     }
 
     fn keep(&mut self, text: &str) -> Range<usize> {
@@ -251,6 +333,8 @@ pub struct Pool {
     source: Box<dyn BufRead + Send>,
     layout: Layout,
     carried: Vec<String>,
+    measured: Arc<[MeasuredColumn]>,
+    notes: Vec<String>,
     line: u64,
     /// Lines read ahead while looking for a closing quote.
     ahead: VecDeque<(Vec<u8>, bool)>,
@@ -362,6 +446,8 @@ impl Pool {
             source,
             layout: Layout::Lines,
             carried: Vec::new(),
+            measured: Arc::default(),
+            notes: Vec::new(),
             line: 0,
             ahead: VecDeque::new(),
             splitter: Splitter::new(),
@@ -395,6 +481,17 @@ impl Pool {
         &self.carried
     }
 
+    /// Whether there are columns of measured values.
+    pub fn has_measured(&self) -> bool {
+        !self.measured.is_empty()
+    }
+
+    /// What a reader should know of the columns: those that look like measured
+    /// values and are not used.
+    pub fn notes(&self) -> &[String] {
+        &self.notes
+    }
+
     /// Reads the next `most` lines into `batch`; an empty batch is the end.
     ///
     /// # Errors
@@ -403,6 +500,7 @@ impl Pool {
     /// pool ends without a single line.
     pub fn read_batch(&mut self, batch: &mut Batch, most: usize) -> Result<(), PoolError> {
         batch.clear();
+        batch.columns = Arc::clone(&self.measured);
         let mut bytes = Vec::new();
         while batch.len() < most {
             let Some(cut) = self.next_line(&mut bytes)? else {
@@ -418,19 +516,17 @@ impl Pool {
             } else {
                 match self.layout {
                     Layout::Lines => split_line(&bytes, batch, line),
-                    Layout::Csv {
-                        smiles,
-                        name,
-                        cells,
-                    } => self.split_record(&mut bytes, batch, line, [smiles, cells], name)?,
+                    Layout::Csv(cells) => self.split_record(&mut bytes, batch, line, cells)?,
                 }
             };
             let entry = entry.unwrap_or_else(|fault| Entry {
                 line,
                 smiles: Err(fault),
                 name: 0..0,
+                cas: 0..0,
                 text: batch.keep(&as_it_stands(&bytes)),
-                carried: (0, 0),
+                carried: 0..0,
+                values: 0..0,
             });
             batch.entries.push(entry);
         }
@@ -485,18 +581,33 @@ impl Pool {
                 .iter()
                 .position(|head| head.eq_ignore_ascii_case(wanted))
         };
-        let Some(smiles) = place(columns.smiles) else {
+        let cells = Cells {
+            smiles: place(columns.smiles.unwrap_or("smiles")),
+            name: place(columns.name.unwrap_or("name")),
+            cas: place(CAS),
+            all: heads.len(),
+        };
+        let missing = |wanted: &[&str]| PoolError::NoColumn {
+            name: name.clone(),
+            wanted: wanted.iter().map(|&head| head.to_owned()).collect(),
+            columns: heads.clone(),
+        };
+        if [cells.smiles, cells.name, cells.cas] == [None; 3] {
             if certain {
-                return Err(PoolError::NoSmilesColumn {
-                    name,
-                    wanted: columns.smiles.to_owned(),
-                    columns: heads,
-                });
+                let usual = |head, usual| Option::unwrap_or(head, usual);
+                let (smiles, name) = (usual(columns.smiles, "smiles"), usual(columns.name, "name"));
+                return Err(missing(&[smiles, name, CAS]));
             }
             self.ahead.push_front((bytes, false));
             self.line -= 1;
             return Ok(());
-        };
+        }
+        // A column that was asked for by its name has to be there.
+        for (head, place) in [(columns.smiles, cells.smiles), (columns.name, cells.name)] {
+            if let (Some(head), None) = (head, place) {
+                return Err(missing(&[head]));
+            }
+        }
         for (position, head) in heads.iter().enumerate() {
             let known = heads[..position]
                 .iter()
@@ -508,16 +619,19 @@ impl Pool {
                 });
             }
         }
-        let named = place(columns.name);
-        self.layout = Layout::Csv {
-            smiles,
-            name: named,
-            cells: heads.len(),
-        };
+        let measured =
+            MeasuredHeads::read(&name, &heads).map_err(|(column, fault)| PoolError::Measured {
+                name: name.clone(),
+                column,
+                fault,
+            })?;
+        self.measured = measured.columns.into();
+        self.notes = measured.notes;
+        self.layout = Layout::Csv(cells);
         self.carried = heads
             .into_iter()
             .enumerate()
-            .filter(|(position, _)| *position != smiles && Some(*position) != named)
+            .filter(|(position, _)| cells.carries(*position))
             .map(|(_, head)| head)
             .collect();
         Ok(())
@@ -571,8 +685,7 @@ impl Pool {
         bytes: &mut Vec<u8>,
         batch: &mut Batch,
         line: u64,
-        [smiles, wanted]: [usize; 2],
-        name: Option<usize>,
+        at: Cells,
     ) -> Result<Result<Entry, LineFault>, PoolError> {
         let mut taken: Vec<(Vec<u8>, bool)> = Vec::new();
         while self.splitter.split(bytes).is_none() {
@@ -602,10 +715,10 @@ impl Pool {
             }
         }
         let cells = self.splitter.cells();
-        if cells.len() != wanted {
+        if cells.len() != at.all {
             return Ok(Err(LineFault::Cells {
                 found: cells.len(),
-                wanted,
+                wanted: at.all,
             }));
         }
         if let Err(error) = std::str::from_utf8(bytes) {
@@ -616,20 +729,39 @@ impl Pool {
                 .expect("cells of UTF-8 text are UTF-8")
                 .trim()
         };
-        if text(smiles).is_empty() {
-            return Ok(Err(LineFault::NoSmiles));
+        let cell = |position: Option<usize>| position.map_or("", text);
+        let (smiles, name, cas) = (cell(at.smiles), cell(at.name), cell(at.cas));
+        if smiles.is_empty() && name.is_empty() && cas.is_empty() {
+            let cells = [at.smiles, at.name, at.cas].iter().flatten().count();
+            return Ok(Err(LineFault::NoMolecule { cells }));
+        }
+        let first_value = batch.values.len();
+        for (column, measured) in self.measured.iter().enumerate() {
+            let cell = text(measured.position);
+            match measured.value(cell) {
+                Ok(value) => batch.values.extend(value.map(|value| (column, value))),
+                Err(why) => {
+                    return Ok(Err(LineFault::Value {
+                        column: Arc::clone(&measured.head),
+                        value: cell.into(),
+                        why,
+                    }));
+                }
+            }
         }
         let first = batch.carried.len();
-        for position in (0..wanted).filter(|&at| at != smiles && Some(at) != name) {
+        for position in (0..at.all).filter(|&position| at.carries(position)) {
             let kept = batch.keep(text(position));
             batch.carried.push(kept);
         }
         Ok(Ok(Entry {
             line,
-            smiles: Ok(batch.keep(text(smiles))),
-            name: name.map_or(0..0, |position| batch.keep(text(position))),
+            smiles: Ok(batch.keep(smiles)),
+            name: batch.keep(name),
+            cas: batch.keep(if smiles.is_empty() { cas } else { "" }),
             text: 0..0,
-            carried: (first, batch.carried.len()),
+            carried: first..batch.carried.len(),
+            values: first_value..batch.values.len(),
         }))
     }
 }
@@ -644,8 +776,10 @@ fn split_line(bytes: &[u8], batch: &mut Batch, line: u64) -> Result<Entry, LineF
         line,
         smiles: Ok(batch.keep(smiles)),
         name: batch.keep(name.trim()),
+        cas: 0..0,
         text: 0..0,
-        carried: (0, 0),
+        carried: 0..0,
+        values: 0..0,
     })
 }
 
@@ -748,7 +882,11 @@ mod tests {
                 let line = batch.line(index);
                 all.push((
                     line.line,
-                    line.smiles.map(str::to_owned),
+                    match line.molecule {
+                        Ok(Stated::Smiles(smiles)) => Ok(smiles.to_owned()),
+                        Ok(Stated::Named { name, cas }) => Ok(format!("{name}/{cas}")),
+                        Err(fault) => Err(fault.clone()),
+                    },
                     line.name.to_owned(),
                 ));
             }
@@ -774,7 +912,7 @@ mod tests {
 
     #[test]
     fn faulty_lines_are_told_one_by_one() {
-        let found = lines("smiles,name\nCC,a,b\n\"open,x\nCCO,c\n,d\n", Some(true));
+        let found = lines("smiles,name\nCC,a,b\n\"open,x\nCCO,c\n,d\n,\n", Some(true));
         assert_eq!(
             found,
             [
@@ -788,7 +926,8 @@ mod tests {
                 ),
                 (3, Err(LineFault::OpenQuote), String::new()),
                 (4, Ok("CCO".into()), "c".into()),
-                (5, Err(LineFault::NoSmiles), String::new()),
+                (5, Ok("d/".into()), "d".into()),
+                (6, Err(LineFault::NoMolecule { cells: 2 }), String::new()),
             ]
         );
     }
@@ -819,7 +958,7 @@ mod tests {
         assert!(matches!(pool("a\0b", None), Err(PoolError::NotText { .. })));
         assert!(matches!(
             pool("a,b\n", Some(true)),
-            Err(PoolError::NoSmilesColumn { .. })
+            Err(PoolError::NoColumn { .. })
         ));
         assert!(matches!(
             pool("smiles,x,X\n", Some(true)),
@@ -859,7 +998,7 @@ mod tests {
         .unwrap();
         let mut batch = Batch::default();
         pool.read_batch(&mut batch, 9).unwrap();
-        assert_eq!(batch.line(0).smiles, Err(LineFault::NotUtf8(2)));
-        assert_eq!(batch.line(1).smiles, Ok("CC"));
+        assert_eq!(batch.line(0).molecule, Err(&LineFault::NotUtf8(2)));
+        assert_eq!(batch.line(1).molecule, Ok(Stated::Smiles("CC")));
     }
 }

@@ -11,6 +11,7 @@ use thiserror::Error;
 use super::identity::{Identities, Kinship, Relation, RelationLog, Relations, WrittenRelations};
 use super::ledger::{Entry, Finding, Ledger, WrittenLedger};
 use super::pool::{Batch, Pool, PoolError, PoolLine};
+use super::resolved::Resolved;
 use crate::evaluate::{Plan, Scratch, Verdict};
 use crate::quantity::Absent;
 use crate::quantity::unit::table_text;
@@ -290,29 +291,33 @@ impl Screening<'_> {
             wanted: String::new(),
             reason,
         };
-        let (smiles, finding) = match line.smiles {
+        let (name, smiles, finding) = match line.resolved(&self.plan.library) {
             Err(fault) => {
-                let reason = format!("the line {fault}");
-                (line.text, fell(Outcome::Refused, fault.reason(), reason))
+                let finding = fell(Outcome::Refused, fault.reason(), fault.to_string());
+                (line.name, line.text, finding)
             }
-            Ok(smiles) => match self.plan.evaluate(scratch, smiles) {
-                Err(error) => (
-                    smiles,
-                    fell(Outcome::Refused, error.reason(), error.to_string()),
-                ),
-                Ok(verdict) => {
-                    let keys = &scratch.profile.keys;
-                    done.identities
-                        .push((line.line, hash(&keys.constitution), hash(&keys.full)));
-                    let finding = self.finding(scratch, verdict);
-                    done.qualified += u64::from(matches!(finding, Finding::Qualified { .. }));
-                    (smiles, finding)
-                }
-            },
+            Ok(Resolved { smiles, name }) => {
+                let own: Vec<_> = line.measured().collect();
+                let finding = match self.plan.evaluate_with(scratch, smiles, &own) {
+                    Err(error) => fell(Outcome::Refused, error.reason(), error.to_string()),
+                    Ok(verdict) => {
+                        let keys = &scratch.profile.keys;
+                        done.identities.push((
+                            line.line,
+                            hash(&keys.constitution),
+                            hash(&keys.full),
+                        ));
+                        let finding = self.finding(scratch, verdict);
+                        done.qualified += u64::from(matches!(finding, Finding::Qualified { .. }));
+                        finding
+                    }
+                };
+                (name, smiles, finding)
+            }
         };
         Entry {
             line: line.line,
-            name: line.name.to_owned(),
+            name: name.to_owned(),
             smiles: smiles.to_owned(),
             finding,
             carried: line.carried().map(str::to_owned).collect(),

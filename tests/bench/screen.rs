@@ -9,7 +9,7 @@ use groupsmith::brief::{Brief, Job};
 use groupsmith::evaluate::{CATALOG, Library, Plan, Scratch};
 use groupsmith::mixture::Slips;
 use groupsmith::run::{BriefRecord, Fingerprint, Quiet, RunRecord, StopFlag, TablesRecord};
-use groupsmith::screen::{Batch, Columns, Pool, Screening};
+use groupsmith::screen::{Batch, Columns, Pool, Screening, Stated};
 
 /// What a row holds beside its three breakdowns, two keys and all properties:
 /// γ∞ of two keys and what follows from it.
@@ -64,7 +64,7 @@ fn measure(criterion: &mut Criterion, plan: &Plan, name: &str) {
         let mut scratch = Scratch::new();
         bencher.iter(|| {
             for index in 0..batch.len() {
-                if let Ok(smiles) = batch.line(index).smiles {
+                if let Ok(Stated::Smiles(smiles)) = batch.line(index).molecule {
                     let _ = black_box(plan.evaluate(&mut scratch, smiles));
                 }
             }

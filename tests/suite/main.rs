@@ -11,6 +11,7 @@ mod independent;
 mod mixture;
 mod own_data;
 mod pairs;
+mod pool;
 mod pure;
 mod quantity;
 mod report;

@@ -547,9 +547,9 @@ fn refused(pool: impl AsRef<[u8]>, code: i32, message: &str) {
 #[test]
 fn pools_that_cannot_be_used_are_told_apart() {
     refused(
-        "name,formula\nx,C\n",
+        "solvent,formula\nx,C\n",
         2,
-        "no column is headed `smiles`; its columns are `name`, `formula`",
+        "no column is headed `smiles` or `name` or `cas`; its columns are `solvent`, `formula`",
     );
     refused("", 2, "holds no candidates: it is empty");
     refused(
