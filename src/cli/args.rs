@@ -115,6 +115,9 @@ pub(super) struct Properties {
     /// Leave measured substance data out
     #[arg(long)]
     pub(super) estimates_only: bool,
+    /// Compare estimates with measured values for the relatives of each molecule
+    #[arg(long, conflicts_with = "estimates_only")]
+    pub(super) family: bool,
     #[arg(long, value_enum, default_value_t)]
     pub(super) format: Format,
 }

@@ -8,6 +8,7 @@ mod breakdown;
 mod check;
 mod error;
 mod exit;
+mod family;
 mod mixture;
 mod molecules;
 mod output;

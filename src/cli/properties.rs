@@ -6,6 +6,7 @@ use std::sync::Arc;
 use super::args;
 use super::error::CliError;
 use super::exit::Exit;
+use super::family;
 use super::molecules::{Asked, for_each};
 use super::output::{self, Notes};
 use crate::evaluate::{Library, Profiler, properties, properties_with};
@@ -25,6 +26,9 @@ pub(super) fn run(
                 fault,
             }
         })?;
+    if command.family {
+        return family::run(command, library, notes, temperature_k);
+    }
     let mut profiler = Profiler::new();
     let mut answered = false;
     let mut stream = match command.format.rows() {

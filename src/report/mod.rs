@@ -8,6 +8,7 @@
 
 mod breakdown;
 mod csv_line;
+mod family;
 mod json;
 mod mixture;
 mod property;
@@ -18,6 +19,7 @@ mod text_table;
 
 pub use breakdown::{BreakdownRow, BreakdownStatus, breakdown_text};
 pub use csv_line::{CsvLine, CsvRow};
+pub use family::{FamilyRow, family_text, with_summary};
 pub use mixture::{MixtureRow, MixtureStatus, mixture_text};
 pub use property::{PropertyRow, property_text};
 pub use ranking::{FigureColumn, NotRankedRow, RankedRow, RankedTable};

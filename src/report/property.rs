@@ -155,7 +155,7 @@ impl CsvRow for PropertyRow<'_> {
     }
 }
 
-fn property_id<S: serde::Serializer>(
+pub(super) fn property_id<S: serde::Serializer>(
     property: &Property,
     serializer: S,
 ) -> Result<S::Ok, S::Error> {

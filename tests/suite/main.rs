@@ -6,6 +6,7 @@ mod cli;
 mod data;
 mod data_folder;
 mod evaluate;
+mod family;
 mod groups;
 mod independent;
 mod mixture;
