@@ -10,8 +10,9 @@ use super::own_data;
 use super::screen::{bind, open_pool};
 use super::user_tables::Sources;
 use crate::brief::{Brief, Job};
-use crate::evaluate::CATALOG;
-use crate::screen::Batch;
+use crate::chem::{Molecule, Reader};
+use crate::evaluate::{CATALOG, Library};
+use crate::screen::{Batch, Pool};
 
 pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, CliError> {
     let mut out = output::stdout();
@@ -73,27 +74,11 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
         )?;
     }
     if plan.brief.pool.is_some() {
-        let mut pool = open_pool(&plan.brief, None)?;
+        let pool = open_pool(&plan.brief, None)?;
         for note in pool.notes() {
             writeln!(out, "  note: {note}")?;
         }
-        let mut batch = Batch::default();
-        let (mut lines, mut unusable) = (0_u64, 0_u64);
-        loop {
-            pool.read_batch(&mut batch, 4096)?;
-            if batch.is_empty() {
-                break;
-            }
-            lines += batch.len() as u64;
-            unusable += (0..batch.len())
-                .filter(|&at| batch.line(at).resolved(&plan.library).is_err())
-                .count() as u64;
-        }
-        writeln!(
-            out,
-            "  pool: {lines} lines in {}, {unusable} of them unusable",
-            pool.name()
-        )?;
+        pool_lines(&mut out, &plan.library, pool)?;
         writeln!(
             out,
             "  kept in the ranking: at most {}",
@@ -106,4 +91,48 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
     }
     out.flush()?;
     Ok(Exit::Done)
+}
+
+/// Refused lines that are told with their reason.
+const REFUSALS_SHOWN: usize = 5;
+
+/// Reads the whole pool and tells which lines a run would refuse.
+fn pool_lines(out: &mut impl Write, library: &Library, mut pool: Pool) -> Result<(), CliError> {
+    let mut batch = Batch::default();
+    let mut reader = Reader::new();
+    let mut molecule = Molecule::default();
+    let (mut lines, mut refused) = (0_u64, 0_u64);
+    let mut reasons = Vec::new();
+    loop {
+        pool.read_batch(&mut batch, 4096)?;
+        if batch.is_empty() {
+            break;
+        }
+        lines += batch.len() as u64;
+        for line in (0..batch.len()).map(|at| batch.line(at)) {
+            let fault = match line.resolved(library) {
+                Err(fault) => fault.to_string(),
+                Ok(found) => match reader.read_into(found.smiles, &mut molecule) {
+                    Ok(()) => continue,
+                    Err(fault) => fault.to_string(),
+                },
+            };
+            refused += 1;
+            if reasons.len() < REFUSALS_SHOWN {
+                reasons.push(format!("line {}: {fault}", line.line));
+            }
+        }
+    }
+    writeln!(
+        out,
+        "  pool: {lines} lines in {}, {refused} of them would be refused",
+        pool.name()
+    )?;
+    for reason in &reasons {
+        writeln!(out, "    {reason}")?;
+    }
+    if refused > reasons.len() as u64 {
+        writeln!(out, "    … and {} more", refused - reasons.len() as u64)?;
+    }
+    Ok(())
 }

@@ -41,6 +41,9 @@ pub(super) fn run(
     let brief = Brief::load(&command.brief, &CATALOG, Job::Screen)?;
     let library = sources.library(Some(&brief))?;
     let plan = bind(brief, library, !command.estimates_only)?;
+    if let Some(wanted) = &command.explain {
+        find_before_the_run(&plan, wanted.trim())?;
+    }
     for note in &plan.notes {
         notes.say(&format!("note: {note}"));
     }
@@ -390,6 +393,32 @@ fn look_up(
         consider(line, &row[1], &row[2], &outcome);
     }
     Ok(found.map(|(_, told)| told))
+}
+
+/// Refuses to explain what nobody can find, before a long run is begun. Names
+/// on standard input show only when they are read.
+fn find_before_the_run(plan: &Plan, wanted: &str) -> Result<(), CliError> {
+    let mut profiler = crate::evaluate::Profiler::new();
+    let Err(unknown) = plan.library.find(&mut profiler, wanted) else {
+        return Ok(());
+    };
+    if plan.brief.pool_path().is_none_or(|path| !path.is_file()) {
+        return Ok(());
+    }
+    let mut pool = open_pool(&plan.brief, None)?;
+    let mut batch = Batch::default();
+    loop {
+        pool.read_batch(&mut batch, BATCH_LINES)?;
+        if batch.is_empty() {
+            return Err(CliError::Usage(format!(
+                "--explain: no line of the pool is called so, and {unknown}"
+            )));
+        }
+        let mut lines = (0..batch.len()).map(|at| batch.line(at));
+        if lines.any(|line| line.name.eq_ignore_ascii_case(wanted)) {
+            return Ok(());
+        }
+    }
 }
 
 /// The measured values that stand on a line of the pool; none where the pool

@@ -246,6 +246,35 @@ fn a_look_up_takes_names_and_measured_values_of_its_file() {
 }
 
 #[test]
+fn check_tells_which_lines_would_be_refused() {
+    let bench = Bench::with(BRIEF, format!("{MIXED}x,,C1CC\nacetone,,CC[Na]\n"));
+    let said = say(&["check", &bench.argument("brief.toml")]);
+    assert_eq!(said.code, 0, "{}", said.err);
+    let out = said.out.replace(&bench.argument(""), "");
+    insta::assert_snapshot!("pool_check", out);
+    // A run agrees.
+    assert_eq!(bench.screen(&[]).code, 0);
+    let refused = bench.record().counts.refused;
+    assert!(out.contains(&format!(", {refused} of them")), "{out}");
+}
+
+#[test]
+fn what_cannot_be_explained_is_told_before_the_run() {
+    let bench = Bench::with(BRIEF, "smiles,name\nCCO,my solvent\n");
+    let said = bench.screen(&["--explain", "my solvnt"]);
+    assert_eq!((said.code, said.out.as_str()), (2, ""));
+    assert!(
+        said.err.contains("no line of the pool is called so"),
+        "{}",
+        said.err
+    );
+    assert!(bench.files().is_empty());
+    for known in ["My Solvent", "toluene", "CCCC"] {
+        assert_eq!(bench.screen(&["--explain", known]).code, 0, "{known}");
+    }
+}
+
+#[test]
 fn a_column_asked_for_by_name_has_to_be_there() {
     let brief = BRIEF.replace(
         "file = \"pool.csv\"",

@@ -498,6 +498,17 @@ fn one_candidate_is_explained_whatever_became_of_it() {
     assert_eq!(said.code, 2);
     assert!(
         said.err
+            .contains("no line of the pool is called so, and `no such thing` is neither"),
+        "{}",
+        said.err
+    );
+    // What is read only once can be told only afterwards.
+    let bench = Bench::with(&piped, "");
+    let mut command = bench.screening(&["--explain", "no such thing"]);
+    let said: Said = command.write_stdin(pool).output().unwrap().into();
+    assert_eq!(said.code, 2);
+    assert!(
+        said.err
             .contains("no candidate of the pool is called `no such thing`"),
         "{}",
         said.err
