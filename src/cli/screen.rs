@@ -71,6 +71,11 @@ pub(super) fn run(
     for note in pool.notes() {
         notes.say(&format!("note: {note}"));
     }
+    if command.explain.is_some() && pool.has_measured() && !can_be_read_twice(&plan) {
+        notes.say(
+            "note: --explain shows its figures without the measured columns of this pool, which can be read only once",
+        );
+    }
     let folder = match &command.out {
         Some(folder) => folder.clone(),
         None => default_folder(&command.brief),
@@ -395,6 +400,11 @@ fn look_up(
     Ok(found.map(|(_, told)| told))
 }
 
+/// Whether the pool is a file, not standard input or a pipe.
+fn can_be_read_twice(plan: &Plan) -> bool {
+    plan.brief.pool_path().is_some_and(|path| path.is_file())
+}
+
 /// Refuses to explain what nobody can find, before a long run is begun. Names
 /// on standard input show only when they are read.
 fn find_before_the_run(plan: &Plan, wanted: &str) -> Result<(), CliError> {
@@ -402,7 +412,7 @@ fn find_before_the_run(plan: &Plan, wanted: &str) -> Result<(), CliError> {
     let Err(unknown) = plan.library.find(&mut profiler, wanted) else {
         return Ok(());
     };
-    if plan.brief.pool_path().is_none_or(|path| !path.is_file()) {
+    if !can_be_read_twice(plan) {
         return Ok(());
     }
     let mut pool = open_pool(&plan.brief, None)?;
@@ -424,7 +434,7 @@ fn find_before_the_run(plan: &Plan, wanted: &str) -> Result<(), CliError> {
 /// The measured values that stand on a line of the pool; none where the pool
 /// cannot be read a second time.
 fn own_values(plan: &Plan, line: u64) -> Result<Vec<(Property, Estimate)>, CliError> {
-    if plan.brief.pool_path().is_none_or(|path| !path.is_file()) {
+    if !can_be_read_twice(plan) {
         return Ok(Vec::new());
     }
     let mut pool = open_pool(&plan.brief, None)?;

@@ -275,6 +275,17 @@ fn what_cannot_be_explained_is_told_before_the_run() {
 }
 
 #[test]
+fn measured_columns_of_standard_input_count_and_are_told_where_they_cannot() {
+    let bench = Bench::with(&BRIEF.replace("pool.csv", "-"), "");
+    let mut command = bench.screening(&["--explain", "acetone"]);
+    let output = command.write_stdin(MEASURED).output().unwrap();
+    assert_eq!(output.status.code(), Some(0));
+    let err = String::from_utf8(output.stderr).unwrap();
+    assert!(err.contains("which can be read only once"), "{err}");
+    assert_eq!(value(&bench.ranked("boiling_point_k"), "acetone"), 330.15);
+}
+
+#[test]
 fn a_column_asked_for_by_name_has_to_be_there() {
     let brief = BRIEF.replace(
         "file = \"pool.csv\"",
