@@ -10,7 +10,7 @@ use super::tables::meant;
 use super::user_tables::Sources;
 use crate::brief::{Basis, Brief, Job, checked_fractions};
 use crate::evaluate::{
-    CATALOG, DEFAULT_MODEL, Library, MixtureComponent, MixtureFigure, Profiler, StatedState,
+    CATALOG, DEFAULT_MODEL, MixtureComponent, MixtureFigure, Profiler, StatedState,
     describe_mixture, measured_at_dilution, mole_fractions,
 };
 use crate::mixture::{ActivityModel, ModelStatus};

@@ -26,7 +26,7 @@ pub use figure::{CATALOG, FIGURES, FigureEntry, FigureKind, figure};
 pub use library::{Library, LibraryError, USER_TABLES, UserTable};
 pub use naming::NoSubstance;
 pub use plan::{DEFAULT_MODEL, Plan, PlannedFigure, PlannedTarget};
+pub use profile::{Coverages, Known, Profile, Profiler, properties, properties_with};
 pub use solution::{
     MixtureFigure, StatedState, describe_mixture, measured_at_dilution, mole_fractions,
 };
-pub use profile::{Coverages, Known, Profile, Profiler, properties, properties_with};
