@@ -28,6 +28,16 @@ pub struct Substances {
     pub(super) spheres: Vec<HansenSphere>,
     /// Made at the first look-up by structure: most runs of one command need none.
     pub(super) structures: OnceLock<StructureIndex>,
+    /// Made at the first name that is unknown.
+    spellings: OnceLock<Vec<FoldedSpelling>>,
+}
+
+/// A name or synonym as it is compared with a misspelled one.
+#[derive(Debug)]
+struct FoldedSpelling {
+    substance: u32,
+    folded: Box<str>,
+    spelling: Arc<str>,
 }
 
 /// What a folded name stands for.
@@ -218,16 +228,37 @@ impl Substances {
         })
     }
 
+    /// Every spelling with its folded form, in the order of the substances.
+    fn folded_spellings(&self) -> &[FoldedSpelling] {
+        self.spellings.get_or_init(|| {
+            let folded = |substance: u32, spelling: &Arc<str>| FoldedSpelling {
+                substance,
+                folded: name::folded(spelling).into(),
+                spelling: Arc::clone(spelling),
+            };
+            let of_one = |(position, substance)| {
+                let substance: &Substance = substance;
+                std::iter::once(&substance.name)
+                    .chain(&substance.synonyms)
+                    .map(move |spelling| folded(position, spelling))
+            };
+            (0..).zip(&self.substances).flat_map(of_one).collect()
+        })
+    }
+
     /// The spellings nearest to a folded name, one for each substance.
     fn nearest(&self, folded: &str) -> Vec<Arc<str>> {
         let limit = (folded.len() / 4).clamp(1, 4);
         let mut found: Vec<(usize, u32, &Arc<str>)> = Vec::new();
-        for (position, substance) in (0..).zip(&self.substances) {
-            let best = std::iter::once(&substance.name)
-                .chain(&substance.synonyms)
-                .filter_map(|spelling| {
-                    let distance = name::distance(folded, &name::folded(spelling), limit)?;
-                    Some((distance, position, spelling))
+        for of_one in self
+            .folded_spellings()
+            .chunk_by(|one, other| one.substance == other.substance)
+        {
+            let best = of_one
+                .iter()
+                .filter_map(|one| {
+                    let distance = name::distance(folded, &one.folded, limit)?;
+                    Some((distance, one.substance, &one.spelling))
                 })
                 .min_by_key(|&(distance, ..)| distance);
             found.extend(best);
@@ -251,6 +282,7 @@ impl Substances {
             .structures
             .take()
             .unwrap_or_else(|| StructureIndex::of(&self.substances));
+        self.spellings = OnceLock::new();
         self.structures = load::load(&mut self, tables, Some(structures))?
             .map_or_else(OnceLock::new, OnceLock::from);
         Ok(self)
