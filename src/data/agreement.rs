@@ -11,7 +11,7 @@ use super::{
     Conflict, Constant, DensityEquation, LiquidDensity, Substance, VaporPressure,
     VaporPressureEquation,
 };
-use crate::quantity::{Dimension, Property, number, unit};
+use crate::quantity::{Dimension, Property, STANDARD_ATMOSPHERE_PA, number, unit};
 use crate::table::TableError;
 
 /// By how much a stated density may differ from the substance's curve, as a part of it.
@@ -112,9 +112,27 @@ impl Layer<'_> {
         let at = &self.all.substances[substance as usize];
         if property == Property::LiquidDensity {
             let fresh = self.fresh(substance, Kind::Densities);
-            for &(t, density, one) in stated {
-                self.faults
-                    .extend(density_fault(&at.densities[fresh..], t, density, one));
+            let curves = &at.densities[fresh..];
+            let parted: Vec<_> = stated
+                .iter()
+                .filter_map(|&(t, density, one)| {
+                    let (other, source) = contradicted_density(curves, t, density)?;
+                    Some((one, Constant::density(other, t, source)))
+                })
+                .collect();
+            for (one, other) in parted {
+                if self.of_user {
+                    self.record(substance, &other, one.constant.value, &one.constant.source);
+                    self.all.substances[substance as usize].contradicts(property);
+                } else {
+                    self.faults.push(one.fault(format!(
+                        "{:.1} kg/m3 is stated at {:.2} K, the curve gives {:.1} kg/m3 ({})",
+                        one.constant.value,
+                        other.temperature_k.unwrap_or_default(),
+                        other.value,
+                        other.source
+                    )));
+                }
             }
         }
         if self.faults.len() > faults {
@@ -142,7 +160,66 @@ impl Layer<'_> {
             let between = if position > 0 { "; " } else { "" };
             let _ = write!(source, "{between}{name}");
         }
+        if property == Property::VaporPressure && self.of_user {
+            self.move_curve(substance, &line, &source);
+        }
         self.add_line(substance, property, &line, Arc::from(source), stated[0].2);
+    }
+
+    /// Moves the older equation that would be worked with through the user's points.
+    fn move_curve(&mut self, substance: u32, line: &[(f64, f64)], source: &str) {
+        let fresh = self.fresh(substance, Kind::VaporPressures);
+        let (own, older) = self.all.substances[substance as usize]
+            .vapor_pressures
+            .split_at(fresh);
+        if own.iter().any(|curve| !curve.is_points()) {
+            return;
+        }
+        let Some(at) = older.iter().position(|curve| !curve.is_points()) else {
+            return;
+        };
+        // the lines between the points are a curve of their own, this is not
+        let source = source.trim_start_matches("between ");
+        let curve = older[at].moved_or_flagged(line, source);
+        let boils_by_curve = self.reaches_over_normal_pressure(substance, line, &curve);
+        let is_moved = curve.is_moved();
+        let place = match is_moved {
+            true => self.place(substance, Kind::VaporPressures),
+            false => 0,
+        };
+        let substance = &mut self.all.substances[substance as usize];
+        if is_moved {
+            substance.vapor_pressures.insert(place, curve);
+            substance.boils_by_curve |= boils_by_curve;
+        } else {
+            substance.vapor_pressures[fresh + at] = curve;
+        }
+    }
+
+    /// Whether the user's points, none of them at the standard atmosphere, lie
+    /// to both sides of it and contradict the boiling point stated before.
+    fn reaches_over_normal_pressure(
+        &self,
+        substance: u32,
+        line: &[(f64, f64)],
+        moved: &VaporPressure,
+    ) -> bool {
+        let fresh = self.fresh(substance, Kind::Constants);
+        let substance = &self.all.substances[substance as usize];
+        let own = substance.constants[..fresh]
+            .iter()
+            .any(Constant::is_normal_boiling_point);
+        let both_sides = line.iter().any(|&(_, p)| p <= STANDARD_ATMOSPHERE_PA)
+            && line.iter().any(|&(_, p)| p >= STANDARD_ATMOSPHERE_PA);
+        !own && both_sides
+            && substance.stated_boiling_point().is_some_and(|stated| {
+                misses(
+                    moved,
+                    stated.value,
+                    STANDARD_ATMOSPHERE_PA,
+                    BOILING_POINT_MISS_K,
+                )
+            })
     }
 
     fn add_line(
@@ -205,7 +282,8 @@ impl Layer<'_> {
         }
     }
 
-    /// Refuses an enthalpy of vaporization that the vapor-pressure curve contradicts.
+    /// Refuses an enthalpy of vaporization that the user's own vapor-pressure
+    /// curve contradicts, and records where an older curve does.
     fn check_enthalpy(&mut self, one: &Stated) {
         if one.constant.property != Property::EnthalpyOfVaporization {
             return;
@@ -223,11 +301,31 @@ impl Layer<'_> {
         {
             return;
         }
-        let source = substance
-            .curve_for_slope(temperature_k)
-            .map_or_else(String::new, |curve| format!(" ({})", curve.source()));
+        let Some(curve) = substance.curve_for_slope(temperature_k) else {
+            return;
+        };
+        let source = Arc::clone(curve.source());
+        let own = self.fresh(one.substance, Kind::VaporPressures);
+        let is_own = substance.vapor_pressures[..own]
+            .iter()
+            .any(|own| std::ptr::eq(own, curve));
+        if !is_own {
+            let other = Constant {
+                value: implied,
+                source,
+                ..one.constant.clone()
+            };
+            self.record(
+                one.substance,
+                &other,
+                one.constant.value,
+                &one.constant.source,
+            );
+            self.all.substances[one.substance as usize].contradicts(one.constant.property);
+            return;
+        }
         self.faults.push(one.fault(format!(
-            "{:.0} J/mol is stated, the vapor-pressure curve gives {implied:.0} J/mol at {temperature_k:.2} K{source}",
+            "{:.0} J/mol is stated, the vapor-pressure curve gives {implied:.0} J/mol at {temperature_k:.2} K ({source})",
             one.constant.value
         )));
     }
@@ -237,7 +335,6 @@ impl Layer<'_> {
     fn record_overruled(&mut self, one: &Stated) {
         let constant = &one.constant;
         let property = constant.property;
-        let dimension = property.dimension();
         let substance = &self.all.substances[one.substance as usize];
         let fresh = self.fresh(one.substance, Kind::Constants);
         let older = substance.constants[fresh..]
@@ -264,21 +361,39 @@ impl Layer<'_> {
         let Some((other, other_source)) = older.or_else(curve) else {
             return;
         };
-        let text = |value: f64| Arc::from(number::short(unit::to_table(value, dimension)));
+        let other = Constant {
+            value: other,
+            source: other_source,
+            ..constant.clone()
+        };
+        self.record(one.substance, &other, constant.value, &constant.source);
+    }
+
+    /// Records that a user's value is used in place of another.
+    pub(super) fn record(
+        &mut self,
+        substance: u32,
+        constant: &Constant,
+        used: f64,
+        used_source: &Arc<str>,
+    ) {
+        let dimension = constant.property.dimension();
         let at = match constant.pressure_pa {
             Some(pressure_pa) if !is_normal_pressure(pressure_pa) => {
                 format!("at {} kPa: ", number::short(pressure_pa / 1000.0))
             }
             _ => String::new(),
         };
+        let text =
+            |value: f64| Arc::from(number::text(unit::to_table(value, dimension), CURVE_DIGITS));
         self.all.conflicts.push(Conflict {
-            substance: one.substance as usize,
-            property: Arc::from(property.id()),
+            substance: substance as usize,
+            property: Arc::from(constant.property.id()),
             temperature_k: constant.temperature_k,
-            used: text(constant.value),
-            used_source: Arc::clone(&constant.source),
-            other: Arc::from(number::text(unit::to_table(other, dimension), CURVE_DIGITS)),
-            other_source,
+            used: text(used),
+            used_source: Arc::clone(used_source),
+            other: text(constant.value),
+            other_source: Arc::clone(&constant.source),
             unit: Arc::from(unit::si_symbol(dimension)),
             decision: Arc::from(format!(
                 "{at}a user's value goes before those that are built in"
@@ -303,20 +418,16 @@ fn contradicted_enthalpy(substance: &Substance, measured: &Constant) -> Option<(
     (!allowed.contains(&ratio)).then_some((temperature_k, implied.enthalpy_j_per_mol))
 }
 
-fn density_fault(
+/// The density in kg/m³ by which a curve contradicts a stated one, and its source.
+fn contradicted_density(
     curves: &[LiquidDensity],
     temperature_k: f64,
-    density: f64,
-    one: &Stated,
-) -> Option<TableError> {
+    density_kg_per_m3: f64,
+) -> Option<(f64, &Arc<str>)> {
     curves.iter().find_map(|curve| {
         let other = curve.density_kg_per_m3(temperature_k).ok()?;
-        ((density / other - 1.0).abs() > DENSITY_MISS).then(|| {
-            one.fault(format!(
-                "{density:.1} kg/m3 is stated at {temperature_k:.2} K, the curve gives {other:.1} kg/m3 ({})",
-                curve.source()
-            ))
-        })
+        let parted = (density_kg_per_m3 / other - 1.0).abs() > DENSITY_MISS;
+        parted.then(|| (other, curve.source()))
     })
 }
 

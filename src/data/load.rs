@@ -349,6 +349,8 @@ impl Layer<'_> {
             densities: Vec::new(),
             point_curves: Vec::new(),
             supplies: Vec::new(),
+            boils_by_curve: false,
+            contradicted: Vec::new(),
         });
         position
     }
@@ -568,7 +570,11 @@ impl Layer<'_> {
                 ),
             ));
         }
+        let is_normal_boiling_point = constant.is_normal_boiling_point();
         constants.insert(fresh, constant);
+        if is_normal_boiling_point {
+            self.all.substances[position as usize].boils_by_curve = false;
+        }
         self.place(position, Kind::Constants);
         Ok(())
     }
@@ -738,7 +744,10 @@ impl Layer<'_> {
                     format!("gives no pressure that rises with temperature at {t:.2} K"),
                 )
             })?;
-            layer.check_boiling_points(row, columns.equation, position, &curve)?;
+            let curve = match layer.check_boiling_points(row, columns.equation, position, &curve)? {
+                true => curve.contradicted(),
+                false => curve,
+            };
             let fresh = layer.fresh(position, Kind::VaporPressures);
             let before = &layer.all.substances[position as usize].vapor_pressures[..fresh];
             if before.iter().any(|other| {
@@ -754,18 +763,21 @@ impl Layer<'_> {
         Ok(())
     }
 
-    /// Refuses a curve that misses a boiling point stated for a pressure it reaches.
+    /// Refuses a curve that misses a boiling point stated in its layer for a
+    /// pressure it reaches; one of an older layer is overruled. Says whether one was.
     fn check_boiling_points(
-        &self,
+        &mut self,
         row: Row<'_>,
         column: Column,
         position: u32,
         curve: &VaporPressure,
-    ) -> Result<(), TableError> {
-        let constants = &self.all.substances[position as usize].constants;
+    ) -> Result<bool, TableError> {
+        let fresh = self.fresh(position, Kind::Constants);
+        let substance = &self.all.substances[position as usize];
+        let mut overruled = Vec::new();
         // the preferred normal boiling point and every one at another pressure
         let mut normal_seen = false;
-        for constant in constants {
+        for (at, constant) in substance.constants.iter().enumerate() {
             let point = match constant.property {
                 Property::BoilingPoint => constant.pressure_pa.map(|p| (constant.value, p)),
                 Property::VaporPressure => constant.temperature_k.map(|t| (t, constant.value)),
@@ -781,6 +793,10 @@ impl Layer<'_> {
                 continue;
             }
             if misses(curve, temperature_k, pressure, BOILING_POINT_MISS_K) {
+                if at >= fresh {
+                    overruled.push(constant.clone());
+                    continue;
+                }
                 let gives = match curve.saturation_temperature_k(pressure) {
                     Ok(t) => format!("{t:.2} K"),
                     Err(error) => error.to_string(),
@@ -794,7 +810,20 @@ impl Layer<'_> {
                 ));
             }
         }
-        Ok(())
+        let is_first = self.fresh(position, Kind::VaporPressures) == 0;
+        for constant in &overruled {
+            let is_boiling_point = constant.property == Property::BoilingPoint;
+            let gives = match is_boiling_point {
+                true => curve.saturation_temperature_k(constant.pressure_pa.unwrap_or(0.0)),
+                false => curve.pressure_pa(constant.temperature_k.unwrap_or(0.0)),
+            };
+            if let Ok(gives) = gives {
+                self.record(position, constant, gives, curve.source());
+                self.all.substances[position as usize].boils_by_curve |=
+                    is_first && constant.is_normal_boiling_point();
+            }
+        }
+        Ok(!overruled.is_empty())
     }
 
     fn density(&mut self, table: &Table) -> Result<(), TableError> {
@@ -828,39 +857,65 @@ impl Layer<'_> {
         Ok(())
     }
 
-    /// Refuses a curve that contradicts a stated density or another curve of the substance.
+    /// Refuses a curve that contradicts a stated density or another curve of the
+    /// substance in its layer; those of an older layer are overruled.
     fn check_densities(
-        &self,
+        &mut self,
         row: Row<'_>,
         column: Column,
         position: u32,
         curve: &LiquidDensity,
     ) -> Result<(), TableError> {
         let substance = &self.all.substances[position as usize];
+        let fresh = [Kind::Constants, Kind::Densities].map(|kind| self.fresh(position, kind));
         let stated = substance
             .constants
             .iter()
-            .filter(|constant| constant.property == Property::LiquidDensity)
-            .filter_map(|constant| Some((constant.temperature_k?, constant.value)));
-        let others = substance.densities.iter().filter_map(|other| {
-            let low = other.range_k().0.max(curve.range_k().0);
-            let high = other.range_k().1.min(curve.range_k().1);
-            if low > high {
-                return None;
-            }
-            // near a critical point two fits may part
-            let t = low + 0.25 * (high - low);
-            Some((t, other.density_kg_per_m3(t).ok()?))
-        });
-        for (t, density) in stated.chain(others) {
+            .enumerate()
+            .filter(|(_, constant)| constant.property == Property::LiquidDensity)
+            .filter_map(|(at, constant)| {
+                let older = at >= fresh[0];
+                Some((
+                    older,
+                    constant.temperature_k?,
+                    constant.value,
+                    &constant.source,
+                ))
+            });
+        let others = substance
+            .densities
+            .iter()
+            .enumerate()
+            .filter_map(|(at, other)| {
+                let low = other.range_k().0.max(curve.range_k().0);
+                let high = other.range_k().1.min(curve.range_k().1);
+                if low > high {
+                    return None;
+                }
+                // near a critical point two fits may part
+                let t = low + 0.25 * (high - low);
+                let density = other.density_kg_per_m3(t).ok()?;
+                Some((at >= fresh[1], t, density, other.source()))
+            });
+        let mut overruled = None;
+        for (older, t, density, source) in stated.chain(others) {
             if let Ok(ours) = curve.density_kg_per_m3(t)
                 && (ours / density - 1.0).abs() > DENSITY_MISS
             {
+                if older {
+                    let constant = Constant::density(density, t, source);
+                    overruled.get_or_insert((constant, ours));
+                    continue;
+                }
                 return Err(row.fault(
                     column,
                     format!("the curve gives {ours:.1} kg/m3 at {t:.2} K, elsewhere it is {density:.1} kg/m3"),
                 ));
             }
+        }
+        if let Some((constant, ours)) = overruled {
+            self.record(position, &constant, ours, curve.source());
+            self.all.substances[position as usize].contradicts(Property::LiquidDensity);
         }
         Ok(())
     }

@@ -49,6 +49,10 @@ pub struct Substance {
     pub(super) densities: Vec<LiquidDensity>,
     pub(super) point_curves: Vec<PointCurve>,
     pub(super) supplies: Vec<Supply>,
+    /// Whether a user's curve goes before an older boiling point it contradicts.
+    pub(super) boils_by_curve: bool,
+    /// Properties of which a user's value contradicts an older one.
+    pub(super) contradicted: Vec<Property>,
 }
 
 impl Substance {
@@ -100,7 +104,8 @@ impl Substance {
     }
 
     /// The preferred vapor-pressure curve for work over a range of
-    /// temperatures: the first equation, else measured points.
+    /// temperatures: the first equation, else measured points. An older equation
+    /// beside a user's points has been moved through them.
     pub fn vapor_pressure(&self) -> Option<&VaporPressure> {
         let equation = self.vapor_pressures.iter().find(|curve| !curve.is_points());
         equation.or(self.vapor_pressures.first())
@@ -143,8 +148,11 @@ impl Substance {
     /// - The boiling point is the number stated for 101.325 kPa; failing that,
     ///   the temperature at which the vapor-pressure curve reaches it, rounded to
     ///   0.1 K because a curve knows no more; its source says so.
+    ///   So it does where a user's curve contradicts an older stated one.
     /// - Boiling point and vapor pressure are flagged [`Flag::Inconsistent`]
-    ///   where a boiling point and a curve of different layers part by more than 3 K.
+    ///   where a boiling point and a curve of different layers part by more than
+    ///   3 K; densities where those of different layers part by more than 5 %;
+    ///   the enthalpy of vaporization where an older curve contradicts a user's.
     /// - The enthalpy of vaporization is that at the normal boiling point; one
     ///   stated for another temperature does not answer for it.
     /// - `temperature_k` does not matter to other properties.
@@ -156,6 +164,7 @@ impl Substance {
                 .or_else(|| self.vapor_pressure_at(temperature_k)),
             Property::LiquidDensity => self
                 .point(property, temperature_k)
+                .map(|found| found.map(|value| value.flagged(self.flags_of(property))))
                 .or_else(|| self.density_at(temperature_k)),
             property if property.depends_on_temperature() => self
                 .point(property, temperature_k)
@@ -163,7 +172,7 @@ impl Substance {
             Property::EnthalpyOfVaporization => self
                 .values(property)
                 .find(|constant| constant.temperature_k.is_none())
-                .map(|constant| Ok(constant.estimate())),
+                .map(|constant| Ok(constant.estimate().flagged(self.flags_of(property)))),
             property => self
                 .values(property)
                 .next()
@@ -183,11 +192,13 @@ impl Substance {
 
     /// The preferred boiling point stated for 101.325 kPa.
     pub(super) fn stated_boiling_point(&self) -> Option<&Constant> {
-        self.values(Property::BoilingPoint)
-            .find(|constant| constant.pressure_pa.is_some_and(is_normal_pressure))
+        self.constants
+            .iter()
+            .find(|constant| constant.is_normal_boiling_point())
     }
 
-    /// [`Flag::Inconsistent`] where the curve misses the stated boiling point.
+    /// [`Flag::Inconsistent`] where the curve contradicts other data or misses
+    /// the stated boiling point.
     fn flags_of_boiling_point(&self, curve: &VaporPressure) -> Flags {
         let parted = self.stated_boiling_point().is_some_and(|constant| {
             misses(
@@ -198,14 +209,16 @@ impl Substance {
             )
         });
         if parted {
-            Flags::NONE.with(Flag::Inconsistent)
+            curve.flags().with(Flag::Inconsistent)
         } else {
-            Flags::NONE
+            curve.flags()
         }
     }
 
     fn boiling_point(&self) -> Option<Outcome> {
-        if let Some(constant) = self.stated_boiling_point() {
+        if let Some(constant) = self.stated_boiling_point()
+            && !self.boils_by_curve
+        {
             let flags = self
                 .vapor_pressure()
                 .map_or(Flags::NONE, |curve| self.flags_of_boiling_point(curve));
@@ -242,7 +255,7 @@ impl Substance {
         let equations: SmallVec<[&VaporPressure; 4]> = self
             .vapor_pressures
             .iter()
-            .filter(|curve| !curve.is_points())
+            .filter(|curve| !curve.is_points() && !curve.is_moved())
             .collect();
         preferred(
             &equations,
@@ -268,6 +281,20 @@ impl Substance {
         )
     }
 
+    /// Notes that a user's value of the property contradicts an older one.
+    pub(super) fn contradicts(&mut self, property: Property) {
+        if !self.contradicted.contains(&property) {
+            self.contradicted.push(property);
+        }
+    }
+
+    fn flags_of(&self, property: Property) -> Flags {
+        match self.contradicted.contains(&property) {
+            true => Flags::NONE.with(Flag::Inconsistent),
+            false => Flags::NONE,
+        }
+    }
+
     fn density_at(&self, temperature_k: f64) -> Option<Outcome> {
         let curve = preferred(
             &self.densities,
@@ -278,7 +305,9 @@ impl Substance {
             curve
                 .density_kg_per_m3(temperature_k)
                 .map(|density| {
-                    let flags = curve.flags_at(temperature_k);
+                    let flags = curve
+                        .flags_at(temperature_k)
+                        .union(self.flags_of(Property::LiquidDensity));
                     from_curve(density, Some(temperature_k), flags, curve.source())
                 })
                 .map_err(Absent::from),
@@ -359,6 +388,22 @@ impl Constant {
             && (!takes_temperature
                 || same(self.temperature_k, other.temperature_k, SAME_TEMPERATURE_K))
             && (!takes_pressure || same(self.pressure_pa, other.pressure_pa, width_pa))
+    }
+
+    /// Whether it is a boiling point at 101.325 kPa.
+    pub(super) fn is_normal_boiling_point(&self) -> bool {
+        self.property == Property::BoilingPoint && self.pressure_pa.is_some_and(is_normal_pressure)
+    }
+
+    /// A liquid density in kg/m³ at a temperature in K.
+    pub(super) fn density(value: f64, temperature_k: f64, source: &Arc<str>) -> Self {
+        Self {
+            property: Property::LiquidDensity,
+            value,
+            temperature_k: Some(temperature_k),
+            pressure_pa: None,
+            source: Arc::clone(source),
+        }
     }
 
     fn estimate(&self) -> Estimate {

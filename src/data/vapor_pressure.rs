@@ -3,7 +3,8 @@
 use std::fmt;
 use std::sync::Arc;
 
-use super::points::POINT_STRETCH_K;
+use super::points::{POINT_STRETCH_K, Straight};
+use super::substance::{BOILING_POINT_MISS_K, misses};
 use super::{OutOfRange, Points};
 use crate::quantity::{Flag, Flags};
 
@@ -142,9 +143,16 @@ impl fmt::Display for VaporPressureEquation {
 /// critical point, beyond which there is no vapor pressure. Measured points
 /// reach 10 K past the outermost. The stretch ends earlier where the curve
 /// stops rising with temperature.
+///
+/// A published curve may have been [moved](Self::through) through measured
+/// points; reach and shape are then still those of the equation.
 #[derive(Clone, Debug, PartialEq)]
 pub struct VaporPressure {
     equation: VaporPressureEquation,
+    /// The factors by which the pressure is multiplied.
+    factors: Option<Points>,
+    /// What holds of it at every temperature.
+    flags: Flags,
     range_k: (f64, f64),
     limits_k: (f64, f64),
     source: Arc<str>,
@@ -211,10 +219,106 @@ impl VaporPressure {
         };
         Ok(Self {
             equation,
+            factors: None,
+            flags: Flags::NONE,
             range_k: (low_k, high_k),
             limits_k: (low_limit, high_limit),
             source,
         })
+    }
+
+    /// The curve moved so that it passes through measured points, given as
+    /// temperature in K and pressure in Pa in order of temperature: its pressure
+    /// is multiplied by a factor whose logarithm is straight in 1/T between the
+    /// points and constant past the outermost. Flagged [`Flag::Inconsistent`]
+    /// where the curve had missed a point by more than 3 K.
+    ///
+    /// `None` if no point lies inside its [limits](Self::limits_k), or the moved
+    /// curve does not rise with temperature.
+    pub fn through(&self, points: &[(f64, f64)], source: &str) -> Option<Self> {
+        let reached = |&(t, p): &(f64, f64)| Some((t, p / self.pressure_pa(t).ok()?));
+        let factors: Vec<(f64, f64)> = points.iter().filter_map(reached).collect();
+        let factors = Points::new(Straight::LogInReciprocalTemperature, &factors)?;
+        let contradicts = |&(t, p): &(f64, f64)| misses(self, t, p, BOILING_POINT_MISS_K);
+        let moved = Self {
+            flags: match points.iter().any(contradicts) {
+                true => self.flags.with(Flag::Inconsistent),
+                false => self.flags,
+            },
+            factors: Some(factors),
+            source: format!("{}, moved through {source}", self.source).into(),
+            ..self.clone()
+        };
+        let (low, high) = moved.limits_k;
+        const STEPS: u32 = 48;
+        let even = (0..=STEPS).map(|step| low + (high - low) * f64::from(step) / f64::from(STEPS));
+        // of the kinks, both sides
+        let kinks = points
+            .iter()
+            .flat_map(|&(t, _)| [t * (1.0 - 1e-9), t * (1.0 + 1e-9)])
+            .filter(|t| (low..=high).contains(t));
+        even.chain(kinks)
+            .all(|t| {
+                let (ln_p, slope) = moved.ln_and_slope(t);
+                ln_p.abs() < f64::MAX.ln() && slope > 0.0 && slope.is_finite()
+            })
+            .then_some(moved)
+    }
+
+    /// The curve [moved](Self::through) through measured points; where that
+    /// cannot be done it stays, flagged if it misses one of them.
+    pub fn moved_or_flagged(&self, points: &[(f64, f64)], source: &str) -> Self {
+        self.through(points, source).unwrap_or_else(|| {
+            let missed = |&(t, p): &(f64, f64)| misses(self, t, p, BOILING_POINT_MISS_K);
+            match points.iter().any(missed) {
+                true => self.clone().contradicted(),
+                false => self.clone(),
+            }
+        })
+    }
+
+    /// Lines between measured points, given as for [`through`](Self::through);
+    /// `None` if there are fewer than two or the pressure does not rise.
+    pub fn between(points: &[(f64, f64)], source: Arc<str>) -> Option<Self> {
+        let [(low_k, _), .., (high_k, _)] = *points else {
+            return None;
+        };
+        let points = Points::new(Straight::LogInReciprocalTemperature, points)?;
+        Self::new(VaporPressureEquation::Points(points), low_k, high_k, source).ok()
+    }
+
+    /// The same curve, known to contradict other data of its substance.
+    pub(super) fn contradicted(mut self) -> Self {
+        self.flags = self.flags.with(Flag::Inconsistent);
+        self
+    }
+
+    /// What holds of the curve at every temperature.
+    pub(super) fn flags(&self) -> Flags {
+        self.flags
+    }
+
+    /// Whether the curve contradicts other data of its substance.
+    pub fn is_contradicted(&self) -> bool {
+        self.flags.contains(Flag::Inconsistent)
+    }
+
+    /// Whether the curve was moved through measured points.
+    pub fn is_moved(&self) -> bool {
+        self.factors.is_some()
+    }
+
+    fn ln_and_slope(&self, temperature_k: f64) -> (f64, f64) {
+        let (ln_p, slope) = self.equation.ln_pressure_and_slope(temperature_k);
+        let Some(factors) = &self.factors else {
+            return (ln_p, slope);
+        };
+        let (low, high) = factors.range_k();
+        let (ln_factor, factor_slope) = factors.ordinate_and_slope(temperature_k.clamp(low, high));
+        match (low..high).contains(&temperature_k) {
+            true => (ln_p + ln_factor, slope + factor_slope),
+            false => (ln_p + ln_factor, slope),
+        }
     }
 
     /// The equation.
@@ -237,12 +341,13 @@ impl VaporPressure {
         &self.source
     }
 
-    /// [`Flag::Extrapolated`] outside the published range.
+    /// [`Flag::Extrapolated`] outside the published range; [`Flag::Inconsistent`]
+    /// where the curve contradicts other data of its substance.
     pub fn flags_at(&self, temperature_k: f64) -> Flags {
         if self.covers(temperature_k) {
-            Flags::NONE
+            self.flags
         } else {
-            Flags::NONE.with(Flag::Extrapolated)
+            self.flags.with(Flag::Extrapolated)
         }
     }
 
@@ -267,7 +372,7 @@ impl VaporPressure {
     pub fn ln_pressure_and_slope(&self, temperature_k: f64) -> Result<(f64, f64), OutOfRange> {
         let (low_k, high_k) = self.limits_k;
         if (low_k..=high_k).contains(&temperature_k) {
-            Ok(self.equation.ln_pressure_and_slope(temperature_k))
+            Ok(self.ln_and_slope(temperature_k))
         } else {
             Err(OutOfRange::Temperature {
                 temperature_k,
@@ -288,8 +393,8 @@ impl VaporPressure {
     /// [limits](Self::limits_k), or is not a positive number.
     pub fn saturation_temperature_k(&self, pressure_pa: f64) -> Result<f64, OutOfRange> {
         let (mut low, mut high) = self.limits_k;
-        let ln_low = self.equation.ln_pressure_and_slope(low).0;
-        let ln_high = self.equation.ln_pressure_and_slope(high).0;
+        let ln_low = self.ln_and_slope(low).0;
+        let ln_high = self.ln_and_slope(high).0;
         let target = pressure_pa.ln();
         if !(ln_low..=ln_high).contains(&target) {
             return Err(OutOfRange::Pressure {
@@ -302,7 +407,7 @@ impl VaporPressure {
             1.0 / (1.0 / low + (1.0 / high - 1.0 / low) * (target - ln_low) / (ln_high - ln_low));
         // each step either converges or at least halves the bracket
         for _ in 0..100 {
-            let (ln_p, slope) = self.equation.ln_pressure_and_slope(t);
+            let (ln_p, slope) = self.ln_and_slope(t);
             let miss = ln_p - target;
             if miss > 0.0 {
                 high = t;
@@ -332,7 +437,7 @@ impl VaporPressure {
         pressure_pa: f64,
     ) -> Result<(f64, f64), OutOfRange> {
         let temperature_k = self.saturation_temperature_k(pressure_pa)?;
-        let (_, slope) = self.equation.ln_pressure_and_slope(temperature_k);
+        let (_, slope) = self.ln_and_slope(temperature_k);
         Ok((temperature_k, 1.0 / (pressure_pa * slope)))
     }
 

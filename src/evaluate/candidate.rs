@@ -98,6 +98,19 @@ struct AlphaRange {
     flags: Flags,
 }
 
+/// A candidate with what its figures are computed from.
+struct Candidate<'a> {
+    profile: &'a Profile,
+    known: Option<Known<'a>>,
+    /// Measured values of the user's own.
+    own: &'a [(Property, Estimate)],
+    /// Its properties at each temperature of the plan.
+    estimates: &'a [Estimates],
+    measured: &'a MeasuredDilutions,
+    /// By each model of the plan.
+    dilute: &'a [Dilute],
+}
+
 /// A candidate at infinite dilution with the keys, by one model.
 struct Dilute {
     /// The candidate as the model sees it.
@@ -168,9 +181,17 @@ impl Plan {
             of_model.prefer(measured, self.keys);
             of_model
         }));
+        let candidate = Candidate {
+            profile,
+            known,
+            own,
+            estimates,
+            measured,
+            dilute,
+        };
         figures.clear();
         for figure in &self.figures {
-            let outcome = self.figure(figure, profile, known, estimates, measured, dilute);
+            let outcome = self.figure(figure, &candidate);
             figures.push(outcome);
         }
         Ok(self.verdict(profile, figures))
@@ -204,15 +225,14 @@ impl Plan {
         Dilute { component, keys }
     }
 
-    fn figure(
-        &self,
-        figure: &PlannedFigure,
-        profile: &Profile,
-        known: Option<Known<'_>>,
-        estimates: &[Estimates],
-        measured: &MeasuredDilutions,
-        dilute: &[Dilute],
-    ) -> Outcome {
+    fn figure(&self, figure: &PlannedFigure, candidate: &Candidate<'_>) -> Outcome {
+        let Candidate {
+            profile,
+            estimates,
+            measured,
+            dilute,
+            ..
+        } = *candidate;
         if let FigureKind::Property(property) = figure.kind {
             return estimates[figure.temperature][property as usize].clone();
         }
@@ -283,7 +303,7 @@ impl Plan {
                     / profile.facts.molar_mass_kg_per_mol
             }
             FigureKind::RelativeVolatilityWithSolvent | FigureKind::SeparationFactorWithSolvent => {
-                let range = self.with_solvent(model, of_candidate, profile, known, &estimates[0]);
+                let range = self.with_solvent(model, of_candidate, candidate);
                 return range.and_then(|range| {
                     let value = if figure.kind == FigureKind::SeparationFactorWithSolvent {
                         range.least.max(1.0 / range.most)
@@ -318,11 +338,10 @@ impl Plan {
         &self,
         model: &PlannedModel,
         dilute: &Dilute,
-        profile: &Profile,
-        known: Option<Known<'_>>,
-        estimates: &Estimates,
+        candidate: &Candidate<'_>,
     ) -> Result<AlphaRange, Absent> {
         let because = |text: &str| Absent::Because(text.into());
+        let profile = candidate.profile;
         let keys = self
             .keys
             .ok_or_else(|| because("the mixture has no keys"))?;
@@ -338,10 +357,12 @@ impl Plan {
             .ok_or_else(|| because("the mixture states no solvent_to_feed"))?;
         // Without measured vapor pressures of the keys the figure is noise.
         self.key_pressure_ratio.as_ref().map_err(Absent::clone)?;
-        let curve = match known.and_then(|known| known.substance.vapor_pressure()) {
-            Some(curve) => VaporCurve::Measured(curve.clone()),
-            None => VaporCurve::estimated(&self.library, estimates)?,
-        };
+        let curve = VaporCurve::of_candidate(
+            &self.library,
+            candidate.known,
+            candidate.own,
+            &candidate.estimates[0],
+        )?;
         let [first, second] = keys.map(|key| &self.components[key]);
         let pressures = |component: usize, temperature_k: f64| match component {
             0 => first.vapor.pressure_pa(temperature_k),
@@ -400,6 +421,11 @@ impl Plan {
         let flags = points
             .iter()
             .fold(Flags::NONE, |flags, point| flags.union(point.flags));
+        let curves = [&first.vapor, &second.vapor, &curve];
+        let flags = match curves.iter().any(|curve| curve.is_contradicted()) {
+            true => flags.with(Flag::Inconsistent),
+            false => flags,
+        };
         Ok(AlphaRange {
             least: alphas().fold(f64::INFINITY, f64::min),
             most: alphas().fold(0.0, f64::max),

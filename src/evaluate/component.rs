@@ -2,13 +2,18 @@
 
 use std::sync::Arc;
 
+use smallvec::SmallVec;
+
 use super::Library;
 use super::error::UnknownMolecule;
-use super::profile::{Known, Profile, Profiler, properties};
+use super::profile::{Known, Profile, Profiler, SAME_TEMPERATURE_K, properties};
 use crate::data::VaporPressure;
 use crate::data::pairs::PairIdentity;
+use crate::pure::Estimates;
 use crate::pure::corresponding_states::{Constants, VaporPressureCurve};
-use crate::quantity::{Absent, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
+use crate::quantity::{
+    Absent, Estimate, Flag, Flags, Property, REFERENCE_TEMPERATURE_K, STANDARD_ATMOSPHERE_PA,
+};
 
 /// Vapor pressure of a substance as a function of temperature.
 #[derive(Clone, Debug)]
@@ -31,11 +36,49 @@ impl VaporCurve {
         Self::estimated(library, &all).unwrap_or_else(Self::Absent)
     }
 
-    /// The estimated curve that goes with a set of estimates.
-    pub(super) fn estimated(
+    /// The curve of a candidate of which the user has measured values of their
+    /// own: the measured one moved through them, else the lines between them.
+    /// Else it is estimated from its properties.
+    pub(super) fn of_candidate(
         library: &Library,
-        all: &crate::pure::Estimates,
+        known: Option<Known<'_>>,
+        own: &[(Property, Estimate)],
+        all: &Estimates,
     ) -> Result<Self, Absent> {
+        let curve = known.and_then(|known| known.substance.vapor_pressure());
+        let mut points: SmallVec<[(f64, f64, &Estimate); 4]> = own
+            .iter()
+            .filter_map(|(property, found)| match property {
+                Property::BoilingPoint => Some((found.value, STANDARD_ATMOSPHERE_PA, found)),
+                Property::VaporPressure => Some((found.temperature_k?, found.value, found)),
+                _ => None,
+            })
+            .collect();
+        points.sort_by(|one, other| one.0.total_cmp(&other.0));
+        points.dedup_by(|later, one| later.0 - one.0 <= SAME_TEMPERATURE_K);
+        if points.is_empty() {
+            return match curve {
+                Some(curve) => Ok(Self::Measured(curve.clone())),
+                None => Self::estimated(library, all),
+            };
+        }
+        let line: SmallVec<[(f64, f64); 4]> = points.iter().map(|&(t, p, _)| (t, p)).collect();
+        let sources: SmallVec<[&str; 4]> = points
+            .iter()
+            .filter_map(|(_, _, found)| found.source.as_deref())
+            .collect();
+        let source = sources.join("; ");
+        match curve {
+            Some(curve) => Ok(Self::Measured(curve.moved_or_flagged(&line, &source))),
+            None => VaporPressure::between(&line, source.into()).map_or_else(
+                || Self::estimated(library, all),
+                |curve| Ok(Self::Measured(curve)),
+            ),
+        }
+    }
+
+    /// The estimated curve that goes with a set of estimates.
+    pub(super) fn estimated(library: &Library, all: &Estimates) -> Result<Self, Absent> {
         let value = |property: Property| {
             all[property as usize]
                 .as_ref()
@@ -83,6 +126,14 @@ impl VaporCurve {
             Self::Measured(curve) => curve.flags_at(temperature_k),
             Self::Estimated(_) => Flags::NONE.with(Flag::RestsOnEstimate),
             Self::Absent(_) => Flags::NONE,
+        }
+    }
+
+    /// Whether it contradicts other data of the substance.
+    pub(super) fn is_contradicted(&self) -> bool {
+        match self {
+            Self::Measured(curve) => curve.is_contradicted(),
+            Self::Estimated(_) | Self::Absent(_) => false,
         }
     }
 

@@ -243,4 +243,4 @@ fn given_values(
 }
 
 /// Two temperatures nearer than this are one, K.
-const SAME_TEMPERATURE_K: f64 = 0.01;
+pub(super) const SAME_TEMPERATURE_K: f64 = 0.01;

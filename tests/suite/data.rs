@@ -847,7 +847,11 @@ fn faults_are_refused_with_file_row_and_column() {
         let error = base
             .with(&Tables {
                 substances: this("substances"),
-                measured: this("measured"),
+                // a curve is refused against its own layer only
+                measured: match which {
+                    "vapor_pressure" => file("measured.csv", &base_measured),
+                    _ => this("measured"),
+                },
                 vapor_pressure: this("vapor_pressure"),
                 density: this("density"),
                 ..Tables::default()

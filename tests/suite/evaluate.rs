@@ -9,7 +9,7 @@ use groupsmith::evaluate::{
     Verdict, describe_mixture, mole_fractions,
 };
 use groupsmith::mixture::{ActivityModel, Slips};
-use groupsmith::quantity::{Absent, Flag, Outcome};
+use groupsmith::quantity::{Absent, Estimate, Flag, Outcome, Property, Status};
 
 fn library() -> Arc<Library> {
     Arc::new(Library::built_in(Slips::Corrected))
@@ -554,4 +554,61 @@ fn a_component_without_groups_is_named_in_every_reason() {
         let told = faults[0].cause.to_string();
         assert!(told.contains("CC#CB: ") && told.contains("atom "), "{told}");
     }
+}
+
+/// A boiling point of the user goes before the built-in curve in the work on a
+/// mixture too, and what rests on it says that the curve had another.
+#[test]
+fn the_user_s_boiling_point_is_that_of_the_mixture() {
+    let table = UserTable {
+        place: "substances/measured.csv".into(),
+        file: "own/measured.csv".into(),
+        text: "substance,property,value,unit,pressure,source\n-,-,-,-,kPa,-\n\
+               acetone,boiling_point,335,K,101.325,own\n"
+            .into(),
+    };
+    let own = Library::with_user_tables(Slips::Corrected, vec![table]).unwrap();
+    let mut profiler = Profiler::new();
+    let acetone = MixtureComponent::find(&own, &mut profiler, "acetone", true).unwrap();
+    close(acetone.vapor.pressure_pa(335.0).unwrap(), 101_325.0, 1e-9);
+    assert!(acetone.vapor.is_measured());
+    assert!(acetone.vapor.flags_at(335.0).contains(Flag::Inconsistent));
+    // the shape is that of the built-in curve
+    let built_in = MixtureComponent::find(&library(), &mut profiler, "acetone", true).unwrap();
+    let ratio =
+        |t: f64| acetone.vapor.pressure_pa(t).unwrap() / built_in.vapor.pressure_pa(t).unwrap();
+    close(ratio(300.0), ratio(335.0), 1e-12);
+    assert!(ratio(335.0) < 0.85, "{}", ratio(335.0));
+}
+
+/// A pool's own boiling point of a candidate that the tables know moves the curve
+/// by which its bubble points are found; the built-in one changes nothing.
+#[test]
+fn a_candidate_s_own_boiling_point_counts_beside_the_keys() {
+    let library = library();
+    let figure = "relative_volatility_with_solvent";
+    let plan = plan_of(&library, &brief(ACETONE_METHANOL, &[figure])).unwrap();
+    let mut scratch = Scratch::new();
+    let mut evaluate = |boiling_k: Option<f64>| {
+        let own = boiling_k.map(|t| {
+            let mut found = Estimate::new(t, "measured");
+            found.status = Status::Measured;
+            found.source = Some("own".into());
+            (Property::BoilingPoint, found)
+        });
+        let own: Vec<_> = own.into_iter().collect();
+        plan.evaluate_with(&mut scratch, "O", &own).unwrap();
+        outcome(&plan, &scratch, figure).clone().unwrap()
+    };
+    let built_in = evaluate(None);
+    assert!(!built_in.flags.contains(Flag::Inconsistent));
+    let same = evaluate(Some(373.124));
+    close(same.value, built_in.value, 1e-4);
+    assert!(!same.flags.contains(Flag::Inconsistent));
+    let other = evaluate(Some(350.0));
+    assert!(
+        (other.value / built_in.value - 1.0).abs() > 1e-3,
+        "{other:?}"
+    );
+    assert!(other.flags.contains(Flag::Inconsistent));
 }

@@ -303,12 +303,15 @@ fn contradictions_are_told_at_once_with_both_numbers() {
     );
     let vapor = format!(
         "{VAPOR}acetone,antoine,log10,bar,K,4.42448,1312.253,-32.445,,,,,259,508,own\n\
-         ethanol,antoine,log10,bar,K,5.24677,1598.673,-46.424,,,,,366,292,own\n"
+         ethanol,antoine,log10,bar,K,5.24677,1598.673,-46.424,,,,,366,292,own\n\
+             toluene,antoine,log10,bar,K,4.07827,1343.943,-53.773,,,,,273,390,own\n"
     );
+    let density = format!("{DENSITY}toluene,constant,862,,,,,,293,303,own\n");
     let found = faults(&[
         ("substances.csv", substances),
         ("measured.csv", &measured),
         ("vapor_pressure.csv", &vapor),
+        ("density.csv", &density),
     ]);
     insta::assert_snapshot!("contradictions", found.join("\n"));
 }
@@ -346,6 +349,137 @@ fn a_boiling_point_against_a_built_in_curve_is_flagged() {
     let table = oil("toluene,boiling_point,384,K,,101.325,own\n");
     let boiling = of(&table, "toluene", Property::BoilingPoint, 0.0);
     assert!(boiling.flags.is_empty());
+}
+
+/// Work over a range of temperatures goes through every point of the user, with
+/// the shape and the reach of the built-in equation.
+#[test]
+fn a_built_in_curve_is_moved_through_a_user_s_points() {
+    let built_in = built_in()
+        .find("toluene")
+        .unwrap()
+        .vapor_pressure()
+        .unwrap();
+    let factor = |table: &Substances, t: f64| {
+        let curve = table.find("toluene").unwrap().vapor_pressure().unwrap();
+        curve.pressure_pa(t).unwrap() / built_in.pressure_pa(t).unwrap()
+    };
+    let one = oil("toluene,boiling_point,350,K,,30,own still\n");
+    let curve = one.find("toluene").unwrap().vapor_pressure().unwrap();
+    assert!((curve.saturation_temperature_k(30e3).unwrap() - 350.0).abs() < 1e-6);
+    assert_eq!(curve.limits_k(), built_in.limits_k());
+    assert!(
+        curve
+            .source()
+            .ends_with(", moved through one measured point: own still")
+    );
+    let wanted = factor(&one, 350.0);
+    for t in [280.0, 349.0, 351.0, 450.0] {
+        assert!((factor(&one, t) / wanted - 1.0).abs() < 1e-9, "{t} K");
+    }
+
+    let two = oil("toluene,vapor_pressure,4,kPa,300,,own\n\
+                   toluene,boiling_point,386,K,,101.325,own\n");
+    let ends = [(300.0, 4e3), (386.0, STANDARD_ATMOSPHERE_PA)];
+    for (t, p) in ends {
+        let curve = two.find("toluene").unwrap().vapor_pressure().unwrap();
+        assert!((curve.pressure_pa(t).unwrap() / p - 1.0).abs() < 1e-9);
+    }
+    let middle = 2.0 / (1.0 / 300.0 + 1.0 / 386.0);
+    let mean = (factor(&two, 300.0) * factor(&two, 386.0)).sqrt();
+    assert!((factor(&two, middle) / mean - 1.0).abs() < 1e-9);
+    assert!((factor(&two, 450.0) / factor(&two, 386.0) - 1.0).abs() < 1e-9);
+    // the same curve answers between the points
+    let pressure = of(&two, "toluene", Property::VaporPressure, middle);
+    assert!((pressure.value / built_in.pressure_pa(middle).unwrap() / mean - 1.0).abs() < 1e-9);
+
+    // one point is missed by more than 3 K, so everything on the curve says so
+    let off = oil("toluene,vapor_pressure,6,kPa,300,,own\n");
+    for t in [300.5, 383.0] {
+        let flags = of(&off, "toluene", Property::VaporPressure, t).flags;
+        assert!(flags.contains(Flag::Inconsistent), "{t} K");
+    }
+    assert!(
+        of(&off, "toluene", Property::BoilingPoint, 0.0)
+            .flags
+            .contains(Flag::Inconsistent)
+    );
+    // points to both sides of the standard atmosphere contradict the built-in boiling point
+    let around = oil("toluene,boiling_point,388,K,,99,own\ntoluene,boiling_point,390,K,,104,own\n");
+    let boiling = of(&around, "toluene", Property::BoilingPoint, 0.0);
+    assert!((boiling.value - 388.9).abs() < 0.2, "{boiling:?}");
+    assert!(boiling.flags.contains(Flag::Inconsistent));
+}
+
+/// A user's curve goes before a built-in boiling point it misses, and both say so;
+/// one that misses the user's own is refused.
+#[test]
+fn a_user_s_curve_overrules_a_built_in_boiling_point() {
+    let vapor =
+        format!("{VAPOR}acetone,antoine,log10,bar,K,4.3,1312.253,-32.445,,,,,259,400,own\n");
+    let table = with(&[("vapor_pressure.csv", &vapor)]).unwrap_or_else(|error| panic!("{error}"));
+    let boiling = of(&table, "acetone", Property::BoilingPoint, 0.0);
+    assert!((boiling.value - 338.0).abs() < 0.1, "{boiling:?}");
+    assert!(boiling.flags.contains(Flag::Inconsistent));
+    let pressure = of(&table, "acetone", Property::VaporPressure, 300.0);
+    assert_eq!(pressure.source.as_deref(), Some("own"));
+    assert!(pressure.flags.contains(Flag::Inconsistent));
+    let acetone = table.find("acetone").unwrap();
+    let conflict = table
+        .conflicts_about(acetone, Property::BoilingPoint)
+        .last()
+        .unwrap();
+    assert!((conflict.used.parse::<f64>().unwrap() - 338.0).abs() < 0.1);
+    assert!((conflict.other.parse::<f64>().unwrap() - 329.2).abs() < 0.3);
+    assert_eq!(&*conflict.used_source, "own");
+
+    let measured = format!("{MEASURED}acetone,boiling_point,329,K,,101.325,own\n");
+    let found = faults(&[("measured.csv", &measured), ("vapor_pressure.csv", &vapor)]);
+    assert_eq!(found.len(), 1, "{found:?}");
+    assert!(
+        found[0].contains("the stated boiling point is 329 K"),
+        "{found:?}"
+    );
+}
+
+/// Densities and enthalpies of vaporization of the user are used against built-in
+/// curves, flagged and recorded; against the user's own curves they are refused.
+#[test]
+fn other_values_against_built_in_curves_are_flagged() {
+    let points = oil("toluene,liquid_density,920,kg/m3,298.15,,own\n\
+                      toluene,enthalpy_of_vaporization,43,kJ/mol,,,own\n");
+    let curve = format!("{DENSITY}toluene,constant,950,,,,,,293,303,own\n");
+    let curves = with(&[("density.csv", &curve)]).unwrap_or_else(|error| panic!("{error}"));
+    for (table, property, used, other) in [
+        (&points, Property::LiquidDensity, 920.0, 862.0),
+        (
+            &points,
+            Property::EnthalpyOfVaporization,
+            43_000.0,
+            33_145.0,
+        ),
+        (&curves, Property::LiquidDensity, 950.0, 864.0),
+    ] {
+        let found = of(table, "toluene", property, 298.15);
+        assert_eq!(found.value, used);
+        assert!(found.flags.contains(Flag::Inconsistent), "{property:?}");
+        let toluene = table.find("toluene").unwrap();
+        let mut conflicts = table.conflicts_about(toluene, property);
+        let read = |text: &str| text.parse::<f64>().unwrap();
+        assert!(
+            conflicts.any(|one| (read(&one.used) / used - 1.0).abs() < 1e-3
+                && (read(&one.other) / other - 1.0).abs() < 0.01),
+            "{property:?}: {:?}",
+            table.conflicts_of(toluene).collect::<Vec<_>>()
+        );
+    }
+    let measured = format!("{MEASURED}toluene,liquid_density,870,kg/m3,298.15,,own\n");
+    let found = faults(&[("measured.csv", &measured), ("density.csv", &curve)]);
+    assert_eq!(found.len(), 1, "{found:?}");
+    assert!(
+        found[0].contains("elsewhere it is 870.0 kg/m3"),
+        "{found:?}"
+    );
 }
 
 // ------------------------------------------------------------ Clausius–Clapeyron
