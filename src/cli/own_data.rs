@@ -7,8 +7,8 @@ use super::output;
 use super::user_tables::file_of;
 use crate::data::{Substance, Substances};
 use crate::evaluate::{Library, UserTable};
-use crate::quantity::unit::{reading_text, reading_unit};
-use crate::quantity::{Estimate, Property};
+use crate::quantity::unit::{self, reading_text, reading_unit};
+use crate::quantity::{Dimension, Estimate, Property};
 use crate::report::{TextColumn, TextTable};
 use crate::table::Table;
 
@@ -98,7 +98,7 @@ fn brought<'t>(
     if room != "substances" && room != "pairs" {
         return None;
     }
-    let table = Table::read(&user.file, &user.text).ok()?;
+    let table = Table::read_user(&user.file, &user.text).ok()?;
     let stated = stated(&user.place, &table, library);
     let subject = table
         .optional_column("substance")
@@ -168,9 +168,11 @@ fn stated<'t>(place: &str, table: &'t Table, library: &Library) -> Vec<Stated<'t
                 let property = table
                     .optional_column("property")
                     .and_then(|column| Property::from_id(row.text(column)));
-                let temperature_k = table
-                    .optional_column("temperature")
-                    .and_then(|column| row.number(column).ok().flatten());
+                let temperature_k = table.optional_column("temperature").and_then(|column| {
+                    let number = row.number(column).ok().flatten()?;
+                    let text = format!("{number} {}", table.unit(column));
+                    unit::parse(&text, Dimension::Temperature).ok()
+                });
                 if let Some(property) = property {
                     add(property, temperature_k);
                 }

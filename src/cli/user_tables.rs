@@ -143,8 +143,9 @@ impl<'a> Sources<'a> {
             match place_of(&name) {
                 Some(place) if !file.is_dir() => tables.push(read(place.to_owned(), &file)?),
                 // What editors and file managers leave is nobody's table.
-                _ if name.starts_with('.') => {}
-                _ => unknown.push(format!("{name}{}", meant(&name, data_files()))),
+                None if name.starts_with('.') => {}
+                Some(_) => unknown.push(format!("{name} is a folder")),
+                None => unknown.push(format!("{name}{}", meant(&name, data_files()))),
             }
         }
         if tables.is_empty() {
@@ -236,8 +237,15 @@ fn laid_out(folder: &Path) -> Result<Vec<UserTable>, CliError> {
 }
 
 fn read(place: String, file: &Path) -> Result<UserTable, CliError> {
-    let text = fs::read_to_string(file)
-        .map_err(|error| CliError::Usage(format!("{}: {error}", file.display())))?;
+    let text = fs::read_to_string(file).map_err(|error| {
+        let fault = match error.kind() {
+            std::io::ErrorKind::InvalidData => {
+                "is no text in UTF-8\n  save the table as CSV in UTF-8".to_owned()
+            }
+            _ => error.to_string(),
+        };
+        CliError::Usage(format!("{}: {fault}", file.display()))
+    })?;
     Ok(UserTable {
         place,
         file: file.display().to_string(),

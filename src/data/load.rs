@@ -20,6 +20,9 @@ use crate::chem::{Canonicalizer, Composition, Keys, Molecule, Reader};
 use crate::quantity::{Dimension, Property, unit};
 use crate::table::{Column, Row, Table, TableError};
 
+/// Faults after which the rest of a table is not read: it is of another kind.
+const MOST_FAULTS: usize = 100;
+
 /// A table file: its name for messages and its text.
 #[derive(Clone, Copy, Debug)]
 pub struct TableText<'a> {
@@ -188,9 +191,20 @@ impl Layer<'_> {
         table: &Table,
         mut one: impl FnMut(&mut Self, Row<'_>) -> Result<(), TableError>,
     ) {
+        let before = self.faults.len();
         for row in table.rows() {
-            if let Err(fault) = one(self, row) {
-                self.faults.push(fault);
+            let Err(mut fault) = one(self, row) else {
+                continue;
+            };
+            let is_last = self.faults.len() - before + 1 == MOST_FAULTS;
+            if let TableError::Cell { fault: text, .. } = &mut fault
+                && is_last
+            {
+                text.push_str("; the rest of the table is not read before these rows are mended");
+            }
+            self.faults.push(fault);
+            if is_last {
+                break;
             }
         }
     }

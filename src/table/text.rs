@@ -130,7 +130,7 @@ impl Table {
                 file: file.to_owned(),
                 line: head_lines + 1,
                 column: what.to_owned(),
-                fault: "row is missing",
+                fault: "row is missing: a table begins with its column names and, below them, their units",
             }),
         };
         let (heads_line, columns) = heads("column names")?;
@@ -336,7 +336,13 @@ impl<'a> Row<'a> {
         }
         match text.parse::<f64>() {
             Ok(value) if value.is_finite() => Ok(Some(value)),
-            _ => Err(self.fault(column, "is not a finite number")),
+            _ => Err(self.fault(
+                column,
+                match self.text(column).contains(',') {
+                    true => "is not a finite number; decimals take a point",
+                    false => "is not a finite number",
+                },
+            )),
         }
     }
 

@@ -106,6 +106,57 @@ fn folders_that_cannot_be_used_are_told() {
     );
 }
 
+/// A file typed by hand, without a head and with temperatures in degC.
+#[test]
+fn a_file_without_a_head_is_told_too() {
+    let bench = Bench::new();
+    bench.write(
+        "lab/measured.csv",
+        "substance,property,value,unit,temperature,pressure,source\n-,-,-,-,degC,kPa,-\n\
+         toluene,liquid_density,0.868,g/cm3,20,,own\n\
+         acetone,boiling_point,340,K,,101.325,own\n",
+    );
+    let said = run(&bench, &["check", "--data", "lab"]);
+    assert_eq!((said.code, said.err.as_str()), (0, ""));
+    let told = |words: &[&str]| {
+        let line = |line: &str| words.iter().all(|word| line.contains(word));
+        assert!(said.out.lines().any(line), "{words:?} in\n{}", said.out);
+    };
+    told(&["measured.csv", "2", "liquid_density, boiling_point"]);
+    told(&["acetone", "boiling_point", "329.23", "340"]);
+    told(&["toluene", "liquid_density", "293.15", "868.0"]);
+}
+
+/// What is no table at all says what it is and what to do.
+#[test]
+fn rubbish_is_told_in_a_few_words() {
+    let bench = Bench::new();
+    let refused = |folder: &str, wanted: &[&str]| {
+        let said = run(&bench, &["check", "--data", folder]);
+        assert_eq!((said.code, said.out.as_str()), (2, ""), "{said:?}");
+        for words in wanted {
+            assert!(said.err.contains(words), "{words} in {}", said.err);
+        }
+        said.err.lines().count()
+    };
+    std::fs::create_dir(bench.path("binary")).unwrap();
+    std::fs::write(bench.path("binary/measured.csv"), [0xff, 0xfe, 0, 1]).unwrap();
+    refused("binary", &["is no text in UTF-8", "save the table as CSV"]);
+    std::fs::create_dir_all(bench.path("nested/measured.csv")).unwrap();
+    refused("nested", &["measured.csv is a folder"]);
+    bench.write("nothing/measured.csv", "");
+    refused("nothing", &["begins with its column names"]);
+    bench.write(
+        "comma/supply.csv",
+        "substance,price,price_unit,source\n-,-,-,-\nacetone,\"1,5\",EUR/kg,own\n",
+    );
+    refused("comma", &["decimals take a point (found `1,5`)"]);
+    let rows = "unheard of,flash_point,280,K,,,own\n".repeat(5_000);
+    bench.write("long/measured.csv", format!("{MEASURED}{rows}"));
+    let lines = refused("long", &["the rest of the table is not read"]);
+    assert_eq!(lines, 100);
+}
+
 const BRIEF: &str = "[data]\nfolder = \"lab\"\n[pool]\nfile = \"pool.csv\"\n\
     [[target]]\nfigure = \"boiling_point\"\nat_least = \"1 K\"\n";
 
