@@ -338,7 +338,7 @@ impl Substance {
 }
 
 /// Whether a curve misses a measured boiling point by more than `width_k`;
-/// one that does not reach it does not.
+/// one that reaches neither its temperature nor its pressure does not.
 pub(super) fn misses(
     curve: &VaporPressure,
     temperature_k: f64,
@@ -346,8 +346,10 @@ pub(super) fn misses(
     width_k: f64,
 ) -> bool {
     let at = |t: f64| curve.pressure_pa(t).ok();
-    at(temperature_k - width_k).is_some_and(|low| low > pressure_pa)
-        || at(temperature_k + width_k).is_some_and(|high| high < pressure_pa)
+    let (low_k, high_k) = curve.limits_k();
+    // a curve that has the pressure before its end misses a point beyond it
+    at((temperature_k - width_k).min(high_k)).is_some_and(|low| low > pressure_pa)
+        || at((temperature_k + width_k).max(low_k)).is_some_and(|high| high < pressure_pa)
 }
 
 pub(super) fn is_normal_pressure(pressure_pa: f64) -> bool {

@@ -404,6 +404,15 @@ fn a_built_in_curve_is_moved_through_a_user_s_points() {
             .flags
             .contains(Flag::Inconsistent)
     );
+    // past the end of the curve nothing can be moved, but the contradiction is told
+    let beyond = oil("toluene,boiling_point,900,K,,101.325,own\n");
+    let curve = beyond.find("toluene").unwrap().vapor_pressure().unwrap();
+    assert!(!curve.is_moved() && curve.is_contradicted());
+    assert!(
+        of(&beyond, "toluene", Property::BoilingPoint, 0.0)
+            .flags
+            .contains(Flag::Inconsistent)
+    );
     // points to both sides of the standard atmosphere contradict the built-in boiling point
     let around = oil("toluene,boiling_point,388,K,,99,own\ntoluene,boiling_point,390,K,,104,own\n");
     let boiling = of(&around, "toluene", Property::BoilingPoint, 0.0);
