@@ -26,7 +26,7 @@ pub(super) fn text(library: &Library, asked: &[&str]) -> Result<String, CliError
             names => format!(" of {}", names.join(" and ")),
         };
         return Ok(format!(
-            "no pair data{of}; none are built in, your own are read from the folder given with --tables\n"
+            "no pair data{of}; none are built in, your own are read from the folder given with --data\n"
         ));
     }
     Ok(match asked.len() {
