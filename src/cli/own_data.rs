@@ -19,7 +19,7 @@ const SHOWN: usize = 20;
 struct Stated<'t> {
     substance: &'t str,
     property: Property,
-    /// Temperature in K at which it is looked at.
+    /// Temperature in K at which it is looked at; a boiling point itself.
     temperature_k: f64,
 }
 
@@ -124,12 +124,12 @@ fn brought<'t>(
             continue;
         }
         looked_at.push(what);
-        overridden.extend(self::overridden(
-            own,
-            built_in,
-            one.property,
-            one.temperature_k,
-        ));
+        // a boiling point is a point of the vapor pressure too
+        let also = (one.property == Property::BoilingPoint).then_some(Property::VaporPressure);
+        for property in std::iter::once(one.property).chain(also) {
+            let cells = self::overridden(own, built_in, property, one.temperature_k);
+            overridden.extend(cells.filter(|cells| !overridden.contains(cells)));
+        }
     }
     Some(Brought {
         file: file_of(&user.place),
@@ -173,8 +173,19 @@ fn stated<'t>(place: &str, table: &'t Table, library: &Library) -> Vec<Stated<'t
                     let text = format!("{number} {}", table.unit(column));
                     unit::parse(&text, Dimension::Temperature).ok()
                 });
-                if let Some(property) = property {
-                    add(property, temperature_k);
+                let boiling_k = || {
+                    let column = |name: &str| table.optional_column(name);
+                    let text = format!(
+                        "{} {}",
+                        row.text(column("value")?),
+                        row.text(column("unit")?)
+                    );
+                    unit::parse(&text, Dimension::Temperature).ok()
+                };
+                match property {
+                    Some(Property::BoilingPoint) => add(Property::BoilingPoint, boiling_k()),
+                    Some(property) => add(property, temperature_k),
+                    None => {}
                 }
             }
             "substances/hansen.csv" => {

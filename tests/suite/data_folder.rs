@@ -124,6 +124,7 @@ fn a_file_without_a_head_is_told_too() {
     };
     told(&["measured.csv", "2", "liquid_density, boiling_point"]);
     told(&["acetone", "boiling_point", "329.23", "340"]);
+    told(&["acetone", "vapor_pressure", "340.00", "101.3"]);
     told(&["toluene", "liquid_density", "293.15", "868.0"]);
 }
 
