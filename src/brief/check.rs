@@ -9,12 +9,13 @@ use super::fractions::checked_fractions;
 use super::place::{Located, Place};
 use super::raw::{
     self, Field, RawAssembly, RawBrief, RawData, RawMixture, RawPool, RawQuantity, RawRange,
-    RawReference, RawSolventToFeed, RawStructure, RawTarget,
+    RawRanking, RawReference, RawSolventToFeed, RawStructure, RawTarget,
 };
 use super::structure::{CountRange, GroupLimit, PatternLimit, Structure};
 use super::target::{Direction, Target, Want};
 use super::types::{
-    Assembly, Basis, Brief, DEFAULT_KEEP_BEST, Job, LARGEST_KEEP_BEST, Mixture, Pool, SolventToFeed,
+    Assembly, Basis, Brief, DEFAULT_KEEP_BEST, Job, LARGEST_KEEP_BEST, Mixture, Pool, RankBy,
+    Ranking, SolventToFeed,
 };
 use crate::chem::Element;
 use crate::quantity::Dimension;
@@ -162,6 +163,9 @@ impl Check<'_> {
                 .filter_map(|target| self.target(target, &given))
                 .collect(),
             keep_best: self.keep_best(raw.keep_best),
+            ranking: raw
+                .ranking
+                .map_or_else(Ranking::default, |ranking| self.ranking(ranking)),
         }
     }
 
@@ -707,6 +711,49 @@ impl Check<'_> {
             );
         }
         count
+    }
+
+    fn ranking(&mut self, raw: RawRanking) -> Ranking {
+        let by_place = raw.by.place();
+        let by = raw.by.given().and_then(|by| {
+            self.word(
+                "ranking.by",
+                &by,
+                &["expected-score", "probability", "cautious"],
+                RankBy::from_id,
+            )
+        });
+        let confidence = raw.confidence.given();
+        if let Some(confidence) = &confidence
+            && !(0.0..1.0).contains(&confidence.value)
+        {
+            self.fault(
+                confidence.place,
+                Cause::Range {
+                    field: "ranking.confidence".into(),
+                    value: confidence.value.to_string(),
+                    wanted: "but has to be from 0 to less than 1",
+                },
+            );
+        }
+        let ranking = Ranking {
+            by: by.unwrap_or_default(),
+            confidence: confidence.map_or(Ranking::DEFAULT_CONFIDENCE, |given| given.value),
+        };
+        // Without intervals every rule is the first one.
+        if let Some(place) = by_place
+            && ranking.by != RankBy::ExpectedScore
+            && !ranking.uses_intervals()
+        {
+            self.fault(
+                place,
+                Cause::Stray {
+                    field: "ranking.by".into(),
+                    needed: "confidence > 0",
+                },
+            );
+        }
+        ranking
     }
 
     fn target(&mut self, raw: RawTarget, given: &Given) -> Option<Target> {

@@ -31,7 +31,8 @@ pub use place::{Located, Place};
 pub use structure::{CountRange, GroupLimit, PatternLimit, Structure};
 pub use target::{Direction, Target, Want};
 pub use types::{
-    Assembly, Basis, Brief, DEFAULT_KEEP_BEST, Job, LARGEST_KEEP_BEST, Mixture, Pool, SolventToFeed,
+    Assembly, Basis, Brief, DEFAULT_KEEP_BEST, Job, LARGEST_KEEP_BEST, Mixture, Pool, RankBy,
+    Ranking, SolventToFeed,
 };
 
 /// The fields of a brief as a page of Markdown: documentation and help text.

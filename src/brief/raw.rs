@@ -110,6 +110,12 @@ pub(super) struct RawPool {
 }
 
 #[derive(Debug)]
+pub(super) struct RawRanking {
+    pub(super) by: Field<String>,
+    pub(super) confidence: Field<f64>,
+}
+
+#[derive(Debug)]
 pub(super) struct RawAssembly {
     pub(super) place: Place,
     pub(super) pieces: Field<Vec<Located<String>>>,
@@ -175,6 +181,7 @@ pub(super) struct RawBrief {
     pub(super) structure: RawStructure,
     pub(super) targets: Vec<RawTarget>,
     pub(super) keep_best: Field<u32>,
+    pub(super) ranking: Option<RawRanking>,
     /// Whether there is a `target` at all, sound or not.
     pub(super) has_targets: bool,
     /// Whether there is a table of this name, sound or not.
@@ -293,6 +300,7 @@ impl<'a> Reader<'a> {
                 "structure",
                 "target",
                 "keep",
+                "ranking",
             ],
         );
         let root = &root;
@@ -338,6 +346,13 @@ impl<'a> Reader<'a> {
         if let Some(mut section) = self.section(root, "keep") {
             self.refuse_unknown(&mut section, &["best"]);
             brief.keep_best = self.count(&section, "best", "best = 1000");
+        }
+        if let Some(mut section) = self.section(root, "ranking") {
+            self.refuse_unknown(&mut section, &["by", "confidence"]);
+            brief.ranking = Some(RawRanking {
+                by: self.text(&section, "by", "by = \"expected-score\""),
+                confidence: self.number(&section, "confidence", "confidence = 0.05"),
+            });
         }
         brief
     }
@@ -789,6 +804,7 @@ impl<'a> Reader<'a> {
                     "data" => "[data]",
                     "pool" => "[pool]",
                     "keep" => "[keep]",
+                    "ranking" => "[ranking]",
                     "assembly" => "[assembly]",
                     "structure" => "[structure]",
                     "atoms" => "[structure.atoms]",

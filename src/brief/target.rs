@@ -134,6 +134,46 @@ impl Want {
         }
     }
 
+    /// The values that pass where the target is a must, from the lowest to the
+    /// highest, infinite where there is no end: those [`is_met`](Self::is_met) is
+    /// true for.
+    pub const fn met_range(&self) -> (f64, f64) {
+        match *self {
+            Self::AtLeast { limit, .. } => (limit, f64::INFINITY),
+            Self::AtMost { limit, .. } => (f64::NEG_INFINITY, limit),
+            Self::Between { low, high, .. } => (low, high),
+            Self::CloseTo { value, tolerance } => (value - tolerance, value + tolerance),
+            Self::Prefer {
+                direction: Direction::High,
+                worst,
+                ..
+            } => (worst, f64::INFINITY),
+            Self::Prefer {
+                direction: Direction::Low,
+                worst,
+                ..
+            } => (f64::NEG_INFINITY, worst),
+        }
+    }
+
+    /// The values between which the desirability is a straight line; some may
+    /// stand twice.
+    pub const fn kinks(&self) -> [f64; 4] {
+        match *self {
+            Self::AtLeast { limit, tolerance } => [limit - tolerance, limit, limit, limit],
+            Self::AtMost { limit, tolerance } => [limit, limit, limit, limit + tolerance],
+            Self::Between {
+                low,
+                high,
+                tolerance,
+            } => [low - tolerance, low, high, high + tolerance],
+            Self::CloseTo { value, tolerance } => {
+                [value - tolerance, value, value, value + tolerance]
+            }
+            Self::Prefer { worst, best, .. } => [worst, worst, best, best],
+        }
+    }
+
     /// Whether it is a limit rather than a value to approach.
     pub const fn is_limit(&self) -> bool {
         matches!(

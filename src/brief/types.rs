@@ -118,6 +118,67 @@ pub struct Assembly {
     pub limits: Vec<(Located<String>, u32)>,
 }
 
+/// What candidates are ranked by.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum RankBy {
+    /// The expected score; a missed must counts as a score of 0.
+    #[default]
+    ExpectedScore,
+    /// The probability that every must is met, then the expected score.
+    Probability,
+    /// The lower end of the interval of the score, then the expected score.
+    Cautious,
+}
+
+impl RankBy {
+    /// Every rule.
+    pub const ALL: [Self; 3] = [Self::ExpectedScore, Self::Probability, Self::Cautious];
+
+    /// The word of briefs.
+    pub const fn id(self) -> &'static str {
+        match self {
+            Self::ExpectedScore => "expected-score",
+            Self::Probability => "probability",
+            Self::Cautious => "cautious",
+        }
+    }
+
+    /// The rule of this name.
+    pub fn from_id(id: &str) -> Option<Self> {
+        Self::ALL.into_iter().find(|by| by.id() == id)
+    }
+}
+
+/// The `[ranking]` table: what is made of the intervals of estimates.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Ranking {
+    /// What candidates are ranked by.
+    pub by: RankBy,
+    /// A must disqualifies where the probability of meeting it is below this,
+    /// from 0 to less than 1; at 0 intervals are left out and the bare numbers
+    /// decide.
+    pub confidence: f64,
+}
+
+impl Ranking {
+    /// The confidence of a brief that states none.
+    pub const DEFAULT_CONFIDENCE: f64 = 0.05;
+
+    /// Whether intervals play a part.
+    pub fn uses_intervals(&self) -> bool {
+        self.confidence > 0.0
+    }
+}
+
+impl Default for Ranking {
+    fn default() -> Self {
+        Self {
+            by: RankBy::default(),
+            confidence: Self::DEFAULT_CONFIDENCE,
+        }
+    }
+}
+
 /// A checked job, everything in SI units.
 #[derive(Clone, Debug, PartialEq)]
 #[non_exhaustive]
@@ -146,6 +207,8 @@ pub struct Brief {
     pub targets: Vec<Target>,
     /// How many candidates the ranking keeps.
     pub keep_best: usize,
+    /// How the intervals of estimates count.
+    pub ranking: Ranking,
 }
 
 impl Brief {

@@ -190,6 +190,36 @@ fn a_sound_brief_becomes_si() {
     assert_eq!((place.line, place.column), (45, 10));
 }
 
+/// The rule of the ranking, and that it needs intervals where it says so.
+#[test]
+fn a_ranking_has_a_rule_and_a_confidence() {
+    use groupsmith::brief::RankBy;
+    let with = |ranking: &str| {
+        read(&format!(
+            "[[target]]\nfigure = \"boiling_point\"\nat_least = \"400 K\"\n[ranking]\n{ranking}\n"
+        ))
+    };
+    for by in RankBy::ALL {
+        let found = with(&format!("by = \"{}\"\nconfidence = 0.2", by.id())).unwrap();
+        assert_eq!((found.ranking.by, found.ranking.confidence), (by, 0.2));
+    }
+    assert!(!with("confidence = 0").unwrap().ranking.uses_intervals());
+    for (ranking, told) in [
+        ("by = \"score\"", "accepted: expected-score, probability, cautious"),
+        ("confidence = 1", "has to be from 0 to less than 1"),
+        ("confidence = -0.1", "has to be from 0 to less than 1"),
+        ("confidence = \"5 %\"", "is a text, not a number"),
+        ("sure = 0.05", "accepted: by, confidence"),
+        (
+            "by = \"cautious\"\nconfidence = 0",
+            "`ranking.by` has no meaning without `confidence > 0`",
+        ),
+    ] {
+        let faults = with(ranking).unwrap_err().to_string();
+        assert!(faults.contains(told), "{faults}");
+    }
+}
+
 #[test]
 fn what_is_left_out_has_its_documented_default() {
     let brief = read(
@@ -199,6 +229,8 @@ fn what_is_left_out_has_its_documented_default() {
     )
     .unwrap();
     assert_eq!(brief.keep_best, groupsmith::brief::DEFAULT_KEEP_BEST);
+    assert_eq!(brief.ranking.by, groupsmith::brief::RankBy::ExpectedScore);
+    assert_eq!(brief.ranking.confidence, 0.05);
     assert_eq!(brief.heading(), "brief.toml");
     let mixture = brief.mixture.unwrap();
     assert_eq!(mixture.keys.unwrap().value, [0, 1]);
@@ -450,6 +482,7 @@ fn line() -> impl Strategy<Value = String> {
         "[[structure.group]]",
         "[[structure.pattern]]",
         "[keep]",
+        "[ranking]",
         "[assembly]",
         "[mixture.solvent_to_feed]",
         "[target]",
