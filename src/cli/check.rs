@@ -9,9 +9,10 @@ use super::output;
 use super::own_data;
 use super::screen::{bind, open_pool};
 use super::user_tables::Sources;
-use crate::brief::{Brief, Job};
+use crate::brief::{Brief, Job, RankBy, Ranking};
 use crate::chem::{Molecule, Reader};
 use crate::evaluate::{CATALOG, Library};
+use crate::report::probability_in_words;
 use crate::screen::{Batch, Pool};
 
 pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, CliError> {
@@ -63,6 +64,9 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
         let name = &plan.figures[planned.figure].name;
         let weight = planned.target.weight;
         writeln!(out, "  score: {name} {}, weight {weight}", planned.wanted)?;
+    }
+    if !plan.targets.is_empty() {
+        writeln!(out, "  ranking: {}", ranking_in_words(&plan.brief.ranking))?;
     }
     for note in &plan.notes {
         writeln!(out, "  note: {note}")?;
@@ -135,4 +139,20 @@ fn pool_lines(out: &mut impl Write, library: &Library, mut pool: Pool) -> Result
         writeln!(out, "    … and {} more", refused - reasons.len() as u64)?;
     }
     Ok(())
+}
+
+/// The rule of the ranking and the confidence of its musts.
+fn ranking_in_words(ranking: &Ranking) -> String {
+    if !ranking.uses_intervals() {
+        return "by score, by the bare numbers (confidence 0)".into();
+    }
+    let by = match ranking.by {
+        RankBy::ExpectedScore => "expected score",
+        RankBy::Probability => "probability of meeting every must, then expected score",
+        RankBy::Cautious => "lower end of the interval of the score, then expected score",
+    };
+    format!(
+        "by {by}; a must disqualifies where the probability of meeting it is below {}",
+        probability_in_words(ranking.confidence)
+    )
 }

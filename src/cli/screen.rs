@@ -12,19 +12,23 @@ use super::output::{self, Notes};
 use super::progress::Progress;
 use super::user_tables::Sources;
 use crate::brief::{Brief, Job};
-use crate::evaluate::{CATALOG, Library, Plan, Scratch, Verdict};
+use crate::evaluate::{
+    CATALOG, Judgement, Library, Plan, Scratch, Verdict, interval_that_counts, score_interval,
+};
 use crate::groups::SetId;
 use crate::mixture::Slips;
-use crate::quantity::unit::{reading_text, reading_unit, table_text};
+use crate::quantity::unit::{reading_text, reading_unit};
 use crate::quantity::{Estimate, Property, Status};
 use crate::report::{
-    FigureColumn, RankedRow, RankedTable, TargetLabel, TextColumn, TextTable, outcome_text,
+    FigureColumn, RankedRow, RankedTable, TargetLabel, TextColumn, TextTable, missed_in_words,
+    outcome_text, probability_in_words, ranks_in_words,
 };
 use crate::run::{
     BriefRecord, FileError, Fingerprint, RunRecord, StopFlag, TablesRecord, make_folder,
 };
 use crate::screen::{
-    Batch, Columns, FILES, Pool, PoolError, Ranked, Screened, Screening, StoppableReader,
+    BAND_CHANCE, Batch, Columns, FILES, Pool, PoolError, Ranked, Screened, Screening,
+    StoppableReader,
 };
 
 /// Lines of the pool that are read at a time, where that is done here.
@@ -252,6 +256,7 @@ fn show(
                 screened.ranking.len() - most
             )?;
         }
+        how_sure(out, plan, screened)?;
         writeln!(out)?;
     }
     let musts = musts(plan);
@@ -279,6 +284,39 @@ fn show(
         "Estimates are for choosing experiments. Before handling a candidate read its safety data\n\
          sheet (flammability, toxicity, peroxides) and follow local codes and licensed practice."
     )
+}
+
+/// Which candidates cannot be told apart from the first, and which measurement
+/// would do most to tell them; nothing where all scores are exact and differ.
+fn how_sure(out: &mut impl Write, plan: &Plan, screened: &Screened) -> io::Result<()> {
+    let is_uncertain = |row: &Ranked| row.variance > 0.0 || row.probability < 1.0;
+    if !plan.brief.ranking.uses_intervals() || !screened.ranking.iter().any(is_uncertain) {
+        return Ok(());
+    }
+    let of_first = (1_u64..)
+        .zip(&screened.ranking)
+        .filter(|(_, row)| row.band == Some(1))
+        .map(|(rank, _)| rank);
+    let of_first: Vec<u64> = of_first.collect();
+    writeln!(out)?;
+    if of_first.len() > 1 {
+        writeln!(
+            out,
+            "{} are not distinguishable: each has a chance above {} to score better than the first.",
+            ranks_in_words(of_first),
+            probability_in_words(BAND_CHANCE)
+        )?;
+    } else {
+        writeln!(
+            out,
+            "The first is told apart from the others: none has a chance above {} to score better.",
+            probability_in_words(BAND_CHANCE)
+        )?;
+    }
+    if let Some(next) = &screened.next {
+        writeln!(out, "To measure next: {}.", next.reason)?;
+    }
+    Ok(())
 }
 
 /// What a line can fall at, with what is wanted: lines are counted by name, so
@@ -521,18 +559,39 @@ fn explain(
         };
         writeln!(out, "  {}: {groups}{gaps}", set.id())?;
     }
+    if let Verdict::Qualified {
+        probability,
+        score,
+        variance,
+        ..
+    } = verdict
+        && (probability < 1.0 || variance > 0.0)
+    {
+        let (low, high) = score_interval(score, variance);
+        let (least, most) = plan.probability_bounds(&scratch);
+        writeln!(
+            out,
+            "  score {low:.4} to {high:.4} (90 %); all musts met with a probability of {}\n  \
+             ({} to {} however the errors of its figures hang together)",
+            probability_in_words(probability),
+            probability_in_words(least),
+            probability_in_words(most)
+        )?;
+    }
     let mut table = TextTable::new([
         TextColumn::text("figure"),
         TextColumn::number("value", ""),
         TextColumn::text("unit"),
+        TextColumn::text("90 % interval"),
         TextColumn::text("wanted"),
+        TextColumn::text("verdict"),
         TextColumn::number("desirability", ""),
         TextColumn::text("method"),
         TextColumn::text("detail"),
     ]);
     for (position, figure) in plan.figures.iter().enumerate() {
         let target = plan.targets.iter().find(|target| target.figure == position);
-        let wanted = target.map_or(String::new(), |target| target.wanted.clone());
+        let (wanted, judged) = judged(plan, &scratch, position);
         let outcome = scratch.figures[position].clone();
         let row = match outcome {
             Ok(found) => {
@@ -545,6 +604,10 @@ fn explain(
                     Status::Measured => "measured",
                     Status::Estimated => found.method,
                 };
+                let interval = interval_that_counts(&found).map_or(String::new(), |(low, high)| {
+                    let [low, high] = [low, high].map(|end| reading_text(end, figure.dimension));
+                    format!("{low} to {high}")
+                });
                 let mut detail = found.flags.to_string();
                 if let Some(source) = &found.source {
                     if !detail.is_empty() {
@@ -558,7 +621,9 @@ fn explain(
                     reading_unit(figure.dimension)
                         .map_or("", |unit| unit.symbol)
                         .into(),
+                    interval,
                     wanted,
+                    judged,
                     desirability,
                     method.into(),
                     detail,
@@ -570,7 +635,9 @@ fn explain(
                     figure.name.clone(),
                     "–".into(),
                     String::new(),
+                    String::new(),
                     wanted,
+                    String::new(),
                     String::new(),
                     String::new(),
                     reason.to_string(),
@@ -581,6 +648,26 @@ fn explain(
     }
     out.write_all(table.render(output::width()).as_bytes())?;
     Ok(())
+}
+
+/// What is wanted of a figure of the last candidate, and whether it is kept, for
+/// each target on it.
+fn judged(plan: &Plan, scratch: &Scratch, figure: usize) -> (String, String) {
+    let (mut wanted, mut judged) = (Vec::new(), Vec::new());
+    for (at, target) in plan.targets.iter().enumerate() {
+        if target.figure != figure {
+            continue;
+        }
+        wanted.push(target.wanted.as_str());
+        if let Some(probability) = plan.probability_of(scratch, at) {
+            let word = Judgement::of(probability, plan.brief.ranking.confidence).text();
+            judged.push(match probability {
+                0.0 | 1.0 => word.to_owned(),
+                _ => format!("{word} ({})", probability_in_words(probability)),
+            });
+        }
+    }
+    (wanted.join("; "), judged.join("; "))
 }
 
 /// What would become of a candidate that is not of the pool.
@@ -596,10 +683,11 @@ fn in_words(plan: &Plan, scratch: &mut Scratch, verdict: &Verdict) -> String {
             label: at,
             value,
             dimension,
+            probability,
         } => {
             let (name, wanted) = label(*at);
-            let value = table_text(*value, *dimension);
-            format!("would not qualify: {name} is {value}, wanted {wanted}")
+            let missed = missed_in_words(name, *value, *dimension, wanted, *probability);
+            format!("would not qualify: {missed}")
         }
         Verdict::NotAssessable { label: at, reason } => {
             let reason = scratch.explained(plan, reason);

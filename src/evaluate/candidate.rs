@@ -1,11 +1,14 @@
 //! One candidate evaluated by a plan.
 
+use smallvec::SmallVec;
+
 use super::component::{VaporCurve, boiling_range_k};
 use super::dilution::{MeasuredDilutions, origin};
 use super::figure::FigureKind;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
 use super::profile::{Known, Profile, Profiler, properties_with};
 use super::solution::with_liquid;
+use super::uncertainty::{Judged, Judgement, Spread, Term};
 use crate::chem::SmilesError;
 use crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
 use crate::mixture::{Component, Unifac, Vapor, liquid_phases, relative_volatility};
@@ -29,11 +32,16 @@ pub enum Verdict {
     Qualified {
         /// Weighted geometric mean of the desirabilities of what counts and is
         /// known, 0 to 1; 1 where nothing counts, 0 where nothing is known.
+        /// Where intervals count, its expected value, a missed must being 0.
         score: f64,
         /// Share of the weights whose figures have a value: 1 where all do.
         known: f64,
+        /// Variance of the score: 0 where no interval counts.
+        variance: f64,
+        /// Probability that every must is met.
+        probability: f64,
     },
-    /// A must is missed.
+    /// A must is missed beyond the confidence of the brief.
     Missed {
         /// Position in [`Plan::labels`].
         label: usize,
@@ -41,6 +49,8 @@ pub enum Verdict {
         value: f64,
         /// Its dimension.
         dimension: Dimension,
+        /// Probability of meeting it all the same: 0 for an exact value.
+        probability: f64,
     },
     /// A must cannot be judged.
     NotAssessable {
@@ -194,7 +204,21 @@ impl Plan {
             let outcome = self.figure(figure, &candidate);
             figures.push(outcome);
         }
+        #[cfg(test)]
+        self.put_intervals_for_tests(figures);
         Ok(self.verdict(profile, figures))
+    }
+
+    #[cfg(test)]
+    fn put_intervals_for_tests(&self, figures: &mut [Outcome]) {
+        let Some(interval) = self.intervals_for_tests else {
+            return;
+        };
+        for (planned, figure) in self.figures.iter().zip(figures) {
+            if let Ok(found) = figure {
+                found.interval = interval(planned, found.value);
+            }
+        }
     }
 
     fn dilute(&self, model: &PlannedModel, profile: &Profile) -> Dilute {
@@ -448,6 +472,7 @@ impl Plan {
                         label,
                         value,
                         dimension,
+                        probability: 0.0,
                     };
                 }
                 Err(reason) => {
@@ -456,6 +481,7 @@ impl Plan {
             }
         }
         let mut missed = None;
+        let mut is_uncertain = false;
         let (mut sum, mut known, mut weights) = (0.0, 0.0, 0.0);
         for (position, planned) in self.targets.iter().enumerate() {
             let target = &planned.target;
@@ -472,30 +498,154 @@ impl Plan {
                 }
                 Err(_) => {}
                 Ok(found) => {
-                    if target.must && !target.want.is_met(found.value) {
-                        missed.get_or_insert(Verdict::Missed {
-                            label,
-                            value: found.value,
-                            dimension: target.dimension,
-                        });
+                    let spread = self.spread(found);
+                    if target.must {
+                        let probability = spread.probability(&target.want);
+                        let judgement = Judgement::of(probability, self.brief.ranking.confidence);
+                        if judgement == Judgement::Fails {
+                            missed.get_or_insert(Verdict::Missed {
+                                label,
+                                value: found.value,
+                                dimension: target.dimension,
+                                probability,
+                            });
+                        }
                     }
+                    is_uncertain |= !spread.is_exact();
                     if target.counts {
-                        sum += target.weight * target.want.desirability(found.value).ln();
                         known += target.weight;
+                        if spread.is_exact() {
+                            sum += target.weight * target.want.desirability(found.value).ln();
+                        }
                     }
                 }
             }
         }
-        unjudged.or(missed).unwrap_or_else(|| Verdict::Qualified {
-            score: if known > 0.0 {
-                (sum / known).exp()
-            } else if weights > 0.0 {
-                0.0
-            } else {
-                1.0
-            },
+        if let Some(fallen) = unjudged.or(missed) {
+            return fallen;
+        }
+        let exact = if known > 0.0 {
+            (sum / known).exp()
+        } else if weights > 0.0 {
+            0.0
+        } else {
+            1.0
+        };
+        let judged = match is_uncertain {
+            true => {
+                let spread = |at: usize| figures[at].as_ref().ok().map(|found| self.spread(found));
+                self.judged(exact, known, spread)
+            }
+            false => Judged::of(exact, &[]),
+        };
+        Verdict::Qualified {
+            score: judged.mean(),
             known: if weights > 0.0 { known / weights } else { 1.0 },
-        })
+            variance: judged.variance(),
+            probability: judged.probability(),
+        }
+    }
+
+    /// An estimate as far as the brief takes it for uncertain.
+    fn spread(&self, found: &Estimate) -> Spread {
+        match self.brief.ranking.uses_intervals() {
+            true => Spread::of(found),
+            false => Spread::exact(found.value),
+        }
+    }
+
+    /// What the uncertain figures make of a candidate, where `exact` is the
+    /// factor of the exact ones and `known` the sum of the weights that count.
+    fn judged(&self, exact: f64, known: f64, spread: impl Fn(usize) -> Option<Spread>) -> Judged {
+        let terms: SmallVec<[Term<'_>; 8]> = self
+            .targets
+            .iter()
+            .filter_map(|planned| {
+                let spread = spread(planned.figure).filter(|spread| !spread.is_exact())?;
+                let target = &planned.target;
+                Some(Term {
+                    want: &target.want,
+                    spread,
+                    source: planned.source,
+                    rises: planned.rises,
+                    must: target.must,
+                    power: if target.counts {
+                        target.weight / known
+                    } else {
+                        0.0
+                    },
+                })
+            })
+            .collect();
+        Judged::of(exact, &terms)
+    }
+
+    /// Judges a candidate of the ranking again from its figures in SI and their
+    /// intervals, in the order of [`Plan::figures`].
+    fn judged_again(&self, figures: &[Option<f64>], intervals: &[Option<(f64, f64)>]) -> Judged {
+        let spread = |at: usize| {
+            let value = figures[at]?;
+            Some(
+                match intervals[at].filter(|_| self.brief.ranking.uses_intervals()) {
+                    Some(interval) => Spread::new(value, interval),
+                    None => Spread::exact(value),
+                },
+            )
+        };
+        let (mut sum, mut known) = (0.0, 0.0);
+        for planned in self.targets.iter().filter(|planned| planned.target.counts) {
+            let Some(spread) = spread(planned.figure) else {
+                continue;
+            };
+            let target = &planned.target;
+            known += target.weight;
+            if spread.is_exact() {
+                let value = figures[planned.figure].expect("it has a spread");
+                sum += target.weight * target.want.desirability(value).ln();
+            }
+        }
+        let exact = if known > 0.0 {
+            (sum / known).exp()
+        } else {
+            1.0
+        };
+        self.judged(exact, known, spread)
+    }
+
+    /// How far a measurement could move the expected score of a candidate of the
+    /// ranking: for each of [`Plan::sources`] that is uncertain the variance of
+    /// the expected score over what the measurement may show, in the order of
+    /// the sources.
+    pub fn variance_by_source(
+        &self,
+        figures: &[Option<f64>],
+        intervals: &[Option<(f64, f64)>],
+    ) -> Vec<(usize, f64)> {
+        let judged = self.judged_again(figures, intervals);
+        let mut sources: Vec<(usize, f64)> = judged
+            .factors
+            .iter()
+            .map(|factor| (factor.source, judged.variance_by(factor.source)))
+            .collect();
+        sources.sort_unstable_by_key(|&(source, _)| source);
+        sources
+    }
+
+    /// Probability that the last candidate meets a target, by its position in
+    /// [`Plan::targets`]; `None` where its figure is absent.
+    pub fn probability_of(&self, scratch: &Scratch, target: usize) -> Option<f64> {
+        let planned = &self.targets[target];
+        let found = scratch.figures[planned.figure].as_ref().ok()?;
+        Some(self.spread(found).probability(&planned.target.want))
+    }
+
+    /// Least and greatest probability that the last candidate meets every must,
+    /// however the errors of its figures hang together; both 1 where no interval
+    /// counts. The candidate has to have qualified.
+    pub fn probability_bounds(&self, scratch: &Scratch) -> (f64, f64) {
+        let figures = &scratch.figures;
+        let spread = |at: usize| figures[at].as_ref().ok().map(|found| self.spread(found));
+        self.judged(1.0, 1.0, spread).probability_bounds()
     }
 
     /// What a reader of the ranking has to know of a candidate: gaps, what was
@@ -528,6 +678,9 @@ impl Plan {
                     if found.status == Status::Measured {
                         add(&format!("{name} measured"));
                     }
+                    if let Some(open) = self.left_open(target.figure, found) {
+                        add(&open);
+                    }
                     let planned = &self.figures[target.figure];
                     for (of, value) in self.rests_on(planned, &scratch.measured) {
                         let told = value.map(|value| origin(of, value));
@@ -553,6 +706,24 @@ impl Plan {
             add(&direction);
         }
         remarks
+    }
+
+    /// That the interval of a figure leaves its musts open.
+    fn left_open(&self, figure: usize, found: &Estimate) -> Option<String> {
+        let spread = self.spread(found);
+        if spread.is_exact() {
+            return None;
+        }
+        let musts = self
+            .targets
+            .iter()
+            .filter(|planned| planned.figure == figure);
+        let open = musts.filter(|planned| planned.target.must).any(|planned| {
+            let probability = spread.probability(&planned.target.want);
+            Judgement::of(probability, self.brief.ranking.confidence) == Judgement::WithinError
+        });
+        let name = &self.figures[figure].name;
+        open.then(|| format!("{name}: limit {}", Judgement::WithinError.text()))
     }
 
     /// Which key goes overhead, and whether the selectivity works against the

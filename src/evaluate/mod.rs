@@ -16,7 +16,9 @@ mod naming;
 mod plan;
 mod profile;
 mod solution;
+mod source;
 mod structure;
+mod uncertainty;
 
 pub use candidate::{Scratch, Verdict};
 pub use component::{MixtureComponent, VaporCurve};
@@ -25,8 +27,14 @@ pub use family::{Families, Family};
 pub use figure::{CATALOG, FIGURES, FigureEntry, FigureKind, figure};
 pub use library::{Library, LibraryError, USER_TABLES, UserTable};
 pub use naming::NoSubstance;
+#[cfg(test)]
+pub(crate) use plan::IntervalsForTests;
 pub use plan::{DEFAULT_MODEL, Plan, PlannedFigure, PlannedTarget};
 pub use profile::{Coverages, Known, Profile, Profiler, properties, properties_with};
 pub use solution::{
     MixtureFigure, StatedState, describe_mixture, measured_at_dilution, mole_fractions,
+};
+pub use source::Source;
+pub use uncertainty::{
+    Judgement, Spread, interval_that_counts, probability_of_better, score_interval,
 };

@@ -6,6 +6,7 @@ use super::component::MixtureComponent;
 use super::error::{PlanCause, PlanFault};
 use super::figure::{FigureKind, figure};
 use super::profile::Profiler;
+use super::source::Source;
 use super::structure::{StructureLimit, bind};
 use super::{Library, solution};
 use crate::brief::{self, Basis, Brief, SolventToFeed, Target};
@@ -45,6 +46,10 @@ pub struct PlannedTarget {
     pub figure: usize,
     /// What is wanted, in words and the unit of tables.
     pub wanted: String,
+    /// Position in [`Plan::sources`].
+    pub(super) source: usize,
+    /// Whether the figure rises with its source.
+    pub(super) rises: bool,
 }
 
 /// An activity model bound to the mixture and its temperature.
@@ -61,6 +66,10 @@ pub(super) struct PlannedModel {
     /// The mixture at its composition.
     pub(super) host: Result<HostAtTemperature, Absent>,
 }
+
+/// The 90 % interval of a figure with a value.
+#[cfg(test)]
+pub(crate) type IntervalsForTests = fn(&PlannedFigure, f64) -> Option<(f64, f64)>;
 
 /// A checked job bound to tables and data; shared by all threads.
 #[derive(Debug)]
@@ -79,6 +88,8 @@ pub struct Plan {
     pub figures: Vec<PlannedFigure>,
     /// Targets.
     pub targets: Vec<PlannedTarget>,
+    /// What the figures of targets rest on, each once.
+    pub sources: Vec<Source>,
     /// What the reader of the results should know of the plan.
     pub notes: Vec<String>,
     /// Temperatures at which properties are taken; the first is 298.15 K.
@@ -90,6 +101,9 @@ pub struct Plan {
     /// P1/P2 of the keys at the temperature, or why it is not known.
     pub(super) key_pressure_ratio: Result<f64, Absent>,
     pub(super) use_measured: bool,
+    /// Stands in for the intervals of methods where a test needs some.
+    #[cfg(test)]
+    pub(crate) intervals_for_tests: Option<IntervalsForTests>,
 }
 
 impl Plan {
@@ -166,6 +180,7 @@ impl Plan {
             mole_fractions: state.mole_fractions,
             figures: Vec::new(),
             targets: Vec::new(),
+            sources: Vec::new(),
             notes,
             temperatures: vec![REFERENCE_TEMPERATURE_K],
             models,
@@ -173,6 +188,8 @@ impl Plan {
             keys,
             key_pressure_ratio,
             use_measured,
+            #[cfg(test)]
+            intervals_for_tests: None,
             brief,
         };
         plan.add_targets();
@@ -248,10 +265,18 @@ impl Plan {
                 }
             }
             let wanted = target.want.in_table_units(target.dimension).to_string();
+            let (source, rises) = Source::of(entry.kind, component, self.keys);
+            let known = self.sources.iter().position(|&known| known == source);
+            let source = known.unwrap_or_else(|| {
+                self.sources.push(source);
+                self.sources.len() - 1
+            });
             self.targets.push(PlannedTarget {
                 target,
                 figure,
                 wanted,
+                source,
+                rises,
             });
         }
     }

@@ -1,6 +1,7 @@
 //! The two tables of a run: who is ranked, and why the others are not.
 
 use super::csv_line::{CsvLine, CsvRow};
+use super::probability::probability_in_words;
 use super::text_table::{TextColumn, TextTable};
 use crate::quantity::Dimension;
 use crate::quantity::number::RUN_DIGITS;
@@ -23,6 +24,17 @@ impl FigureColumn {
     }
 }
 
+/// How sure the place of a candidate is.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Uncertainty {
+    /// Probability that every must is met.
+    pub probability: f64,
+    /// 90 % interval of the score; `None` where there is no score.
+    pub score: Option<(f64, f64)>,
+    /// Number of its band, from 1, where it has one.
+    pub band: Option<u64>,
+}
+
 /// One ranked candidate.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct RankedRow<'a> {
@@ -34,8 +46,12 @@ pub struct RankedRow<'a> {
     pub smiles: &'a str,
     /// Score from 0 to 1; `None` where a figure that counts is absent.
     pub score: Option<f64>,
+    /// What intervals make of it; `None` where the bare numbers rank it.
+    pub uncertainty: Option<Uncertainty>,
     /// The figures in SI, in column order.
     pub figures: &'a [Option<f64>],
+    /// Their 90 % intervals in SI, where they have one.
+    pub intervals: &'a [Option<(f64, f64)>],
     /// Line of the pool, from 1.
     pub line: u64,
     /// Flags, gaps and remarks, joined by `; `.
@@ -44,12 +60,31 @@ pub struct RankedRow<'a> {
     pub carried: &'a [&'a str],
 }
 
-/// The form of `ranked.csv`: fixed columns, figures, `line`, `notes`, and what
-/// the pool carries along.
+impl RankedRow<'_> {
+    /// Whether its score or a must of it is uncertain.
+    fn is_uncertain(&self) -> bool {
+        self.uncertainty.is_some_and(|sure| {
+            sure.probability < 1.0 || sure.score.is_some_and(|(low, high)| low < high)
+        })
+    }
+}
+
+fn ends(interval: Option<(f64, f64)>) -> [Option<f64>; 2] {
+    [interval.map(|(low, _)| low), interval.map(|(_, high)| high)]
+}
+
+/// Columns that follow what the pool carries along.
+const UNCERTAINTY: [&str; 4] = ["probability", "score_low", "score_high", "band"];
+
+/// The form of `ranked.csv`: fixed columns, figures, `line`, `notes`, what the
+/// pool carries along, how sure the place is, and the ends of the intervals of
+/// the figures that have some.
 #[derive(Clone, Debug, PartialEq)]
 pub struct RankedTable {
     figures: Vec<FigureColumn>,
     carried: Vec<String>,
+    /// Positions of the figures whose intervals have columns.
+    with_interval: Vec<usize>,
 }
 
 impl RankedTable {
@@ -59,7 +94,11 @@ impl RankedTable {
         let mut taken: Vec<String> = ["rank", "name", "smiles", "score", "line", "notes"]
             .map(str::to_owned)
             .into();
-        taken.extend(figures.iter().map(FigureColumn::head));
+        taken.extend(UNCERTAINTY.map(str::to_owned));
+        for figure in &figures {
+            let head = figure.head();
+            taken.extend([format!("{head}_low"), format!("{head}_high"), head]);
+        }
         let mut renamed = Vec::with_capacity(carried.len());
         for name in carried {
             let mut name = (*name).to_owned();
@@ -72,7 +111,18 @@ impl RankedTable {
         Self {
             figures,
             carried: renamed,
+            with_interval: Vec::new(),
         }
+    }
+
+    /// The same table with the columns `NAME_low` and `NAME_high` for the figures
+    /// that have intervals, by their position.
+    #[must_use]
+    pub fn with_intervals(mut self, has_interval: impl Fn(usize) -> bool) -> Self {
+        self.with_interval = (0..self.figures.len())
+            .filter(|&at| has_interval(at))
+            .collect();
+        self
     }
 
     /// Appends the line of column names.
@@ -86,6 +136,14 @@ impl RankedTable {
         for name in &self.carried {
             line.text(name);
         }
+        for name in UNCERTAINTY {
+            line.text(name);
+        }
+        for &at in &self.with_interval {
+            let head = self.figures[at].head();
+            line.text(&format!("{head}_low"))
+                .text(&format!("{head}_high"));
+        }
         line.end();
     }
 
@@ -93,9 +151,11 @@ impl RankedTable {
     ///
     /// # Panics
     ///
-    /// If it has another number of figures or carried cells than the table.
+    /// If it has another number of figures, intervals or carried cells than the
+    /// table.
     pub fn write_row(&self, row: &RankedRow<'_>, out: &mut Vec<u8>) {
         assert_eq!(row.figures.len(), self.figures.len());
+        assert_eq!(row.intervals.len(), self.figures.len());
         assert_eq!(row.carried.len(), self.carried.len());
         let mut line = CsvLine::new(out);
         line.integer(row.rank)
@@ -110,21 +170,46 @@ impl RankedTable {
         for cell in row.carried {
             line.text(cell);
         }
+        let probability = row.uncertainty.map(|sure| sure.probability);
+        let score = row.uncertainty.and_then(|sure| sure.score);
+        line.number_or_empty(probability, RUN_DIGITS)
+            .number_or_empty(score.map(|(low, _)| low), RUN_DIGITS)
+            .number_or_empty(score.map(|(_, high)| high), RUN_DIGITS);
+        match row.uncertainty.and_then(|sure| sure.band) {
+            Some(band) => line.integer(band),
+            None => line.empty(),
+        };
+        for &at in &self.with_interval {
+            let dimension = self.figures[at].dimension;
+            let [low, high] =
+                ends(row.intervals[at]).map(|end| end.map(|end| to_table(end, dimension)));
+            line.number_or_empty(low, RUN_DIGITS)
+                .number_or_empty(high, RUN_DIGITS);
+        }
         line.end();
     }
 
-    /// The ranking for people: rank, name, score, figures in the units people
-    /// read, and notes.
+    /// The ranking for people: rank, name, score, how sure they are where some
+    /// score or must is uncertain, figures in the units people read, and notes.
     pub fn text<'a>(
         &self,
         rows: impl IntoIterator<Item = RankedRow<'a>>,
         width: Option<usize>,
     ) -> String {
+        let rows: Vec<RankedRow<'a>> = rows.into_iter().collect();
+        let is_uncertain = rows.iter().any(RankedRow::is_uncertain);
         let mut columns = vec![
             TextColumn::number("rank", ""),
             TextColumn::text("name"),
             TextColumn::number("score", ""),
         ];
+        if is_uncertain {
+            columns.extend([
+                TextColumn::number("90 % interval", ""),
+                TextColumn::number("musts met", ""),
+                TextColumn::number("band", ""),
+            ]);
+        }
         columns.extend(self.figures.iter().map(|figure| {
             let unit = reading_unit(figure.dimension).map_or("", |unit| unit.symbol);
             TextColumn::number(figure.name.replace('_', " "), unit)
@@ -141,6 +226,18 @@ impl RankedTable {
                 name.to_owned(),
                 row.score.map_or("–".into(), |score| format!("{score:.4}")),
             ];
+            if is_uncertain {
+                let sure = row.uncertainty;
+                let or_none = |text: Option<String>| text.unwrap_or_else(|| "–".into());
+                cells.extend([
+                    or_none(
+                        sure.and_then(|sure| sure.score)
+                            .map(|(low, high)| format!("{low:.3} to {high:.3}")),
+                    ),
+                    or_none(sure.map(|sure| probability_in_words(sure.probability))),
+                    or_none(sure.and_then(|sure| sure.band).map(|band| band.to_string())),
+                ]);
+            }
             for (figure, value) in self.figures.iter().zip(row.figures) {
                 cells.push(match value {
                     None => "–".into(),

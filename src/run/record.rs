@@ -221,6 +221,41 @@ pub struct InputRecord {
     pub fingerprint: Fingerprint,
 }
 
+/// How candidates were ranked, and what would change it.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct RankingRecord {
+    /// `expected-score`, `probability` or `cautious`.
+    pub by: String,
+    /// Probability of meeting a must below which it disqualifies; 0: the bare
+    /// numbers decided.
+    pub confidence: f64,
+    /// Candidates that cannot be told apart from the first, itself included.
+    pub in_first_band: u64,
+    /// The measurement worth most for telling who leads.
+    pub measure_next: Option<MeasurementRecord>,
+}
+
+/// A measurement that is worth making.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct MeasurementRecord {
+    /// Rank of the candidate, from 1.
+    pub rank: u64,
+    /// Its name.
+    pub name: String,
+    /// Its SMILES.
+    pub smiles: String,
+    /// What to measure, in words.
+    pub what: String,
+    /// How much better the best expected score is likely to be with it.
+    pub expected_gain: f64,
+    /// Probability that it changes which candidate leads.
+    pub chance: f64,
+    /// Share of the variance of the candidate's score that it settles.
+    pub share_of_variance: f64,
+    /// Why, in one sentence.
+    pub reason: String,
+}
+
 /// What depends on the machine and the hour; left out when runs are compared.
 #[derive(Clone, Debug, Default, PartialEq, Serialize, Deserialize)]
 pub struct Timing {
@@ -262,6 +297,9 @@ pub struct RunRecord {
     pub models: Vec<String>,
     /// How the lines came out.
     pub counts: Counts,
+    /// How candidates were ranked, once they are.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub ranking: Option<RankingRecord>,
     /// What a reader should know, in the order it was met.
     pub warnings: Vec<String>,
     /// What depends on the machine and the hour.
@@ -286,6 +324,7 @@ impl RunRecord {
             input: None,
             models: Vec::new(),
             counts: Counts::default(),
+            ranking: None,
             warnings: Vec::new(),
             timing: Timing::default(),
         }

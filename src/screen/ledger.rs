@@ -32,9 +32,13 @@ pub(super) enum Finding {
     Qualified {
         score: f64,
         known: f64,
+        variance: f64,
+        probability: f64,
         /// Canonical SMILES: decides between equal scores.
         key: String,
         figures: Vec<Option<f64>>,
+        /// Those there are, by the position of their figure.
+        intervals: Vec<(u32, (f64, f64))>,
         notes: String,
     },
     /// It fell, or could not be judged or read.
@@ -72,17 +76,27 @@ impl Entry {
             Finding::Qualified {
                 score,
                 known,
+                variance,
+                probability,
                 key,
                 figures,
+                intervals,
                 notes,
             } => {
                 out.push(u8::MAX);
-                out.extend_from_slice(&score.to_le_bytes());
-                out.extend_from_slice(&known.to_le_bytes());
+                for number in [score, known, variance, probability] {
+                    out.extend_from_slice(&number.to_le_bytes());
+                }
                 put_text(out, key);
                 put_length(out, figures.len());
                 for figure in figures {
                     put_number(out, *figure);
+                }
+                put_length(out, intervals.len());
+                for (figure, (low, high)) in intervals {
+                    out.extend_from_slice(&figure.to_le_bytes());
+                    out.extend_from_slice(&low.to_le_bytes());
+                    out.extend_from_slice(&high.to_le_bytes());
                 }
                 put_text(out, notes);
             }
@@ -119,10 +133,18 @@ impl Entry {
         let tag = cursor.array::<1>()[0];
         let finding = if tag == u8::MAX {
             Finding::Qualified {
-                score: f64::from_le_bytes(cursor.array()),
-                known: f64::from_le_bytes(cursor.array()),
+                score: cursor.float(),
+                known: cursor.float(),
+                variance: cursor.float(),
+                probability: cursor.float(),
                 key: cursor.text(),
                 figures: (0..cursor.length()).map(|_| cursor.number()).collect(),
+                intervals: (0..cursor.length())
+                    .map(|_| {
+                        let figure = u32::from_le_bytes(cursor.array());
+                        (figure, (cursor.float(), cursor.float()))
+                    })
+                    .collect(),
                 notes: cursor.text(),
             }
         } else {
@@ -183,8 +205,12 @@ impl Cursor<'_> {
         String::from_utf8(head.to_vec()).expect("written from text")
     }
 
+    fn float(&mut self) -> f64 {
+        f64::from_le_bytes(self.array())
+    }
+
     fn number(&mut self) -> Option<f64> {
-        Some(f64::from_le_bytes(self.array())).filter(|value| !value.is_nan())
+        Some(self.float()).filter(|value| !value.is_nan())
     }
 }
 
@@ -260,8 +286,11 @@ mod tests {
                 finding: Finding::Qualified {
                     score: 0.25,
                     known: 0.5,
+                    variance: 0.01,
+                    probability: 0.75,
                     key: "CCO".into(),
                     figures: vec![Some(351.4), None],
+                    intervals: vec![(0, (340.0, 360.0))],
                     notes: "n".into(),
                 },
                 carried: vec!["x".into(), String::new()],

@@ -4,16 +4,22 @@
 //! order of the pool; memory does not grow with its length. Entry points:
 //! [`Pool::open`], [`Screening::run`].
 
+mod bands;
 mod identity;
 mod ledger;
 mod measured_column;
+mod next_measurement;
 mod pool;
 mod resolved;
 mod screening;
 mod sorter;
 mod stoppable;
+#[cfg(test)]
+mod uncertain_runs;
 
+pub use bands::BAND_CHANCE;
 pub use measured_column::ColumnFault;
+pub use next_measurement::NextMeasurement;
 pub use pool::{Batch, Columns, LineFault, Pool, PoolError, PoolLine, Stated};
 pub use resolved::{Resolved, Unresolved};
 pub use screening::{FILES, Ranked, ScreenError, Screened, Screening};

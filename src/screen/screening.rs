@@ -8,17 +8,21 @@ use std::time::Instant;
 use rayon::prelude::*;
 use thiserror::Error;
 
+use super::bands::number_bands;
 use super::identity::{Identities, Kinship, Relation, RelationLog, Relations, WrittenRelations};
 use super::ledger::{Entry, Finding, Ledger, WrittenLedger};
+use super::next_measurement::{NextMeasurement, next_measurement};
 use super::pool::{Batch, Pool, PoolError, PoolLine};
 use super::resolved::Resolved;
-use crate::evaluate::{Plan, Scratch, Verdict};
+use crate::brief::RankBy;
+use crate::evaluate::{Plan, Scratch, Verdict, interval_that_counts, score_interval};
 use crate::quantity::Absent;
-use crate::quantity::unit::table_text;
-use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedRow, RankedTable};
+use crate::report::{
+    CsvRow, FigureColumn, NotRankedRow, RankedRow, RankedTable, Uncertainty, missed_in_words,
+};
 use crate::run::{
-    Counts, Event, FileError, Fingerprint, InputRecord, Listener, NewFile, Outcome, RunRecord,
-    StopFlag, remove_stale,
+    Counts, Event, FileError, Fingerprint, InputRecord, Listener, MeasurementRecord, NewFile,
+    Outcome, RankingRecord, RunRecord, StopFlag, remove_stale,
 };
 
 /// Lines that are evaluated between two looks at the stop flag.
@@ -60,7 +64,7 @@ pub struct Screening<'a> {
 }
 
 /// A candidate of the ranking.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Debug, Default, PartialEq)]
 pub struct Ranked {
     /// Line of the pool.
     pub line: u64,
@@ -72,8 +76,19 @@ pub struct Ranked {
     pub score: f64,
     /// Share of the weights whose figures have a value.
     pub known: f64,
+    /// Variance of the score.
+    pub variance: f64,
+    /// Probability that every must is met.
+    pub probability: f64,
+    /// Whether intervals count; else the bare numbers rank it.
+    pub uses_intervals: bool,
+    /// Number of its band, from 1; `None` where it has no score, or intervals
+    /// are left out.
+    pub band: Option<u64>,
     /// Figures in SI, in the order of the plan.
     pub figures: Vec<Option<f64>>,
+    /// Their 90 % intervals; those of exact figures are left out.
+    pub intervals: Vec<Option<(f64, f64)>>,
     /// Remarks.
     pub notes: String,
 }
@@ -89,6 +104,8 @@ pub struct Screened {
     pub stopped: bool,
     /// Form of the ranking.
     pub table: RankedTable,
+    /// The measurement that is worth most for telling who leads.
+    pub next: Option<NextMeasurement>,
 }
 
 /// What a task hands back for its lines, in their order.
@@ -102,7 +119,8 @@ struct Done {
 #[derive(Clone, Debug)]
 struct Standing {
     known: f64,
-    score: f64,
+    /// What the brief ranks by, then what decides between equals.
+    merits: [f64; 2],
     key: String,
     line: u64,
 }
@@ -112,7 +130,8 @@ impl Ord for Standing {
         other
             .known
             .total_cmp(&self.known)
-            .then_with(|| other.score.total_cmp(&self.score))
+            .then_with(|| other.merits[0].total_cmp(&self.merits[0]))
+            .then_with(|| other.merits[1].total_cmp(&self.merits[1]))
             .then_with(|| self.key.cmp(&other.key))
             .then_with(|| self.line.cmp(&other.line))
     }
@@ -206,8 +225,9 @@ impl Screening<'_> {
         let Written {
             ranking,
             counts,
+            table,
             files,
-        } = self.write(&mut ledger, kept, &table)?;
+        } = self.write(&mut ledger, kept, table)?;
         // Until here the results of an earlier run stay as they are.
         self.all_or_none(self.put_in_place(files))?;
 
@@ -216,6 +236,8 @@ impl Screening<'_> {
             fingerprint: input,
         });
         record.counts = counts.clone();
+        let next = next_measurement(self.plan, &ranking);
+        record.ranking = Some(self.ranking_record(&ranking, next.as_ref()));
         record.end(stopped);
         let elapsed_s = begun.elapsed().as_secs_f64();
         record.timing.elapsed_s = elapsed_s;
@@ -235,7 +257,33 @@ impl Screening<'_> {
             counts,
             stopped,
             table,
+            next,
         })
+    }
+
+    /// How the ranking came about, for the record.
+    fn ranking_record(&self, ranking: &[Ranked], next: Option<&NextMeasurement>) -> RankingRecord {
+        let rule = &self.plan.brief.ranking;
+        // The last digits of a library's logarithm are nobody's business.
+        let rounded = |number: f64| (number * 1e4).round() / 1e4;
+        RankingRecord {
+            by: rule.by.id().to_owned(),
+            confidence: rule.confidence,
+            in_first_band: ranking.iter().filter(|row| row.band == Some(1)).count() as u64,
+            measure_next: next.map(|next| {
+                let row = &ranking[next.place];
+                MeasurementRecord {
+                    rank: next.place as u64 + 1,
+                    name: row.name.clone(),
+                    smiles: row.smiles.clone(),
+                    what: next.what.clone(),
+                    expected_gain: rounded(next.gain),
+                    chance: rounded(next.chance),
+                    share_of_variance: rounded(next.share),
+                    reason: next.reason.clone(),
+                }
+            }),
+        }
     }
 
     /// Puts the tables into place; the record of an earlier run, which vouches
@@ -332,9 +380,16 @@ impl Screening<'_> {
                 .expect("verdicts name labels of the plan")
         };
         match verdict {
-            Verdict::Qualified { score, known } => Finding::Qualified {
+            Verdict::Qualified {
                 score,
                 known,
+                variance,
+                probability,
+            } => Finding::Qualified {
+                score,
+                known,
+                variance,
+                probability,
                 notes: joined(
                     &self.plan.remarks(scratch),
                     self.as_component(scratch).as_deref(),
@@ -345,11 +400,18 @@ impl Screening<'_> {
                     .iter()
                     .map(|figure| figure.as_ref().ok().map(|found| found.value))
                     .collect(),
+                intervals: (0..)
+                    .zip(&scratch.figures)
+                    .filter_map(|(at, figure)| {
+                        Some((at, interval_that_counts(figure.as_ref().ok()?)?))
+                    })
+                    .collect(),
             },
             Verdict::Missed {
                 label: position,
                 value,
                 dimension,
+                probability,
             } => {
                 let (name, wanted) = label(position);
                 Finding::Fell {
@@ -357,10 +419,7 @@ impl Screening<'_> {
                     label: name.to_owned(),
                     value: Some((value, dimension)),
                     wanted: wanted.to_owned(),
-                    reason: format!(
-                        "{name} is {}, wanted {wanted}",
-                        table_text(value, dimension)
-                    ),
+                    reason: missed_in_words(name, value, dimension, wanted, probability),
                 }
             }
             Verdict::NotAssessable {
@@ -401,13 +460,22 @@ impl Screening<'_> {
             }
             let duplicate = relation.is_some_and(|relation| relation.kinship == Kinship::Duplicate);
             if let Finding::Qualified {
-                score, known, key, ..
+                score,
+                known,
+                variance,
+                probability,
+                key,
+                ..
             } = entry.finding
                 && !duplicate
             {
                 heap.push(Standing {
                     known,
-                    score,
+                    merits: match self.plan.brief.ranking.by {
+                        RankBy::ExpectedScore => [score, score],
+                        RankBy::Probability => [probability, score],
+                        RankBy::Cautious => [score_interval(score, variance).0, score],
+                    },
                     key,
                     line: entry.line,
                 });
@@ -427,7 +495,7 @@ impl Screening<'_> {
         &self,
         ledger: &mut WrittenLedger,
         kept: Kept,
-        table: &RankedTable,
+        table: RankedTable,
     ) -> Result<Written, FileError> {
         let [ranked_name, not_ranked_name, _] = FILES;
         let mut not_ranked = NewFile::begin(&self.folder.join(not_ranked_name))?;
@@ -470,18 +538,24 @@ impl Screening<'_> {
         not_ranked.add(&out)?;
 
         out.clear();
+        let (mut rows, carried): (Vec<Ranked>, Vec<Vec<String>>) = ranking
+            .into_iter()
+            .map(|row| row.expect("every kept line is in the ledger"))
+            .unzip();
+        if self.plan.brief.ranking.uses_intervals() {
+            number_bands(&mut rows);
+        }
+        let table = table.with_intervals(|at| rows.iter().any(|row| row.intervals[at].is_some()));
         table.write_head(&mut out);
-        let mut rows = Vec::with_capacity(ranking.len());
-        for (rank, row) in ranking.into_iter().enumerate() {
-            let (row, carried) = row.expect("every kept line is in the ledger");
+        for (rank, (row, carried)) in rows.iter().zip(&carried).enumerate() {
             let carried: Vec<&str> = carried.iter().map(String::as_str).collect();
             table.write_row(&row.as_row(rank, &carried), &mut out);
-            rows.push(row);
         }
         ranked.add(&out)?;
         Ok(Written {
             ranking: rows,
             counts,
+            table,
             files: [not_ranked, ranked],
         })
     }
@@ -562,7 +636,10 @@ impl Screening<'_> {
             Finding::Qualified {
                 score,
                 known,
+                variance,
+                probability,
                 figures,
+                intervals: found,
                 notes,
                 ..
             } => {
@@ -570,13 +647,22 @@ impl Screening<'_> {
                 counts.ranked_incomplete += u64::from(known < 1.0);
                 let notes = joined(&notes, stereoisomer.as_deref());
                 let (name, smiles) = (entry.name, entry.smiles);
+                let mut intervals = vec![None; figures.len()];
+                for (at, interval) in found {
+                    intervals[at as usize] = Some(interval);
+                }
                 let row = Ranked {
                     line: entry.line,
                     name,
                     smiles,
                     score,
                     known,
+                    variance,
+                    probability,
+                    uses_intervals: self.plan.brief.ranking.uses_intervals(),
+                    band: None,
                     figures,
+                    intervals,
                     notes,
                 };
                 rank.map(|rank| (rank, (row, entry.carried)))
@@ -586,14 +672,29 @@ impl Screening<'_> {
 }
 
 impl Ranked {
+    /// Its name, or its SMILES where it has none.
+    pub fn called(&self) -> &str {
+        match self.name.as_str() {
+            "" => &self.smiles,
+            name => name,
+        }
+    }
+
     /// The row of the ranking at a rank from 0.
     pub fn as_row<'a>(&'a self, rank: usize, carried: &'a [&'a str]) -> RankedRow<'a> {
+        let has_score = self.known > 0.0;
         RankedRow {
             rank: rank as u64 + 1,
             name: &self.name,
             smiles: &self.smiles,
-            score: (self.known > 0.0).then_some(self.score),
+            score: has_score.then_some(self.score),
+            uncertainty: self.uses_intervals.then(|| Uncertainty {
+                probability: self.probability,
+                score: has_score.then(|| score_interval(self.score, self.variance)),
+                band: self.band,
+            }),
             figures: &self.figures,
+            intervals: &self.intervals,
             line: self.line,
             notes: &self.notes,
             carried,
@@ -605,6 +706,7 @@ impl Ranked {
 struct Written {
     ranking: Vec<Ranked>,
     counts: Counts,
+    table: RankedTable,
     files: [NewFile; 2],
 }
 

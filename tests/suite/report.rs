@@ -5,8 +5,8 @@ use std::sync::Arc;
 use groupsmith::quantity::{Absent, Dimension, Estimate, Flag, Flags, Property, Status};
 use groupsmith::report::{
     BreakdownRow, BreakdownStatus, CsvRow, FigureColumn, MixtureRow, MixtureStatus, NotRankedRow,
-    PropertyRow, RankedRow, RankedTable, RowForm, TargetLabel, breakdown_text, mixture_text,
-    outcome_text, property_text, write_rows,
+    PropertyRow, RankedRow, RankedTable, RowForm, TargetLabel, Uncertainty, breakdown_text,
+    mixture_text, outcome_text, property_text, write_rows,
 };
 use groupsmith::run::{Counts, Outcome};
 use proptest::prelude::*;
@@ -164,14 +164,21 @@ fn ranking() -> (RankedTable, String, String) {
             },
         ],
         &["supplier", "notes"],
-    );
+    )
+    .with_intervals(|at| at == 0);
     let rows = [
         RankedRow {
             rank: 1,
             name: "1,2-ethanediol",
             smiles: "OCCO",
             score: Some(0.75),
+            uncertainty: Some(Uncertainty {
+                probability: 0.625,
+                score: Some((0.6, 0.875)),
+                band: Some(1),
+            }),
             figures: &[Some(470.45), Some(12.0), Some(2.0 / 3.0)],
+            intervals: &[Some((455.0, 490.5)), None, None],
             line: 17,
             notes: "",
             carried: &["A \"B\" C", ""],
@@ -181,7 +188,9 @@ fn ranking() -> (RankedTable, String, String) {
             name: "",
             smiles: "CS(C)=O",
             score: None,
+            uncertainty: None,
             figures: &[Some(462.15), None, Some(12.5)],
+            intervals: &[None; 3],
             line: 4,
             notes: "no vapor_pressure: outside the domain",
             carried: &["", "x"],
