@@ -302,7 +302,7 @@ fn how_sure(out: &mut impl Write, plan: &Plan, screened: &Screened) -> io::Resul
     if of_first.len() > 1 {
         writeln!(
             out,
-            "{} are not distinguishable: each has a chance above {} to score better than the first.",
+            "{} are not distinguishable: each of the others has a chance above {} to score better than the first.",
             ranks_in_words(of_first),
             probability_in_words(BAND_CHANCE)
         )?;
@@ -693,5 +693,33 @@ fn in_words(plan: &Plan, scratch: &mut Scratch, verdict: &Verdict) -> String {
             let reason = scratch.explained(plan, reason);
             format!("not assessable: {}: {reason}", label(*at).0)
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::screen::uncertain_runs::{BRIEF, plan, screened, wide};
+
+    #[test]
+    fn people_are_told_how_sure_a_ranking_is() {
+        let folder = tempfile::tempdir().unwrap();
+        let plan = plan(BRIEF, Some(wide));
+        let screened = screened(&plan, 2, folder.path());
+        let mut out = Vec::new();
+        how_sure(&mut out, &plan, &screened).unwrap();
+        insta::assert_snapshot!(String::from_utf8(out).unwrap().trim(), @r"
+        1–19, 21 are not distinguishable: each of the others has a chance above 20 % to score better than the first.
+        To measure next: the boiling point of ether 6 1, which makes up 84 % of the variance of its score; knowing it would put it before ether 7 1 with a probability of 36 %.
+        ");
+        // A boiling point of 360 K with an interval up to 378 K.
+        let mut scratch = Scratch::new();
+        plan.evaluate(&mut scratch, "CCCCCCC").unwrap();
+        let told = judged(&plan, &scratch, plan.targets[0].figure);
+        let wanted = "at least 370 K".to_owned();
+        assert_eq!(
+            told,
+            (wanted, "within the method's error (17 %)".to_owned())
+        );
     }
 }

@@ -15,7 +15,7 @@ mod screening;
 mod sorter;
 mod stoppable;
 #[cfg(test)]
-mod uncertain_runs;
+pub(crate) mod uncertain_runs;
 
 pub use bands::BAND_CHANCE;
 pub use measured_column::ColumnFault;

@@ -19,7 +19,7 @@ use crate::run::{BriefRecord, Fingerprint, Quiet, RunRecord, StopFlag, TablesRec
 static LIBRARY: LazyLock<Arc<Library>> =
     LazyLock::new(|| Arc::new(Library::built_in(Slips::Corrected)));
 
-const BRIEF: &str = r#"
+pub(crate) const BRIEF: &str = r#"
 [pool]
 file = "-"
 [[target]]
@@ -51,12 +51,20 @@ fn pool() -> String {
 }
 
 /// 5 % of the boiling point, 10 % of the density downwards and 15 % upwards.
-fn wide(figure: &PlannedFigure, value: f64) -> Option<(f64, f64)> {
+pub(crate) fn wide(figure: &PlannedFigure, value: f64) -> Option<(f64, f64)> {
     match figure.kind {
         FigureKind::Property(Property::BoilingPoint) => Some((0.95 * value, 1.05 * value)),
         FigureKind::Property(Property::LiquidDensity) => Some((0.9 * value, 1.15 * value)),
         _ => None,
     }
+}
+
+/// A brief bound with intervals put in; measured data are left out.
+pub(crate) fn plan(brief: &str, intervals: Option<IntervalsForTests>) -> Plan {
+    let brief = Brief::read_for(brief, "brief.toml", &CATALOG, Job::Screen).unwrap();
+    let mut plan = Plan::new(Arc::clone(&LIBRARY), brief, false).unwrap();
+    plan.intervals_for_tests = intervals;
+    plan
 }
 
 fn run(
@@ -65,9 +73,10 @@ fn run(
     threads: usize,
     folder: &Path,
 ) -> Screened {
-    let brief = Brief::read_for(brief, "brief.toml", &CATALOG, Job::Screen).unwrap();
-    let mut plan = Plan::new(Arc::clone(&LIBRARY), brief, false).unwrap();
-    plan.intervals_for_tests = intervals;
+    screened(&plan(brief, intervals), threads, folder)
+}
+
+pub(crate) fn screened(plan: &Plan, threads: usize, folder: &Path) -> Screened {
     let columns = Columns {
         smiles: None,
         name: None,
@@ -80,7 +89,7 @@ fn run(
     };
     let record = RunRecord::new("screen", BriefRecord::new("brief.toml", ""), tables);
     let screening = Screening {
-        plan: &plan,
+        plan,
         folder,
         threads,
         stop: &StopFlag::new(),
@@ -292,10 +301,7 @@ proptest! {
     ) {
         let plan = |ranking: &str, intervals: Option<IntervalsForTests>| {
             let text = format!("[pool]\nfile = \"-\"\n{}{ranking}", targets.concat());
-            let brief = Brief::read_for(&text, "b.toml", &CATALOG, Job::Screen).unwrap();
-            let mut plan = Plan::new(Arc::clone(&LIBRARY), brief, false).unwrap();
-            plan.intervals_for_tests = intervals;
-            plan
+            plan(&text, intervals)
         };
         let mut scratch = Scratch::new();
         let smiles = format!("{}OC", "C".repeat(length));

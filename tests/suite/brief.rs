@@ -205,7 +205,10 @@ fn a_ranking_has_a_rule_and_a_confidence() {
     }
     assert!(!with("confidence = 0").unwrap().ranking.uses_intervals());
     for (ranking, told) in [
-        ("by = \"score\"", "accepted: expected-score, probability, cautious"),
+        (
+            "by = \"score\"",
+            "accepted: expected-score, probability, cautious",
+        ),
         ("confidence = 1", "has to be from 0 to less than 1"),
         ("confidence = -0.1", "has to be from 0 to less than 1"),
         ("confidence = \"5 %\"", "is a text, not a number"),
