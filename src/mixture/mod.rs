@@ -10,7 +10,7 @@
 //! derivatives), [`Liquid`] (what every model offers to phase equilibrium:
 //! [`bubble_temperature`], [`azeotropes`], [`liquid_phases`],
 //! [`relative_volatility`]), [`KeysAtTemperature`] and [`HostAtTemperature`]
-//! (the batch path), [`UnifacTables`] (what `groupsmith tables` shows).
+//! (the batch path), [`ActivityErrors`] (90 % intervals of ln γ∞), [`UnifacTables`] (what `groupsmith tables` shows).
 
 mod composition;
 mod equilibrium;
@@ -18,6 +18,7 @@ mod error;
 mod excess;
 mod liquid;
 mod model;
+mod uncertainty;
 mod unifac;
 
 pub use composition::{MassFractions, MoleFractions, SUM_TOLERANCE, VolumeFractions};
@@ -30,6 +31,7 @@ pub use error::{MixtureError, PairGap};
 pub use excess::Excess;
 pub use liquid::{IdealState, Liquid, LiquidMixture};
 pub use model::{ActivityModel, ModelStatus, RESERVED_MODELS};
+pub use uncertainty::{ActivityErrors, ChemicalClass, ErrorModel, Likeness, LnError};
 pub use unifac::{
     Component, Coverage, GroupsAtTemperature, HostAtTemperature, Interaction, KeysAtTemperature,
     MainGroup, Override, PairRecord, Slip, Slips, Subgroup, TableFile, Unifac, UnifacMixture,

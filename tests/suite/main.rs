@@ -1,5 +1,6 @@
 //! The one integration binary: a module for each room.
 
+mod activity_errors;
 mod brief;
 mod chem;
 mod cli;

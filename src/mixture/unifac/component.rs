@@ -78,7 +78,7 @@ pub struct Component {
     /// Main groups and surface in each, in order of first appearance.
     pub(super) areas: SmallVec<[(MainIndex, f64); 8]>,
     /// Main groups as bits.
-    pub(super) mains: u128,
+    pub(in crate::mixture) mains: u128,
 }
 
 impl Component {
@@ -90,6 +90,11 @@ impl Component {
     /// Relative van der Waals surface area q = Σ ν_k Q_k.
     pub fn q(&self) -> f64 {
         self.q
+    }
+
+    /// Main groups and the fraction of the surface in each.
+    pub(in crate::mixture) fn surfaces(&self) -> impl Iterator<Item = (MainIndex, f64)> {
+        self.areas.iter().map(|&(main, area)| (main, area / self.q))
     }
 }
 

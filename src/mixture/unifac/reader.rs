@@ -6,6 +6,7 @@ use std::sync::Arc;
 
 use rustc_hash::FxHashSet;
 
+use crate::mixture::uncertainty::ClassMasks;
 use crate::table::{Column, Row, Table, TableError};
 
 use super::tables::{
@@ -252,6 +253,7 @@ impl Reading {
             })
             .collect();
         UnifacTables {
+            class_masks: ClassMasks::new(&main_groups),
             model,
             main_groups,
             subgroups,

@@ -2,6 +2,7 @@
 
 use std::sync::Arc;
 
+use crate::mixture::uncertainty::ClassMasks;
 use crate::mixture::{MixtureError, PairGap};
 use crate::table::TableError;
 
@@ -81,7 +82,7 @@ pub struct Subgroup {
 
 /// Position of a main group in [`UnifacTables::main_groups`].
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
-pub(super) struct MainIndex(pub(super) u8);
+pub(in crate::mixture) struct MainIndex(pub(super) u8);
 
 impl MainIndex {
     pub(super) fn get(self) -> usize {
@@ -170,6 +171,7 @@ pub struct UnifacTables {
     pub(super) known: Vec<u128>,
     pub(super) slips: Vec<Slip>,
     pub(super) treatment: Slips,
+    pub(in crate::mixture) class_masks: ClassMasks,
     pub(super) sources: Vec<Arc<str>>,
     pub(super) notes: Vec<Arc<str>>,
     pub(super) overrides: Vec<Override>,
