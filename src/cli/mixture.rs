@@ -148,6 +148,8 @@ fn row(figure: &MixtureFigure) -> MixtureRow<'_> {
         model: figure.model.map_or("measured", ActivityModel::id),
         status,
         detail,
+        low: figure.interval.map(|(low, _)| low),
+        high: figure.interval.map(|(_, high)| high),
     }
 }
 

@@ -11,7 +11,7 @@ use super::solution::with_liquid;
 use super::uncertainty::{Judged, Judgement, Spread, Term};
 use crate::chem::SmilesError;
 use crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
-use crate::mixture::{Component, Unifac, Vapor, liquid_phases, relative_volatility};
+use crate::mixture::{Component, LnError, Unifac, Vapor, liquid_phases, relative_volatility};
 use crate::pure::Estimates;
 use crate::quantity::{
     Absent, Dimension, Estimate, Flag, Flags, Outcome, Property, REFERENCE_TEMPERATURE_K, Status,
@@ -122,11 +122,13 @@ struct Candidate<'a> {
 }
 
 /// A candidate at infinite dilution with the keys, by one model.
-struct Dilute {
+pub(super) struct Dilute {
     /// The candidate as the model sees it.
-    component: Result<Component, Absent>,
+    pub(super) component: Result<Component, Absent>,
     /// ln γ∞ of the keys in the candidate.
-    keys: [Result<f64, Absent>; 2],
+    pub(super) keys: [Result<f64, Absent>; 2],
+    /// The errors of the model in them, where they are known.
+    pub(super) errors: [Option<LnError>; 2],
 }
 
 impl Dilute {
@@ -227,6 +229,7 @@ impl Plan {
             return Dilute {
                 component: Err(needless()),
                 keys: [Ok(0.0), Ok(0.0)],
+                errors: [None; 2],
             };
         };
         let component = super::solution::record(&self.library, unifac, *set, profile);
@@ -246,7 +249,18 @@ impl Plan {
                 }
             }
         };
-        Dilute { component, keys }
+        let errors = match (&component, self.keys) {
+            (Ok(candidate), Some(of)) => [0, 1].map(|key| {
+                let ln_gamma = *keys[key].as_ref().ok()?;
+                model.error_of(of[key], candidate, ln_gamma)
+            }),
+            _ => [None; 2],
+        };
+        Dilute {
+            component,
+            keys,
+            errors,
+        }
     }
 
     fn figure(&self, figure: &PlannedFigure, candidate: &Candidate<'_>) -> Outcome {
@@ -311,6 +325,7 @@ impl Plan {
                     alpha
                 };
                 let alpha = calculated(value).flagged(self.vapor_flags(temperature_k));
+                let alpha = self.with_interval(alpha, figure, measured, of_candidate);
                 return finite(self.marked(alpha, figure, measured));
             }
             FigureKind::CapacityByMole => (-of_component(figure.component)?).exp(),
@@ -338,7 +353,8 @@ impl Plan {
                 });
             }
         };
-        finite(self.marked(calculated(value), figure, measured))
+        let estimate = self.with_interval(calculated(value), figure, measured, of_candidate);
+        finite(self.marked(estimate, figure, measured))
     }
 
     /// Flags of figures that rest on the vapor pressures of the keys.
@@ -792,7 +808,11 @@ fn finite(estimate: Estimate) -> Outcome {
 
 impl PlannedModel {
     /// ln γ∞ of a component of the mixture in a candidate.
-    fn ln_gamma_inf_of(&self, component: usize, candidate: &Component) -> Result<f64, Absent> {
+    pub(super) fn ln_gamma_inf_of(
+        &self,
+        component: usize,
+        candidate: &Component,
+    ) -> Result<f64, Absent> {
         let record = self.each[component].as_ref().map_err(Absent::clone)?;
         let mut value = [0.0];
         record
@@ -801,7 +821,7 @@ impl PlannedModel {
         plausible(value[0], self)
     }
 
-    fn ln_gamma_inf_in_host(&self, candidate: &Component) -> Result<f64, Absent> {
+    pub(super) fn ln_gamma_inf_in_host(&self, candidate: &Component) -> Result<f64, Absent> {
         let host = self.host.as_ref().map_err(Absent::clone)?;
         let (unifac, _) = self
             .unifac

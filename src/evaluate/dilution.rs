@@ -24,14 +24,22 @@ pub(super) struct MeasuredDilutions {
 impl MeasuredDilutions {
     /// ln γ∞ of a component in the candidate.
     pub(super) fn of_component(&self, component: usize) -> Option<f64> {
-        let measured = self.of_components.get(component)?.as_ref()?;
-        measured.as_ref().ok().map(|found| found.value)
+        self.value_of_component(component).map(|found| found.value)
     }
 
     /// ln γ∞ of the candidate in the mixture.
     pub(super) fn of_candidate(&self) -> Option<f64> {
-        let measured = self.of_candidate.as_ref()?;
-        measured.as_ref().ok().map(|found| found.value)
+        self.value_of_candidate().map(|found| found.value)
+    }
+
+    /// The measured value behind ln γ∞ of a component in the candidate.
+    pub(super) fn value_of_component(&self, component: usize) -> Option<&PairValue> {
+        self.of_components.get(component)?.as_ref()?.as_ref().ok()
+    }
+
+    /// The measured value behind ln γ∞ of the candidate in the mixture.
+    pub(super) fn value_of_candidate(&self) -> Option<&PairValue> {
+        self.of_candidate.as_ref()?.as_ref().ok()
     }
 
     fn is_empty(&self) -> bool {
@@ -75,7 +83,7 @@ impl Plan {
     }
 
     /// The component that is the whole mixture, if one is.
-    fn only_component(&self) -> Option<usize> {
+    pub(super) fn only_component(&self) -> Option<usize> {
         let x = self.mole_fractions.as_ref()?;
         x.iter().position(|&x| x == 1.0)
     }

@@ -10,7 +10,9 @@ use crate::chem::Keys;
 use crate::data::pairs::{PairTables, Pairs};
 use crate::data::{DataError, Substance, Substances, TableText, Tables};
 use crate::groups::{GroupSet, GroupsError, SetId};
-use crate::mixture::{ActivityModel, Slips, TableFile, Unifac, UnifacOverlay};
+use crate::mixture::{
+    ActivityErrors, ActivityModel, ErrorModel, Slips, TableFile, Unifac, UnifacOverlay,
+};
 use crate::pure::PureMethods;
 use crate::quantity::Absent;
 use crate::table::TableError;
@@ -72,6 +74,7 @@ pub struct Library {
     sets: [OnceLock<GroupSet>; SetId::ALL.len()],
     unifac: [OnceLock<Unifac>; UNIFAC_MODELS.len()],
     methods: OnceLock<PureMethods>,
+    activity_errors: OnceLock<ActivityErrors>,
     substances: OnceLock<Substances>,
     /// Of the user alone: none are built in.
     pairs: Pairs,
@@ -99,6 +102,7 @@ impl Library {
             sets: [const { OnceLock::new() }; SetId::ALL.len()],
             unifac: [const { OnceLock::new() }; UNIFAC_MODELS.len()],
             methods: OnceLock::new(),
+            activity_errors: OnceLock::new(),
             substances: OnceLock::new(),
             pairs: Pairs::default(),
             user: Vec::new(),
@@ -222,6 +226,15 @@ impl Library {
         Some(self.unifac[at].get_or_init(|| self.read_unifac(model).expect(SOUND)))
     }
 
+    /// What errors ln γ∞ of a model has; `None` for a model without a fitted
+    /// error. They are those of the built-in tables, whatever a user lays over them.
+    pub fn activity_errors(&self, model: ActivityModel) -> Option<&ErrorModel> {
+        let errors = self
+            .activity_errors
+            .get_or_init(|| ActivityErrors::built_in().expect(SOUND));
+        errors.of(model)
+    }
+
     /// Pure-component methods.
     pub fn methods(&self) -> &PureMethods {
         self.methods.get_or_init(PureMethods::built_in)
@@ -264,6 +277,8 @@ impl Library {
                     .map(|file| (file.name, file.text)),
             );
         }
+        let errors = ActivityErrors::BUILT_IN;
+        all.push((errors.name, errors.text));
         all.extend(
             Substances::built_in_texts()
                 .into_iter()

@@ -11,6 +11,7 @@ mod dilution;
 mod error;
 mod family;
 mod figure;
+mod interval;
 mod library;
 mod naming;
 mod plan;

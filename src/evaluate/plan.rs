@@ -5,6 +5,7 @@ use std::sync::Arc;
 use super::component::MixtureComponent;
 use super::error::{PlanCause, PlanFault};
 use super::figure::{FigureKind, figure};
+use super::interval::PlannedErrors;
 use super::profile::Profiler;
 use super::source::Source;
 use super::structure::{StructureLimit, bind};
@@ -65,6 +66,8 @@ pub(super) struct PlannedModel {
     pub(super) each: Vec<Result<KeysAtTemperature, Absent>>,
     /// The mixture at its composition.
     pub(super) host: Result<HostAtTemperature, Absent>,
+    /// The errors of the model, where they were fitted.
+    pub(super) errors: Option<PlannedErrors>,
 }
 
 /// The 90 % interval of a figure with a value.
@@ -571,6 +574,7 @@ impl PlannedModel {
                 keys: None,
                 each: Vec::new(),
                 host: Err(none()),
+                errors: None,
             };
         };
         let records: Vec<Result<Component, Absent>> = components
@@ -596,8 +600,12 @@ impl PlannedModel {
             let all: Vec<Component> = records.iter().cloned().collect::<Result<_, _>>()?;
             HostAtTemperature::new(groups, &all, x).map_err(|error| error.absent())
         })();
+        let errors = library.activity_errors(model).and_then(|errors| {
+            PlannedErrors::new(errors, unifac.tables(), &records, keys, temperature_k)
+        });
         Self {
             model,
+            errors,
             keys: keys.and_then(|keys| bind(&keys).ok()),
             each: (0..components.len()).map(|at| bind(&[at])).collect(),
             host,

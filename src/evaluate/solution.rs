@@ -2,6 +2,7 @@
 
 use super::Library;
 use super::component::{MixtureComponent, boiling_range_k};
+use super::interval;
 use super::profile::Profile;
 use crate::brief::Basis;
 use crate::data::pairs::PairValue;
@@ -238,6 +239,8 @@ pub struct MixtureFigure {
     pub measured: bool,
     /// The value, nothing where nothing is the answer (no azeotrope), or why there is none.
     pub value: Result<Option<f64>, Absent>,
+    /// The ends of the 90 % interval, where there is one: of γ∞ in one substance.
+    pub interval: Option<(f64, f64)>,
     /// What the reader has to know.
     pub remark: String,
 }
@@ -283,6 +286,10 @@ pub fn measured_at_dilution(
     });
     found
         .flat_map(|(component, found)| {
+            let ends = found.as_ref().ok().and_then(|found| {
+                let (low, high) = interval::of_measured(found)?;
+                Some((found.value + low, found.value + high))
+            });
             let row = |quantity, of: fn(f64) -> f64| MixtureFigure {
                 quantity,
                 component: Some(component),
@@ -293,6 +300,7 @@ pub fn measured_at_dilution(
                     .as_ref()
                     .map(|found| Some(of(found.value)))
                     .map_err(Absent::clone),
+                interval: ends.map(|(low, high)| (of(low), of(high))),
                 remark: found.as_ref().map_or(String::new(), ToString::to_string),
             };
             [
@@ -404,6 +412,7 @@ impl Describer<'_> {
             model: Some(self.model),
             measured: false,
             value,
+            interval: None,
             remark: remark.into(),
         });
     }
@@ -435,6 +444,50 @@ impl Describer<'_> {
         for (quantity, values) in columns {
             for (component, value) in values.into_iter().enumerate() {
                 self.put(quantity, Some(component), "", value, remark);
+            }
+        }
+        if let (Ok(temperature_k), Ok(ln_gamma)) = (temperature_k, &ln_gamma) {
+            for (component, ln_gamma) in ln_gamma.iter().enumerate() {
+                self.interval_at_dilution(component, *temperature_k, *ln_gamma);
+            }
+        }
+    }
+
+    /// Puts the interval of γ∞ on the figures of a component that is infinitely
+    /// dilute in one other: errors of mixed solvents were not measured.
+    fn interval_at_dilution(&mut self, component: usize, temperature_k: f64, ln_gamma: f64) {
+        let solvent = self.x.iter().position(|&x| x == 1.0);
+        let (Some(solvent), Ok(Some(records))) = (solvent, &self.records) else {
+            return;
+        };
+        let (Some(errors), Some(unifac)) = (
+            self.library.activity_errors(self.model),
+            self.library.unifac(self.model),
+        ) else {
+            return;
+        };
+        if solvent == component {
+            return;
+        }
+        let [solute, solvent] = [component, solvent].map(|at| {
+            let record = &records[at];
+            (record, unifac.tables().class(record))
+        });
+        let (low, high) = errors.interval(errors.error(solute, solvent, temperature_k, ln_gamma));
+        let ends = [ln_gamma + low, ln_gamma + high];
+        let remark = errors.remark(solute.1, solvent.1).unwrap_or_default();
+        for figure in &mut self.figures {
+            if figure.component != Some(component) {
+                continue;
+            }
+            let [low, high] = match figure.quantity {
+                "ln_activity_coefficient" => ends,
+                "activity_coefficient" => ends.map(f64::exp),
+                _ => continue,
+            };
+            if low.is_finite() && high.is_finite() {
+                figure.interval = Some((low, high));
+                figure.remark = joined(&[&figure.remark, &remark]);
             }
         }
     }

@@ -53,10 +53,16 @@ pub struct MixtureRow<'a> {
     pub status: MixtureStatus,
     /// Flags, or the reason why there is no value.
     pub detail: String,
+    /// Lower end of the 90 % interval, where there is one.
+    #[serde(serialize_with = "rounded")]
+    pub low: Option<f64>,
+    /// Upper end.
+    #[serde(serialize_with = "rounded")]
+    pub high: Option<f64>,
 }
 
 impl CsvRow for MixtureRow<'_> {
-    const HEAD: &'static str = "quantity,component,value,unit,model,status,detail";
+    const HEAD: &'static str = "quantity,component,value,unit,model,status,detail,low,high";
 
     fn write_csv(&self, out: &mut Vec<u8>) {
         let mut line = CsvLine::new(out);
@@ -69,7 +75,9 @@ impl CsvRow for MixtureRow<'_> {
             .text(self.unit)
             .text(self.model)
             .text(self.status.id())
-            .text(&self.detail);
+            .text(&self.detail)
+            .number_or_empty(self.low, LOOK_UP_DIGITS)
+            .number_or_empty(self.high, LOOK_UP_DIGITS);
         line.end();
     }
 }
@@ -94,7 +102,19 @@ pub fn mixture_text(rows: &[MixtureRow<'_>], components: &[&str], width: Option<
         TextColumn::text("component"),
         TextColumn::text("unit"),
     ];
-    columns.extend(models.iter().map(|model| TextColumn::number(*model, "")));
+    let with_interval: Vec<bool> = models
+        .iter()
+        .map(|model| {
+            rows.iter()
+                .any(|row| row.model == *model && row.low.is_some())
+        })
+        .collect();
+    for (model, with_interval) in models.iter().zip(&with_interval) {
+        columns.push(TextColumn::number(*model, ""));
+        if *with_interval {
+            columns.extend(["low", "high"].map(|end| TextColumn::number(end, "")));
+        }
+    }
     let mut table = TextTable::new(columns);
     let mut notes: Vec<String> = Vec::new();
     for (quantity, component) in lines {
@@ -103,7 +123,7 @@ pub fn mixture_text(rows: &[MixtureRow<'_>], components: &[&str], width: Option<
             .copied()
             .unwrap_or_default();
         let mut cells = vec![quantity.to_owned(), name.to_owned(), String::new()];
-        for model in &models {
+        for (model, with_interval) in models.iter().zip(&with_interval) {
             let row = rows.iter().find(|row| {
                 (row.quantity, row.component, row.model) == (quantity, component, *model)
             });
@@ -132,6 +152,10 @@ pub fn mixture_text(rows: &[MixtureRow<'_>], components: &[&str], width: Option<
                 }
             }
             cells.push(cell);
+            if *with_interval {
+                let ends = [row.and_then(|row| row.low), row.and_then(|row| row.high)];
+                cells.extend(ends.map(|end| end.map_or(String::new(), number::for_reading)));
+            }
         }
         table.add(cells);
     }

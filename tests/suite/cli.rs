@@ -75,7 +75,7 @@ fn heads_of_csv_are_those_relied_upon() {
         ),
         (
             &["mixture", "--component", "CCO", "--temperature", "300 K"][..],
-            "quantity,component,value,unit,model,status,detail",
+            "quantity,component,value,unit,model,status,detail,low,high",
         ),
     ] {
         let said = say(&[arguments, &["--format", "csv"]].concat());

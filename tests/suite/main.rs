@@ -10,6 +10,7 @@ mod evaluate;
 mod family;
 mod groups;
 mod independent;
+mod intervals;
 mod mixture;
 mod own_data;
 mod pairs;

@@ -544,7 +544,9 @@ fn a_measured_gamma_stands_beside_the_models_at_infinite_dilution() {
             "",
             "measured",
             "measured",
-            "at 298.15 K (A. Author)"
+            "at 298.15 K (A. Author)",
+            "",
+            ""
         ]
     );
     assert_eq!(row(&rows, "activity_coefficient", "ideal")[2], "1");

@@ -95,6 +95,8 @@ fn mixtures() -> Vec<MixtureRow<'static>> {
         model,
         status,
         detail: detail.to_owned(),
+        low: None,
+        high: None,
     };
     use MixtureStatus::{Calculated, NotAssessable};
     let why = "the interaction of main groups A and B is not published";
@@ -108,15 +110,19 @@ fn mixtures() -> Vec<MixtureRow<'static>> {
             Calculated,
             "",
         ),
-        row(
-            "ln_activity_coefficient",
-            Some(2),
-            Some(1.0),
-            "",
-            "ideal",
-            Calculated,
-            "",
-        ),
+        MixtureRow {
+            low: Some(0.5),
+            high: Some(1.75),
+            ..row(
+                "ln_activity_coefficient",
+                Some(2),
+                Some(1.0),
+                "",
+                "ideal",
+                Calculated,
+                "",
+            )
+        },
         row(
             "ln_activity_coefficient",
             Some(1),
