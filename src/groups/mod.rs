@@ -8,6 +8,7 @@ mod built_in;
 mod counts;
 mod cover;
 mod describe;
+pub mod environment;
 mod error;
 mod features;
 pub mod pattern;
