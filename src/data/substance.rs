@@ -422,5 +422,6 @@ fn from_curve(value: f64, temperature_k: Option<f64>, flags: Flags, source: &Arc
         status: Status::Measured,
         flags,
         source: Some(Arc::clone(source)),
+        note: None,
     }
 }

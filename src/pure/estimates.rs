@@ -8,7 +8,7 @@ use super::corresponding_states::{
     flash_point_catoire_naudet, surface_tension_sastri_rao,
 };
 use super::joback::{self, Contributions, LinearSums, State};
-use super::method::ATOMIC_WEIGHTS;
+use super::method::{ATOMIC_WEIGHTS, WATSON};
 use crate::chem::Element;
 use crate::groups::GroupCounts;
 use crate::quantity::{
@@ -21,6 +21,15 @@ pub type Estimates = [Outcome; Property::COUNT];
 /// Reduced temperature below which a vapor pressure is flagged: no data were
 /// looked at there.
 const VAPOR_PRESSURE_TR_LOW: f64 = 0.5;
+
+/// Half width of the 90 % interval of ln P that the shape of a vapor-pressure curve
+/// through the boiling point leaves: at the boiling point, and per unit of `T_b / T - 1`.
+/// From the errors with measured boiling points (`results/2026-12-01-estimates`).
+const VAPOR_PRESSURE_SHAPE: (f64, f64) = (0.03, 2.0);
+
+/// Half width of the 90 % interval of a density carried by one K, as a part of it; from
+/// the same study.
+const DENSITY_SHAPE_PER_K: f64 = 0.0006;
 
 /// Numbers of the alcohol and the acid group in the table of Joback and Reid.
 const ALCOHOL_GROUP: u16 = 20;
@@ -146,14 +155,17 @@ pub fn estimate_all(
         Property::IdealGasEnthalpyOfFormation,
         Property::IdealGasGibbsEnergyOfFormation,
         Property::IdealGasHeatCapacity,
-        Property::LiquidViscosity,
     ] {
         put(property, molecule.additive(property, state));
     }
+    put(Property::LiquidViscosity, molecule.liquid_viscosity(state));
 
     let curve = molecule.curve(&boiling_point, &critical_temperature, &critical_pressure);
     let acentric_factor = molecule.acentric_factor(&curve);
-    put(Property::VaporPressure, molecule.vapor_pressure(&curve));
+    put(
+        Property::VaporPressure,
+        molecule.vapor_pressure(&curve, &boiling_point),
+    );
     put(
         Property::LiquidDensity,
         molecule.liquid_density(
@@ -167,6 +179,14 @@ pub fn estimate_all(
     put(
         Property::FlashPoint,
         molecule.flash_point(
+            &boiling_point,
+            &critical_temperature,
+            &enthalpy_of_vaporization,
+        ),
+    );
+    put(
+        Property::EnthalpyOfVaporizationAt298,
+        molecule.enthalpy_of_vaporization_at_298(
             &boiling_point,
             &critical_temperature,
             &enthalpy_of_vaporization,
@@ -224,6 +244,35 @@ impl Molecule<'_> {
         joback::close(property, &self.methods.joback, sums, self.facts, state)
     }
 
+    /// A value given at another temperature, with that temperature.
+    fn anchor(&self, property: Property) -> Option<(&Estimate, f64)> {
+        let known = self.given.get(property)?;
+        Some((known, known.temperature_k?))
+    }
+
+    fn liquid_viscosity(&self, state: State) -> Outcome {
+        let here = self.additive(Property::LiquidViscosity, state)?;
+        match self.anchor(Property::LiquidViscosity) {
+            Some((known, known_k)) if (known_k - self.temperature_k).abs() > SAME_TEMPERATURE_K => {
+                let sums = self.sums.as_ref().map_err(Absent::clone)?;
+                let state = State {
+                    temperature_k: known_k,
+                    ..state
+                };
+                let there = joback::close(
+                    Property::LiquidViscosity,
+                    &self.methods.joback,
+                    sums,
+                    self.facts,
+                    state,
+                )?;
+                let ratio = here.value / there.value;
+                Ok(carried(known, ratio, self.temperature_k, joback::ID))
+            }
+            _ => Ok(here),
+        }
+    }
+
     fn critical_temperature(&self, boiling_point: &Outcome) -> Outcome {
         if let Some(known) = self.given.get(Property::CriticalTemperature) {
             return Ok(known.clone());
@@ -262,7 +311,9 @@ impl Molecule<'_> {
         )
     }
 
-    fn vapor_pressure(&self, curve: &Curve) -> Outcome {
+    /// The interval joins what the boiling point leaves open with what the shape
+    /// of the curve does.
+    fn vapor_pressure(&self, curve: &Curve, boiling_point: &Outcome) -> Outcome {
         if let Some(known) = self.given.at(Property::VaporPressure, self.temperature_k) {
             return Ok(known.clone());
         }
@@ -271,9 +322,47 @@ impl Molecule<'_> {
         if curve.constants().reduced(self.temperature_k) < VAPOR_PRESSURE_TR_LOW {
             flags = flags.with(Flag::OutsideTemperatureRange);
         }
-        Ok(Estimate::new(pressure_pa, self.methods.vapor_pressure.id())
+        let estimate = Estimate::new(pressure_pa, self.methods.vapor_pressure.id())
             .at(self.temperature_k)
-            .flagged(flags))
+            .flagged(flags);
+        Ok(Estimate {
+            interval: value(boiling_point)
+                .ok()
+                .and_then(|tb| self.vapor_pressure_interval(curve, tb, pressure_pa)),
+            ..estimate
+        })
+    }
+
+    fn vapor_pressure_interval(
+        &self,
+        curve: &VaporPressureCurve,
+        boiling_point: &Estimate,
+        pressure_pa: f64,
+    ) -> Option<(f64, f64)> {
+        let constants = curve.constants();
+        let tb = boiling_point.value;
+        let (low_k, high_k) = match boiling_point.status {
+            Status::Measured => (tb, tb),
+            Status::Estimated => boiling_point.interval?,
+        };
+        // ln P with the boiling point elsewhere, the other constants moving with it
+        let ln_p = |moved_k: f64| {
+            let tc = constants.critical_temperature_k() * moved_k / tb;
+            let moved = Constants::new(moved_k, tc, constants.critical_pressure_pa(), "").ok()?;
+            let curve =
+                VaporPressureCurve::through_boiling_point(self.methods.vapor_pressure, moved);
+            curve
+                .ok()?
+                .pressure_pa(self.temperature_k)
+                .ok()
+                .map(f64::ln)
+        };
+        let ln_value = pressure_pa.ln();
+        let shape =
+            VAPOR_PRESSURE_SHAPE.0 + VAPOR_PRESSURE_SHAPE.1 * (tb / self.temperature_k - 1.0).abs();
+        let below = (ln_value - ln_p(high_k)?).hypot(shape);
+        let above = (ln_p(low_k)? - ln_value).hypot(shape);
+        Some(((ln_value - below).exp(), (ln_value + above).exp()))
     }
 
     fn liquid_density(
@@ -322,9 +411,19 @@ impl Molecule<'_> {
             )
         };
         let density = density_curve.density_kg_per_m3(self.temperature_k)?;
-        Ok(Estimate::new(density, density_curve.method())
-            .at(self.temperature_k)
-            .flagged(flags))
+        let interval = anchor.and_then(|(known, at_k)| {
+            let (low, high) = known.interval?;
+            let carried = DENSITY_SHAPE_PER_K * (self.temperature_k - at_k).abs();
+            let below = (1.0 - low / known.value).hypot(carried);
+            let above = (high / known.value - 1.0).hypot(carried);
+            Some((density * (1.0 - below).max(0.0), density * (1.0 + above)))
+        });
+        Ok(Estimate {
+            interval,
+            ..Estimate::new(density, density_curve.method())
+        }
+        .at(self.temperature_k)
+        .flagged(flags))
     }
 
     fn surface_tension(&self, curve: &Curve) -> Outcome {
@@ -340,10 +439,40 @@ impl Molecule<'_> {
             SurfaceTensionClass::Other
         };
         let (curve, flags) = curve.as_ref().map_err(Absent::clone)?;
-        let tension = surface_tension_sastri_rao(curve.constants(), class, self.temperature_k)?;
+        let at = |t: f64| surface_tension_sastri_rao(curve.constants(), class, t);
+        let tension = at(self.temperature_k)?;
+        if let Some((known, known_k)) = self.anchor(Property::SurfaceTension) {
+            let ratio = tension / at(known_k)?;
+            return Ok(carried(known, ratio, self.temperature_k, SASTRI_RAO));
+        }
         Ok(Estimate::new(tension, SASTRI_RAO)
             .at(self.temperature_k)
             .flagged(*flags))
+    }
+
+    /// Carried from the boiling point in the manner of Watson.
+    fn enthalpy_of_vaporization_at_298(
+        &self,
+        tb: &Outcome,
+        tc: &Outcome,
+        h_vap: &Outcome,
+    ) -> Outcome {
+        if let Some(known) = self.given.get(Property::EnthalpyOfVaporizationAt298) {
+            return Ok(known.clone());
+        }
+        let (tb, tc, h_vap) = (value(tb)?, value(tc)?, value(h_vap)?);
+        let at_reference = enthalpy_of_vaporization_watson(
+            h_vap.value,
+            tb.value,
+            tc.value,
+            REFERENCE_TEMPERATURE_K,
+        )
+        .ok_or(Absent::OutsideDomain {
+            method: WATSON,
+            what: "the critical temperature is below 298.15 K",
+        })?;
+        let flags = rests_on(tb).union(rests_on(tc)).union(rests_on(h_vap));
+        Ok(Estimate::new(at_reference, WATSON).flagged(flags))
     }
 
     fn flash_point(&self, tb: &Outcome, tc: &Outcome, h_vap: &Outcome) -> Outcome {
@@ -356,7 +485,7 @@ impl Molecule<'_> {
             what,
         };
         let mut flags = rests_on(tb).union(rests_on(tc)).union(rests_on(h_vap));
-        if burns_doubtfully(self.facts) {
+        if self.facts.burns_doubtfully() {
             return Err(outside(
                 "where halogens are as many as hydrogens it cannot tell whether there is a flash point",
             ));
@@ -379,11 +508,22 @@ impl Molecule<'_> {
     }
 }
 
-/// Whether halogens take the place of hydrogen so far that burning is in doubt.
-fn burns_doubtfully(facts: &StructureFacts) -> bool {
-    let of = |element| facts.composition.count(element);
-    let halogens = of(Element::F) + of(Element::Cl) + of(Element::Br) + of(Element::I);
-    halogens > 0 && halogens >= of(Element::H)
+/// A value carried to another temperature by the course of another method.
+fn carried(known: &Estimate, ratio: f64, temperature_k: f64, course: &'static str) -> Estimate {
+    Estimate {
+        value: known.value * ratio,
+        interval: known
+            .interval
+            .map(|(low, high)| (low * ratio, high * ratio)),
+        status: Status::Estimated,
+        method: match known.status {
+            Status::Measured => course,
+            Status::Estimated => known.method,
+        },
+        flags: known.flags.with(Flag::RestsOnEstimate),
+        ..known.clone()
+    }
+    .at(temperature_k)
 }
 
 /// The value, or the reason why it is absent: the reader wants the first
@@ -394,6 +534,9 @@ fn value(outcome: &Outcome) -> Result<&Estimate, Absent> {
 
 fn rests_on(input: &Estimate) -> Flags {
     match input.status {
+        Status::Estimated if input.flags.contains(Flag::OutsideFamily) => Flags::NONE
+            .with(Flag::RestsOnEstimate)
+            .with(Flag::OutsideFamily),
         Status::Estimated => Flags::NONE.with(Flag::RestsOnEstimate),
         Status::Measured => Flags::NONE,
     }

@@ -19,6 +19,13 @@ pub struct StructureFacts {
 }
 
 impl StructureFacts {
+    /// Whether halogens take the place of hydrogen so far that burning is in doubt.
+    pub fn burns_doubtfully(&self) -> bool {
+        let of = |element| self.composition.count(element);
+        let halogens = of(Element::F) + of(Element::Cl) + of(Element::Br) + of(Element::I);
+        halogens > 0 && halogens >= of(Element::H)
+    }
+
     /// Facts of a molecule of this composition; atoms are counted from it.
     pub fn new(composition: Composition, molar_mass_kg_per_mol: f64) -> Self {
         let heavy_atoms = u32::from(composition.heavy_atoms());

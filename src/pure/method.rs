@@ -3,6 +3,7 @@
 use super::corresponding_states::{
     CATOIRE_NAUDET, LiquidDensityMethod, SASTRI_RAO, VaporPressureMethod,
 };
+use super::fitted::Level;
 use super::joback;
 use crate::quantity::Property;
 
@@ -35,6 +36,9 @@ pub struct Method {
 /// Identifier of a molar mass, which the caller computes.
 pub(super) const ATOMIC_WEIGHTS: &str = "standard-atomic-weights";
 
+/// Identifier of an enthalpy of vaporization carried along the saturation curve.
+pub(super) const WATSON: &str = "watson";
+
 const JOBACK: &str =
     "Joback and Reid, Chem. Eng. Commun. 57 (1987) 233-243, doi:10.1080/00986448708960487";
 const AMBROSE_WALTON: &str =
@@ -51,6 +55,7 @@ const RACKETT: &str = "Rackett, J. Chem. Eng. Data 15 (1970) 514-517, doi:10.102
 const HANKINSON_THOMSON: &str =
     "Hankinson and Thomson, AIChE J. 25 (1979) 653-663, doi:10.1002/aic.690250412";
 
+const BOILING_POINT_AND_DENSITY: &[Property] = &[Property::BoilingPoint, Property::LiquidDensity];
 const CRITICAL_POINT: &[Property] = &[
     Property::BoilingPoint,
     Property::CriticalTemperature,
@@ -63,14 +68,36 @@ const CRITICAL_POINT_AND_VOLUME: &[Property] = &[
     Property::CriticalVolume,
 ];
 
-const fn additive(property: Property, needs: &'static [Property]) -> Method {
+const fn additive(property: Property, needs: &'static [Property], role: Role) -> Method {
     Method {
         id: joback::ID,
         property,
         source: JOBACK,
         needs,
         needs_groups: true,
-        role: Role::Default,
+        role,
+    }
+}
+
+/// Where the fitted estimates come from.
+const FITTED: &str = "fitted on measured values of the project's reference data (groups/estimates, \
+     program fit_estimates); linear sums over atom environments, corrected by Gaussian-process \
+     regression (C. E. Rasmussen, C. K. I. Williams, Gaussian Processes for Machine Learning, \
+     MIT Press 2006)";
+
+const fn fitted(
+    level: Level,
+    property: Property,
+    needs: &'static [Property],
+    role: Role,
+) -> Method {
+    Method {
+        id: level.id(),
+        property,
+        source: FITTED,
+        needs,
+        needs_groups: false,
+        role,
     }
 }
 
@@ -100,11 +127,55 @@ pub const METHODS: &[Method] = &[
         &[],
         Role::Default,
     ),
-    additive(Property::BoilingPoint, &[]),
-    additive(Property::MeltingPoint, &[]),
-    additive(Property::CriticalTemperature, &[Property::BoilingPoint]),
-    additive(Property::CriticalPressure, &[]),
-    additive(Property::CriticalVolume, &[]),
+    fitted(Level::Structure, Property::BoilingPoint, &[], Role::Default),
+    fitted(Level::Count, Property::BoilingPoint, &[], Role::Selectable),
+    additive(Property::BoilingPoint, &[], Role::Selectable),
+    fitted(Level::Structure, Property::MeltingPoint, &[], Role::Default),
+    fitted(Level::Count, Property::MeltingPoint, &[], Role::Selectable),
+    additive(Property::MeltingPoint, &[], Role::Selectable),
+    fitted(
+        Level::Structure,
+        Property::CriticalTemperature,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::CriticalTemperature,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    additive(
+        Property::CriticalTemperature,
+        &[Property::BoilingPoint],
+        Role::Selectable,
+    ),
+    fitted(
+        Level::Structure,
+        Property::CriticalPressure,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::CriticalPressure,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    additive(Property::CriticalPressure, &[], Role::Selectable),
+    fitted(
+        Level::Structure,
+        Property::CriticalVolume,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::CriticalVolume,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    additive(Property::CriticalVolume, &[], Role::Selectable),
     relation(
         VaporPressureMethod::AmbroseWalton.id(),
         Property::AcentricFactor,
@@ -133,12 +204,19 @@ pub const METHODS: &[Method] = &[
         CRITICAL_POINT,
         Role::Selectable,
     ),
+    fitted(
+        Level::Structure,
+        Property::LiquidDensity,
+        &[],
+        Role::Default,
+    ),
+    fitted(Level::Count, Property::LiquidDensity, &[], Role::Selectable),
     relation(
         LiquidDensityMethod::TynCalus.id(),
         Property::LiquidDensity,
         TYN_CALUS,
         CRITICAL_POINT_AND_VOLUME,
-        Role::Default,
+        Role::Selectable,
     ),
     relation(
         LiquidDensityMethod::RackettYamadaGunn.id(),
@@ -182,12 +260,83 @@ pub const METHODS: &[Method] = &[
         CRITICAL_POINT,
         Role::Selectable,
     ),
-    additive(Property::EnthalpyOfVaporization, &[]),
-    additive(Property::EnthalpyOfFusion, &[]),
-    additive(Property::IdealGasEnthalpyOfFormation, &[]),
-    additive(Property::IdealGasGibbsEnergyOfFormation, &[]),
-    additive(Property::IdealGasHeatCapacity, &[]),
-    additive(Property::LiquidViscosity, &[]),
+    fitted(
+        Level::Structure,
+        Property::EnthalpyOfVaporization,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::EnthalpyOfVaporization,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    additive(Property::EnthalpyOfVaporization, &[], Role::Selectable),
+    fitted(
+        Level::Structure,
+        Property::EnthalpyOfVaporizationAt298,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::EnthalpyOfVaporizationAt298,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    relation(
+        WATSON,
+        Property::EnthalpyOfVaporizationAt298,
+        "Watson, Ind. Eng. Chem. 35 (1943) 398-406",
+        &[
+            Property::BoilingPoint,
+            Property::CriticalTemperature,
+            Property::EnthalpyOfVaporization,
+        ],
+        Role::Selectable,
+    ),
+    additive(Property::EnthalpyOfFusion, &[], Role::Default),
+    fitted(
+        Level::Structure,
+        Property::IdealGasEnthalpyOfFormation,
+        &[],
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::IdealGasEnthalpyOfFormation,
+        &[],
+        Role::Selectable,
+    ),
+    additive(Property::IdealGasEnthalpyOfFormation, &[], Role::Selectable),
+    additive(Property::IdealGasGibbsEnergyOfFormation, &[], Role::Default),
+    additive(Property::IdealGasHeatCapacity, &[], Role::Default),
+    fitted(
+        Level::Structure,
+        Property::LiquidViscosity,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::LiquidViscosity,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    additive(Property::LiquidViscosity, &[], Role::Selectable),
+    fitted(
+        Level::Structure,
+        Property::SurfaceTension,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::SurfaceTension,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
     Method {
         id: SASTRI_RAO,
         property: Property::SurfaceTension,
@@ -195,8 +344,20 @@ pub const METHODS: &[Method] = &[
         needs: CRITICAL_POINT,
         // Its class constants ask for alcohol and acid groups.
         needs_groups: true,
-        role: Role::Default,
+        role: Role::Selectable,
     },
+    fitted(
+        Level::Structure,
+        Property::FlashPoint,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::FlashPoint,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
     relation(
         CATOIRE_NAUDET,
         Property::FlashPoint,
@@ -207,7 +368,55 @@ pub const METHODS: &[Method] = &[
             Property::CriticalTemperature,
             Property::EnthalpyOfVaporization,
         ],
+        Role::Selectable,
+    ),
+    fitted(
+        Level::Structure,
+        Property::HansenDispersion,
+        BOILING_POINT_AND_DENSITY,
         Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::HansenDispersion,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    fitted(
+        Level::Structure,
+        Property::HansenPolar,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::HansenPolar,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    fitted(
+        Level::Structure,
+        Property::HansenHydrogenBonding,
+        BOILING_POINT_AND_DENSITY,
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::HansenHydrogenBonding,
+        BOILING_POINT_AND_DENSITY,
+        Role::Selectable,
+    ),
+    fitted(
+        Level::Structure,
+        Property::LogPOctanolWater,
+        &[],
+        Role::Default,
+    ),
+    fitted(
+        Level::Count,
+        Property::LogPOctanolWater,
+        &[],
+        Role::Selectable,
     ),
 ];
 

@@ -18,6 +18,7 @@ pub mod corresponding_states;
 mod error;
 mod estimates;
 mod facts;
+pub mod fitted;
 pub mod joback;
 mod method;
 

@@ -141,6 +141,8 @@ pub struct Estimate {
     pub flags: Flags,
     /// Published source of a measured value.
     pub source: Option<Arc<str>>,
+    /// What in this molecule makes an estimate doubtful, in words.
+    pub note: Option<Arc<str>>,
 }
 
 impl Estimate {
@@ -154,6 +156,7 @@ impl Estimate {
             status: Status::Estimated,
             flags: Flags::NONE,
             source: None,
+            note: None,
         }
     }
 

@@ -54,11 +54,13 @@ pub enum Property {
     HeatCapacityChangeOfFusion,
     /// Evaporation rate of a film against that of n-butyl acetate, which is 1.
     RelativeEvaporationRate,
+    /// Enthalpy of vaporization at 298.15 K.
+    EnthalpyOfVaporizationAt298,
 }
 
 impl Property {
     /// How many properties there are; the length of [`Property::ALL`].
-    pub const COUNT: usize = 23;
+    pub const COUNT: usize = 24;
 
     /// Every property, in display order; `ALL[p as usize] == p`.
     pub const ALL: [Self; Self::COUNT] = [
@@ -85,6 +87,7 @@ impl Property {
         Self::LogPOctanolWater,
         Self::HeatCapacityChangeOfFusion,
         Self::RelativeEvaporationRate,
+        Self::EnthalpyOfVaporizationAt298,
     ];
 
     /// The name used in briefs, CSV and JSON.
@@ -113,6 +116,7 @@ impl Property {
             Self::LogPOctanolWater => "log_p_octanol_water",
             Self::HeatCapacityChangeOfFusion => "heat_capacity_change_of_fusion",
             Self::RelativeEvaporationRate => "relative_evaporation_rate",
+            Self::EnthalpyOfVaporizationAt298 => "enthalpy_of_vaporization_298",
         }
     }
 
@@ -136,6 +140,7 @@ impl Property {
             }
             Self::LiquidDensity => Dimension::Density,
             Self::EnthalpyOfVaporization
+            | Self::EnthalpyOfVaporizationAt298
             | Self::EnthalpyOfFusion
             | Self::IdealGasEnthalpyOfFormation
             | Self::IdealGasGibbsEnergyOfFormation => Dimension::MolarEnergy,

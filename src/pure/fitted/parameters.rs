@@ -1,0 +1,538 @@
+//! The parameter files: read, written, and put to use.
+
+use std::fmt::Write as _;
+use std::str::FromStr;
+use std::sync::{Arc, OnceLock};
+
+use super::described::{Described, INPUTS, Known, PRODUCTS, SIZES};
+use super::error::ParameterError;
+use super::model::{
+    Model, NEAR, Prediction, Relatives, Scale, Supporting, has_new_kind_of_atom, similarity_f32,
+};
+use super::quantity::{Level, Quantity};
+use super::table::{EnvironmentEntry, EnvironmentTable};
+use crate::groups::environment::{EnvironmentCounts, EnvironmentKey, Order};
+use crate::quantity::Absent;
+
+/// A parameter file: its name for messages and its text.
+type File = (&'static str, &'static str);
+
+macro_rules! file {
+    ($name:literal) => {
+        (
+            concat!("estimates/", $name),
+            include_str!(concat!("../../../groups/estimates/", $name)),
+        )
+    };
+}
+
+const ENVIRONMENTS: File = file!("environments.csv");
+const MOLECULES: File = file!("molecules.csv");
+
+/// Files of the models at structure level, in the order of [`Quantity::ALL`].
+const STRUCTURE: [File; Quantity::COUNT] = [
+    file!("structure-boiling_point.csv"),
+    file!("structure-molar_volume.csv"),
+    file!("structure-critical_temperature.csv"),
+    file!("structure-critical_pressure.csv"),
+    file!("structure-critical_volume.csv"),
+    file!("structure-enthalpy_of_vaporization_298.csv"),
+    file!("structure-enthalpy_of_vaporization.csv"),
+    file!("structure-flash_point.csv"),
+    file!("structure-melting_point.csv"),
+    file!("structure-liquid_viscosity.csv"),
+    file!("structure-surface_tension.csv"),
+    file!("structure-hansen_dispersion.csv"),
+    file!("structure-hansen_polar.csv"),
+    file!("structure-hansen_hydrogen_bonding.csv"),
+    file!("structure-log_p_octanol_water.csv"),
+    file!("structure-ideal_gas_enthalpy_of_formation.csv"),
+];
+
+/// Files of the models at count level, in the order of [`Quantity::ALL`].
+const COUNT: [File; Quantity::COUNT] = [
+    file!("count-boiling_point.csv"),
+    file!("count-molar_volume.csv"),
+    file!("count-critical_temperature.csv"),
+    file!("count-critical_pressure.csv"),
+    file!("count-critical_volume.csv"),
+    file!("count-enthalpy_of_vaporization_298.csv"),
+    file!("count-enthalpy_of_vaporization.csv"),
+    file!("count-flash_point.csv"),
+    file!("count-melting_point.csv"),
+    file!("count-liquid_viscosity.csv"),
+    file!("count-surface_tension.csv"),
+    file!("count-hansen_dispersion.csv"),
+    file!("count-hansen_polar.csv"),
+    file!("count-hansen_hydrogen_bonding.csv"),
+    file!("count-log_p_octanol_water.csv"),
+    file!("count-ideal_gas_enthalpy_of_formation.csv"),
+];
+
+const SOUND: &str = "built-in parameter files are sound (tested)";
+
+/// The share of the molecules from which on an environment is kept for every one
+/// of them, which is faster to go through than a list.
+const DENSE_SHARE: f64 = 0.15;
+
+/// The molecules of the fit, as far as distances to them go.
+#[derive(Clone, Debug, Default)]
+pub struct Support {
+    /// Squared length of each molecule's coordinates.
+    squares: Vec<f32>,
+    /// How the coordinates of an environment are kept, by position.
+    coordinates: Vec<Coordinates>,
+}
+
+/// The coordinates of one environment.
+#[derive(Clone, Debug)]
+enum Coordinates {
+    /// Of every molecule.
+    Dense(Vec<f32>),
+    /// Of the molecules that have it.
+    Sparse(Vec<(u32, f32)>),
+}
+
+impl Support {
+    /// Collects the coordinates of molecules; `molecules` are in the order of their numbers.
+    pub fn new(table: &EnvironmentTable, molecules: &[Described]) -> Self {
+        let mut lists: Vec<Vec<(u32, f32)>> = vec![Vec::new(); table.entries().len()];
+        let mut squares = Vec::with_capacity(molecules.len());
+        for (number, molecule) in molecules.iter().enumerate() {
+            let mut square = 0.0;
+            molecule.each_coordinate(table, |position, coordinate| {
+                square += coordinate * coordinate;
+                lists[position as usize].push((number as u32, coordinate));
+            });
+            squares.push(square);
+        }
+        let dense_from = (DENSE_SHARE * molecules.len() as f64) as usize;
+        let coordinates = lists
+            .into_iter()
+            .map(|list| {
+                if list.len() <= dense_from {
+                    return Coordinates::Sparse(list);
+                }
+                let mut dense = vec![0.0; molecules.len()];
+                for (molecule, coordinate) in list {
+                    dense[molecule as usize] = coordinate;
+                }
+                Coordinates::Dense(dense)
+            })
+            .collect();
+        Self {
+            squares,
+            coordinates,
+        }
+    }
+
+    /// Squared distance of a molecule to every one of the fit.
+    pub fn squared_distances_into(
+        &self,
+        table: &EnvironmentTable,
+        described: &Described,
+        squared: &mut Vec<f32>,
+    ) {
+        squared.clear();
+        squared.extend_from_slice(&self.squares);
+        let mut own = 0.0;
+        described.each_coordinate(table, |position, coordinate| {
+            own += coordinate * coordinate;
+            let twice = -2.0 * coordinate;
+            match &self.coordinates[position as usize] {
+                Coordinates::Dense(theirs) => {
+                    for (squared, theirs) in squared.iter_mut().zip(theirs) {
+                        *squared += twice * theirs;
+                    }
+                }
+                Coordinates::Sparse(theirs) => {
+                    for &(molecule, theirs) in theirs {
+                        squared[molecule as usize] += twice * theirs;
+                    }
+                }
+            }
+        });
+        for distance in squared.iter_mut() {
+            *distance = (*distance + own).max(0.0);
+        }
+    }
+}
+
+/// The fitted estimates with their parameters.
+///
+/// Files are read when they are first asked for.
+#[derive(Debug)]
+pub struct Fitted {
+    table: EnvironmentTable,
+    support: OnceLock<Support>,
+    structure: [OnceLock<Model>; Quantity::COUNT],
+    count: [OnceLock<Model>; Quantity::COUNT],
+}
+
+impl Fitted {
+    /// The estimates that are built in.
+    pub fn built_in() -> Self {
+        Self {
+            table: read_environments(ENVIRONMENTS.0, ENVIRONMENTS.1).expect(SOUND),
+            support: OnceLock::new(),
+            structure: [const { OnceLock::new() }; Quantity::COUNT],
+            count: [const { OnceLock::new() }; Quantity::COUNT],
+        }
+    }
+
+    /// The files, for a fingerprint.
+    pub fn texts() -> impl Iterator<Item = (&'static str, &'static str)> {
+        [ENVIRONMENTS, MOLECULES]
+            .into_iter()
+            .chain(STRUCTURE)
+            .chain(COUNT)
+    }
+
+    /// The environments of the fit.
+    pub fn table(&self) -> &EnvironmentTable {
+        &self.table
+    }
+
+    /// The file of a model: what its head says of data and cross-validation.
+    pub fn text(quantity: Quantity, level: Level) -> (&'static str, &'static str) {
+        match level {
+            Level::Structure => STRUCTURE[quantity as usize],
+            Level::Count => COUNT[quantity as usize],
+        }
+    }
+
+    /// A model.
+    pub fn model(&self, quantity: Quantity, level: Level) -> &Model {
+        let models = match level {
+            Level::Structure => &self.structure,
+            Level::Count => &self.count,
+        };
+        models[quantity as usize].get_or_init(|| {
+            let (file, text) = Self::text(quantity, level);
+            read_model(file, text, &self.table, quantity, level).expect(SOUND)
+        })
+    }
+
+    fn support(&self) -> &Support {
+        self.support
+            .get_or_init(|| read_molecules(MOLECULES.0, MOLECULES.1, &self.table).expect(SOUND))
+    }
+
+    /// Looks a molecule up; the distances to the molecules of the fit are left to be
+    /// found when a model first asks for them.
+    pub fn describe(&self, counts: &EnvironmentCounts, described: &mut FittedInput) {
+        described.molecule.fill(&self.table, counts);
+        described.similarities.clear();
+    }
+
+    /// The value of a quantity with its interval.
+    ///
+    /// `known` holds what the quantity rests on; it may be `None` for those
+    /// that rest on nothing.
+    ///
+    /// # Errors
+    ///
+    /// The molecule has no environments (too large), an input is missing, or
+    /// the sum is outside what the closing function takes.
+    pub fn predict(
+        &self,
+        quantity: Quantity,
+        level: Level,
+        input: &mut FittedInput,
+        known: Option<Known>,
+    ) -> Result<Prediction, Absent> {
+        let method = level.id();
+        if input.molecule.found.is_empty() {
+            return Err(Absent::OutsideDomain {
+                method,
+                what: "the molecule is larger than anything the method was fitted on",
+            });
+        }
+        let model = self.model(quantity, level);
+        if has_new_kind_of_atom(&self.table, &input.molecule, &model.occurrences) {
+            return Err(Absent::OutsideDomain {
+                method,
+                what: "the molecule has a kind of atom that no molecule of the fit has",
+            });
+        }
+        let mut sum = model.linear(&self.table, &input.molecule, known);
+        let mut relatives = Relatives::unknown();
+        if level == Level::Structure {
+            if input.similarities.is_empty() {
+                let support = self.support();
+                support.squared_distances_into(
+                    &self.table,
+                    &input.molecule,
+                    &mut input.similarities,
+                );
+                similarities(&mut input.similarities, &mut input.relatives);
+            }
+            let (correction, most_similar) = model.correction(&input.similarities);
+            sum += correction;
+            relatives = model.relatives(&input.relatives, most_similar);
+        }
+        let sum = quantity.settled(sum);
+        let rarity = model.rarity(&self.table, &input.molecule);
+        let signs = Scale::signs(&input.molecule, rarity, &relatives);
+        let half = model.scale.half_width(&signs);
+        let closed = |sum: f64| quantity.closed(sum, input.molecule.heavy_atoms, known);
+        let outside = || Absent::OutsideDomain {
+            method,
+            what: "the sum of its parts is outside what the closing function takes",
+        };
+        let value = closed(sum).ok_or_else(outside)?;
+        // an end that the closing function does not take lies where it takes nothing any more
+        let low = closed(sum - half).unwrap_or(0.0);
+        let high = closed(sum + half).ok_or_else(outside)?;
+        Ok(Prediction {
+            value,
+            interval: (low, high),
+            nearest: relatives.nearest(),
+            unknown_atoms: model.has_unknown_atoms(&self.table, &input.molecule),
+        })
+    }
+}
+
+/// A molecule as [`Fitted`] sees it, with scratch memory.
+#[derive(Clone, Debug, Default)]
+pub struct FittedInput {
+    /// Its environments.
+    pub molecule: Described,
+    /// Similarity to every molecule of the fit; empty until a model asks.
+    similarities: Vec<f32>,
+    /// Molecules near enough to count as relatives, with their squared distances.
+    relatives: Vec<(u32, f32)>,
+}
+
+/// Puts similarities in the place of squared distances and lists the near molecules.
+fn similarities(squared: &mut [f32], near: &mut Vec<(u32, f32)>) {
+    near.clear();
+    for (number, &squared) in (0..).zip(squared.iter()) {
+        if squared < NEAR {
+            near.push((number, squared));
+        }
+    }
+    for squared in squared.iter_mut() {
+        *squared = similarity_f32(*squared);
+    }
+}
+
+// ------------------------------------------------------------------- reading
+
+/// Lines that are no part of the head, with their numbers.
+fn lines(text: &str) -> impl Iterator<Item = (usize, &str)> {
+    text.lines()
+        .enumerate()
+        .map(|(at, line)| (at + 1, line))
+        .filter(|(_, line)| !line.starts_with('#') && !line.is_empty())
+}
+
+fn fault(file: &str, line: usize, what: impl Into<String>) -> ParameterError {
+    ParameterError {
+        file: file.to_owned(),
+        line,
+        what: what.into(),
+    }
+}
+
+fn number<T: FromStr>(file: &str, line: usize, cell: Option<&str>) -> Result<T, ParameterError> {
+    let cell = cell.ok_or_else(|| fault(file, line, "has too few cells"))?;
+    cell.parse()
+        .map_err(|_| fault(file, line, format!("`{cell}` is not a number")))
+}
+
+fn order_id(order: Order) -> &'static str {
+    match order {
+        Order::Atom => "atom",
+        Order::First => "first",
+        Order::Second => "second",
+        Order::Shape => "shape",
+        Order::Pair => "pair",
+    }
+}
+
+fn read_environments(file: &str, text: &str) -> Result<EnvironmentTable, ParameterError> {
+    let mut entries = Vec::new();
+    for (line, row) in lines(text).skip(1) {
+        let mut cells = row.splitn(6, ',');
+        let key = cells.next().unwrap_or_default();
+        let key = u64::from_str_radix(key, 16)
+            .map_err(|_| fault(file, line, format!("`{key}` is not a key")))?;
+        let order = cells.next().unwrap_or_default();
+        let order = [
+            Order::Atom,
+            Order::First,
+            Order::Second,
+            Order::Shape,
+            Order::Pair,
+        ]
+        .into_iter()
+        .find(|known| order_id(*known) == order)
+        .ok_or_else(|| fault(file, line, format!("`{order}` is not an order")))?;
+        entries.push(EnvironmentEntry {
+            key: EnvironmentKey(key),
+            order,
+            molecules: number(file, line, cells.next())?,
+            distance_weight: number(file, line, cells.next())?,
+            classes: number(file, line, cells.next())?,
+            words: Arc::from(cells.next().unwrap_or_default()),
+        });
+    }
+    Ok(EnvironmentTable::new(entries))
+}
+
+fn read_molecules(
+    file: &str,
+    text: &str,
+    table: &EnvironmentTable,
+) -> Result<Support, ParameterError> {
+    let mut molecules = Vec::new();
+    for (line, row) in lines(text).skip(1) {
+        let mut molecule = Described::default();
+        for pair in row.split(' ') {
+            let (position, count) = pair.split_once(':').unwrap_or((pair, "1"));
+            let position: u32 = number(file, line, Some(position))?;
+            if position as usize >= table.entries().len() {
+                return Err(fault(
+                    file,
+                    line,
+                    format!("there is no environment {position}"),
+                ));
+            }
+            molecule
+                .found
+                .push((position, number(file, line, Some(count))?));
+        }
+        molecules.push(molecule);
+    }
+    Ok(Support::new(table, &molecules))
+}
+
+/// Number of terms that [`Described::each_term`] may name.
+pub(super) fn term_count(table: &EnvironmentTable) -> usize {
+    2 * table.entries().len() + SIZES + 2 * PRODUCTS + INPUTS
+}
+
+fn read_model(
+    file: &str,
+    text: &str,
+    table: &EnvironmentTable,
+    quantity: Quantity,
+    level: Level,
+) -> Result<Model, ParameterError> {
+    let mut model = Model {
+        quantity,
+        level,
+        intercept: 0.0,
+        weights: vec![0.0; term_count(table)],
+        support: Vec::new(),
+        occurrences: vec![0; table.entries().len()],
+        scale: Scale::default(),
+        errors: Vec::new(),
+    };
+    for (line, row) in lines(text) {
+        let mut cells = row.split(',');
+        match cells.next().unwrap_or_default() {
+            "intercept" => model.intercept = number(file, line, cells.next())?,
+            "scale" => {
+                model.scale.factor = number(file, line, cells.next())?;
+                for weight in &mut model.scale.weights {
+                    *weight = number(file, line, cells.next())?;
+                }
+            }
+            "term" => {
+                let term: usize = number(file, line, cells.next())?;
+                let weight = number(file, line, cells.next())?;
+                *model
+                    .weights
+                    .get_mut(term)
+                    .ok_or_else(|| fault(file, line, format!("there is no term {term}")))? = weight;
+            }
+            "seen" => {
+                let position: usize = number(file, line, cells.next())?;
+                let molecules = number(file, line, cells.next())?;
+                *model.occurrences.get_mut(position).ok_or_else(|| {
+                    fault(file, line, format!("there is no environment {position}"))
+                })? = molecules;
+            }
+            "support" => {
+                model.support.push(Supporting {
+                    molecule: number(file, line, cells.next())?,
+                    part: number(file, line, cells.next())?,
+                    error: number(file, line, cells.next())?,
+                });
+            }
+            other => return Err(fault(file, line, format!("`{other}` is no kind of line"))),
+        }
+    }
+    model.index();
+    Ok(model)
+}
+
+// ------------------------------------------------------------------- writing
+
+/// The text of `environments.csv`; `head` are its facts.
+pub fn write_environments(head: &str, table: &EnvironmentTable) -> String {
+    let mut text = format!("{head}key,order,molecules,distance_weight,classes,words\n");
+    for entry in table.entries() {
+        let _ = writeln!(
+            text,
+            "{:016x},{},{},{},{},{}",
+            entry.key.0,
+            order_id(entry.order),
+            entry.molecules,
+            entry.distance_weight,
+            entry.classes,
+            entry.words
+        );
+    }
+    text
+}
+
+/// The text of `molecules.csv`.
+pub fn write_molecules(head: &str, table: &EnvironmentTable, molecules: &[Described]) -> String {
+    let mut text = format!("{head}environments\n");
+    for molecule in molecules {
+        let mut first = true;
+        for &(position, count) in &molecule.found {
+            if table.entries()[position as usize].distance_weight > 0.0 {
+                let gap = if first { "" } else { " " };
+                first = false;
+                let _ = match count {
+                    1.0 => write!(text, "{gap}{position}"),
+                    _ => write!(text, "{gap}{position}:{}", (count * 1e3).round() / 1e3),
+                };
+            }
+        }
+        text.push('\n');
+    }
+    text
+}
+
+/// The text of a model's file.
+pub fn write_model(head: &str, model: &Model) -> String {
+    let mut text = format!("{head}intercept,{}\n", model.intercept);
+    let _ = write!(text, "scale,{:.5}", model.scale.factor);
+    for weight in model.scale.weights {
+        let _ = write!(text, ",{weight:.5}");
+    }
+    text.push('\n');
+    for (term, weight) in model.weights.iter().enumerate() {
+        if *weight != 0.0 {
+            let _ = writeln!(text, "term,{term},{weight:.5e}");
+        }
+    }
+    for (position, molecules) in model.occurrences.iter().enumerate() {
+        if *molecules > 0 {
+            let _ = writeln!(text, "seen,{position},{molecules}");
+        }
+    }
+    for other in &model.support {
+        let _ = writeln!(
+            text,
+            "support,{},{:.4e},{:.2}",
+            other.molecule, other.part, other.error
+        );
+    }
+    text
+}
