@@ -29,6 +29,9 @@ pub(super) struct Arguments {
     /// Folder of your own measured data: substances.csv, measured.csv, vapor_pressure.csv, …
     #[arg(long, global = true, value_name = "DIR")]
     pub(super) data: Option<PathBuf>,
+    /// What estimates rest on where nothing is measured: structure, count or joback-reid
+    #[arg(long, global = true, value_name = "LEVEL", default_value = "structure")]
+    pub(super) estimates: String,
 }
 
 /// The commands.
@@ -209,8 +212,11 @@ pub(super) enum TablesWhat {
         /// A UNIFAC model
         model: String,
     },
-    /// Methods for pure-component properties
-    Methods,
+    /// Methods for pure-component properties, or the errors of the fitted ones for one property
+    Methods {
+        /// A property as in briefs
+        property: Option<String>,
+    },
     /// Figures that targets can be set on
     Figures,
     /// Built-in substances, or one in full

@@ -8,7 +8,7 @@ use super::exit::Exit;
 use super::molecules::{Asked, for_each};
 use super::output::{self, Notes};
 use crate::data::Substance;
-use crate::evaluate::{Families, Family, Library, Profiler, properties};
+use crate::evaluate::{EstimateLevel, Families, Family, Library, Profiler, properties};
 use crate::quantity::Property;
 use crate::quantity::unit::{si_symbol, to_table};
 use crate::report::{FamilyRow, RowStream, family_text, with_summary};
@@ -59,7 +59,7 @@ pub(super) fn run(
                     .iter()
                     .flatten()
                     .try_for_each(|row| stream.add(row))?,
-                None => show(&asked, &family, &by_property)?,
+                None => show(&asked, &family, &by_property, library.level())?,
             }
             Ok(())
         },
@@ -171,6 +171,7 @@ fn show(
     asked: &Asked,
     family: &Result<Family<'_>, String>,
     by_property: &[Vec<FamilyRow<'_>>],
+    level: EstimateLevel,
 ) -> Result<(), CliError> {
     let mut out = output::stdout();
     let name = match &*asked.name {
@@ -191,6 +192,13 @@ fn show(
             for (property, rows) in COMPARED.into_iter().zip(by_property) {
                 writeln!(out)?;
                 out.write_all(family_text(property, rows, output::width()).as_bytes())?;
+            }
+            if level != EstimateLevel::Joback {
+                writeln!(
+                    out,
+                    "\nMany of these values are among those that the estimates were fitted to: on new molecules expect\n\
+                     the errors of `groupsmith tables methods PROPERTY`, or compare with --estimates joback-reid."
+                )?;
             }
         }
     }

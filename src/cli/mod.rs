@@ -60,7 +60,7 @@ pub fn main() -> ExitCode {
 
 fn run(arguments: &Arguments) -> Result<Exit, CliError> {
     let notes = output::Notes::new(arguments.quiet);
-    let sources = Sources::new(arguments, notes);
+    let sources = Sources::new(arguments, notes)?;
     match &arguments.command {
         Command::Breakdown(command) => breakdown::run(command, &sources.library(None)?, notes),
         Command::Properties(command) => properties::run(command, &sources.library(None)?, notes),

@@ -7,9 +7,11 @@ use super::error::CliError;
 use super::exit::Exit;
 use super::{output, pair_tables};
 use crate::data::{HansenSphere, Substance, Substances};
+use crate::evaluate::fitted_quantity;
 use crate::evaluate::{FIGURES, Library};
 use crate::groups::SetId;
 use crate::mixture::{ActivityModel, Interaction, ModelStatus, RESERVED_MODELS, Unifac};
+use crate::pure::fitted::{Fitted, Level, Quantity};
 use crate::pure::{METHODS, Role};
 use crate::quantity::unit::{self, nearest, si_symbol, table_text};
 use crate::quantity::{Dimension, Property};
@@ -25,7 +27,10 @@ pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, Cli
             second,
         }) => pair(library, model, *first, *second)?,
         Some(TablesWhat::Coverage { model }) => coverage(library, model)?,
-        Some(TablesWhat::Methods) => methods(),
+        Some(TablesWhat::Methods { property: None }) => methods(),
+        Some(TablesWhat::Methods {
+            property: Some(property),
+        }) => fitted_errors(property)?,
         Some(TablesWhat::Figures) => figures(),
         Some(TablesWhat::Substances { name }) => substances(library, name.as_deref())?,
         Some(TablesWhat::Pairs { first, second }) => {
@@ -333,6 +338,76 @@ fn methods() -> String {
         ));
     }
     text
+}
+
+/// What cross-validation found for the fitted estimates of a property, by family and size.
+fn fitted_errors(property: &str) -> Result<String, CliError> {
+    let known = Property::ALL.map(Property::id);
+    let found = Property::from_id(property).ok_or_else(|| {
+        CliError::Usage(format!(
+            "there is no property `{property}`{}\n  `groupsmith tables methods` lists them",
+            meant(property, known)
+        ))
+    })?;
+    let quantities: &[Quantity] = match found {
+        Property::LiquidDensity => &[Quantity::MolarVolume],
+        Property::VaporPressure | Property::AcentricFactor => &[
+            Quantity::BoilingPoint,
+            Quantity::CriticalTemperature,
+            Quantity::CriticalPressure,
+        ],
+        found => match fitted_quantity(found) {
+            Some(quantity) => &Quantity::ALL[quantity as usize..=quantity as usize],
+            None => {
+                return Ok(format!(
+                    "{property} is not fitted; `groupsmith tables methods` tells what gives it\n"
+                ));
+            }
+        },
+    };
+    let mut text = String::new();
+    for &quantity in quantities {
+        for level in Level::ALL {
+            text.push_str(&format!("{} at {}\n", quantity.id(), level.id()));
+            let mut table = TextTable::new([
+                TextColumn::text("  class"),
+                TextColumn::number("molecules", ""),
+                TextColumn::number("mean", ""),
+                TextColumn::number("median", ""),
+                TextColumn::number("90th percentile", ""),
+                TextColumn::number("bias", ""),
+                TextColumn::text("unit"),
+                TextColumn::number("in the interval", ""),
+            ]);
+            let (_, file) = Fitted::text(quantity, level);
+            for line in file.lines() {
+                let Some(cells) = line.strip_prefix("# error: ") else {
+                    continue;
+                };
+                if let [class, unit, molecules, mean, median, p90, bias, coverage] =
+                    cells.split(',').collect::<Vec<_>>()[..]
+                {
+                    table.add([
+                        format!("  {class}"),
+                        molecules.into(),
+                        mean.into(),
+                        median.into(),
+                        p90.into(),
+                        bias.into(),
+                        unit.into(),
+                        coverage.into(),
+                    ]);
+                }
+            }
+            text.push_str(&table.render(output::width()));
+            text.push('\n');
+        }
+    }
+    text.push_str(
+        "Absolute errors of five-fold cross-validation on the project's reference data, no molecule,\n\
+         stereoisomer or constitution on both sides; measured data off.\n",
+    );
+    Ok(text)
 }
 
 fn figures() -> String {

@@ -9,7 +9,7 @@ use super::error::CliError;
 use super::output::Notes;
 use super::tables::meant;
 use crate::brief::Brief;
-use crate::evaluate::{Library, USER_TABLES, UserTable};
+use crate::evaluate::{EstimateLevel, Library, USER_TABLES, UserTable};
 use crate::mixture::Slips;
 
 /// Rooms of [`USER_TABLES`] whose files may lie flat in a folder of measured data.
@@ -18,6 +18,7 @@ const DATA_ROOMS: [&str; 2] = ["substances", "pairs"];
 /// Where the tables of a command come from, as its arguments say.
 pub(super) struct Sources<'a> {
     slips: Slips,
+    level: EstimateLevel,
     tables: Option<&'a Path>,
     data: Option<&'a Path>,
     notes: Notes,
@@ -30,8 +31,21 @@ struct DataFolder {
 }
 
 impl<'a> Sources<'a> {
-    pub(super) fn new(arguments: &'a Arguments, notes: Notes) -> Self {
-        Self {
+    /// # Errors
+    ///
+    /// There is no such level of estimates.
+    pub(super) fn new(arguments: &'a Arguments, notes: Notes) -> Result<Self, CliError> {
+        let level = EstimateLevel::from_id(&arguments.estimates).ok_or_else(|| {
+            let known = EstimateLevel::ALL.map(EstimateLevel::id);
+            CliError::Usage(format!(
+                "there is no level of estimates `{}`{}\n  levels: {}",
+                arguments.estimates,
+                meant(&arguments.estimates, known),
+                known.join(", ")
+            ))
+        })?;
+        Ok(Self {
+            level,
             slips: match arguments.as_circulated {
                 true => Slips::AsCirculated,
                 false => Slips::Corrected,
@@ -39,7 +53,7 @@ impl<'a> Sources<'a> {
             tables: arguments.tables.as_deref(),
             data: arguments.data.as_deref(),
             notes,
-        }
+        })
     }
 
     /// Whether the command line names a folder of measured data.
@@ -51,14 +65,16 @@ impl<'a> Sources<'a> {
     pub(super) fn library(&self, brief: Option<&Brief>) -> Result<Library, CliError> {
         let tables = self.user_tables(brief)?;
         if tables.is_empty() {
-            return Ok(Library::built_in(self.slips));
+            return Ok(Library::built_in(self.slips).with_level(self.level));
         }
-        Library::with_user_tables(self.slips, tables.clone()).map_err(|first| {
-            CliError::Usage(match self.faults_by_room(&tables).as_slice() {
-                [] => first.to_string(),
-                faults => faults.join("\n"),
+        Library::with_user_tables(self.slips, tables.clone())
+            .map(|library| library.with_level(self.level))
+            .map_err(|first| {
+                CliError::Usage(match self.faults_by_room(&tables).as_slice() {
+                    [] => first.to_string(),
+                    faults => faults.join("\n"),
+                })
             })
-        })
     }
 
     /// What is wrong with the tables of each room, so that a fault in one does

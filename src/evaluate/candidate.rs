@@ -5,8 +5,9 @@ use smallvec::SmallVec;
 use super::component::{VaporCurve, boiling_range_k};
 use super::dilution::{MeasuredDilutions, origin};
 use super::figure::FigureKind;
+use super::fitted::Wanted;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
-use super::profile::{Known, Profile, Profiler, properties_with};
+use super::profile::{Known, Profile, Profiler, fitted_values, properties_from};
 use super::solution::with_liquid;
 use super::uncertainty::{Judged, Judgement, Spread, Term};
 use crate::chem::SmilesError;
@@ -181,10 +182,11 @@ impl Plan {
             .filter(|_| self.use_measured);
         let own = if self.use_measured { own } else { &[] };
         estimates.clear();
+        let fitted = fitted_values(&self.library, profile, known, own, Wanted::ALL);
         estimates.extend(
             self.temperatures
                 .iter()
-                .map(|&t| properties_with(&self.library, profile, known, own, t)),
+                .map(|&t| properties_from(&self.library, profile, known, own, &fitted, t)),
         );
         self.measured_dilutions(profile, measured);
         dilute.clear();

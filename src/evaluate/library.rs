@@ -5,6 +5,7 @@ use std::sync::{Arc, OnceLock};
 use thiserror::Error;
 
 use super::error::UnknownMolecule;
+use super::fitted::EstimateLevel;
 use super::profile::{Known, Profile, Profiler};
 use crate::chem::Keys;
 use crate::data::pairs::{PairTables, Pairs};
@@ -14,6 +15,7 @@ use crate::mixture::{
     ActivityErrors, ActivityModel, ErrorModel, Slips, TableFile, Unifac, UnifacOverlay,
 };
 use crate::pure::PureMethods;
+use crate::pure::fitted::Fitted;
 use crate::quantity::Absent;
 use crate::table::TableError;
 
@@ -80,6 +82,8 @@ pub struct Library {
     pairs: Pairs,
     user: Vec<UserTable>,
     slips: Slips,
+    level: EstimateLevel,
+    fitted: OnceLock<Fitted>,
     /// That a set leaves atoms out, without saying which: finding the words takes
     /// longer than the breakdown, so it waits until somebody reads them.
     not_covered: [Absent; SetId::ALL.len()],
@@ -107,6 +111,8 @@ impl Library {
             pairs: Pairs::default(),
             user: Vec::new(),
             slips,
+            level: EstimateLevel::default(),
+            fitted: OnceLock::new(),
             not_covered: SetId::ALL.map(|set| Absent::NotCovered {
                 set: set.id(),
                 what: "some atoms are in no group".into(),
@@ -251,6 +257,22 @@ impl Library {
         &self.pairs
     }
 
+    /// The same with other methods for what is not measured.
+    #[must_use]
+    pub fn with_level(self, level: EstimateLevel) -> Self {
+        Self { level, ..self }
+    }
+
+    /// Which methods estimate what is not measured.
+    pub fn level(&self) -> EstimateLevel {
+        self.level
+    }
+
+    /// The fitted estimates.
+    pub fn fitted(&self) -> &Fitted {
+        self.fitted.get_or_init(Fitted::built_in)
+    }
+
     /// How suspected slips are treated.
     pub fn slips(&self) -> Slips {
         self.slips
@@ -284,6 +306,9 @@ impl Library {
                 .into_iter()
                 .map(|file| (file.file, file.text)),
         );
+        for text in Fitted::texts() {
+            all.push(text);
+        }
         // By place: where the user keeps the folder does not matter.
         all.extend(
             self.user

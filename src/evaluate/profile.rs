@@ -3,11 +3,13 @@
 use smallvec::SmallVec;
 
 use super::Library;
+use super::fitted::{EstimateLevel, FittedValues, Wanted, fitted_beside};
 use crate::chem::{Canonicalizer, Keys, Molecule, Reader, SmilesError};
 use crate::data::Substance;
+use crate::groups::environment::{EnvironmentCounts, EnvironmentReader};
 use crate::groups::{Breakdown, Breaker, Coverage, GroupCounts, SetId};
 use crate::pure::{Estimates, Given, StructureFacts, estimate_all};
-use crate::quantity::{Absent, Estimate, Flag, Flags, Property};
+use crate::quantity::{Absent, Estimate, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
 
 /// A molecule with its canonical keys, its groups in every set, and its facts.
 #[derive(Clone, Debug, Default)]
@@ -20,6 +22,8 @@ pub struct Profile {
     pub counts: [GroupCounts; SetId::ALL.len()],
     /// How far each set covers the molecule.
     pub coverage: Coverages,
+    /// Atom environments, which the fitted estimates rest on.
+    pub environments: EnvironmentCounts,
     /// Facts that travel with the counts.
     pub facts: StructureFacts,
     /// Whether its vapor associates (a carboxylic acid).
@@ -63,6 +67,7 @@ pub struct Profiler {
     reader: Reader,
     canonicalizer: Canonicalizer,
     breaker: Breaker,
+    environments: EnvironmentReader,
 }
 
 impl Default for Profiler {
@@ -78,6 +83,7 @@ impl Profiler {
             reader: Reader::new(),
             canonicalizer: Canonicalizer::new(),
             breaker: Breaker::new(),
+            environments: EnvironmentReader::new(),
         }
     }
 
@@ -107,6 +113,8 @@ impl Profiler {
         self.reader.read_into(smiles, &mut profile.molecule)?;
         let molecule = &profile.molecule;
         self.canonicalizer.keys_into(molecule, &mut profile.keys);
+        self.environments
+            .counts_into(molecule, &mut profile.environments);
         self.breaker.load(molecule);
         for set in SetId::ALL {
             let counts = &mut profile.counts[set as usize];
@@ -198,15 +206,69 @@ pub fn properties_with(
     own: &[(Property, Estimate)],
     temperature_k: f64,
 ) -> Estimates {
-    let counts = profile.complete_counts(library, SetId::Joback);
-    let given = given_values(measured_values(known, temperature_k), own, temperature_k);
-    estimate_all(
+    properties_wanted(library, profile, known, own, temperature_k, Wanted::ALL)
+}
+
+/// The same; what is not wanted may be absent or less well estimated.
+pub(super) fn properties_wanted(
+    library: &Library,
+    profile: &Profile,
+    known: Option<Known<'_>>,
+    own: &[(Property, Estimate)],
+    temperature_k: f64,
+    wanted: Wanted,
+) -> Estimates {
+    let fitted = fitted_values(library, profile, known, own, wanted);
+    properties_from(library, profile, known, own, &fitted, temperature_k)
+}
+
+/// Fitted estimates of a molecule beside what is measured of it; they hold for every temperature.
+pub(super) fn fitted_values(
+    library: &Library,
+    profile: &Profile,
+    known: Option<Known<'_>>,
+    own: &[(Property, Estimate)],
+    wanted: Wanted,
+) -> FittedValues {
+    let t = REFERENCE_TEMPERATURE_K;
+    let given = given_values(measured_values(known, t), own, t);
+    fitted_beside(library, profile, wanted, given)
+}
+
+/// Every property of a molecule at a temperature, its fitted estimates given.
+pub(super) fn properties_from(
+    library: &Library,
+    profile: &Profile,
+    known: Option<Known<'_>>,
+    own: &[(Property, Estimate)],
+    fitted: &FittedValues,
+    temperature_k: f64,
+) -> Estimates {
+    let mut counts = profile.complete_counts(library, SetId::Joback);
+    // what the fits leave out for its size is not for an older method either
+    if library.level() != EstimateLevel::Joback && profile.environments.is_empty() {
+        counts = Err(Absent::OutsideDomain {
+            method: library.level().id(),
+            what: "the molecule is larger than anything the method was fitted on",
+        });
+    }
+    let mut given = given_values(measured_values(known, temperature_k), own, temperature_k);
+    given.extend(fitted.values.iter().cloned());
+    let mut all = estimate_all(
         library.methods(),
         counts.as_ref().map(|counts| *counts),
         &profile.facts,
         Given(&given),
         temperature_k,
-    )
+    );
+    // where nothing else answers, the reason of the fit is the one that tells most
+    for (property, reason) in &fitted.refused {
+        let outcome = &mut all[*property as usize];
+        if outcome.is_err() {
+            *outcome = Err(reason.clone());
+        }
+    }
+    all
 }
 
 /// Own values and those of the tables in the order in which they count.

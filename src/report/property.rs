@@ -74,6 +74,12 @@ impl<'a> PropertyRow<'a> {
                     }
                     detail.push_str(source);
                 }
+                if let Some(note) = &estimate.note {
+                    if !detail.is_empty() {
+                        detail.push_str("; ");
+                    }
+                    detail.push_str(note);
+                }
                 let interval = estimate.interval;
                 Self {
                     line,
@@ -171,6 +177,8 @@ pub fn property_text<'a>(
     let mut table = TextTable::new([
         TextColumn::text("property"),
         TextColumn::number("value", ""),
+        TextColumn::number("low", ""),
+        TextColumn::number("high", ""),
         TextColumn::text("unit"),
         TextColumn::number("at", "K"),
         TextColumn::text("by"),
@@ -188,6 +196,9 @@ pub fn property_text<'a>(
         };
         let value =
             shown(row.value).map_or("–".into(), |value| digits_for_reading(value, dimension));
+        let end = |value: Option<f64>| {
+            shown(value).map_or(String::new(), |value| digits_for_reading(value, dimension))
+        };
         let estimate = shown(row.estimated_value);
         let (difference, percent) = match (row.value, row.difference) {
             (Some(measured), Some(difference)) => (
@@ -202,6 +213,8 @@ pub fn property_text<'a>(
         table.add([
             row.property.id().into(),
             value,
+            end(row.low),
+            end(row.high),
             symbol.into(),
             row.temperature_k.map(number::short).unwrap_or_default(),
             // A measured value says so in place of a method, an absent one in its detail.

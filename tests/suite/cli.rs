@@ -218,7 +218,11 @@ fn temperatures_may_lie_below_zero() {
 /// Water has no groups of Joback and Reid; its measured values serve.
 #[test]
 fn measured_values_serve_where_groups_do_not() {
-    let said = say(&["properties", "water", "--format", "csv"]);
+    let by_groups = |more: &[&str]| {
+        let water = ["properties", "water", "--estimates", "joback-reid"];
+        say(&[&water[..], &["--format", "csv"], more].concat())
+    };
+    let said = by_groups(&[]);
     let status = |said: &Said, property: &str| {
         let rows = csv_rows(&said.out);
         let row = rows.into_iter().find(|row| row[3] == property).unwrap();
@@ -238,17 +242,10 @@ fn measured_values_serve_where_groups_do_not() {
         ("absent".into(), "".into())
     );
 
-    let said = say(&["properties", "water", "--estimates-only", "--format", "csv"]);
+    let said = by_groups(&["--estimates-only"]);
     assert_eq!(status(&said, "boiling_point"), ("absent".into(), "".into()));
     assert_eq!(status(&said, "molar_mass").0, "estimated");
-    let said = say(&[
-        "properties",
-        "water",
-        "--temperature",
-        "20 degC",
-        "--format",
-        "csv",
-    ]);
+    let said = by_groups(&["--temperature", "20 degC"]);
     close(
         status(&said, "liquid_density").1.parse().unwrap(),
         998.2,
@@ -566,6 +563,8 @@ fn an_unpublished_pair_is_never_a_number() {
         "300 K",
         "--format",
         "csv",
+        "--estimates",
+        "joback-reid",
     ]);
     assert!(said.out.contains("CC#CB: atom "), "{}", said.out);
     assert_eq!(said.code, 1, "nothing could be answered: {}", said.out);
@@ -974,7 +973,11 @@ fn an_estimate_stands_beside_a_measured_value() {
         "estimated_method",
         "difference",
     ];
-    let said = say(&["properties", "acetone", "--format", "csv"]);
+    let by_groups = |more: &[&str]| {
+        let acetone = ["properties", "acetone", "--estimates", "joback-reid"];
+        say(&[&acetone[..], more].concat())
+    };
+    let said = by_groups(&["--format", "csv"]);
     let rows = csv_rows(&said.out);
     let boiling = cells_of(&rows, "boiling_point", &columns);
     // Joback and Reid print 322.11 K for acetone.
@@ -987,18 +990,12 @@ fn an_estimate_stands_beside_a_measured_value() {
     let hansen = cells_of(&rows, "hansen_polar", &columns);
     assert_eq!(hansen[1..], ["measured", "", "", ""]);
 
-    let said = say(&[
-        "properties",
-        "acetone",
-        "--estimates-only",
-        "--format",
-        "csv",
-    ]);
+    let said = by_groups(&["--estimates-only", "--format", "csv"]);
     let rows = csv_rows(&said.out);
     let boiling = cells_of(&rows, "boiling_point", &columns);
     assert_eq!(boiling, ["322.11", "estimated", "", "", ""]);
 
-    let said = say(&["properties", "acetone"]);
+    let said = by_groups(&[]);
     let line = |name: &str| {
         said.out
             .lines()

@@ -5,8 +5,8 @@ use std::sync::Arc;
 
 use groupsmith::brief::{Brief, Job};
 use groupsmith::evaluate::{
-    CATALOG, Library, MixtureComponent, Plan, PlanFault, Profiler, Scratch, StatedState, UserTable,
-    Verdict, describe_mixture, mole_fractions,
+    CATALOG, EstimateLevel, Library, MixtureComponent, Plan, PlanFault, Profiler, Scratch,
+    StatedState, UserTable, Verdict, describe_mixture, mole_fractions,
 };
 use groupsmith::mixture::{ActivityModel, Slips};
 use groupsmith::quantity::{Absent, Estimate, Flag, Outcome, Property, Status};
@@ -419,7 +419,7 @@ fn measured_values_can_be_left_out_for_candidates_only() {
     let mut scratch = Scratch::new();
     plan.evaluate(&mut scratch, "CCCCO").unwrap();
     let found = outcome(&plan, &scratch, "boiling_point").as_ref().unwrap();
-    assert_eq!(found.method, "joback-reid");
+    assert_eq!(found.method, "structure-level");
     // The keys keep theirs: the ratio of vapor pressures is there.
     assert!(outcome(&plan, &scratch, "relative_volatility_infinite_dilution").is_ok());
 }
@@ -527,7 +527,9 @@ fn a_table_of_the_user_changes_what_rests_on_it() {
 fn a_component_without_groups_is_named_in_every_reason() {
     let mixture =
         "components = [\"CC#CB\", \"water\"]\nfractions = [0.5, 0.5]\ntemperature = \"300 K\"\n";
-    let plan = plan_of(&library(), &brief(mixture, &["gamma_infinity_first_key"])).unwrap();
+    let built_in = Library::built_in(Slips::Corrected);
+    let library = Arc::new(built_in.with_level(EstimateLevel::Joback));
+    let plan = plan_of(&library, &brief(mixture, &["gamma_infinity_first_key"])).unwrap();
     let mut scratch = Scratch::new();
     plan.evaluate(&mut scratch, "CCO").unwrap();
     let reason = outcome(&plan, &scratch, "gamma_infinity_first_key")
@@ -548,7 +550,7 @@ fn a_component_without_groups_is_named_in_every_reason() {
         let mixture =
             format!("components = [\"CC#CB\", \"water\"]\nfractions = [0.5, 0.5]\n{state}\n");
         let faults =
-            plan_of(&library(), &brief(&mixture, &["gamma_infinity_first_key"])).unwrap_err();
+            plan_of(&library, &brief(&mixture, &["gamma_infinity_first_key"])).unwrap_err();
         assert_eq!(faults.len(), 1);
         assert_eq!(faults[0].place.unwrap().line, line);
         let told = faults[0].cause.to_string();

@@ -8,6 +8,7 @@ mod data;
 mod data_folder;
 mod evaluate;
 mod family;
+mod fitted;
 mod groups;
 mod independent;
 mod intervals;

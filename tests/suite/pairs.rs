@@ -272,9 +272,11 @@ proptest! {
     }
 
     /// Turned twice, parameters are what they were; turned once, the limits change places.
+    ///
+    /// Energies below -250 K would take ln gamma out of what a table may hold.
     #[test]
     fn turning_parameters_exchanges_the_limits(
-        a12 in -400.0..900.0f64, a21 in -400.0..900.0f64, t in 280.0..400.0f64, which in 0..4usize,
+        a12 in -250.0..900.0f64, a21 in -250.0..900.0f64, t in 280.0..400.0f64, which in 0..4usize,
     ) {
         let (model, rest) = [
             ("wilson,lambda12-lambda11", ",58.7,18.1,,,,"),

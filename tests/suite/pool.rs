@@ -135,7 +135,8 @@ fn measured_columns_go_before_the_tables() {
     assert_eq!(bench.screen(&["--threads", "1"]).code, 0);
     assert_eq!(bench.results(), results);
 
-    assert_eq!(bench.screen(&["--estimates-only"]).code, 0);
+    let by_groups = ["--estimates-only", "--estimates", "joback-reid"];
+    assert_eq!(bench.screen(&by_groups).code, 0);
     assert_eq!(value(&bench.ranked("boiling_point_k"), "acetone"), 322.11);
 }
 
@@ -219,7 +220,12 @@ fn columns_that_look_like_measured_values_are_noted() {
 fn a_look_up_takes_names_and_measured_values_of_its_file() {
     let bench = Bench::with("", MEASURED);
     let pool = bench.argument("pool.csv");
-    let said = say(&["properties", "--from", &pool, "--format", "csv"]);
+    let groups = ["--estimates", "joback-reid"];
+    let said = say(&[
+        &["properties", "--from", &pool, "--format", "csv"],
+        &groups[..],
+    ]
+    .concat());
     assert_eq!(said.code, 0, "{}", said.err);
     let rows = csv_rows(&said.out);
     let row = rows
