@@ -133,9 +133,10 @@ fn main() -> Result<(), Fault> {
             described
         })
         .collect();
+    let date = date_of(results)?;
     let head = |title: &str| {
         format!(
-            "# title: {title}\n# made by: fit_estimates, groupsmith {}\n# data: reference folder on pure substances, fingerprint {fingerprint}\n",
+            "# title: {title}\n# made by: fit_estimates, groupsmith {}\n# date: {date}\n# data: reference folder on pure substances, fingerprint {fingerprint}\n",
             env!("CARGO_PKG_VERSION")
         )
     };
@@ -184,6 +185,19 @@ fn main() -> Result<(), Fault> {
     std::fs::write(results.join("derived.csv"), derived::errors(&fit)?)?;
     report.write(results, &fit.reference)?;
     Ok(())
+}
+
+/// The date that the name of the results folder begins with: the same folders give the
+/// same files, so that the clock is not asked.
+fn date_of(results: &Path) -> Result<String, Fault> {
+    let name = results.file_name().and_then(|name| name.to_str());
+    let date = name.and_then(|name| name.get(..10)).filter(|date| {
+        let digits = |part: &str| part.bytes().all(|byte| byte.is_ascii_digit());
+        date.split('-').count() == 3 && date.split('-').all(digits)
+    });
+    Ok(date
+        .ok_or("the name of the results folder has to begin with a date: 2026-12-01-estimates")?
+        .to_owned())
 }
 
 fn fingerprint(folder: &Path) -> Result<String, Fault> {
@@ -307,7 +321,6 @@ impl Fit {
     }
 
     fn fit(&mut self, quantity: Quantity, level: Level) -> Result<FittedModel, Fault> {
-        let start = std::time::Instant::now();
         let values = self.reference.values[quantity as usize].clone();
         let mut members = Vec::new();
         let mut targets = Vec::new();
@@ -468,7 +481,6 @@ impl Fit {
             &inside,
             &has_kinds,
             (setting.near, setting.noise),
-            start.elapsed().as_secs_f64(),
         );
         Ok(FittedModel { model, outcome })
     }

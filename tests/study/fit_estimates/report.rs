@@ -18,7 +18,6 @@ pub(crate) struct Outcome {
     quantity: Quantity,
     level: Level,
     setting: (f64, f64),
-    seconds: f64,
     points: Vec<Point>,
 }
 
@@ -72,7 +71,6 @@ impl Outcome {
         inside: &[bool],
         has_kinds: &[bool],
         setting: (f64, f64),
-        seconds: f64,
     ) -> Self {
         let (_, error) = scale(quantity);
         let points = (0..members.len())
@@ -102,7 +100,6 @@ impl Outcome {
             quantity,
             level,
             setting,
-            seconds,
             points,
         }
     }
@@ -113,8 +110,8 @@ impl Outcome {
         let all: Vec<&Point> = self.points.iter().collect();
         let s = Summary::of(&all);
         let mut text = format!(
-            "# cross-validation: five parts by constitution; {} molecules; near {}, noise {}; {:.0} s\n",
-            s.count, self.setting.0, self.setting.1, self.seconds
+            "# cross-validation: five parts by constitution; {} molecules; near {}, noise {}\n",
+            s.count, self.setting.0, self.setting.1
         );
         let line = |class: &str, s: &Summary| {
             format!(
