@@ -270,11 +270,12 @@ pub(super) fn fitted_beside(
             Err(reason) => refused.push((property, reason)),
         }
     }
-    if wanted.any(&[Property::IdealGasEnthalpyOfFormation])
-        && have(&given, Property::IdealGasEnthalpyOfFormation).is_none()
-        && let Ok(estimate) = molecule.estimate(Quantity::IdealGasEnthalpyOfFormation, None)
-    {
-        given.push((Property::IdealGasEnthalpyOfFormation, estimate));
+    let formation = Property::IdealGasEnthalpyOfFormation;
+    if wanted.any(&[formation]) && have(&given, formation).is_none() {
+        match molecule.estimate(Quantity::IdealGasEnthalpyOfFormation, None) {
+            Ok(estimate) => given.push((formation, estimate)),
+            Err(reason) => refused.push((formation, reason)),
+        }
     }
     given.drain(..measured);
     FittedValues {
