@@ -5,7 +5,6 @@ use smallvec::SmallVec;
 use super::component::{VaporCurve, boiling_range_k};
 use super::dilution::{MeasuredDilutions, origin};
 use super::figure::FigureKind;
-use super::fitted::Wanted;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
 use super::profile::{Known, Profile, Profiler, fitted_values, properties_from};
 use super::solution::with_liquid;
@@ -182,7 +181,7 @@ impl Plan {
             .filter(|_| self.use_measured);
         let own = if self.use_measured { own } else { &[] };
         estimates.clear();
-        let fitted = fitted_values(&self.library, profile, known, own, Wanted::ALL);
+        let fitted = fitted_values(&self.library, profile, known, own);
         estimates.extend(
             self.temperatures
                 .iter()

@@ -58,73 +58,33 @@ pub(super) struct FittedValues {
     pub(super) refused: SmallVec<[(Property, Absent); 4]>,
 }
 
-/// Which properties are asked for: one bit each.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub struct Wanted(u32);
-
-impl Wanted {
-    /// Every property.
-    pub const ALL: Self = Self(u32::MAX);
-
-    /// None.
-    pub const NONE: Self = Self(0);
-
-    /// These and one more.
-    #[must_use]
-    pub const fn with(self, property: Property) -> Self {
-        Self(self.0 | 1 << property as u32)
-    }
-
-    /// Whether one of these is asked for.
-    fn any(self, properties: &[Property]) -> bool {
-        properties
-            .iter()
-            .any(|&property| self.0 >> property as u32 & 1 == 1)
-    }
-}
-
-/// What is fitted directly, from which quantity, and whether for 298.15 K only.
-const DIRECT: [(Property, Quantity, bool); 13] = [
-    (
-        Property::CriticalTemperature,
-        Quantity::CriticalTemperature,
-        false,
-    ),
-    (
-        Property::CriticalPressure,
-        Quantity::CriticalPressure,
-        false,
-    ),
-    (Property::CriticalVolume, Quantity::CriticalVolume, false),
+/// What is fitted directly, and from which quantity, beside boiling point and density.
+const DIRECT: [(Property, Quantity); 14] = [
+    (Property::CriticalTemperature, Quantity::CriticalTemperature),
+    (Property::CriticalPressure, Quantity::CriticalPressure),
+    (Property::CriticalVolume, Quantity::CriticalVolume),
     (
         Property::EnthalpyOfVaporization,
         Quantity::EnthalpyOfVaporization,
-        false,
     ),
     (
         Property::EnthalpyOfVaporizationAt298,
         Quantity::EnthalpyOfVaporizationAt298,
-        false,
     ),
-    (Property::FlashPoint, Quantity::FlashPoint, false),
-    (Property::MeltingPoint, Quantity::MeltingPoint, false),
-    (Property::LiquidViscosity, Quantity::Viscosity, true),
-    (Property::SurfaceTension, Quantity::SurfaceTension, true),
-    (
-        Property::HansenDispersion,
-        Quantity::HansenDispersion,
-        false,
-    ),
-    (Property::HansenPolar, Quantity::HansenPolar, false),
+    (Property::FlashPoint, Quantity::FlashPoint),
+    (Property::MeltingPoint, Quantity::MeltingPoint),
+    (Property::LiquidViscosity, Quantity::Viscosity),
+    (Property::SurfaceTension, Quantity::SurfaceTension),
+    (Property::HansenDispersion, Quantity::HansenDispersion),
+    (Property::HansenPolar, Quantity::HansenPolar),
     (
         Property::HansenHydrogenBonding,
         Quantity::HansenHydrogenBonding,
-        false,
     ),
+    (Property::LogPOctanolWater, Quantity::LogPOctanolWater),
     (
-        Property::LogPOctanolWater,
-        Quantity::LogPOctanolWater,
-        false,
+        Property::IdealGasEnthalpyOfFormation,
+        Quantity::IdealGasEnthalpyOfFormation,
     ),
 ];
 
@@ -133,63 +93,15 @@ pub fn fitted_quantity(property: Property) -> Option<Quantity> {
     let direct = DIRECT.iter().find(|direct| direct.0 == property);
     match property {
         Property::BoilingPoint => Some(Quantity::BoilingPoint),
-        Property::IdealGasEnthalpyOfFormation => Some(Quantity::IdealGasEnthalpyOfFormation),
         _ => direct.map(|direct| direct.1),
     }
 }
 
-/// Properties that rest on the boiling point, be it by way of the critical point.
-const REST_ON_BOILING_POINT: [Property; 15] = [
-    Property::BoilingPoint,
-    Property::CriticalTemperature,
-    Property::CriticalPressure,
-    Property::CriticalVolume,
-    Property::AcentricFactor,
-    Property::LiquidDensity,
-    Property::VaporPressure,
-    Property::EnthalpyOfVaporization,
-    Property::EnthalpyOfVaporizationAt298,
-    Property::FlashPoint,
-    Property::LiquidViscosity,
-    Property::SurfaceTension,
-    Property::HansenDispersion,
-    Property::HansenPolar,
-    Property::HansenHydrogenBonding,
-];
-
-/// The same for the molar volume at 298.15 K.
-const REST_ON_VOLUME: [Property; 14] = [
-    Property::LiquidDensity,
-    Property::CriticalTemperature,
-    Property::CriticalPressure,
-    Property::CriticalVolume,
-    Property::AcentricFactor,
-    Property::VaporPressure,
-    Property::EnthalpyOfVaporization,
-    Property::EnthalpyOfVaporizationAt298,
-    Property::FlashPoint,
-    Property::LiquidViscosity,
-    Property::SurfaceTension,
-    Property::HansenDispersion,
-    Property::HansenPolar,
-    Property::HansenHydrogenBonding,
-];
-
-/// Needed for the vapor-pressure curve and for densities away from 298.15 K.
-const REST_ON_CRITICAL_POINT: [Property; 5] = [
-    Property::VaporPressure,
-    Property::AcentricFactor,
-    Property::LiquidDensity,
-    Property::SurfaceTension,
-    Property::FlashPoint,
-];
-
-/// Fitted estimates of what is asked for and not among the values given, which are
+/// Fitted estimates of what is not among the values given, which are
 /// those for 298.15 K. The same estimates serve at every temperature.
 pub(super) fn fitted_beside(
     library: &Library,
     profile: &Profile,
-    wanted: Wanted,
     mut given: GivenValues,
 ) -> FittedValues {
     let measured = given.len();
@@ -213,7 +125,7 @@ pub(super) fn fitted_beside(
             .map(|(_, estimate)| estimate.value)
     };
     let mut boiling_point_k = have(&given, Property::BoilingPoint);
-    if boiling_point_k.is_none() && wanted.any(&REST_ON_BOILING_POINT) {
+    if boiling_point_k.is_none() {
         match molecule.estimate(Quantity::BoilingPoint, None) {
             Ok(estimate) => {
                 boiling_point_k = Some(estimate.value);
@@ -230,7 +142,7 @@ pub(super) fn fitted_beside(
                 .is_some_and(|t| (t - REFERENCE_TEMPERATURE_K).abs() < 0.01)
     });
     let mut volume = measured_density.map(|(_, density)| molar_mass / density.value);
-    if volume.is_none() && wanted.any(&REST_ON_VOLUME) {
+    if volume.is_none() {
         match molecule.estimate(Quantity::MolarVolume, None) {
             Ok(estimate) => {
                 volume = Some(estimate.value);
@@ -250,31 +162,18 @@ pub(super) fn fitted_beside(
         }),
         _ => None,
     };
-    for (property, quantity, reference_only) in DIRECT {
-        let is_wanted = wanted.any(&[property])
-            || wanted.any(&REST_ON_CRITICAL_POINT)
-                && matches!(
-                    property,
-                    Property::CriticalTemperature | Property::CriticalPressure
-                );
+    for (property, quantity) in DIRECT {
         // whether there is a flash point at all cannot be told there
         let no_flash = property == Property::FlashPoint && profile.facts.burns_doubtfully();
-        if !is_wanted || no_flash || have(&given, property).is_some() {
+        if no_flash || have(&given, property).is_some() {
             continue;
         }
         match molecule.estimate(quantity, known) {
-            Ok(estimate) if reference_only => {
+            Ok(estimate) if property.depends_on_temperature() => {
                 given.push((property, estimate.at(REFERENCE_TEMPERATURE_K)));
             }
             Ok(estimate) => given.push((property, estimate)),
             Err(reason) => refused.push((property, reason)),
-        }
-    }
-    let formation = Property::IdealGasEnthalpyOfFormation;
-    if wanted.any(&[formation]) && have(&given, formation).is_none() {
-        match molecule.estimate(Quantity::IdealGasEnthalpyOfFormation, None) {
-            Ok(estimate) => given.push((formation, estimate)),
-            Err(reason) => refused.push((formation, reason)),
         }
     }
     given.drain(..measured);

@@ -27,7 +27,7 @@ pub use component::{MixtureComponent, VaporCurve};
 pub use error::{PlanCause, PlanFault, UnknownMolecule};
 pub use family::{Families, Family};
 pub use figure::{CATALOG, FIGURES, FigureEntry, FigureKind, figure};
-pub use fitted::{EstimateLevel, Wanted, fitted_quantity};
+pub use fitted::{EstimateLevel, fitted_quantity};
 pub use library::{Library, LibraryError, USER_TABLES, UserTable};
 pub use naming::NoSubstance;
 #[cfg(test)]

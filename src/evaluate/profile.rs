@@ -3,7 +3,7 @@
 use smallvec::SmallVec;
 
 use super::Library;
-use super::fitted::{EstimateLevel, FittedValues, Wanted, fitted_beside};
+use super::fitted::{EstimateLevel, FittedValues, fitted_beside};
 use crate::chem::{Canonicalizer, Keys, Molecule, Reader, SmilesError};
 use crate::data::Substance;
 use crate::groups::environment::{EnvironmentCounts, EnvironmentReader};
@@ -206,19 +206,7 @@ pub fn properties_with(
     own: &[(Property, Estimate)],
     temperature_k: f64,
 ) -> Estimates {
-    properties_wanted(library, profile, known, own, temperature_k, Wanted::ALL)
-}
-
-/// The same; what is not wanted may be absent or less well estimated.
-pub(super) fn properties_wanted(
-    library: &Library,
-    profile: &Profile,
-    known: Option<Known<'_>>,
-    own: &[(Property, Estimate)],
-    temperature_k: f64,
-    wanted: Wanted,
-) -> Estimates {
-    let fitted = fitted_values(library, profile, known, own, wanted);
+    let fitted = fitted_values(library, profile, known, own);
     properties_from(library, profile, known, own, &fitted, temperature_k)
 }
 
@@ -228,11 +216,10 @@ pub(super) fn fitted_values(
     profile: &Profile,
     known: Option<Known<'_>>,
     own: &[(Property, Estimate)],
-    wanted: Wanted,
 ) -> FittedValues {
     let t = REFERENCE_TEMPERATURE_K;
     let given = given_values(measured_values(known, t), own, t);
-    fitted_beside(library, profile, wanted, given)
+    fitted_beside(library, profile, given)
 }
 
 /// Every property of a molecule at a temperature, its fitted estimates given.

@@ -24,11 +24,12 @@ const VAPOR_PRESSURE_TR_LOW: f64 = 0.5;
 
 /// Half width of the 90 % interval of ln P that the shape of a vapor-pressure curve
 /// through the boiling point leaves: at the boiling point, and per unit of `T_b / T - 1`.
-/// From the errors with measured boiling points (`results/2026-12-01-estimates`).
+/// Set from the 90th percentile of the errors with measured boiling points
+/// (`results/2026-12-01-estimates`); how many values such intervals hold was not measured.
 const VAPOR_PRESSURE_SHAPE: (f64, f64) = (0.03, 2.0);
 
-/// Half width of the 90 % interval of a density carried by one K, as a part of it; from
-/// the same study.
+/// Half width of the 90 % interval of a density carried by one K, as a part of it; set
+/// in the same way.
 const DENSITY_SHAPE_PER_K: f64 = 0.0006;
 
 /// Numbers of the alcohol and the acid group in the table of Joback and Reid.

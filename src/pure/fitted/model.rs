@@ -45,8 +45,6 @@ pub struct Prediction {
     pub value: f64,
     /// 90 % interval, ends in SI units.
     pub interval: Interval,
-    /// Distance to the nearest molecule of the fit.
-    pub nearest: f64,
     /// Whether there are atoms of a kind that no molecule of this fit has.
     pub unknown_atoms: bool,
 }
@@ -156,7 +154,6 @@ impl Scale {
     /// Half width of the 90 % interval of the sum.
     pub fn half_width(&self, signs: &[f64; Self::SIGNS]) -> f64 {
         let sum: f64 = self.weights.iter().zip(signs).map(|(w, s)| w * s).sum();
-        // an error a hundred times the usual or a hundredth of it was never seen
         self.factor * sum.exp()
     }
 }
@@ -360,6 +357,7 @@ impl Quantity {
     }
 
     /// A first guess from what the quantity rests on; the sum tells the deviation from it.
+    /// The rules are quoted from memory: the fit makes up for what they miss.
     fn base(self, known: Known) -> f64 {
         const R: f64 = crate::quantity::GAS_CONSTANT_J_PER_MOL_K;
         let tb = known.boiling_point_k;

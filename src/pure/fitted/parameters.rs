@@ -248,6 +248,13 @@ impl Fitted {
                 what: "the molecule is larger than anything the method was fitted on",
             });
         }
+        // without its inputs a sum would be a number that means nothing
+        if quantity.terms(level).rests_on_others && known.is_none() {
+            return Err(Absent::OutsideDomain {
+                method,
+                what: "it rests on boiling point and liquid density, and one of them is absent",
+            });
+        }
         let model = self.model(quantity, level);
         if has_new_kind_of_atom(&self.table, &input.molecule, &model.occurrences) {
             return Err(Absent::OutsideDomain {
@@ -287,7 +294,6 @@ impl Fitted {
         Ok(Prediction {
             value,
             interval: (low, high),
-            nearest: relatives.nearest(),
             unknown_atoms: model.has_unknown_atoms(&self.table, &input.molecule),
         })
     }
