@@ -5,6 +5,7 @@
 //! and targets give a verdict, verdicts a ranking. `DEVELOPERS.md` has the map
 //! of rooms and what each of them must not do.
 
+pub mod assemble;
 pub mod brief;
 pub mod chem;
 pub mod cli;
@@ -15,6 +16,7 @@ pub mod mixture;
 pub mod numeric;
 pub mod pure;
 pub mod quantity;
+pub mod ranking;
 pub mod report;
 pub mod run;
 pub mod screen;

@@ -488,11 +488,20 @@ impl Check<'_> {
             .map(|pieces| pieces.value)
             .unwrap_or_default();
         self.refuse_twice("assembly.pieces", &pieces);
+        let heavy_atoms = self.sized("assembly.heavy_atoms", raw.heavy_atoms);
+        let most_molar_mass_kg_per_mol = self.quantity(
+            "assembly.molar_mass.at_most",
+            raw.molar_mass,
+            Dimension::MolarMass,
+        );
         Located::new(
             Assembly {
                 pieces,
                 least_pieces,
                 most_pieces,
+                heavy_atoms,
+                most_molar_mass_kg_per_mol,
+                structures: raw.structures.given(),
                 limits: raw.limits,
             },
             raw.place,

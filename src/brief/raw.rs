@@ -121,6 +121,9 @@ pub(super) struct RawAssembly {
     pub(super) pieces: Field<Vec<Located<String>>>,
     pub(super) least: Field<u32>,
     pub(super) most: Field<u32>,
+    pub(super) heavy_atoms: Option<RawRange<u32>>,
+    pub(super) molar_mass: Field<RawQuantity>,
+    pub(super) structures: Field<u32>,
     pub(super) limits: Vec<(Located<String>, u32)>,
 }
 
@@ -419,14 +422,38 @@ impl<'a> Reader<'a> {
     }
 
     fn assembly(&mut self, section: &mut Section<'_>) -> RawAssembly {
-        self.refuse_unknown(section, &["pieces", "count", "limits"]);
+        self.refuse_unknown(
+            section,
+            &[
+                "pieces",
+                "count",
+                "heavy_atoms",
+                "molar_mass",
+                "structures",
+                "limits",
+            ],
+        );
         let mut assembly = RawAssembly {
             place: section.place,
             pieces: self.texts(section, "pieces", "pieces = [\"CH3\", \"CH2\"]", false),
             least: Field::Absent,
             most: Field::Absent,
+            heavy_atoms: None,
+            molar_mass: Field::Absent,
+            structures: self.count(section, "structures", "structures = 20"),
             limits: Vec::new(),
         };
+        if let Some(mut range) = self.section(section, "heavy_atoms") {
+            assembly.heavy_atoms = Some(self.count_range(&mut range));
+        }
+        if let Some(mut range) = self.section(section, "molar_mass") {
+            self.refuse_unknown(&mut range, &["at_most"]);
+            assembly.molar_mass = self.quantity(
+                &range,
+                "at_most",
+                "molar_mass = { at_most = \"200 g/mol\" }",
+            );
+        }
         let example = "count = { least = 2, most = 10 }";
         if let Some(mut count) = self.section(section, "count") {
             self.refuse_unknown(&mut count, &["least", "most"]);

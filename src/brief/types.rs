@@ -4,7 +4,7 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 use super::place::Located;
-use super::structure::Structure;
+use super::structure::{CountRange, Structure};
 use super::target::Target;
 
 /// How many candidates are kept in the ranking unless the brief says otherwise.
@@ -104,7 +104,8 @@ pub struct Pool {
     pub smiles_column: Option<Located<String>>,
 }
 
-/// The `[assembly]` table, read and kept; the search itself is another job.
+/// The `[assembly]` table. Whether the names in it are pieces or classes of
+/// pieces is judged beside the table of pieces.
 #[derive(Clone, Debug, Default, PartialEq)]
 #[non_exhaustive]
 pub struct Assembly {
@@ -114,6 +115,12 @@ pub struct Assembly {
     pub least_pieces: Option<Located<u32>>,
     /// Most pieces in a molecule.
     pub most_pieces: Option<Located<u32>>,
+    /// Fewest and most atoms that are not hydrogen.
+    pub heavy_atoms: Option<Located<CountRange>>,
+    /// Highest molar mass in kg/mol.
+    pub most_molar_mass_kg_per_mol: Option<Located<f64>>,
+    /// How many structures of one assembly are drawn at most.
+    pub structures: Option<Located<u32>>,
     /// Highest count by piece or class, in the order of the brief.
     pub limits: Vec<(Located<String>, u32)>,
 }

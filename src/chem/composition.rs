@@ -26,6 +26,19 @@ impl Composition {
         }
     }
 
+    /// Takes `times` copies of another composition away.
+    ///
+    /// # Panics
+    ///
+    /// If there are not that many atoms.
+    pub fn remove_times(&mut self, other: &Self, times: u16) {
+        for (mine, theirs) in self.0.iter_mut().zip(other.0) {
+            *mine = mine
+                .checked_sub(theirs * times)
+                .expect("what is taken away was there");
+        }
+    }
+
     /// Atoms that are not hydrogen.
     pub fn heavy_atoms(&self) -> u16 {
         self.0[1..].iter().sum()

@@ -2,7 +2,7 @@
 
 use std::sync::LazyLock;
 
-use super::{Element, Molecule};
+use super::{Composition, Element, Molecule};
 use crate::table::{Table, TableError};
 
 /// The table that is built in, `groups/elements.csv`.
@@ -88,6 +88,20 @@ impl Element {
     /// Head of `groups/elements.csv`.
     pub fn atomic_weight_kg_per_mol(self) -> f64 {
         WEIGHTS.natural[self as usize] * 1e-3
+    }
+}
+
+impl Composition {
+    /// Molar mass in kg/mol of atoms of natural isotopes.
+    ///
+    /// # Source
+    ///
+    /// Head of `groups/elements.csv`.
+    pub fn molar_mass_kg_per_mol(&self) -> f64 {
+        let atoms = Element::ALL.into_iter();
+        atoms
+            .map(|element| f64::from(self.count(element)) * element.atomic_weight_kg_per_mol())
+            .sum()
     }
 }
 

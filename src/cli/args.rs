@@ -45,12 +45,12 @@ pub(super) enum Command {
     Mixture(Mixture),
     /// Rank a candidate list against a brief
     Screen(Screen),
-    /// Search group assemblies against a brief (not built in yet)
-    Assemble(Unbuilt),
+    /// Search group assemblies against a brief
+    Assemble(Assemble),
     /// Pages and pictures of a finished run (not built in yet)
     Report(Unbuilt),
-    /// Merge the parts of one search (not built in yet)
-    Gather(Unbuilt),
+    /// Merge the parts of one search
+    Gather(Gather),
     /// Group sets, methods, models, figures, substances: what is built in and its source
     Tables(Tables),
     /// Is the brief sound, and how large is the job
@@ -176,6 +176,46 @@ pub(super) struct Screen {
 }
 
 #[derive(Debug, Args)]
+pub(super) struct Assemble {
+    /// The brief
+    pub(super) brief: PathBuf,
+    /// Folder of the results [default: results/<folder of the brief>]
+    #[arg(long, value_name = "DIR")]
+    pub(super) out: Option<PathBuf>,
+    /// Worker threads [default: one for each core]
+    #[arg(long, value_name = "N")]
+    pub(super) threads: Option<usize>,
+    /// Search one part of several only, such as 2/8
+    #[arg(long, value_name = "K/N")]
+    pub(super) part: Option<String>,
+    /// Go on from the state that an earlier run left in the folder
+    #[arg(long)]
+    pub(super) resume: bool,
+    /// Tell what kept one molecule out, by its name or SMILES
+    #[arg(long, value_name = "NAME")]
+    pub(super) explain: Option<String>,
+    /// How many of the ranking are printed
+    #[arg(long, value_name = "N", default_value_t = 20)]
+    pub(super) show: usize,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Gather {
+    /// Folders of the parts
+    #[arg(value_name = "DIR", required = true)]
+    pub(super) parts: Vec<PathBuf>,
+    /// Folder of the results
+    #[arg(long, value_name = "DIR")]
+    pub(super) out: PathBuf,
+    /// The brief, where it is not where the parts found it
+    #[arg(long, value_name = "FILE")]
+    pub(super) brief: Option<PathBuf>,
+    /// How many of the ranking are printed
+    #[arg(long, value_name = "N", default_value_t = 20)]
+    pub(super) show: usize,
+}
+
+#[derive(Debug, Args)]
 pub(super) struct Unbuilt {
     /// Anything
     #[arg(trailing_var_arg = true, allow_hyphen_values = true, hide = true)]
@@ -231,6 +271,8 @@ pub(super) enum TablesWhat {
         /// The same of the other
         second: Option<String>,
     },
+    /// Pieces of the assembly search, their ends and classes
+    Pieces,
     /// The pattern language
     Patterns,
     /// Suspected slips of circulated tables and what is used instead

@@ -1,17 +1,20 @@
 //! `groupsmith check`.
 
 use std::io::Write;
+use std::time::Duration;
 
 use super::args;
+use super::assemble::{Bound, in_threes};
 use super::error::CliError;
 use super::exit::Exit;
 use super::output;
 use super::own_data;
 use super::screen::{bind, open_pool};
 use super::user_tables::Sources;
+use crate::assemble::{Limits, Pieces};
 use crate::brief::{Brief, Job, RankBy, Ranking};
 use crate::chem::{Molecule, Reader};
-use crate::evaluate::{CATALOG, Library};
+use crate::evaluate::{CATALOG, Library, Plan, Quick, QuickFigure};
 use crate::report::probability_in_words;
 use crate::screen::{Batch, Pool};
 
@@ -30,7 +33,17 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
     };
     let brief = Brief::load(file, &CATALOG, Job::Check)?;
     let library = sources.library(Some(&brief))?;
-    let plan = bind(brief, library, true)?;
+    let searches = brief.assembly.is_some();
+    let (plan, search) = match searches {
+        false => (bind(brief, library, true)?, None),
+        true => {
+            if brief.pool.is_some() {
+                open_pool(&brief, None)?;
+            }
+            let bound = Bound::new(brief, library)?;
+            (bound.plan, Some((bound.pieces, bound.limits)))
+        }
+    };
     writeln!(out, "{}: sound", plan.brief.heading())?;
     for (position, component) in plan.components.iter().enumerate() {
         let vapor = if component.vapor.is_measured() {
@@ -71,11 +84,8 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
     for note in &plan.notes {
         writeln!(out, "  note: {note}")?;
     }
-    if plan.brief.assembly.is_some() {
-        writeln!(
-            out,
-            "  [assembly] is read, but the search is not built in yet"
-        )?;
+    if let Some((pieces, limits)) = &search {
+        search_text(&mut out, &plan, pieces, limits)?;
     }
     if plan.brief.pool.is_some() {
         let pool = open_pool(&plan.brief, None)?;
@@ -95,6 +105,106 @@ pub(super) fn run(command: &args::Check, sources: &Sources<'_>) -> Result<Exit, 
     }
     out.flush()?;
     Ok(Exit::Done)
+}
+
+/// How long a search is tried to tell how long it would take.
+const TRIAL: Duration = Duration::from_millis(800);
+
+/// The pieces and limits of a search, the size of its space, and how long it would take.
+fn search_text(
+    out: &mut impl Write,
+    plan: &Plan,
+    pieces: &Pieces,
+    limits: &Limits,
+) -> Result<(), CliError> {
+    let names = |on: bool| {
+        let used = pieces
+            .all
+            .iter()
+            .zip(&limits.pieces)
+            .filter(|one| *one.1 == on);
+        used.map(|one| one.0).collect::<Vec<_>>()
+    };
+    let used: Vec<&str> = names(true)
+        .iter()
+        .map(|piece| piece.name.as_str())
+        .collect();
+    writeln!(out, "  pieces: {}", used.join(" "))?;
+    for piece in names(false) {
+        if let Some(why) = &piece.off {
+            writeln!(out, "  piece off: {} ({why})", piece.name)?;
+        }
+    }
+    let range = |(least, most): (u32, u32)| format!("{least} to {most}");
+    writeln!(
+        out,
+        "  limits: {} pieces, {} heavy atoms, molar mass up to {:.0} g/mol",
+        range(limits.count),
+        range(limits.heavy_atoms),
+        limits.molar_mass_kg_per_mol * 1e3
+    )?;
+    let told = limits.told(pieces);
+    let told: Vec<String> = told
+        .iter()
+        .map(|(name, most)| format!("{name} {most}"))
+        .collect();
+    writeln!(out, "  at most: {}", told.join(", "))?;
+    let quick = Quick::new(plan);
+    let dear = quick
+        .targets
+        .iter()
+        .filter(|one| matches!(one.figure, QuickFigure::Dear));
+    for target in dear {
+        writeln!(
+            out,
+            "  {} is computed for the structures of the best {} assemblies only",
+            target.name, plan.brief.keep_best
+        )?;
+    }
+    let job = crate::assemble::Job::new(pieces, limits, quick, plan.library.fitted())
+        .expect("built-in tables of rules are sound (tested)");
+    let space = job.space().size();
+    writeln!(out, "  space: {} assemblies", in_threes(space))?;
+    if space == 0 {
+        writeln!(
+            out,
+            "  nothing fits the limits: more pieces, atoms or functional groups make room"
+        )?;
+        return Ok(());
+    }
+    let trial = job
+        .trial(TRIAL)
+        .map_err(crate::assemble::SearchError::from)?;
+    let scale = space as f64 / trial.assemblies.max(1) as f64;
+    writeln!(
+        out,
+        "  trial: {} assemblies, {} of them scored; about {} in all on one core, some {} scored",
+        in_threes(trial.assemblies),
+        in_threes(trial.scored),
+        duration(trial.seconds * scale),
+        in_threes((trial.scored as f64 * scale) as u128)
+    )?;
+    if trial.seconds * scale > LONG_S {
+        writeln!(
+            out,
+            "  a long search: --part K/N shares it out over machines, --resume goes on after a stop"
+        )?;
+    }
+    Ok(())
+}
+
+/// A search longer than this is worth sharing out.
+const LONG_S: f64 = 4.0 * 3600.0;
+
+/// Seconds in the unit that people would use.
+fn duration(seconds: f64) -> String {
+    match seconds {
+        ..1.0 => "a second".into(),
+        ..120.0 => format!("{seconds:.0} s"),
+        ..7200.0 => format!("{:.0} min", seconds / 60.0),
+        ..172_800.0 => format!("{:.0} h", seconds / 3600.0),
+        _ => format!("{:.0} days", seconds / 86_400.0),
+    }
 }
 
 /// Refused lines that are told with their reason.

@@ -5,6 +5,7 @@ use std::io;
 use thiserror::Error;
 
 use super::exit::Exit;
+use crate::assemble::{AssemblyFault, SearchError};
 use crate::brief::{BriefError, FractionError};
 use crate::evaluate::{LibraryError, PlanFault, UnknownMolecule};
 use crate::quantity::unit::UnitError;
@@ -44,6 +45,15 @@ pub(super) enum CliError {
     File(#[from] FileError),
     #[error("{0}")]
     Threads(String),
+    /// What is wrong with an assembly search.
+    #[error(transparent)]
+    Search(SearchError),
+    /// What is wrong with the `[assembly]` of a brief.
+    #[error("{}", assembly_told(file, .faults))]
+    Assembly {
+        file: String,
+        faults: Vec<AssemblyFault>,
+    },
     /// Whoever read our output has heard enough: not an error.
     #[error("the output was closed")]
     ClosedPipe,
@@ -62,7 +72,10 @@ impl CliError {
             | Self::Molecule(_)
             | Self::Brief(_)
             | Self::Plan { .. }
+            | Self::Assembly { .. }
             | Self::Library(_) => Exit::Wrong,
+            Self::Search(SearchError::State(_)) => Exit::Wrong,
+            Self::Search(_) => Exit::Failed,
             Self::Pool(PoolError::Read { .. }) => Exit::Failed,
             Self::Pool(_) => Exit::Wrong,
             Self::File(FileError::IsFile { .. } | FileError::IsFolder { .. }) => Exit::Wrong,
@@ -102,4 +115,12 @@ fn told(file: &str, faults: &[PlanFault], pool: Option<&str>) -> String {
         .chain(pool.map(str::to_owned))
         .collect::<Vec<_>>()
         .join("\n")
+}
+
+fn assembly_told(file: &str, faults: &[AssemblyFault]) -> String {
+    let told = faults.iter().map(|fault| match fault.place() {
+        Some(place) => format!("{file}:{}: {fault}", place.line),
+        None => format!("{file}: {fault}"),
+    });
+    told.collect::<Vec<_>>().join("\n")
 }

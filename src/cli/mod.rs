@@ -4,6 +4,7 @@
 //! else to standard error. Entry point: [`main`].
 
 mod args;
+mod assemble;
 mod breakdown;
 mod check;
 mod error;
@@ -68,6 +69,8 @@ fn run(arguments: &Arguments) -> Result<Exit, CliError> {
         Command::Screen(command) => screen::run(command, &sources, notes),
         Command::Tables(command) => tables::run(command, &sources.library(None)?),
         Command::Check(command) => check::run(command, &sources),
-        Command::Assemble(_) | Command::Report(_) | Command::Gather(_) => Err(CliError::NotBuiltIn),
+        Command::Assemble(command) => assemble::run(command, &sources, notes),
+        Command::Gather(command) => assemble::gather(command, &sources, notes),
+        Command::Report(_) => Err(CliError::NotBuiltIn),
     }
 }

@@ -12,6 +12,7 @@ use crate::run::{Event, Listener};
 pub(super) struct Progress {
     notes: Notes,
     bar: OnceLock<ProgressBar>,
+    unit: OnceLock<&'static str>,
 }
 
 impl Progress {
@@ -19,10 +20,12 @@ impl Progress {
         Self {
             notes,
             bar: OnceLock::new(),
+            unit: OnceLock::new(),
         }
     }
 
-    fn begin(&self, input_bytes: Option<u64>, unit: &str) {
+    fn begin(&self, input_bytes: Option<u64>, unit: &'static str) {
+        let _ = self.unit.set(unit);
         if self.notes.are_quiet() || !std::io::stderr().is_terminal() {
             return;
         }
@@ -48,6 +51,7 @@ impl Listener for Progress {
                 done,
                 input_bytes,
                 qualified,
+                best,
             } => {
                 if let Some(bar) = self.bar.get() {
                     let seconds = bar.elapsed().as_secs_f64();
@@ -57,7 +61,11 @@ impl Listener for Progress {
                         0.0
                     };
                     bar.set_position(input_bytes);
-                    bar.set_message(format!("{done} lines, {rate:.0}/s, {qualified} qualified"));
+                    let unit = self.unit.get().copied().unwrap_or("lines");
+                    let best = best.map_or_else(String::new, |best| format!(", best {best:.3}"));
+                    bar.set_message(format!(
+                        "{done} {unit}, {rate:.0}/s, {qualified} qualified{best}"
+                    ));
                 }
             }
             Event::Finished { .. } => {

@@ -19,6 +19,7 @@ use crate::groups::SetId;
 use crate::mixture::Slips;
 use crate::quantity::unit::{reading_text, reading_unit};
 use crate::quantity::{Estimate, Property, Status};
+use crate::ranking::{BAND_CHANCE, NextMeasurement, Ranked};
 use crate::report::{
     FigureColumn, RankedRow, RankedTable, TargetLabel, TextColumn, TextTable, missed_in_words,
     outcome_text, probability_in_words, ranks_in_words,
@@ -26,10 +27,7 @@ use crate::report::{
 use crate::run::{
     BriefRecord, FileError, Fingerprint, RunRecord, StopFlag, TablesRecord, make_folder,
 };
-use crate::screen::{
-    BAND_CHANCE, Batch, Columns, FILES, Pool, PoolError, Ranked, Screened, Screening,
-    StoppableReader,
-};
+use crate::screen::{Batch, Columns, FILES, Pool, PoolError, Screened, Screening, StoppableReader};
 
 /// Lines of the pool that are read at a time, where that is done here.
 const BATCH_LINES: usize = 4096;
@@ -94,7 +92,13 @@ pub(super) fn run(
         stop: &stop,
         listener: &progress,
     };
-    let screened = screening.run(pool, record(&plan, command.estimates_only))?;
+    let screened = {
+        let left_out = (
+            command.estimates_only,
+            "measured data of candidates left out",
+        );
+        screening.run(pool, record(&plan, "screen", &[left_out]))?
+    };
 
     match tell(command, &plan, &screened, &folder) {
         // The files are there all the same, and the code tells of them.
@@ -193,7 +197,7 @@ pub(super) fn open_pool(brief: &Brief, stop: Option<&StopFlag>) -> Result<Pool, 
 }
 
 /// `results/` and the name of the folder of the brief.
-fn default_folder(brief: &Path) -> PathBuf {
+pub(super) fn default_folder(brief: &Path) -> PathBuf {
     let full = std::fs::canonicalize(brief).unwrap_or_else(|_| brief.to_owned());
     let name = full
         .parent()
@@ -202,12 +206,11 @@ fn default_folder(brief: &Path) -> PathBuf {
     Path::new("results").join(name)
 }
 
-fn record(plan: &Plan, estimates_only: bool) -> RunRecord {
+/// The record of a run, with choices beside those of the tables.
+pub(super) fn record(plan: &Plan, command: &str, more: &[(bool, &str)]) -> RunRecord {
     let as_circulated = plan.library.slips() == Slips::AsCirculated;
-    let choices = [
-        (as_circulated, "parameter tables as circulated"),
-        (estimates_only, "measured data of candidates left out"),
-    ];
+    let choices = [(as_circulated, "parameter tables as circulated")];
+    let choices = choices.iter().chain(more);
     let tables = TablesRecord {
         fingerprint: plan
             .library
@@ -223,13 +226,12 @@ fn record(plan: &Plan, estimates_only: bool) -> RunRecord {
             .map(|table| table.place.clone())
             .collect(),
         choices: choices
-            .into_iter()
             .filter(|(taken, _)| *taken)
-            .map(|(_, choice)| choice.to_owned())
+            .map(|(_, choice)| (*choice).to_owned())
             .collect(),
     };
     let brief = BriefRecord::new(&plan.brief.file, &plan.brief.text);
-    let mut record = RunRecord::new("screen", brief, tables);
+    let mut record = RunRecord::new(command, brief, tables);
     record.models = plan.models().map(|model| model.id().to_owned()).collect();
     record.warnings.clone_from(&plan.notes);
     let now = SystemTime::now().duration_since(UNIX_EPOCH);
@@ -256,7 +258,7 @@ fn show(
                 screened.ranking.len() - most
             )?;
         }
-        how_sure(out, plan, screened)?;
+        how_sure(out, plan, &screened.ranking, screened.next.as_ref())?;
         writeln!(out)?;
     }
     let musts = musts(plan);
@@ -288,13 +290,18 @@ fn show(
 
 /// Which candidates cannot be told apart from the first, and which measurement
 /// would do most to tell them; nothing where all scores are exact and differ.
-fn how_sure(out: &mut impl Write, plan: &Plan, screened: &Screened) -> io::Result<()> {
+pub(super) fn how_sure(
+    out: &mut impl Write,
+    plan: &Plan,
+    ranking: &[Ranked],
+    next: Option<&NextMeasurement>,
+) -> io::Result<()> {
     let is_uncertain = |row: &Ranked| row.variance > 0.0 || row.probability < 1.0;
-    if !plan.brief.ranking.uses_intervals() || !screened.ranking.iter().any(is_uncertain) {
+    if !plan.brief.ranking.uses_intervals() || !ranking.iter().any(is_uncertain) {
         return Ok(());
     }
     let of_first = (1_u64..)
-        .zip(&screened.ranking)
+        .zip(ranking)
         .filter(|(_, row)| row.band == Some(1))
         .map(|(rank, _)| rank);
     let of_first: Vec<u64> = of_first.collect();
@@ -313,7 +320,7 @@ fn how_sure(out: &mut impl Write, plan: &Plan, screened: &Screened) -> io::Resul
             probability_in_words(BAND_CHANCE)
         )?;
     }
-    if let Some(next) = &screened.next {
+    if let Some(next) = next {
         writeln!(out, "To measure next: {}.", next.reason)?;
     }
     Ok(())
@@ -321,7 +328,7 @@ fn how_sure(out: &mut impl Write, plan: &Plan, screened: &Screened) -> io::Resul
 
 /// What a line can fall at, with what is wanted: lines are counted by name, so
 /// two musts on one figure are told together.
-fn musts(plan: &Plan) -> Vec<(&str, String)> {
+pub(super) fn musts(plan: &Plan) -> Vec<(&str, String)> {
     let mut musts: Vec<(&str, String)> = Vec::new();
     for (name, wanted) in plan.musts() {
         match musts.iter_mut().find(|(known, _)| *known == name) {
@@ -336,7 +343,7 @@ fn musts(plan: &Plan) -> Vec<(&str, String)> {
 }
 
 /// The top of the ranking: the figures that targets are set on, with units.
-fn ranking_text(plan: &Plan, rows: &[Ranked]) -> String {
+pub(super) fn ranking_text(plan: &Plan, rows: &[Ranked]) -> String {
     let mut shown: Vec<usize> = Vec::new();
     for target in &plan.targets {
         // The same figure by the other models stands beside it.

@@ -41,6 +41,7 @@ pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, Cli
                 .collect();
             pair_tables::text(library, &asked)?
         }
+        Some(TablesWhat::Pieces) => super::assemble::pieces_text(library),
         Some(TablesWhat::Patterns) => include_str!("../groups/pattern/reference.md").to_owned(),
         Some(TablesWhat::Slips) => slips(library),
     };

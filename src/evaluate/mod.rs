@@ -17,6 +17,7 @@ mod library;
 mod naming;
 mod plan;
 mod profile;
+mod quick;
 mod solution;
 mod source;
 mod structure;
@@ -34,6 +35,7 @@ pub use naming::NoSubstance;
 pub(crate) use plan::IntervalsForTests;
 pub use plan::{DEFAULT_MODEL, Plan, PlannedFigure, PlannedTarget};
 pub use profile::{Coverages, Known, Profile, Profiler, properties, properties_with};
+pub use quick::{Quick, QuickFigure, QuickTarget};
 pub use solution::{
     MixtureFigure, StatedState, describe_mixture, measured_at_dilution, mole_fractions,
 };

@@ -26,6 +26,8 @@ pub enum Event<'a> {
         input_bytes: u64,
         /// Candidates that qualified so far.
         qualified: u64,
+        /// The best score so far, where it is known before the end.
+        best: Option<f64>,
     },
     /// Something a person should know; the run goes on.
     Warning {

@@ -17,7 +17,7 @@ pub use event::{Event, Listener, Quiet};
 pub use file::{NewFile, make_folder, remove_stale, write_whole};
 pub use fingerprint::Fingerprint;
 pub use record::{
-    BriefRecord, Counts, Ending, InputRecord, MeasurementRecord, Outcome, RECORD_FORMAT,
-    RankingRecord, RunRecord, TablesRecord, Timing,
+    AssemblyRecord, BriefRecord, Counts, Ending, InputRecord, MeasurementRecord, Outcome,
+    RECORD_FORMAT, RankingRecord, RunRecord, TablesRecord, Timing,
 };
 pub use stop::StopFlag;

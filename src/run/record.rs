@@ -256,6 +256,44 @@ pub struct MeasurementRecord {
     pub reason: String,
 }
 
+/// What became of every assembly of a search. Numbers that may be larger than
+/// readers of JSON take are written as text.
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+pub struct AssemblyRecord {
+    /// Which part of the search: `1/1` for all of it.
+    pub part: String,
+    /// Assemblies of the space, counted by themselves.
+    pub space: String,
+    /// Assemblies accounted for: the sum of those that follow.
+    pub accounted: String,
+    /// Scored from counts, no must missed.
+    pub scored: String,
+    /// Scored, and a must missed, by target.
+    pub missed_by_target: Vec<(String, String)>,
+    /// Cut by a bound on linear sums, by the first target that cuts.
+    pub cut_by_bound_of_target: Vec<(String, String)>,
+    /// Cut by the molar mass or a rule on counts.
+    pub cut_by_rule: Vec<(String, String)>,
+    /// A group or interaction is not published.
+    pub not_assessable: String,
+    /// No structure can be drawn.
+    pub without_structure: String,
+    /// Assemblies that are kept at most, and whose structures are evaluated in full.
+    pub kept: u64,
+    /// Targets that only the structures of the kept were judged by.
+    pub left_to_structures: Vec<String>,
+    /// Structures of the kept assemblies, those beyond the drawn ones included.
+    pub structures_found: u64,
+    /// Assemblies whose structures were not all looked for.
+    pub structures_incomplete: u64,
+    /// Structures drawn.
+    pub structures_drawn: u64,
+    /// Of these, the same molecule as an earlier one.
+    pub structures_double: u64,
+    /// Of these, broken down otherwise than their assembly, and left out.
+    pub structures_of_other_groups: u64,
+}
+
 /// What depends on the machine and the hour; left out when runs are compared.
 #[derive(Clone, Debug, Default, PartialEq, Serialize, Deserialize)]
 pub struct Timing {
@@ -300,6 +338,9 @@ pub struct RunRecord {
     /// How candidates were ranked, once they are.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub ranking: Option<RankingRecord>,
+    /// The account of an assembly search.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub assembly: Option<AssemblyRecord>,
     /// What a reader should know, in the order it was met.
     pub warnings: Vec<String>,
     /// What depends on the machine and the hour.
@@ -325,6 +366,7 @@ impl RunRecord {
             models: Vec::new(),
             counts: Counts::default(),
             ranking: None,
+            assembly: None,
             warnings: Vec::new(),
             timing: Timing::default(),
         }

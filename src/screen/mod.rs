@@ -4,11 +4,9 @@
 //! order of the pool; memory does not grow with its length. Entry points:
 //! [`Pool::open`], [`Screening::run`].
 
-mod bands;
 mod identity;
 mod ledger;
 mod measured_column;
-mod next_measurement;
 mod pool;
 mod resolved;
 mod screening;
@@ -17,10 +15,8 @@ mod stoppable;
 #[cfg(test)]
 pub(crate) mod uncertain_runs;
 
-pub use bands::BAND_CHANCE;
 pub use measured_column::ColumnFault;
-pub use next_measurement::NextMeasurement;
 pub use pool::{Batch, Columns, LineFault, Pool, PoolError, PoolLine, Stated};
 pub use resolved::{Resolved, Unresolved};
-pub use screening::{FILES, Ranked, ScreenError, Screened, Screening};
+pub use screening::{FILES, ScreenError, Screened, Screening};
 pub use stoppable::StoppableReader;

@@ -8,21 +8,19 @@ use std::time::Instant;
 use rayon::prelude::*;
 use thiserror::Error;
 
-use super::bands::number_bands;
 use super::identity::{Identities, Kinship, Relation, RelationLog, Relations, WrittenRelations};
 use super::ledger::{Entry, Finding, Ledger, WrittenLedger};
-use super::next_measurement::{NextMeasurement, next_measurement};
 use super::pool::{Batch, Pool, PoolError, PoolLine};
 use super::resolved::Resolved;
-use crate::brief::RankBy;
-use crate::evaluate::{Plan, Scratch, Verdict, interval_that_counts, score_interval};
+use crate::evaluate::{Plan, Scratch, Verdict, interval_that_counts};
 use crate::quantity::Absent;
-use crate::report::{
-    CsvRow, FigureColumn, NotRankedRow, RankedRow, RankedTable, Uncertainty, missed_in_words,
+use crate::ranking::{
+    NextMeasurement, Ranked, Standing, merits, next_measurement, number_bands, ranking_record,
 };
+use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedTable, missed_in_words};
 use crate::run::{
-    Counts, Event, FileError, Fingerprint, InputRecord, Listener, MeasurementRecord, NewFile,
-    Outcome, RankingRecord, RunRecord, StopFlag, remove_stale,
+    Counts, Event, FileError, Fingerprint, InputRecord, Listener, NewFile, Outcome, RunRecord,
+    StopFlag, remove_stale,
 };
 
 /// Lines that are evaluated between two looks at the stop flag.
@@ -63,36 +61,6 @@ pub struct Screening<'a> {
     pub listener: &'a dyn Listener,
 }
 
-/// A candidate of the ranking.
-#[derive(Clone, Debug, Default, PartialEq)]
-pub struct Ranked {
-    /// Line of the pool.
-    pub line: u64,
-    /// Name as given.
-    pub name: String,
-    /// SMILES as given.
-    pub smiles: String,
-    /// Score; without meaning where nothing that counts is known.
-    pub score: f64,
-    /// Share of the weights whose figures have a value.
-    pub known: f64,
-    /// Variance of the score.
-    pub variance: f64,
-    /// Probability that every must is met.
-    pub probability: f64,
-    /// Whether intervals count; else the bare numbers rank it.
-    pub uses_intervals: bool,
-    /// Number of its band, from 1; `None` where it has no score, or intervals
-    /// are left out.
-    pub band: Option<u64>,
-    /// Figures in SI, in the order of the plan.
-    pub figures: Vec<Option<f64>>,
-    /// Their 90 % intervals; those of exact figures are left out.
-    pub intervals: Vec<Option<(f64, f64)>>,
-    /// Remarks.
-    pub notes: String,
-}
-
 /// How a screening came out.
 #[derive(Clone, Debug)]
 pub struct Screened {
@@ -114,42 +82,6 @@ struct Done {
     identities: Vec<(u64, u128, u128)>,
     qualified: u64,
 }
-
-/// Place in the ranking, the best first; the order is total.
-#[derive(Clone, Debug)]
-struct Standing {
-    known: f64,
-    /// What the brief ranks by, then what decides between equals.
-    merits: [f64; 2],
-    key: String,
-    line: u64,
-}
-
-impl Ord for Standing {
-    fn cmp(&self, other: &Self) -> std::cmp::Ordering {
-        other
-            .known
-            .total_cmp(&self.known)
-            .then_with(|| other.merits[0].total_cmp(&self.merits[0]))
-            .then_with(|| other.merits[1].total_cmp(&self.merits[1]))
-            .then_with(|| self.key.cmp(&other.key))
-            .then_with(|| self.line.cmp(&other.line))
-    }
-}
-
-impl PartialOrd for Standing {
-    fn partial_cmp(&self, other: &Self) -> Option<std::cmp::Ordering> {
-        Some(self.cmp(other))
-    }
-}
-
-impl PartialEq for Standing {
-    fn eq(&self, other: &Self) -> bool {
-        self.cmp(other).is_eq()
-    }
-}
-
-impl Eq for Standing {}
 
 impl Screening<'_> {
     /// Reads the pool to its end and writes the files of the run; `record` says
@@ -209,6 +141,7 @@ impl Screening<'_> {
                 done: lines,
                 input_bytes: pool.input_bytes_read(),
                 qualified,
+                best: None,
             });
             std::mem::swap(&mut batch, &mut next);
         }
@@ -237,7 +170,7 @@ impl Screening<'_> {
         });
         record.counts = counts.clone();
         let next = next_measurement(self.plan, &ranking);
-        record.ranking = Some(self.ranking_record(&ranking, next.as_ref()));
+        record.ranking = Some(ranking_record(self.plan, &ranking, next.as_ref()));
         record.end(stopped);
         let elapsed_s = begun.elapsed().as_secs_f64();
         record.timing.elapsed_s = elapsed_s;
@@ -259,31 +192,6 @@ impl Screening<'_> {
             table,
             next,
         })
-    }
-
-    /// How the ranking came about, for the record.
-    fn ranking_record(&self, ranking: &[Ranked], next: Option<&NextMeasurement>) -> RankingRecord {
-        let rule = &self.plan.brief.ranking;
-        // The last digits of a library's logarithm are nobody's business.
-        let rounded = |number: f64| (number * 1e4).round() / 1e4;
-        RankingRecord {
-            by: rule.by.id().to_owned(),
-            confidence: rule.confidence,
-            in_first_band: ranking.iter().filter(|row| row.band == Some(1)).count() as u64,
-            measure_next: next.map(|next| {
-                let row = &ranking[next.place];
-                MeasurementRecord {
-                    rank: next.place as u64 + 1,
-                    name: row.name.clone(),
-                    smiles: row.smiles.clone(),
-                    what: next.what.clone(),
-                    expected_gain: rounded(next.gain),
-                    chance: rounded(next.chance),
-                    share_of_variance: rounded(next.share),
-                    reason: next.reason.clone(),
-                }
-            }),
-        }
     }
 
     /// Puts the tables into place; the record of an earlier run, which vouches
@@ -469,13 +377,10 @@ impl Screening<'_> {
             } = entry.finding
                 && !duplicate
             {
+                let merits = merits(self.plan.brief.ranking.by, score, variance, probability);
                 heap.push(Standing {
                     known,
-                    merits: match self.plan.brief.ranking.by {
-                        RankBy::ExpectedScore => [score, score],
-                        RankBy::Probability => [probability, score],
-                        RankBy::Cautious => [score_interval(score, variance).0, score],
-                    },
+                    merits,
                     key,
                     line: entry.line,
                 });
@@ -667,37 +572,6 @@ impl Screening<'_> {
                 };
                 rank.map(|rank| (rank, (row, entry.carried)))
             }
-        }
-    }
-}
-
-impl Ranked {
-    /// Its name, or its SMILES where it has none.
-    pub fn called(&self) -> &str {
-        match self.name.as_str() {
-            "" => &self.smiles,
-            name => name,
-        }
-    }
-
-    /// The row of the ranking at a rank from 0.
-    pub fn as_row<'a>(&'a self, rank: usize, carried: &'a [&'a str]) -> RankedRow<'a> {
-        let has_score = self.known > 0.0;
-        RankedRow {
-            rank: rank as u64 + 1,
-            name: &self.name,
-            smiles: &self.smiles,
-            score: has_score.then_some(self.score),
-            uncertainty: self.uses_intervals.then(|| Uncertainty {
-                probability: self.probability,
-                score: has_score.then(|| score_interval(self.score, self.variance)),
-                band: self.band,
-            }),
-            figures: &self.figures,
-            intervals: &self.intervals,
-            line: self.line,
-            notes: &self.notes,
-            carried,
         }
     }
 }

@@ -7,7 +7,7 @@ use std::sync::{Arc, LazyLock};
 
 use proptest::prelude::*;
 
-use super::{Columns, Pool, Ranked, Screened, Screening};
+use super::{Columns, Pool, Screened, Screening};
 use crate::brief::{Brief, Job};
 use crate::evaluate::{
     CATALOG, EstimateLevel, FigureKind, IntervalsForTests, Library, Plan, PlannedFigure, Scratch,
@@ -15,6 +15,7 @@ use crate::evaluate::{
 };
 use crate::mixture::Slips;
 use crate::quantity::Property;
+use crate::ranking::Ranked;
 use crate::run::{BriefRecord, Fingerprint, Quiet, RunRecord, StopFlag, TablesRecord};
 
 static LIBRARY: LazyLock<Arc<Library>> = LazyLock::new(|| {

@@ -1,6 +1,7 @@
 //! The one integration binary: a module for each room.
 
 mod activity_errors;
+mod assemble;
 mod brief;
 mod chem;
 mod cli;

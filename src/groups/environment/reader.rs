@@ -36,6 +36,45 @@ impl EnvironmentCounts {
         self.entries.is_empty()
     }
 
+    /// What pieces of a molecule settle of it: atoms, what hetero atoms are bound
+    /// to, heavy atoms and rings.
+    pub fn of_pieces(&self) -> Self {
+        let rings = Environment::Shape(ShapeFact::Rings).key();
+        let kept = self.entries.iter().filter(|(key, order, _)| {
+            *order <= Order::First || *key == EnvironmentKey::ATOMS || *key == rings
+        });
+        Self {
+            entries: kept.copied().collect(),
+        }
+    }
+
+    /// The same with a number of rings.
+    pub fn with_rings(mut self, rings: u32) -> Self {
+        let key = Environment::Shape(ShapeFact::Rings).key();
+        self.entries.retain(|entry| entry.0 != key);
+        if rings > 0 {
+            self.entries.push((key, Order::Shape, rings as f32));
+            self.settle();
+        }
+        self
+    }
+
+    /// Every count times a factor; counts of atoms are whole and stay so.
+    pub fn times(mut self, factor: f32) -> Self {
+        for entry in &mut self.entries {
+            entry.2 = (entry.2 * factor).round();
+        }
+        self
+    }
+
+    /// Adds the counts of another molecule or piece; what comes to nothing is left out.
+    pub fn add_times(&mut self, other: &Self, times: f32) {
+        let added = other.entries.iter().map(|&(k, o, n)| (k, o, n * times));
+        self.entries.extend(added);
+        self.settle();
+        self.entries.retain(|entry| entry.2 != 0.0);
+    }
+
     fn settle(&mut self) {
         self.entries.sort_unstable_by_key(|entry| entry.0);
         self.entries.dedup_by(|next, first| {

@@ -39,6 +39,22 @@ pub struct Known {
     pub molar_mass_kg_per_mol: f64,
 }
 
+impl Known {
+    /// The terms of a sum that stand for it, in a molecule of `n` heavy atoms.
+    pub(super) fn input_values(self, n: f64) -> [f64; INPUTS] {
+        let volume = self.molar_volume_m3_per_mol;
+        [
+            self.boiling_point_k.ln(),
+            volume.ln(),
+            self.molar_mass_kg_per_mol.ln(),
+            n.ln(),
+            1.0 / n,
+            1e5 * volume / n,
+            self.boiling_point_k / 100.0,
+        ]
+    }
+}
+
 impl Described {
     /// Looks the environments of a molecule up.
     pub fn fill(&mut self, table: &EnvironmentTable, counts: &EnvironmentCounts) {
@@ -141,17 +157,7 @@ impl Described {
             && let Some(known) = known
         {
             let inputs = products + 2 * PRODUCTS as u32;
-            let volume = known.molar_volume_m3_per_mol;
-            let values: [f64; INPUTS] = [
-                known.boiling_point_k.ln(),
-                volume.ln(),
-                known.molar_mass_kg_per_mol.ln(),
-                n.ln(),
-                1.0 / n,
-                1e5 * volume / n,
-                known.boiling_point_k / 100.0,
-            ];
-            for (number, value) in (inputs..).zip(values) {
+            for (number, value) in (inputs..).zip(known.input_values(n)) {
                 one(number, value);
             }
         }

@@ -10,6 +10,7 @@
 //!
 //! Entry points: [`Fitted::built_in`], [`Fitted::describe`], [`Fitted::predict`].
 
+mod count;
 mod described;
 mod error;
 mod model;
@@ -17,6 +18,7 @@ mod parameters;
 mod quantity;
 mod table;
 
+pub use count::{ClassCounts, CountModel, PieceSum};
 pub use described::{Described, Known};
 pub use error::ParameterError;
 pub use model::{

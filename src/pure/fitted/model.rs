@@ -2,7 +2,7 @@
 
 use super::described::{Described, Known};
 use super::quantity::{Level, Quantity};
-use super::table::EnvironmentTable;
+use super::table::{CLASSES, EnvironmentTable};
 use crate::groups::environment::Order;
 
 /// Distance at which two molecules have nothing to say about each other.
@@ -132,9 +132,19 @@ impl Scale {
     /// environments are in the fit, how near its relatives are and how well they
     /// come out, how polar it is.
     pub fn signs(described: &Described, rarity: f64, relatives: &Relatives) -> [f64; Self::SIGNS] {
-        let nearest = relatives.nearest();
         let n = described.heavy_atoms.max(1.0);
-        let class = |at: usize| described.classes[at];
+        Self::signs_of(n, &described.classes, rarity, relatives)
+    }
+
+    /// The same from heavy atoms and members of the classes.
+    pub(super) fn signs_of(
+        n: f64,
+        classes: &[f64; CLASSES.len()],
+        rarity: f64,
+        relatives: &Relatives,
+    ) -> [f64; Self::SIGNS] {
+        let nearest = relatives.nearest();
+        let class = |at: usize| classes[at];
         let polar = class(0) + class(1) + class(2) + class(3) + class(4) + class(8);
         [
             1.0,

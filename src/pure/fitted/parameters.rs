@@ -4,6 +4,7 @@ use std::fmt::Write as _;
 use std::str::FromStr;
 use std::sync::{Arc, OnceLock};
 
+use super::count::CountModel;
 use super::described::{Described, INPUTS, Known, PRODUCTS, SIZES};
 use super::error::ParameterError;
 use super::model::{
@@ -211,6 +212,11 @@ impl Fitted {
             let (file, text) = Self::text(quantity, level);
             read_model(file, text, &self.table, quantity, level).expect(SOUND)
         })
+    }
+
+    /// The count-level model of a quantity, taken apart.
+    pub fn count_model(&self, quantity: Quantity) -> CountModel<'_> {
+        CountModel::new(self.model(quantity, Level::Count), &self.table)
     }
 
     fn support(&self) -> &Support {

@@ -1,6 +1,6 @@
 //! Which measurement would tell the best candidates apart.
 
-use super::screening::Ranked;
+use super::ranked::Ranked;
 use crate::evaluate::{Plan, probability_of_better};
 use crate::numeric::{normal_cdf, normal_density};
 use crate::report::probability_in_words;
@@ -44,7 +44,7 @@ pub struct NextMeasurement {
 ///
 /// H. Raiffa, R. Schlaifer, Applied Statistical Decision Theory (1961), chapter
 /// 5 (linear loss, normal prior); from memory.
-pub(super) fn next_measurement(plan: &Plan, ranking: &[Ranked]) -> Option<NextMeasurement> {
+pub fn next_measurement(plan: &Plan, ranking: &[Ranked]) -> Option<NextMeasurement> {
     let known = ranking.first()?.known;
     let alike = ranking.iter().take(LOOKED_AT);
     let alike = alike.take_while(|row| row.known > 0.0 && row.known.total_cmp(&known).is_eq());

@@ -1,6 +1,6 @@
 //! Candidates of a ranking that cannot be told apart.
 
-use super::screening::Ranked;
+use super::ranked::Ranked;
 use crate::evaluate::probability_of_better;
 
 /// A candidate is told apart from the first of a band where its chance to score
@@ -21,7 +21,7 @@ const FARTHEST: usize = 1_000;
 /// # Complexity
 ///
 /// At most a thousand comparisons for each band.
-pub(super) fn number_bands(ranking: &mut [Ranked]) {
+pub fn number_bands(ranking: &mut [Ranked]) {
     let mut bands = 0;
     for first in 0..ranking.len() {
         if ranking[first].band.is_some() || ranking[first].known <= 0.0 {
