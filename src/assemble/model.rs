@@ -54,7 +54,7 @@ impl Form<'_> {
         if let Some(model) = &self.model {
             let (by_count, by_share) = model.products(classes);
             let fixed = n * (model.size(n) + by_count) + by_share;
-            let wide = n * self.reach * model.half_width(n, rarity, classes);
+            let wide = n * self.reach * model.half_width(n, rarity, classes, None);
             low -= fixed + wide;
             high -= fixed - wide;
         }
@@ -122,7 +122,6 @@ pub struct Job<'j> {
     pub(super) tail_rarity: f64,
     pub(super) most_mass: i64,
     pub(super) largest: u8,
-    pub(super) ring_class: usize,
     rules: Vec<CountRule>,
     models: Vec<CountModel<'j>>,
     activity: Option<(&'j Unifac, SetId, &'j KeysAtTemperature)>,
@@ -210,7 +209,6 @@ impl<'j> Job<'j> {
             tail_rarity: 0.0,
             most_mass: (limits.molar_mass_kg_per_mol * MASS_UNITS).floor() as i64,
             largest: u8::try_from(limits.heavy_atoms.1).unwrap_or(u8::MAX),
-            ring_class: ClassCounts::default().len() - 1,
             rules: read_rules(pieces)?,
             measures: Vec::new(),
             space,
@@ -301,7 +299,7 @@ impl<'j> Job<'j> {
                     }
                 })
                 .collect(),
-            classes: CountModel::classes(fitted.table(), &piece.environments, rings),
+            classes: ClassCounts::of(fitted.table(), &piece.environments, rings),
             rarity: self
                 .models
                 .iter()
@@ -550,9 +548,7 @@ impl<'a, 'j> Whole<'a, 'j> {
                 sum[0] += add[0] * times;
                 sum[1] += add[1] * times;
             }
-            for (class, add) in whole.classes.iter_mut().zip(&measures.classes) {
-                *class += add * count;
-            }
+            whole.classes.add(&measures.classes, count);
             heavy += measures.heavy * u32::from(count);
             whole.mass += measures.molar_mass_kg_per_mol * times;
             whole
@@ -568,7 +564,7 @@ impl<'a, 'j> Whole<'a, 'j> {
                 Role::Aromatic | Role::Ring
             )
         }) {
-            whole.classes[job.ring_class] = 1;
+            whole.classes = whole.classes.with_ring();
         }
         whole.n = f64::from(heavy);
         if !job.models.is_empty() {
@@ -588,7 +584,7 @@ impl<'a, 'j> Whole<'a, 'j> {
             + model.size(self.n)
             + model.inputs(self.n, known);
         let rarity = rarity_of(rarity_bucket(self.rarity));
-        let half = self.job.reach * model.half_width(self.n, rarity, &self.classes);
+        let half = self.job.reach * model.half_width(self.n, rarity, &self.classes, Some(sum));
         let quantity = model.quantity();
         let closed = |sum: f64| quantity.closed(sum, self.n, known);
         let value = closed(sum)?;

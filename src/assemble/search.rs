@@ -227,9 +227,6 @@ impl<'j> Searcher<'j> {
             members: SmallVec::new(),
             gap: false,
         };
-        if matches!(unit.skeleton, Skeleton::Aromatic | Skeleton::Saturated) {
-            prefix.classes[job.ring_class] = 1;
-        }
         for &member in &unit.first {
             self.push(&mut prefix, usize::from(member), 1);
         }
@@ -303,9 +300,6 @@ impl<'j> Searcher<'j> {
         for (sum, add) in prefix.forms.iter_mut().zip(&measures.forms) {
             sum[0] += add[0] * times;
             sum[1] += add[1] * times;
-        }
-        for (class, add) in prefix.classes.iter_mut().zip(&measures.classes) {
-            *class = class.wrapping_add_signed(*add as i8 * sign);
         }
         match prefix
             .members

@@ -102,6 +102,14 @@ impl AtomType {
     }
 }
 
+impl NeighborType {
+    /// Whether it is a carbon doubly bound to oxygen.
+    pub fn is_carbonyl_carbon(self) -> bool {
+        let double_to_oxygen = 1 | (Element::O as u32) << 2;
+        self.0 & 0xf == Element::C as u32 && self.0 >> MULTIPLE[0] & 0x3f == double_to_oxygen
+    }
+}
+
 fn write_kind(f: &mut fmt::Formatter<'_>, word: u32) -> fmt::Result {
     f.write_str(Element::ALL[(word & 0xf) as usize].symbol())?;
     match word >> CHARGE & 3 {

@@ -7,13 +7,58 @@
 //! pieces do not settle.
 
 use super::described::{Described, INPUTS, Known, PRODUCTS, SIZES};
-use super::model::{Model, Relatives, Scale};
+use super::model::{Model, Relatives};
 use super::quantity::{Level, PerAtom, Quantity};
+use super::scale::{Ground, Standing};
 use super::table::{CLASSES, EnvironmentTable, RING_CLASS};
 use crate::groups::environment::{EnvironmentCounts, Order};
 
-/// Members of each class of atoms and the number of rings.
-pub type ClassCounts = [u8; CLASSES.len()];
+/// Members of each class of atoms, the number of rings, and which classes occur.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
+pub struct ClassCounts {
+    members: [u8; CLASSES.len()],
+    /// Classes that are not counted among them too, as bits.
+    present: u16,
+}
+
+impl ClassCounts {
+    /// Of a piece; `rings`: those that are closed within it.
+    pub fn of(table: &EnvironmentTable, counts: &EnvironmentCounts, rings: u8) -> Self {
+        let mut all = Self::default();
+        for (key, _, count) in counts.iter() {
+            let Some(position) = table.position(key) else {
+                continue;
+            };
+            let classes = table.entries()[position as usize].classes;
+            all.present |= classes;
+            for (class, members) in all.members.iter_mut().enumerate() {
+                if classes >> class & 1 == 1 {
+                    *members += count as u8;
+                }
+            }
+        }
+        all.members[RING_CLASS] = rings;
+        all
+    }
+
+    /// Adds so many pieces.
+    pub fn add(&mut self, piece: &Self, times: u8) {
+        if times == 0 {
+            return;
+        }
+        self.present |= piece.present;
+        for (mine, own) in self.members.iter_mut().zip(piece.members) {
+            *mine += own * times;
+        }
+    }
+
+    /// The same with one ring more.
+    #[must_use]
+    pub fn with_ring(mut self) -> Self {
+        self.members[RING_CLASS] += 1;
+        self
+    }
+}
 
 /// What a piece adds to the sum of a quantity.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
@@ -90,8 +135,8 @@ impl<'f> CountModel<'f> {
         let per_atom = self.quantity().terms(Level::Count).per_atom;
         let (mut by_count, mut by_share) = (0.0, 0.0);
         let mut number = 2 * self.table.entries().len() + SIZES;
-        for (at, &members) in classes.iter().enumerate() {
-            for (&others, again) in classes[at..].iter().zip(0..) {
+        for (at, &members) in classes.members.iter().enumerate() {
+            for (&others, again) in classes.members[at..].iter().zip(0..) {
                 let pairs = match again {
                     0 => 0.5 * f64::from(members) * (f64::from(members) - 1.0),
                     _ => f64::from(members) * f64::from(others),
@@ -131,28 +176,25 @@ impl<'f> CountModel<'f> {
             .sum()
     }
 
-    /// Half width of the 90 % interval of the sum.
-    pub fn half_width(&self, n: f64, rarity: f64, classes: &ClassCounts) -> f64 {
-        let classes = classes.map(f64::from);
-        let signs = Scale::signs_of(n, &classes, rarity, &Relatives::unknown());
-        self.model.scale.half_width(&signs)
-    }
-
-    /// The classes of a piece.
-    pub fn classes(table: &EnvironmentTable, counts: &EnvironmentCounts, rings: u8) -> ClassCounts {
-        let mut all = ClassCounts::default();
-        for (key, _, count) in counts.iter() {
-            let Some(position) = table.position(key) else {
-                continue;
-            };
-            let classes = table.entries()[position as usize].classes;
-            for (class, members) in all.iter_mut().enumerate() {
-                if classes >> class & 1 == 1 {
-                    *members += count as u8;
-                }
-            }
+    /// Half width of the 90 % interval of a sum; without the sum, the most it can be.
+    pub fn half_width(
+        &self,
+        n: f64,
+        rarity: f64,
+        classes: &ClassCounts,
+        sum: Option<f64>,
+    ) -> f64 {
+        let molecule = Described::of_classes(n, classes.members.map(f64::from), classes.present);
+        let ground = Ground {
+            sum: sum.unwrap_or(0.0),
+            rarity,
+            unknown_atoms: false,
+            relatives: &Relatives::unknown(),
+        };
+        let standing = Standing::of(&molecule, &ground);
+        match sum {
+            Some(_) => self.model.scale.half_width(&standing),
+            None => self.model.scale.widest(&standing),
         }
-        all[RING_CLASS] = rings;
-        all
     }
 }

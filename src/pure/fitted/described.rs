@@ -26,6 +26,8 @@ pub struct Described {
     pub(super) heavy_atoms: f64,
     /// Members of each class.
     pub(super) classes: [f64; CLASSES.len()],
+    /// Which classes it has members of, those beyond [`CLASSES`] included.
+    present: u16,
 }
 
 /// What quantities that rest on others start from.
@@ -62,6 +64,7 @@ impl Described {
         self.unknown.clear();
         self.heavy_atoms = 0.0;
         self.classes = [0.0; CLASSES.len()];
+        self.present = 0;
         for (key, order, count) in counts.iter() {
             if key == EnvironmentKey::ATOMS {
                 self.heavy_atoms = f64::from(count);
@@ -70,6 +73,7 @@ impl Described {
                 Some(position) => {
                     self.found.push((position, count));
                     let classes = table.entries()[position as usize].classes;
+                    self.present |= classes;
                     for (class, members) in self.classes.iter_mut().enumerate() {
                         if classes >> class & 1 == 1 {
                             *members += f64::from(count);
@@ -85,6 +89,21 @@ impl Described {
             .iter()
             .find(|entry| entry.0 == rings)
             .map_or(0.0, |entry| f64::from(entry.2));
+    }
+
+    /// A molecule of which only size and classes are known.
+    pub(super) fn of_classes(heavy_atoms: f64, classes: [f64; CLASSES.len()], present: u16) -> Self {
+        Self {
+            heavy_atoms,
+            classes,
+            present,
+            ..Self::default()
+        }
+    }
+
+    /// Whether it has a member of a class of the table.
+    pub(super) fn has_class(&self, class: usize) -> bool {
+        self.present >> class & 1 == 1
     }
 
     /// Heavy atoms.

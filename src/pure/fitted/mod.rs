@@ -13,20 +13,24 @@
 mod count;
 mod described;
 mod error;
+mod family;
 mod model;
 mod parameters;
 mod quantity;
+mod scale;
 mod table;
 
 pub use count::{ClassCounts, CountModel, PieceSum};
 pub use described::{Described, Known};
 pub use error::ParameterError;
+pub use family::Family;
 pub use model::{
-    Interval, Model, Prediction, Relatives, Scale, Supporting, has_new_kind_of_atom,
-    has_unknown_atoms, rarity, similarity,
+    Interval, Model, Prediction, Relatives, Supporting, has_new_kind_of_atom, has_unknown_atoms,
+    rarity, similarity,
 };
 pub use parameters::{
     Fitted, FittedInput, Support, write_environments, write_model, write_molecules,
 };
 pub use quantity::{Level, PerAtom, Quantity, Terms};
+pub use scale::{Ground, Scale, Signs, SizeClass, Standing};
 pub use table::{EnvironmentEntry, EnvironmentTable, classes_of};

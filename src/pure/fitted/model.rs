@@ -2,7 +2,8 @@
 
 use super::described::{Described, Known};
 use super::quantity::{Level, Quantity};
-use super::table::{CLASSES, EnvironmentTable};
+use super::scale::Scale;
+use super::table::EnvironmentTable;
 use crate::groups::environment::Order;
 
 /// Distance at which two molecules have nothing to say about each other.
@@ -105,66 +106,12 @@ impl Relatives {
         }
     }
 
-    fn ln_density(&self) -> f64 {
+    pub(super) fn ln_density(&self) -> f64 {
         self.weight.ln()
     }
 
-    fn ln_error(&self) -> f64 {
+    pub(super) fn ln_error(&self) -> f64 {
         (self.error / self.weight).max(0.05).ln()
-    }
-}
-
-/// How the width of the error depends on the molecule: ln of the width is a
-/// linear sum of the [signs](Scale::signs), times a factor that makes the interval hold.
-#[derive(Clone, Copy, Debug, Default, PartialEq)]
-pub struct Scale {
-    /// Weights of the signs.
-    pub weights: [f64; Scale::SIGNS],
-    /// Half width of the 90 % interval over the width.
-    pub factor: f64,
-}
-
-impl Scale {
-    /// How many signs there are.
-    pub const SIGNS: usize = 11;
-
-    /// What tells how well a molecule is known: its size, how rare its
-    /// environments are in the fit, how near its relatives are and how well they
-    /// come out, how polar it is.
-    pub fn signs(described: &Described, rarity: f64, relatives: &Relatives) -> [f64; Self::SIGNS] {
-        let n = described.heavy_atoms.max(1.0);
-        Self::signs_of(n, &described.classes, rarity, relatives)
-    }
-
-    /// The same from heavy atoms and members of the classes.
-    pub(super) fn signs_of(
-        n: f64,
-        classes: &[f64; CLASSES.len()],
-        rarity: f64,
-        relatives: &Relatives,
-    ) -> [f64; Self::SIGNS] {
-        let nearest = relatives.nearest();
-        let class = |at: usize| classes[at];
-        let polar = class(0) + class(1) + class(2) + class(3) + class(4) + class(8);
-        [
-            1.0,
-            n.ln(),
-            1.0 / n,
-            (1.0 + rarity).ln(),
-            nearest,
-            (0.1 + nearest).ln(),
-            polar,
-            polar / n,
-            class(5) / n,
-            relatives.ln_density(),
-            relatives.ln_error(),
-        ]
-    }
-
-    /// Half width of the 90 % interval of the sum.
-    pub fn half_width(&self, signs: &[f64; Self::SIGNS]) -> f64 {
-        let sum: f64 = self.weights.iter().zip(signs).map(|(w, s)| w * s).sum();
-        self.factor * sum.exp()
     }
 }
 

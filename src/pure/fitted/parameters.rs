@@ -8,9 +8,10 @@ use super::count::CountModel;
 use super::described::{Described, INPUTS, Known, PRODUCTS, SIZES};
 use super::error::ParameterError;
 use super::model::{
-    Model, NEAR, Prediction, Relatives, Scale, Supporting, has_new_kind_of_atom, similarity_f32,
+    Model, NEAR, Prediction, Relatives, Supporting, has_new_kind_of_atom, similarity_f32,
 };
 use super::quantity::{Level, Quantity};
+use super::scale::{Ground, Scale, Standing};
 use super::table::{EnvironmentEntry, EnvironmentTable};
 use crate::groups::environment::{EnvironmentCounts, EnvironmentKey, Order};
 use crate::quantity::Absent;
@@ -284,10 +285,15 @@ impl Fitted {
             sum += correction;
             relatives = model.relatives(&input.relatives, most_similar);
         }
+        let ground = Ground {
+            sum,
+            rarity: model.rarity(&self.table, &input.molecule),
+            unknown_atoms: model.has_unknown_atoms(&self.table, &input.molecule),
+            relatives: &relatives,
+        };
+        let standing = Standing::of(&input.molecule, &ground);
+        let half = model.scale.half_width(&standing);
         let sum = quantity.settled(sum);
-        let rarity = model.rarity(&self.table, &input.molecule);
-        let signs = Scale::signs(&input.molecule, rarity, &relatives);
-        let half = model.scale.half_width(&signs);
         let closed = |sum: f64| quantity.closed(sum, input.molecule.heavy_atoms, known);
         let outside = || Absent::OutsideDomain {
             method,
@@ -300,7 +306,7 @@ impl Fitted {
         Ok(Prediction {
             value,
             interval: (low, high),
-            unknown_atoms: model.has_unknown_atoms(&self.table, &input.molecule),
+            unknown_atoms: ground.unknown_atoms,
         })
     }
 }
@@ -425,6 +431,19 @@ pub(super) fn term_count(table: &EnvironmentTable) -> usize {
     2 * table.entries().len() + SIZES + 2 * PRODUCTS + INPUTS
 }
 
+/// The numbers of a scale by the names of their lines.
+fn scale_parts(scale: &mut Scale) -> [(&'static str, &mut [f64]); 7] {
+    [
+        ("weights", &mut scale.weights),
+        ("least", &mut scale.least),
+        ("most", &mut scale.most),
+        ("families", &mut scale.families),
+        ("sizes", &mut scale.sizes),
+        ("nearness_ends", &mut scale.nearness_ends),
+        ("nearness", &mut scale.nearness),
+    ]
+}
+
 fn read_model(
     file: &str,
     text: &str,
@@ -447,9 +466,13 @@ fn read_model(
         match cells.next().unwrap_or_default() {
             "intercept" => model.intercept = number(file, line, cells.next())?,
             "scale" => {
-                model.scale.factor = number(file, line, cells.next())?;
-                for weight in &mut model.scale.weights {
-                    *weight = number(file, line, cells.next())?;
+                let part = cells.next().unwrap_or_default();
+                let numbers = scale_parts(&mut model.scale)
+                    .into_iter()
+                    .find_map(|(name, numbers)| (name == part).then_some(numbers))
+                    .ok_or_else(|| fault(file, line, format!("`{part}` is no part of a scale")))?;
+                for one in numbers {
+                    *one = number(file, line, cells.next())?;
                 }
             }
             "term" => {
@@ -524,11 +547,14 @@ pub fn write_molecules(head: &str, table: &EnvironmentTable, molecules: &[Descri
 /// The text of a model's file.
 pub fn write_model(head: &str, model: &Model) -> String {
     let mut text = format!("{head}intercept,{}\n", model.intercept);
-    let _ = write!(text, "scale,{:.5}", model.scale.factor);
-    for weight in model.scale.weights {
-        let _ = write!(text, ",{weight:.5}");
+    let mut scale = model.scale;
+    for (name, numbers) in scale_parts(&mut scale) {
+        let _ = write!(text, "scale,{name}");
+        for number in numbers {
+            let _ = write!(text, ",{number:.5}");
+        }
+        text.push('\n');
     }
-    text.push('\n');
     for (term, weight) in model.weights.iter().enumerate() {
         if *weight != 0.0 {
             let _ = writeln!(text, "term,{term},{weight:.5e}");

@@ -41,12 +41,27 @@ pub(super) const CLASSES: [&str; 10] = [
 /// The class of rings, which no atom belongs to.
 pub(super) const RING_CLASS: usize = 9;
 
+/// Classes that tell families apart and have no products, by bit.
+pub(super) const SILICON: usize = 10;
+pub(super) const PHOSPHORUS_OR_BORON: usize = 11;
+/// Hydroxyl at a carbonyl carbon.
+pub(super) const CARBOXYL: usize = 12;
+
 /// The classes of an atom by itself, one bit each in the order of the list:
 /// hydroxyl and the like, N with H, doubly bound O, other O, N without H,
-/// halogen, fluorine, aromatic carbon, sulfur. Other environments have none.
+/// halogen, fluorine, aromatic carbon, sulfur; then silicon, phosphorus or boron.
+/// Of atoms with their neighbors only the hydroxyl of a carboxyl group has a class.
 pub fn classes_of(environment: &Environment) -> u16 {
-    let Environment::Atom(atom) = environment else {
-        return 0;
+    let atom = match environment {
+        Environment::Atom(atom) => atom,
+        Environment::Around(atom, around)
+            if atom.element() == Element::O
+                && atom.hydrogens() > 0
+                && around.iter().any(|seen| seen.is_carbonyl_carbon()) =>
+        {
+            return 1 << CARBOXYL;
+        }
+        _ => return 0,
     };
     let class = match (atom.element(), atom.hydrogens(), atom.has_multiple_bond()) {
         (Element::O, 1.., _) => 0,
@@ -58,6 +73,8 @@ pub fn classes_of(environment: &Environment) -> u16 {
         (Element::Cl | Element::Br | Element::I, ..) => 5,
         (Element::C, ..) if atom.is_aromatic() => 7,
         (Element::S, ..) => 8,
+        (Element::Si, ..) => SILICON,
+        (Element::P | Element::B, ..) => PHOSPHORUS_OR_BORON,
         _ => return 0,
     };
     1 << class

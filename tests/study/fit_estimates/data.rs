@@ -4,7 +4,7 @@ use std::collections::BTreeMap;
 use std::error::Error;
 use std::path::Path;
 
-use groupsmith::chem::{Canonicalizer, Element, Keys, Molecule, Reader};
+use groupsmith::chem::{Canonicalizer, Keys, Molecule, Reader};
 use groupsmith::groups::environment::{EnvironmentCounts, EnvironmentReader};
 use groupsmith::pure::fitted::Quantity;
 
@@ -15,8 +15,6 @@ pub(crate) struct Known {
     pub(crate) name: String,
     pub(crate) counts: EnvironmentCounts,
     pub(crate) molar_mass_kg_per_mol: f64,
-    pub(crate) family: &'static str,
-    pub(crate) heavy_atoms: usize,
     /// Which of the five parts it is in.
     pub(crate) fold: usize,
 }
@@ -36,8 +34,6 @@ impl Known {
             name: name.to_owned(),
             counts,
             molar_mass_kg_per_mol: molecule.molar_mass_kg_per_mol(),
-            family: family(molecule),
-            heavy_atoms: molecule.heavy_atoms(),
         }
     }
 }
@@ -273,56 +269,4 @@ fn fold(constitution: &str) -> usize {
         (hash ^ u32::from(byte)).wrapping_mul(0x0100_0193)
     });
     (hash >> 8) as usize % FOLDS
-}
-
-/// The family a molecule is reported under.
-fn family(molecule: &Molecule) -> &'static str {
-    let atoms = molecule.atoms();
-    let has = |element: Element| atoms.iter().any(|atom| atom.element == element);
-    let hydroxyl = atoms
-        .iter()
-        .any(|atom| atom.element == Element::O && atom.hydrogens > 0);
-    let double_o = (0..atoms.len() as u32).any(|index| {
-        atoms[index as usize].element == Element::O
-            && molecule
-                .neighbors(index)
-                .iter()
-                .any(|bond| bond.order == groupsmith::chem::BondOrder::Double)
-    });
-    let halogen = [Element::Cl, Element::Br, Element::I]
-        .map(has)
-        .contains(&true);
-    if has(Element::Si) {
-        "silicon"
-    } else if has(Element::P) || has(Element::B) {
-        "phosphorus and boron"
-    } else if has(Element::S) {
-        "sulfur"
-    } else if has(Element::F) {
-        "fluorides"
-    } else if has(Element::N) && has(Element::O) {
-        "nitrogen with oxygen"
-    } else if halogen && (has(Element::O) || has(Element::N)) {
-        "halides with oxygen or nitrogen"
-    } else if halogen {
-        "chlorides bromides iodides"
-    } else if has(Element::N) {
-        "amines nitriles heterocycles"
-    } else if molecule.has_carboxyl() {
-        "acids"
-    } else if hydroxyl && double_o {
-        "hydroxy carbonyls"
-    } else if hydroxyl && atoms.iter().any(|atom| atom.aromatic) {
-        "phenols and aromatic alcohols"
-    } else if hydroxyl {
-        "alcohols"
-    } else if double_o {
-        "ketones aldehydes esters"
-    } else if has(Element::O) {
-        "ethers"
-    } else if atoms.iter().any(|atom| atom.aromatic) {
-        "aromatic hydrocarbons"
-    } else {
-        "other hydrocarbons"
-    }
 }

@@ -30,9 +30,9 @@ use data::{FOLDS, Reference};
 use gaussian::{Rows, Standard};
 use groupsmith::groups::environment::{Environment, EnvironmentReader, Order, ShapeFact};
 use groupsmith::pure::fitted::{
-    Described, EnvironmentEntry, EnvironmentTable, Known, Level, Model, Quantity, Relatives, Scale,
-    Support, Supporting, classes_of, has_new_kind_of_atom, has_unknown_atoms, rarity, similarity,
-    write_environments, write_model, write_molecules,
+    Described, EnvironmentEntry, EnvironmentTable, Ground, Known, Level, Model, Quantity,
+    Relatives, Standing, Support, Supporting, classes_of, has_new_kind_of_atom, has_unknown_atoms,
+    rarity, similarity, write_environments, write_model, write_molecules,
 };
 use groupsmith::run::Fingerprint;
 use rayon::prelude::*;
@@ -165,7 +165,7 @@ fn main() -> Result<(), Fault> {
     for level in Level::ALL {
         for quantity in Quantity::ALL {
             let fitted = fit.fit(quantity, level)?;
-            let text = fitted.outcome.head(&fit.reference);
+            let text = fitted.outcome.head();
             let title = format!("{} at {}", quantity.id(), level.id());
             std::fs::write(
                 parameters.join(format!(
@@ -373,10 +373,16 @@ impl Fit {
         let (_, setting, sums) = best.expect("there is a setting for every quantity");
 
         let residuals: Vec<f64> = targets.iter().zip(&sums).map(|(t, s)| t - s).collect();
-        let usual = residuals.iter().map(|r| r.abs()).sum::<f64>() / residuals.len() as f64;
-        let errors: Vec<f64> = residuals.iter().map(|r| r.abs() / usual).collect();
+        // Residuals over their mean, those of a part left out.
+        let errors_without = |out: Option<usize>| -> Vec<f64> {
+            let kept = || (0..residuals.len()).filter(|&i| Some(folds[i]) != out);
+            let sum: f64 = kept().map(|i| residuals[i].abs()).sum();
+            let usual = sum / kept().count() as f64;
+            residuals.iter().map(|r| r.abs() / usual).collect()
+        };
+        let errors = errors_without(None);
 
-        // Signs of trust as they are for molecules that the fit has not seen.
+        // Standings as they are for molecules that the fit has not seen.
         let by_fold: Vec<Vec<u32>> = (0..FOLDS)
             .map(|fold| {
                 self.occurrences(
@@ -404,25 +410,31 @@ impl Fit {
                 !has_unknown_atoms(&self.table, described, &by_fold[fold])
             })
             .collect();
-        let signs: Vec<[f64; Scale::SIGNS]> = {
-            members
-                .iter()
-                .enumerate()
-                .map(|(i, &molecule)| {
-                    let described = &self.molecules[molecule];
-                    let rare = rarity(&self.table, described, &by_fold[folds[i]]);
+        let standings = |out: Option<usize>| -> Vec<Standing> {
+            let errors = errors_without(out);
+            (0..members.len())
+                .into_par_iter()
+                .map(|i| {
+                    let described = &self.molecules[members[i]];
                     let mut relatives = Relatives::unknown();
                     if level == Level::Structure {
                         relatives = Relatives::default();
-                        for j in (0..members.len()).filter(|&j| folds[j] != folds[i]) {
+                        let strange = |&j: &usize| folds[j] != folds[i] && Some(folds[j]) != out;
+                        for j in (0..members.len()).filter(strange) {
                             relatives.add(f64::from(squared[i][j]), errors[j]);
                         }
                     }
-                    Scale::signs(described, rare, &relatives)
+                    let ground = Ground {
+                        sum: sums[i],
+                        rarity: rarity(&self.table, described, &by_fold[folds[i]]),
+                        unknown_atoms: !inside[i],
+                        relatives: &relatives,
+                    };
+                    Standing::of(described, &ground)
                 })
                 .collect()
         };
-        let (scale, half_widths) = scale::fit(&signs, &residuals, &folds);
+        let (scale, half_widths) = scale::fit(&standings, &residuals, &folds);
 
         // The model itself rests on all.
         let (covariance, standard) = self.covariance(&rows, &squared, setting);
@@ -477,7 +489,7 @@ impl Fit {
             &sums,
             &targets,
             &half_widths,
-            &signs,
+            &standings(None),
             &inside,
             &has_kinds,
             (setting.near, setting.noise),

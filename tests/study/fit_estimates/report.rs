@@ -5,13 +5,13 @@ use std::error::Error;
 use std::fmt::Write as _;
 use std::path::Path;
 
-use groupsmith::pure::fitted::{Level, Quantity, Scale};
+use groupsmith::pure::fitted::{Family, Level, Quantity, SizeClass, Standing};
 
 use super::Fit;
 use super::data::Reference;
 
-/// Position of the rarity and of the distance among the signs.
-const NEAREST: usize = 4;
+/// Position of ln (1 + rarity) among the signs.
+const RARITY: usize = 3;
 
 /// What the cross-validation found for one quantity at one level.
 pub(crate) struct Outcome {
@@ -30,6 +30,8 @@ struct Point {
     residual: f64,
     nearest: f64,
     rarity: f64,
+    family: Family,
+    size: SizeClass,
     /// Whether the fit without its part has all of its atoms.
     inside: bool,
     /// Whether a value would be given at all: no kind of atom is new.
@@ -67,7 +69,7 @@ impl Outcome {
         sums: &[f64],
         targets: &[f64],
         half_widths: &[f64],
-        signs: &[[f64; Scale::SIGNS]],
+        standings: &[Standing],
         inside: &[bool],
         has_kinds: &[bool],
         setting: (f64, f64),
@@ -88,8 +90,10 @@ impl Outcome {
                     ratio: residual.abs() / half_widths[i],
                     half_width: half_widths[i],
                     residual,
-                    nearest: signs[i][NEAREST],
-                    rarity: signs[i][3],
+                    nearest: standings[i].nearest,
+                    rarity: standings[i].signs[RARITY],
+                    family: standings[i].family,
+                    size: standings[i].size,
                     inside: inside[i],
                     given: has_kinds[i],
                 }
@@ -105,7 +109,7 @@ impl Outcome {
     }
 
     /// Lines for the head of the parameter file.
-    pub(crate) fn head(&self, reference: &Reference) -> String {
+    pub(crate) fn head(&self) -> String {
         let (unit, _) = scale(self.quantity);
         let all: Vec<&Point> = self.points.iter().collect();
         let s = Summary::of(&all);
@@ -121,24 +125,19 @@ impl Outcome {
         };
         text.push_str("# errors: class,unit,molecules,mean absolute,median absolute,90th percentile,bias,coverage\n");
         text.push_str(&line("all", &s));
-        for (class, points) in self.classes(reference) {
+        for (class, points) in self.classes() {
             text.push_str(&line(&class, &Summary::of(&points)));
         }
         text
     }
 
-    fn classes(&self, reference: &Reference) -> BTreeMap<String, Vec<&Point>> {
+    fn classes(&self) -> BTreeMap<String, Vec<&Point>> {
         let mut classes: BTreeMap<String, Vec<&Point>> = BTreeMap::new();
         for point in &self.points {
-            let molecule = &reference.molecules[point.molecule];
-            let size = match molecule.heavy_atoms {
-                0..=4 => "size: 01 to 04 heavy atoms",
-                5..=8 => "size: 05 to 08 heavy atoms",
-                9..=14 => "size: 09 to 14 heavy atoms",
-                15..=20 => "size: 15 to 20 heavy atoms",
-                _ => "size: 21 and more heavy atoms",
-            };
-            for class in [format!("family: {}", molecule.family), size.to_owned()] {
+            for class in [
+                format!("family: {}", point.family.id()),
+                format!("size: {}", point.size.id()),
+            ] {
                 classes.entry(class).or_default().push(point);
             }
             let domain = if point.inside {
@@ -197,7 +196,7 @@ impl Report {
             "quantity,level,class,unit,molecules,mean_abs,median_abs,p90_abs,bias,coverage\n",
         );
         let mut widths = String::from(
-            "quantity,level,molecules,coverage,width_of_nearest_third,width_of_all,constant_width,nearest_third_over_constant,mean_abs_95_percent_least_rare,mean_abs_98_percent_least_rare\n",
+            "quantity,level,molecules,coverage,width_of_all,constant_width,narrowest_third_over_constant,coverage_of_narrowest_third,nearest_third_over_constant,coverage_of_nearest_third,mean_abs_95_percent_least_rare,mean_abs_98_percent_least_rare\n",
         );
         let mut suspects =
             String::from("quantity,name,smiles,error,unit,half_widths_off,distance_to_nearest\n");
@@ -205,7 +204,7 @@ impl Report {
             let (unit, _) = scale(outcome.quantity);
             let (id, level) = (outcome.quantity.id(), outcome.level.id());
             let all: Vec<&Point> = outcome.points.iter().collect();
-            let mut classes = outcome.classes(reference);
+            let mut classes = outcome.classes();
             classes.insert("all".to_owned(), all.clone());
             for (class, points) in &classes {
                 let s = Summary::of(points);
@@ -264,7 +263,7 @@ impl Report {
                     outcome.quantity.id(),
                     molecule.name,
                     molecule.constitution,
-                    molecule.family,
+                    point.family.id(),
                     point.error,
                     point.inside
                 )?;
@@ -273,33 +272,48 @@ impl Report {
         Ok(text)
     }
 
-    /// Widths in units of the sum: of the third nearest to the fit against one width for all.
+    /// Widths in units of the sum against one width for all: of the third that the fit itself
+    /// holds for best known (the narrowest), and of the third with the nearest molecules, where
+    /// there are distances.
     fn widths(&self, outcome: &Outcome, all: &[&Point]) -> String {
-        let mut by_distance = all.to_vec();
-        by_distance.sort_by(|a, b| a.nearest.total_cmp(&b.nearest));
-        let mean = |points: &[&Point]| {
-            points.iter().map(|point| point.half_width).sum::<f64>() / points.len() as f64
+        let sorted = |by: fn(&Point) -> f64| {
+            let mut points = all.to_vec();
+            points.sort_by(|a, b| by(a).total_cmp(&by(b)));
+            points
         };
-        let mut residuals: Vec<f64> = all.iter().map(|point| point.residual.abs()).collect();
-        residuals.sort_by(f64::total_cmp);
-        let constant = residuals[residuals.len() * 9 / 10];
-        let third = mean(&by_distance[..all.len().div_ceil(3)]);
-        let mut by_rarity = all.to_vec();
-        by_rarity.sort_by(|a, b| a.rarity.total_cmp(&b.rarity));
-        let kept = |percent: usize| {
-            let kept = &by_rarity[..by_rarity.len() * percent / 100];
-            kept.iter().map(|point| point.error.abs()).sum::<f64>() / kept.len() as f64
+        let mean = |points: &[&Point], of: fn(&Point) -> f64| {
+            points.iter().map(|point| of(point)).sum::<f64>() / points.len() as f64
         };
-        format!(
-            "{},{},{},{:.3},{third:.4},{:.4},{constant:.4},{:.3},{:.4},{:.4}\n",
+        let covered = |point: &Point| f64::from(u8::from(point.ratio <= 1.0));
+        let half_width = |point: &Point| point.half_width;
+        let residuals = sorted(|point| point.residual.abs());
+        let constant = residuals[all.len() * 9 / 10].residual.abs();
+        let mut text = format!(
+            "{},{},{},{:.3},{:.4},{constant:.4}",
             outcome.quantity.id(),
             outcome.level.id(),
             all.len(),
-            all.iter().filter(|point| point.ratio <= 1.0).count() as f64 / all.len() as f64,
-            mean(all),
-            third / constant,
-            kept(95),
-            kept(98)
-        )
+            mean(all, covered),
+            mean(all, half_width),
+        );
+        for (by, has) in [
+            (half_width as fn(&Point) -> f64, true),
+            (|point| point.nearest, outcome.level == Level::Structure),
+        ] {
+            if !has {
+                text.push_str(",,");
+                continue;
+            }
+            let third = &sorted(by)[..all.len().div_ceil(3)];
+            let width = mean(third, half_width) / constant;
+            let _ = write!(text, ",{width:.3},{:.3}", mean(third, covered));
+        }
+        let by_rarity = sorted(|point| point.rarity);
+        for percent in [95, 98] {
+            let kept = &by_rarity[..all.len() * percent / 100];
+            let _ = write!(text, ",{:.4}", mean(kept, |point| point.error.abs()));
+        }
+        text.push('\n');
+        text
     }
 }
