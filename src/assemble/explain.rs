@@ -17,7 +17,7 @@ use crate::evaluate::{Profile, Profiler};
 use crate::groups::{GroupCounts, SetId};
 
 /// Pieces with their counts, ascending by place in the table.
-pub type Multiset = SmallVec<[(u16, u8); 12]>;
+pub(super) type Multiset = SmallVec<[(u16, u8); 12]>;
 
 /// Structures of one assembly that are compared with the molecule.
 const COMPARED: usize = 20_000;

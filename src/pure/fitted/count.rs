@@ -177,17 +177,12 @@ impl<'f> CountModel<'f> {
     }
 
     /// Half width of the 90 % interval of a sum; without the sum, the most it can be.
-    pub fn half_width(
-        &self,
-        n: f64,
-        rarity: f64,
-        classes: &ClassCounts,
-        sum: Option<f64>,
-    ) -> f64 {
+    pub fn half_width(&self, n: f64, rarity: f64, classes: &ClassCounts, sum: Option<f64>) -> f64 {
         let molecule = Described::of_classes(n, classes.members.map(f64::from), classes.present);
         let ground = Ground {
             sum: sum.unwrap_or(0.0),
             rarity,
+            unknown_environments: 0,
             unknown_atoms: false,
             relatives: &Relatives::unknown(),
         };

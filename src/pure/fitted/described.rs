@@ -92,7 +92,11 @@ impl Described {
     }
 
     /// A molecule of which only size and classes are known.
-    pub(super) fn of_classes(heavy_atoms: f64, classes: [f64; CLASSES.len()], present: u16) -> Self {
+    pub(super) fn of_classes(
+        heavy_atoms: f64,
+        classes: [f64; CLASSES.len()],
+        present: u16,
+    ) -> Self {
         Self {
             heavy_atoms,
             classes,

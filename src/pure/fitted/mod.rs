@@ -26,7 +26,7 @@ pub use error::ParameterError;
 pub use family::Family;
 pub use model::{
     Interval, Model, Prediction, Relatives, Supporting, has_new_kind_of_atom, has_unknown_atoms,
-    rarity, similarity,
+    rarity, similarity, unknown_environments,
 };
 pub use parameters::{
     Fitted, FittedInput, Support, write_environments, write_model, write_molecules,

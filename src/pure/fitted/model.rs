@@ -209,7 +209,7 @@ impl Model {
     /// How rare the environments of a molecule are in this fit: the sum over
     /// those of first and second order of one over their occurrences.
     pub fn rarity(&self, table: &EnvironmentTable, described: &Described) -> f64 {
-        rarity(table, described, &self.occurrences)
+        rarity(table, described, &self.occurrences, self.level)
     }
 
     /// Whether the molecule has an atom of a kind that no molecule of this fit has,
@@ -253,15 +253,36 @@ pub fn has_new_kind_of_atom(
         })
 }
 
-/// The sum over first- and second-order environments of one over their occurrences.
-pub fn rarity(table: &EnvironmentTable, described: &Described, occurrences: &[u32]) -> f64 {
+/// The sum over the environments that a level looks at, up to the second order, of
+/// one over their occurrences.
+pub fn rarity(
+    table: &EnvironmentTable,
+    described: &Described,
+    occurrences: &[u32],
+    level: Level,
+) -> f64 {
     let known: f64 = described
         .found
         .iter()
-        .filter(|(position, _)| table.entries()[*position as usize].order <= Order::Second)
+        .filter(|(position, _)| table.entries()[*position as usize].order <= farthest(level))
         .map(|(position, _)| 1.0 / (f64::from(occurrences[*position as usize]) + 0.5))
         .sum();
-    known + 2.0 * described.unknown.len() as f64
+    known + 2.0 * unknown_environments(described, level) as f64
+}
+
+/// How many environments that a level looks at the table does not have.
+pub fn unknown_environments(described: &Described, level: Level) -> usize {
+    let unknown = described.unknown.iter();
+    unknown.filter(|entry| entry.1 <= farthest(level)).count()
+}
+
+/// The last order that says how rare a molecule is: the count level does not see more
+/// than the first.
+const fn farthest(level: Level) -> Order {
+    match level {
+        Level::Count => Order::First,
+        Level::Structure => Order::Second,
+    }
 }
 
 impl Quantity {

@@ -9,6 +9,7 @@ use super::described::{Described, INPUTS, Known, PRODUCTS, SIZES};
 use super::error::ParameterError;
 use super::model::{
     Model, NEAR, Prediction, Relatives, Supporting, has_new_kind_of_atom, similarity_f32,
+    unknown_environments,
 };
 use super::quantity::{Level, Quantity};
 use super::scale::{Ground, Scale, Standing};
@@ -288,6 +289,7 @@ impl Fitted {
         let ground = Ground {
             sum,
             rarity: model.rarity(&self.table, &input.molecule),
+            unknown_environments: unknown_environments(&input.molecule, level),
             unknown_atoms: model.has_unknown_atoms(&self.table, &input.molecule),
             relatives: &relatives,
         };

@@ -40,6 +40,8 @@ pub struct Ground<'a> {
     pub sum: f64,
     /// How rare the environments are in the fit.
     pub rarity: f64,
+    /// Environments that the table of the fit does not have.
+    pub unknown_environments: usize,
     /// Whether there are atoms of a kind that no molecule of the fit has.
     pub unknown_atoms: bool,
     /// The molecules of the fit nearby.
@@ -87,7 +89,7 @@ impl Standing {
             donors.ln_1p(),
             acceptors.ln_1p(),
             donors.min(acceptors),
-            (described.unknown.len() as f64).ln_1p(),
+            (ground.unknown_environments as f64).ln_1p(),
             f64::from(u8::from(ground.unknown_atoms)),
         ];
         let mut signs = [0.0; Scale::SIGNS];
@@ -175,7 +177,11 @@ impl Scale {
         for sign in SUMS {
             let by = |value: f64| self.weights[sign] * value;
             let grows = by(self.most[sign]) > by(self.least[sign]);
-            wide.signs[sign] = if grows { self.most[sign] } else { self.least[sign] };
+            wide.signs[sign] = if grows {
+                self.most[sign]
+            } else {
+                self.least[sign]
+            };
         }
         self.half_width(&wide)
     }

@@ -32,7 +32,7 @@ use groupsmith::groups::environment::{Environment, EnvironmentReader, Order, Sha
 use groupsmith::pure::fitted::{
     Described, EnvironmentEntry, EnvironmentTable, Ground, Known, Level, Model, Quantity,
     Relatives, Standing, Support, Supporting, classes_of, has_new_kind_of_atom, has_unknown_atoms,
-    rarity, similarity, write_environments, write_model, write_molecules,
+    rarity, similarity, unknown_environments, write_environments, write_model, write_molecules,
 };
 use groupsmith::run::Fingerprint;
 use rayon::prelude::*;
@@ -426,7 +426,8 @@ impl Fit {
                     }
                     let ground = Ground {
                         sum: sums[i],
-                        rarity: rarity(&self.table, described, &by_fold[folds[i]]),
+                        rarity: rarity(&self.table, described, &by_fold[folds[i]], level),
+                        unknown_environments: unknown_environments(described, level),
                         unknown_atoms: !inside[i],
                         relatives: &relatives,
                     };
