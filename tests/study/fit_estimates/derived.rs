@@ -13,13 +13,18 @@ use groupsmith::quantity::{GAS_CONSTANT_J_PER_MOL_K, REFERENCE_TEMPERATURE_K};
 
 use super::Fit;
 
-/// The constants that it follows from.
-pub(crate) const RESTS_ON: [Quantity; 4] = [
-    Quantity::BoilingPoint,
-    Quantity::MolarVolume,
-    Quantity::CriticalTemperature,
-    Quantity::CriticalPressure,
-];
+/// What is kept for every molecule, from fits without its part: boiling point and molar
+/// volume, and all that rests on them.
+pub(crate) fn constants() -> impl Iterator<Item = Quantity> {
+    Quantity::ALL
+        .into_iter()
+        .filter(|&quantity| is_base(quantity) || quantity.terms(Level::Structure).rests_on_others)
+}
+
+/// Whether other quantities rest on it.
+pub(crate) const fn is_base(quantity: Quantity) -> bool {
+    matches!(quantity, Quantity::BoilingPoint | Quantity::MolarVolume)
+}
 
 /// Constants of a molecule from fits without its part; the boiling point may be measured.
 struct Derived {
@@ -28,32 +33,51 @@ struct Derived {
     molar_mass_kg_per_mol: f64,
 }
 
-fn derive(fit: &Fit, molecule: usize, measured_boiling_point: Option<f64>) -> Option<Derived> {
-    let known = fit.known(Level::Structure, molecule)?;
+/// One of [`constants`] for a molecule from the fit without its part; the boiling point may be measured.
+pub(crate) fn constant(
+    fit: &Fit,
+    level: Level,
+    quantity: Quantity,
+    molecule: usize,
+    measured_boiling_point: Option<f64>,
+) -> Option<f64> {
+    let known = fit.known(level, molecule)?;
     let known = Known {
         boiling_point_k: measured_boiling_point.unwrap_or(known.boiling_point_k),
         ..known
     };
-    let of = |quantity: Quantity| {
-        fit.without_own_part(
+    match quantity {
+        Quantity::BoilingPoint => Some(known.boiling_point_k),
+        Quantity::MolarVolume => Some(known.molar_volume_m3_per_mol),
+        _ => fit.without_own_part(
             quantity,
-            Level::Structure,
-            &fit.partial[&quantity],
+            level,
+            &fit.partial[&(level, quantity)],
             molecule,
             Some(known),
-        )
-    };
+        ),
+    }
+}
+
+fn derive(
+    fit: &Fit,
+    level: Level,
+    molecule: usize,
+    measured_boiling_point: Option<f64>,
+) -> Option<Derived> {
+    let of = |quantity| constant(fit, level, quantity, molecule, measured_boiling_point);
     let constants = Constants::new(
-        known.boiling_point_k,
+        of(Quantity::BoilingPoint)?,
         of(Quantity::CriticalTemperature)?,
         of(Quantity::CriticalPressure)?,
         "derived",
     )
     .ok()?;
+    let molar_mass_kg_per_mol = fit.reference.molecules[molecule].molar_mass_kg_per_mol;
     Some(Derived {
         constants,
-        density_298: known.molar_mass_kg_per_mol / known.molar_volume_m3_per_mol,
-        molar_mass_kg_per_mol: known.molar_mass_kg_per_mol,
+        density_298: molar_mass_kg_per_mol / of(Quantity::MolarVolume)?,
+        molar_mass_kg_per_mol,
     })
 }
 
@@ -69,24 +93,52 @@ fn clapeyron(curve: &VaporPressureCurve, constants: &Constants, t: f64) -> Optio
     Some(GAS_CONSTANT_J_PER_MOL_K * t * t * slope * dz)
 }
 
-#[derive(Default)]
-struct Errors(BTreeMap<String, (Vec<f64>, usize)>);
+/// A measured value with what is derived for it.
+pub(crate) struct Point {
+    /// Figure, method and what it was derived from.
+    pub(crate) what: [String; 3],
+    pub(crate) molecule: usize,
+    pub(crate) temperature_k: f64,
+    pub(crate) value: f64,
+    pub(crate) estimate: Option<f64>,
+}
 
-impl Errors {
-    fn add(&mut self, what: &str, error: Option<f64>) {
-        let entry = self.0.entry(what.to_owned()).or_default();
-        entry.1 += 1;
-        entry.0.extend(error.filter(|error| error.is_finite()));
+impl Point {
+    fn unit(&self) -> &'static str {
+        if self.what[0] == "vapor pressure" {
+            "log10"
+        } else {
+            "%"
+        }
+    }
+
+    fn error(&self) -> Option<f64> {
+        let ratio = self.estimate? / self.value;
+        let error = if self.unit() == "log10" {
+            ratio.log10()
+        } else {
+            100.0 * (ratio - 1.0)
+        };
+        Some(error).filter(|error| error.is_finite())
     }
 }
 
-/// Errors as a table.
-pub(crate) fn errors(fit: &Fit) -> Result<String, Box<dyn Error>> {
+/// Every measured value of the figures that are derived, with its estimates.
+pub(crate) fn points(fit: &Fit, level: Level) -> Vec<Point> {
     let boiling: BTreeMap<usize, f64> = fit.reference.values[Quantity::BoilingPoint as usize]
         .iter()
         .copied()
         .collect();
-    let mut errors = Errors::default();
+    let mut points = Vec::new();
+    let mut add = |what: [&str; 3], (molecule, temperature_k, value), estimate| {
+        points.push(Point {
+            what: what.map(str::to_owned),
+            molecule,
+            temperature_k,
+            value,
+            estimate,
+        });
+    };
     let mut cache: BTreeMap<(usize, bool), Option<Derived>> = BTreeMap::new();
     let methods = [
         VaporPressureMethod::AmbroseWalton,
@@ -106,7 +158,7 @@ pub(crate) fn errors(fit: &Fit) -> Result<String, Box<dyn Error>> {
             }
             let derived = cache
                 .entry((molecule, measured))
-                .or_insert_with(|| derive(fit, molecule, tb.filter(|_| measured)));
+                .or_insert_with(|| derive(fit, level, molecule, tb.filter(|_| measured)));
             derived
                 .as_ref()
                 .map(|d| (d.constants, d.density_298, d.molar_mass_kg_per_mol))
@@ -121,11 +173,8 @@ pub(crate) fn errors(fit: &Fit) -> Result<String, Box<dyn Error>> {
                         VaporPressureCurve::through_boiling_point(method, constants).ok()?;
                     curve.pressure_pa(t).ok()
                 });
-                let error = found.map(|found| (found / pressure).log10());
-                errors.add(
-                    &format!("vapor pressure,{},{from},log10", method.id()),
-                    error,
-                );
+                let what = ["vapor pressure", method.id(), from];
+                add(what, (molecule, t, pressure), found);
             }
         }
         for &(molecule, t, density) in &fit.reference.densities {
@@ -142,8 +191,8 @@ pub(crate) fn errors(fit: &Fit) -> Result<String, Box<dyn Error>> {
                 .ok()?;
                 density.density_kg_per_m3(t).ok()
             });
-            let error = found.map(|found| 100.0 * (found / density - 1.0));
-            errors.add(&format!("density at T,carried from 298 K,{from},%"), error);
+            let what = ["density at T", "carried from 298 K", from];
+            add(what, (molecule, t, density), found);
         }
         for (quantity, at) in [
             (Quantity::EnthalpyOfVaporization, None),
@@ -160,19 +209,29 @@ pub(crate) fn errors(fit: &Fit) -> Result<String, Box<dyn Error>> {
                         let t = at.unwrap_or(constants.boiling_point_k());
                         clapeyron(&curve, &constants, t)
                     });
-                    let error = found.map(|found| 100.0 * (found / value - 1.0));
-                    errors.add(
-                        &format!("{},{} and Clapeyron,{from},%", quantity.id(), method.id()),
-                        error,
-                    );
+                    let method = format!("{} and Clapeyron", method.id());
+                    let what = [quantity.id(), &method, from];
+                    add(what, (molecule, at.unwrap_or(f64::NAN), value), found);
                 }
             }
         }
     }
+    points
+}
+
+/// Errors as a table.
+pub(crate) fn errors(points: &[Point]) -> Result<String, Box<dyn Error>> {
+    let mut errors: BTreeMap<String, (Vec<f64>, usize)> = BTreeMap::new();
+    for point in points {
+        let what = format!("{},{}", point.what.join(","), point.unit());
+        let entry = errors.entry(what).or_default();
+        entry.1 += 1;
+        entry.0.extend(point.error());
+    }
     let mut text = String::from(
         "figure,method,from,unit,points,with_value,mean_abs,median_abs,p90_abs,mean_abs_best_98_percent,bias\n",
     );
-    for (what, (mut values, asked)) in errors.0 {
+    for (what, (mut values, asked)) in errors {
         let n = values.len();
         let bias = values.iter().sum::<f64>() / n as f64;
         values.iter_mut().for_each(|value| *value = value.abs());

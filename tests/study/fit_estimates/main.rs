@@ -1,7 +1,7 @@
 //! Fits the estimates of `groupsmith::pure::fitted` and writes their parameter files.
 //!
 //! ```text
-//! cargo run --release --features fit --example fit_estimates -- REFERENCE_FOLDER groups/estimates results/DATE-estimates
+//! cargo run --release --features fit --example fit_estimates -- REFERENCE_FOLDER groups/estimates results/DATE-estimates [PREDICTIONS_FOLDER]
 //! ```
 //!
 //! Reads the project's reference folder on pure substances and nothing else.
@@ -13,11 +13,13 @@
 //! Parameter files hold weights and the environments of the molecules of the
 //! fit, no measured value. The results folder gets the errors of the
 //! cross-validation by quantity, level, family and size, the coverage and width of
-//! the intervals, and the points that look wrong.
+//! the intervals, and the points that look wrong. A fourth folder, where one is given, gets the
+//! predictions of the cross-validation, value by value (`predictions`).
 
 mod data;
 mod derived;
 mod gaussian;
+mod predictions;
 mod report;
 mod scale;
 
@@ -103,8 +105,8 @@ struct Fit {
     support: Support,
     /// Boiling point and molar volume without the part the molecule is in, by level.
     known: BTreeMap<Level, (Vec<f64>, Vec<f64>)>,
-    /// Models at structure level without one part each, for what is derived from them.
-    partial: BTreeMap<Quantity, Vec<PartialModel>>,
+    /// Models without one part each, for what is derived from them.
+    partial: BTreeMap<(Level, Quantity), Vec<PartialModel>>,
 }
 
 /// A model that was fitted without one part of the data.
@@ -116,8 +118,14 @@ struct PartialModel {
 
 fn main() -> Result<(), Fault> {
     let arguments: Vec<PathBuf> = std::env::args_os().skip(1).map(PathBuf::from).collect();
-    let [folder, parameters, results] = arguments.as_slice() else {
-        return Err("usage: fit_estimates REFERENCE_FOLDER PARAMETER_FOLDER RESULTS_FOLDER".into());
+    let (folder, parameters, results, predictions) = match arguments.as_slice() {
+        [folder, parameters, results] => (folder, parameters, results, None),
+        [folder, parameters, results, predictions] => {
+            (folder, parameters, results, Some(predictions))
+        }
+        _ => {
+            return Err("usage: fit_estimates REFERENCE_FOLDER PARAMETER_FOLDER RESULTS_FOLDER [PREDICTIONS_FOLDER]".into());
+        }
     };
     std::fs::create_dir_all(parameters)?;
     std::fs::create_dir_all(results)?;
@@ -182,8 +190,12 @@ fn main() -> Result<(), Fault> {
             report.add(fitted.outcome);
         }
     }
-    std::fs::write(results.join("derived.csv"), derived::errors(&fit)?)?;
+    let derived = derived::points(&fit, Level::Structure);
+    std::fs::write(results.join("derived.csv"), derived::errors(&derived)?)?;
     report.write(results, &fit.reference)?;
+    if let Some(folder) = predictions {
+        predictions::write(folder, &fit, &report)?;
+    }
     Ok(())
 }
 
@@ -468,10 +480,10 @@ impl Fit {
             scale,
             errors: Vec::new(),
         };
-        if derived::RESTS_ON.contains(&quantity) {
+        if derived::constants().any(|kept| kept == quantity) {
             let partial =
                 self.partial_models(quantity, level, &members, &targets, &folds, setting)?;
-            if matches!(quantity, Quantity::BoilingPoint | Quantity::MolarVolume) {
+            if derived::is_base(quantity) {
                 let all = self.estimate_all(quantity, level, &partial);
                 let known = self.known.entry(level).or_default();
                 match quantity {
@@ -479,8 +491,7 @@ impl Fit {
                     _ => known.1 = all,
                 }
             }
-            // the structure level comes last and stays
-            self.partial.insert(quantity, partial);
+            self.partial.insert((level, quantity), partial);
         }
         let outcome = Outcome::new(
             quantity,

@@ -15,14 +15,20 @@ const RARITY: usize = 3;
 
 /// What the cross-validation found for one quantity at one level.
 pub(crate) struct Outcome {
-    quantity: Quantity,
-    level: Level,
+    pub(crate) quantity: Quantity,
+    pub(crate) level: Level,
     setting: (f64, f64),
-    points: Vec<Point>,
+    pub(crate) points: Vec<Point>,
 }
 
-struct Point {
-    molecule: usize,
+pub(crate) struct Point {
+    pub(crate) molecule: usize,
+    /// Measured value, SI.
+    pub(crate) value: f64,
+    /// Value of the fit without the part, SI.
+    pub(crate) estimate: f64,
+    /// Ends of the 90 % interval, where the closing function has a value there.
+    pub(crate) interval: [Option<f64>; 2],
     error: f64,
     /// Residual of the sum over the half width of its interval.
     ratio: f64,
@@ -33,9 +39,9 @@ struct Point {
     family: Family,
     size: SizeClass,
     /// Whether the fit without its part has all of its atoms.
-    inside: bool,
+    pub(crate) inside: bool,
     /// Whether a value would be given at all: no kind of atom is new.
-    given: bool,
+    pub(crate) given: bool,
 }
 
 /// How an error is told.
@@ -86,6 +92,9 @@ impl Outcome {
                 let residual = targets[i] - sums[i];
                 Point {
                     molecule,
+                    value,
+                    estimate,
+                    interval: [-1.0, 1.0].map(|sign| closed(sums[i] + sign * half_widths[i])),
                     error: error(estimate, value),
                     ratio: residual.abs() / half_widths[i],
                     half_width: half_widths[i],
@@ -183,7 +192,7 @@ impl Summary {
 /// Everything for the results folder.
 #[derive(Default)]
 pub(crate) struct Report {
-    outcomes: Vec<Outcome>,
+    pub(crate) outcomes: Vec<Outcome>,
 }
 
 impl Report {
