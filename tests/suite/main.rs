@@ -24,3 +24,4 @@ mod run;
 mod screen;
 mod tables;
 mod workbench;
+mod worked_examples;
