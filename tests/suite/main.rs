@@ -11,6 +11,7 @@ mod evaluate;
 mod family;
 mod fitted;
 mod groups;
+mod handbook;
 mod independent;
 mod intervals;
 mod mixture;
