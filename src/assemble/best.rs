@@ -113,8 +113,8 @@ mod tests {
 
     #[test]
     fn the_order_of_offers_does_not_matter() {
-        let all: Vec<Scored> = (0..40)
-            .map(|at| scored(u64::from(at % 7), at as u16))
+        let all: Vec<Scored> = (0_u16..40)
+            .map(|at| scored(u64::from(at % 7), at))
             .collect();
         let mut forward = Best::new(5);
         all.iter().cloned().for_each(|one| forward.offer(one));

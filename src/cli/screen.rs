@@ -714,7 +714,7 @@ mod tests {
         let plan = plan(BRIEF, Some(wide));
         let screened = screened(&plan, 2, folder.path());
         let mut out = Vec::new();
-        how_sure(&mut out, &plan, &screened).unwrap();
+        how_sure(&mut out, &plan, &screened.ranking, screened.next.as_ref()).unwrap();
         insta::assert_snapshot!(String::from_utf8(out).unwrap().trim(), @r"
         1–19, 21 are not distinguishable: each of the others has a chance above 20 % to score better than the first.
         To measure next: the boiling point of ether 6 1, which makes up 84 % of the variance of its score; knowing it would put it before ether 7 1 with a probability of 36 %.
