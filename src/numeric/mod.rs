@@ -1,10 +1,12 @@
 //! Numerical tools without chemistry: roots of one unknown, small dense
-//! equations, finite differences, the normal distribution.
+//! equations, finite differences, the normal distribution; [`lanes`] for numbers
+//! side by side.
 //!
 //! Every iteration has a limit; running into it is an error that carries the
 //! residual, the number of steps and the last iterate.
 
 mod difference;
+pub mod lanes;
 mod linear;
 mod normal;
 mod root;
