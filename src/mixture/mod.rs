@@ -10,7 +10,8 @@
 //! derivatives), [`Liquid`] (what every model offers to phase equilibrium:
 //! [`bubble_temperature`], [`azeotropes`], [`liquid_phases`],
 //! [`relative_volatility`]), [`KeysAtTemperature`] and [`HostAtTemperature`]
-//! (the batch path), [`ActivityErrors`] (90 % intervals of ln γ∞), [`UnifacTables`] (what `groupsmith tables` shows).
+//! (the batch path), [`SharedGroups`] (the same for candidates of the same main
+//! groups, side by side), [`ActivityErrors`] (90 % intervals of ln γ∞), [`UnifacTables`] (what `groupsmith tables` shows).
 
 mod composition;
 mod equilibrium;
@@ -33,7 +34,7 @@ pub use liquid::{IdealState, Liquid, LiquidMixture};
 pub use model::{ActivityModel, ModelStatus, RESERVED_MODELS};
 pub use uncertainty::{ActivityErrors, ChemicalClass, ErrorModel, Likeness, LnError};
 pub use unifac::{
-    Component, Coverage, GroupsAtTemperature, HostAtTemperature, Interaction, KeysAtTemperature,
-    MainGroup, Override, PairRecord, Slip, Slips, Subgroup, TableFile, Unifac, UnifacMixture,
-    UnifacOverlay, UnifacState, UnifacTables, UnifacTexts,
+    CandidateLanes, Component, Coverage, GroupsAtTemperature, HostAtTemperature, Interaction,
+    KeysAtTemperature, MainGroup, Override, PairRecord, SharedGroups, Slip, Slips, Subgroup,
+    TableFile, Unifac, UnifacMixture, UnifacOverlay, UnifacState, UnifacTables, UnifacTexts,
 };

@@ -28,6 +28,18 @@ impl Combinatorial {
             Self::ThreeQuarters => 0.75,
         }
     }
+
+    /// r to that power.
+    #[inline(always)]
+    pub(super) fn r_flory(self, r: f64) -> f64 {
+        match self {
+            Self::Original => r,
+            Self::ThreeQuarters => {
+                let root = r.sqrt();
+                root * root.sqrt()
+            }
+        }
+    }
 }
 
 /// A UNIFAC model: its tables and its combinatorial part.
@@ -182,13 +194,7 @@ impl Unifac {
                 component: counts.to_string(),
             });
         }
-        component.r_flory = match self.combinatorial {
-            Combinatorial::Original => component.r,
-            Combinatorial::ThreeQuarters => {
-                let root = component.r.sqrt();
-                root * root.sqrt()
-            }
-        };
+        component.r_flory = self.combinatorial.r_flory(component.r);
         Ok(component)
     }
 

@@ -5,7 +5,7 @@ use std::sync::Arc;
 use crate::mixture::liquid::check_fractions;
 use crate::mixture::{MixtureError, PairGap};
 
-use super::component::{Component, Unifac};
+use super::component::{Combinatorial, Component, Unifac};
 use super::kernel::HALF_Z;
 use super::tables::{MainIndex, UnifacTables};
 
@@ -14,8 +14,7 @@ use super::tables::{MainIndex, UnifacTables};
 pub struct GroupsAtTemperature {
     tables: Arc<UnifacTables>,
     temperature_k: f64,
-    /// Power of r in the Flory–Huggins term.
-    flory_power: f64,
+    combinatorial: Combinatorial,
     /// Row m, column n: ψ_mn; 1 where nothing is published, and never used there.
     psi: Vec<f64>,
 }
@@ -23,7 +22,7 @@ pub struct GroupsAtTemperature {
 impl GroupsAtTemperature {
     fn new(
         tables: &Arc<UnifacTables>,
-        flory_power: f64,
+        combinatorial: Combinatorial,
         temperature_k: f64,
     ) -> Result<Self, MixtureError> {
         let n = tables.main_groups().len();
@@ -50,7 +49,7 @@ impl GroupsAtTemperature {
         Ok(Self {
             tables: Arc::clone(tables),
             temperature_k,
-            flory_power,
+            combinatorial,
             psi,
         })
     }
@@ -67,6 +66,16 @@ impl GroupsAtTemperature {
 
     fn main_groups(&self) -> usize {
         self.tables.main_groups().len()
+    }
+
+    /// The combinatorial part of the model.
+    pub(super) fn combinatorial(&self) -> Combinatorial {
+        self.combinatorial
+    }
+
+    /// ψ of two main groups by position.
+    pub(super) fn psi(&self, from: usize, to: usize) -> f64 {
+        self.psi[from * self.main_groups() + to]
     }
 
     /// Σ_N' A_N' ψ_N'N of a pure component for its own main group `main`: S_N times q.
@@ -117,14 +126,15 @@ pub struct KeysAtTemperature {
     areas: Vec<[f64; LANES]>,
 }
 
+/// What ln γ∞ of a key needs besides its surface by main group.
 #[derive(Clone, Debug)]
-struct Key {
+pub(super) struct Key {
     /// Everything in ln γ∞ that does not depend on the candidate: with
     /// Σ A_k (1 + ln q_candidate) = q (1 + ln q_candidate) taken out of the residual part.
-    constant: f64,
-    r_flory: f64,
-    r: f64,
-    q: f64,
+    pub(super) constant: f64,
+    pub(super) r_flory: f64,
+    pub(super) r: f64,
+    pub(super) q: f64,
 }
 
 impl KeysAtTemperature {
@@ -163,7 +173,7 @@ impl KeysAtTemperature {
                 q: key.q,
             });
         }
-        let places: Vec<usize> = (0..n).filter(|&at| mains >> at & 1 == 1).collect();
+        let places: Vec<usize> = positions(mains).collect();
         let blocks = places.len().div_ceil(LANES);
         let mut psi = vec![[[1.0; LANES]; 2]; n * blocks];
         for main in 0..n {
@@ -219,9 +229,10 @@ impl KeysAtTemperature {
     pub fn ln_gamma_inf(&self, candidate: &Component, out: &mut [f64]) -> Result<(), PairGap> {
         assert_eq!(out.len(), self.keys.len(), "one result for each key");
         debug_assert_eq!(candidate.model, self.groups.tables.model());
-        self.check(candidate)?;
+        let mains = candidate.areas.iter().map(|&(main, _)| main.get());
+        self.check(mains, candidate.mains)?;
         let (ln_r, ln_q) = (candidate.r.ln(), candidate.q.ln());
-        let ln_r_flory = self.groups.flory_power * ln_r;
+        let ln_r_flory = self.groups.combinatorial.power() * ln_r;
         let per_r_flory = 1.0 / candidate.r_flory;
         let q_per_r = candidate.q / candidate.r;
         let by_surface = HALF_Z * (ln_r - ln_q) + ln_q;
@@ -267,8 +278,28 @@ impl KeysAtTemperature {
         Ok(())
     }
 
-    fn check(&self, candidate: &Component) -> Result<(), PairGap> {
-        gap_with(&self.groups.tables, candidate, self.mains)
+    /// The first unpublished pair among the main groups of a candidate (by
+    /// position, and the same as `bits`) or between one of them and a key.
+    pub(super) fn check(
+        &self,
+        mains: impl Iterator<Item = usize>,
+        bits: u128,
+    ) -> Result<(), PairGap> {
+        gap_with(&self.groups.tables, mains, bits | self.mains)
+    }
+
+    /// The main groups of the keys by position, ascending.
+    pub(super) fn mains(&self) -> impl Iterator<Item = usize> {
+        positions(self.mains)
+    }
+
+    /// Each key with its surface in each of [`Self::mains`].
+    pub(super) fn keys(&self) -> impl Iterator<Item = (&Key, impl Iterator<Item = f64> + Clone)> {
+        let areas = self.areas.chunks_exact(self.blocks);
+        self.keys
+            .iter()
+            .zip(areas)
+            .map(|(key, areas)| (key, areas.as_flattened()[..self.columns].iter().copied()))
     }
 }
 
@@ -350,7 +381,8 @@ impl HostAtTemperature {
     /// [`PairGap`] if an interaction within the candidate, or with the host, is not published.
     pub fn ln_gamma_inf(&self, candidate: &Component) -> Result<f64, PairGap> {
         debug_assert_eq!(candidate.model, self.groups.tables.model());
-        gap_with(&self.groups.tables, candidate, self.mains)?;
+        let mains = candidate.areas.iter().map(|&(main, _)| main.get());
+        gap_with(&self.groups.tables, mains, candidate.mains | self.mains)?;
         let residual: f64 = candidate
             .areas
             .iter()
@@ -364,16 +396,28 @@ impl HostAtTemperature {
     }
 }
 
-/// The first unpublished pair within the candidate or between it and `others`.
-fn gap_with(tables: &UnifacTables, candidate: &Component, others: u128) -> Result<(), PairGap> {
-    let needed = candidate.mains | others;
-    for &(main, _) in &candidate.areas {
-        let missing = needed & !tables.known[main.get()];
+/// The first unpublished pair of one of `mains` (by position) with one of `needed` (bits).
+fn gap_with(
+    tables: &UnifacTables,
+    mains: impl Iterator<Item = usize>,
+    needed: u128,
+) -> Result<(), PairGap> {
+    for main in mains {
+        let missing = needed & !tables.known[main];
         if missing != 0 {
-            return Err(tables.pair_gap(main.get(), missing.trailing_zeros() as usize));
+            return Err(tables.pair_gap(main, missing.trailing_zeros() as usize));
         }
     }
     Ok(())
+}
+
+/// The places of the bits that are set, ascending.
+fn positions(mut bits: u128) -> impl Iterator<Item = usize> {
+    std::iter::from_fn(move || {
+        let at = bits.trailing_zeros() as usize;
+        bits &= bits.wrapping_sub(1);
+        (at < 128).then_some(at)
+    })
 }
 
 impl Unifac {
@@ -386,7 +430,6 @@ impl Unifac {
         &self,
         temperature_k: f64,
     ) -> Result<Arc<GroupsAtTemperature>, MixtureError> {
-        GroupsAtTemperature::new(&self.tables, self.combinatorial.power(), temperature_k)
-            .map(Arc::new)
+        GroupsAtTemperature::new(&self.tables, self.combinatorial, temperature_k).map(Arc::new)
     }
 }

@@ -254,7 +254,7 @@ impl UnifacTables {
             .map(|index| &self.main_groups[index.get()])
     }
 
-    fn main_index(&self, number: u16) -> Option<MainIndex> {
+    pub(super) fn main_index(&self, number: u16) -> Option<MainIndex> {
         super::reader::main_index(&self.main_groups, number)
     }
 
