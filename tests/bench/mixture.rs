@@ -1,12 +1,14 @@
-//! Speed of the activity kernels: ln γ of a ternary, and the batch path.
+//! Speed of the activity kernels: ln γ of a ternary, the batch path, and the same side by side.
 
 use std::hint::black_box;
 
 use criterion::{Criterion, Throughput, criterion_group, criterion_main};
 use groupsmith::groups::GroupCounts;
 use groupsmith::mixture::{
-    ActivityModel, Component, HostAtTemperature, KeysAtTemperature, Slips, Unifac,
+    ActivityModel, CandidateLanes, Component, HostAtTemperature, KeysAtTemperature, SharedGroups,
+    Slips, Unifac,
 };
+use groupsmith::numeric::lanes::{Instructions, LANES};
 
 fn unifac(model: ActivityModel) -> Unifac {
     Unifac::built_in(model, Slips::Corrected)
@@ -139,5 +141,84 @@ fn batch(c: &mut Criterion) {
     group.finish();
 }
 
-criterion_group!(benches, ternary, batch);
+/// Candidates in runs of eight, one CH2 more each; one of each subgroup given,
+/// and of the first one more with every run, up to four.
+struct Runs {
+    mains: Vec<u16>,
+    r: Vec<f64>,
+    q: Vec<f64>,
+    areas: Vec<Vec<f64>>,
+}
+
+impl Runs {
+    fn new(unifac: &Unifac, subgroups: &[u16], candidates: usize) -> Self {
+        let counts = |at: usize| {
+            let run = at / 8;
+            std::iter::once((2, at % 8 + 1))
+                .chain(subgroups.iter().map(|&number| (number, 1)))
+                .chain([(subgroups[0], run % 4)])
+        };
+        let group = |number| unifac.tables().subgroup(number).expect("it is listed");
+        let numbers = std::iter::once(&2).chain(subgroups);
+        let mains: Vec<u16> = numbers.map(|&number| group(number).main_group).collect();
+        let mut runs = Self {
+            r: vec![0.0; candidates],
+            q: vec![0.0; candidates],
+            areas: vec![vec![0.0; candidates]; mains.len()],
+            mains,
+        };
+        for at in 0..candidates {
+            for (number, count) in counts(at) {
+                let (group, count) = (group(number), count as f64);
+                let main = runs.mains.iter().position(|&main| main == group.main_group);
+                runs.r[at] += count * group.r;
+                runs.q[at] += count * group.q;
+                runs.areas[main.expect("it was gathered")][at] += count * group.q;
+            }
+        }
+        runs
+    }
+}
+
+/// OH, CH2O; CH3COO and CH2CO besides: three and five main groups with CH2.
+const SETS: [&[u16]; 2] = [&[14, 25], &[14, 25, 21, 19]];
+
+fn lanes(c: &mut Criterion) {
+    let mut group = c.benchmark_group("lanes: assemblies for acetone and methanol");
+    for model in [ActivityModel::Unifac, ActivityModel::UnifacDortmund] {
+        let unifac = unifac(model);
+        let keys = ["1:1;18:1", "15:1"].map(|groups| component(&unifac, groups));
+        let groups = unifac.at_temperature(330.0).expect("a common temperature");
+        let keys = KeysAtTemperature::new(&groups, &keys).expect("pairs are published");
+        for (subgroups, candidates) in [(SETS[0], 512), (SETS[1], 512), (SETS[0], LANES)] {
+            let runs = Runs::new(&unifac, subgroups, candidates);
+            let shared = SharedGroups::new(&keys, &runs.mains).expect("pairs are published");
+            let areas: Vec<&[f64]> = runs.areas.iter().map(Vec::as_slice).collect();
+            let mut out = [vec![0.0; candidates], vec![0.0; candidates]];
+            group.throughput(Throughput::Elements(candidates as u64));
+            for instructions in [Instructions::Plain, Instructions::Best] {
+                let name = format!(
+                    "{}, {} main groups, {candidates} a call, {instructions:?}",
+                    model.id(),
+                    runs.mains.len(),
+                );
+                group.bench_function(name, |b| {
+                    b.iter(|| {
+                        let candidates = CandidateLanes {
+                            r: black_box(&runs.r),
+                            q: black_box(&runs.q),
+                            areas: black_box(&areas),
+                        };
+                        let [first, second] = &mut out;
+                        shared.ln_gamma_inf(instructions, &candidates, &mut [first, second]);
+                        black_box(&out);
+                    });
+                });
+            }
+        }
+    }
+    group.finish();
+}
+
+criterion_group!(benches, ternary, batch, lanes);
 criterion_main!(benches);
