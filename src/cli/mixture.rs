@@ -119,7 +119,7 @@ pub(super) fn run(
     out.flush()?;
     if components
         .iter()
-        .any(|component| component.profile.associates)
+        .any(|component| component.profile.facts.associates)
     {
         notes.say("note: a carboxylic acid is present; association in the vapor is not modelled, vapor-side figures are off");
     }

@@ -354,9 +354,11 @@ fn fitted_errors(property: &str) -> Result<String, CliError> {
         Property::LiquidDensity => &[Quantity::MolarVolume],
         Property::VaporPressure | Property::AcentricFactor => &[
             Quantity::BoilingPoint,
+            Quantity::VaporPressureSlope,
             Quantity::CriticalTemperature,
             Quantity::CriticalPressure,
         ],
+        Property::EnthalpyOfVaporization => &[Quantity::VaporPressureSlope, Quantity::BoilingPoint],
         found => match fitted_quantity(found) {
             Some(quantity) => &Quantity::ALL[quantity as usize..=quantity as usize],
             None => {

@@ -366,7 +366,7 @@ impl Plan {
         keys.iter().fold(Flags::NONE, |flags, &key| {
             let key = &self.components[key];
             let flags = flags.union(key.vapor.flags_at(temperature_k));
-            if key.profile.associates {
+            if key.profile.facts.associates {
                 flags.with(Flag::VaporAssociationNotModelled)
             } else {
                 flags
@@ -400,6 +400,7 @@ impl Plan {
         self.key_pressure_ratio.as_ref().map_err(Absent::clone)?;
         let curve = VaporCurve::of_candidate(
             &self.library,
+            profile,
             candidate.known,
             candidate.own,
             &candidate.estimates[0],
@@ -413,9 +414,9 @@ impl Plan {
         let vapor = Vapor {
             pressures: &pressures,
             associates: &[
-                first.profile.associates,
-                second.profile.associates,
-                profile.associates,
+                first.profile.facts.associates,
+                second.profile.facts.associates,
+                profile.facts.associates,
             ],
             range_k: boiling_range_k([&first.vapor, &second.vapor, &curve].into_iter()),
         };

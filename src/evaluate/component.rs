@@ -10,7 +10,8 @@ use super::profile::{Known, Profile, Profiler, SAME_TEMPERATURE_K, properties};
 use crate::data::VaporPressure;
 use crate::data::pairs::PairIdentity;
 use crate::pure::Estimates;
-use crate::pure::corresponding_states::{Constants, VaporPressureCurve};
+use crate::pure::corresponding_states::VaporPressureCurve;
+use crate::pure::vapor_pressure_curve;
 use crate::quantity::{
     Absent, Estimate, Flag, Flags, Property, REFERENCE_TEMPERATURE_K, STANDARD_ATMOSPHERE_PA,
 };
@@ -33,7 +34,7 @@ impl VaporCurve {
             return Self::Measured(curve.clone());
         }
         let all = properties(library, profile, known, REFERENCE_TEMPERATURE_K);
-        Self::estimated(library, &all).unwrap_or_else(Self::Absent)
+        Self::estimated(library, profile, &all).unwrap_or_else(Self::Absent)
     }
 
     /// The curve of a candidate of which the user has measured values of their
@@ -41,6 +42,7 @@ impl VaporCurve {
     /// Else it is estimated from its properties.
     pub(super) fn of_candidate(
         library: &Library,
+        profile: &Profile,
         known: Option<Known<'_>>,
         own: &[(Property, Estimate)],
         all: &Estimates,
@@ -59,7 +61,7 @@ impl VaporCurve {
         if points.is_empty() {
             return match curve {
                 Some(curve) => Ok(Self::Measured(curve.clone())),
-                None => Self::estimated(library, all),
+                None => Self::estimated(library, profile, all),
             };
         }
         let line: SmallVec<[(f64, f64); 4]> = points.iter().map(|&(t, p, _)| (t, p)).collect();
@@ -71,30 +73,27 @@ impl VaporCurve {
         match curve {
             Some(curve) => Ok(Self::Measured(curve.moved_or_flagged(&line, &source))),
             None => VaporPressure::between(&line, source.into()).map_or_else(
-                || Self::estimated(library, all),
+                || Self::estimated(library, profile, all),
                 |curve| Ok(Self::Measured(curve)),
             ),
         }
     }
 
     /// The estimated curve that goes with a set of estimates.
-    pub(super) fn estimated(library: &Library, all: &Estimates) -> Result<Self, Absent> {
-        let value = |property: Property| {
-            all[property as usize]
-                .as_ref()
-                .map(|found| found.value)
-                .map_err(Absent::clone)
-        };
+    pub(super) fn estimated(
+        library: &Library,
+        profile: &Profile,
+        all: &Estimates,
+    ) -> Result<Self, Absent> {
+        let constants = [
+            Property::BoilingPoint,
+            Property::CriticalTemperature,
+            Property::CriticalPressure,
+        ]
+        .map(|property| &all[property as usize]);
+        let h_vap = &all[Property::EnthalpyOfVaporization as usize];
         let method = library.methods().vapor_pressure;
-        let constants = Constants::new(
-            value(Property::BoilingPoint)?,
-            value(Property::CriticalTemperature)?,
-            value(Property::CriticalPressure)?,
-            method.id(),
-        )?;
-        Ok(Self::Estimated(VaporPressureCurve::through_boiling_point(
-            method, constants,
-        )?))
+        vapor_pressure_curve(method, &profile.facts, constants, h_vap).map(Self::Estimated)
     }
 
     /// Vapor pressure in Pa at a temperature in K.

@@ -7,7 +7,11 @@ use smallvec::SmallVec;
 use super::Library;
 use super::profile::{GivenValues, Profile};
 use crate::groups::environment::{EnvironmentReader, Order};
-use crate::pure::fitted::{FittedInput, Known, Level, Prediction, Quantity};
+use crate::pure::corresponding_states::Constants;
+use crate::pure::enthalpy_of_vaporization_of_slope;
+use crate::pure::fitted::{
+    FittedInput, Known, Level, Prediction, Quantity, volume_carried, volume_temperature_k,
+};
 use crate::quantity::{Absent, Estimate, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
 
 /// Which methods estimate what was not measured.
@@ -58,15 +62,12 @@ pub(super) struct FittedValues {
     pub(super) refused: SmallVec<[(Property, Absent); 4]>,
 }
 
-/// What is fitted directly, and from which quantity, beside boiling point and density.
-const DIRECT: [(Property, Quantity); 14] = [
+/// What is fitted directly, and from which quantity, beside boiling point, density and
+/// the enthalpy of vaporization at the boiling point.
+const DIRECT: [(Property, Quantity); 13] = [
     (Property::CriticalTemperature, Quantity::CriticalTemperature),
     (Property::CriticalPressure, Quantity::CriticalPressure),
     (Property::CriticalVolume, Quantity::CriticalVolume),
-    (
-        Property::EnthalpyOfVaporization,
-        Quantity::EnthalpyOfVaporization,
-    ),
     (
         Property::EnthalpyOfVaporizationAt298,
         Quantity::EnthalpyOfVaporizationAt298,
@@ -93,6 +94,7 @@ pub fn fitted_quantity(property: Property) -> Option<Quantity> {
     let direct = DIRECT.iter().find(|direct| direct.0 == property);
     match property {
         Property::BoilingPoint => Some(Quantity::BoilingPoint),
+        Property::EnthalpyOfVaporization => Some(Quantity::VaporPressureSlope),
         _ => direct.map(|direct| direct.1),
     }
 }
@@ -141,13 +143,19 @@ pub(super) fn fitted_beside(
                 .temperature_k
                 .is_some_and(|t| (t - REFERENCE_TEMPERATURE_K).abs() < 0.01)
     });
-    let mut volume = measured_density.map(|(_, density)| molar_mass / density.value);
+    let volume_k = boiling_point_k.map_or(REFERENCE_TEMPERATURE_K, volume_temperature_k);
+    let mut volume = measured_density.and_then(|(_, density)| {
+        // Guldberg's critical temperature will do for so short a way
+        let critical_k = 1.5 * boiling_point_k?;
+        let volume = molar_mass / density.value;
+        volume_carried(volume, REFERENCE_TEMPERATURE_K, volume_k, critical_k)
+    });
     if volume.is_none() {
         match molecule.estimate(Quantity::MolarVolume, None) {
             Ok(estimate) => {
                 volume = Some(estimate.value);
                 if have(&given, Property::LiquidDensity).is_none() {
-                    let density = density_of(estimate, molar_mass);
+                    let density = density_of(estimate, molar_mass, volume_k);
                     given.push((Property::LiquidDensity, density));
                 }
             }
@@ -176,6 +184,12 @@ pub(super) fn fitted_beside(
             Err(reason) => refused.push((property, reason)),
         }
     }
+    if have(&given, Property::EnthalpyOfVaporization).is_none() {
+        match molecule.enthalpy_of_vaporization(&given, known) {
+            Ok(estimate) => given.push((Property::EnthalpyOfVaporization, estimate)),
+            Err(reason) => refused.push((Property::EnthalpyOfVaporization, reason)),
+        }
+    }
     given.drain(..measured);
     FittedValues {
         values: given,
@@ -183,15 +197,15 @@ pub(super) fn fitted_beside(
     }
 }
 
-/// The density at 298.15 K that goes with a molar volume.
-fn density_of(volume: Estimate, molar_mass_kg_per_mol: f64) -> Estimate {
+/// The density that goes with a molar volume at a temperature in K.
+fn density_of(volume: Estimate, molar_mass_kg_per_mol: f64, volume_k: f64) -> Estimate {
     let ends = |(low, high)| (molar_mass_kg_per_mol / high, molar_mass_kg_per_mol / low);
     Estimate {
         value: molar_mass_kg_per_mol / volume.value,
         interval: volume.interval.map(ends),
         ..volume
     }
-    .at(REFERENCE_TEMPERATURE_K)
+    .at(volume_k)
 }
 
 struct Fitting<'a> {
@@ -225,6 +239,33 @@ impl Fitting<'_> {
             ..Estimate::new(prediction.value, self.level.id())
         }
         .flagged(flags))
+    }
+
+    /// From the fitted slope of the vapor-pressure curve at the boiling point.
+    fn enthalpy_of_vaporization(
+        &mut self,
+        given: &GivenValues,
+        known: Option<Known>,
+    ) -> Result<Estimate, Absent> {
+        let slope = self.estimate(Quantity::VaporPressureSlope, known)?;
+        let of = |property: Property| {
+            given
+                .iter()
+                .find(|(known, _)| *known == property)
+                .map(|(_, estimate)| estimate)
+                .ok_or(Absent::NoMethod)
+        };
+        let tb = of(Property::BoilingPoint)?;
+        let constants = Constants::new(
+            tb.value,
+            of(Property::CriticalTemperature)?.value,
+            of(Property::CriticalPressure)?.value,
+            self.level.id(),
+        )?;
+        let associates = self.profile.facts.associates;
+        Ok(enthalpy_of_vaporization_of_slope(
+            slope, tb, &constants, associates,
+        ))
     }
 
     /// Which atoms of the molecule no molecule of the fit has.

@@ -26,8 +26,6 @@ pub struct Profile {
     pub environments: EnvironmentCounts,
     /// Facts that travel with the counts.
     pub facts: StructureFacts,
-    /// Whether its vapor associates (a carboxylic acid).
-    pub associates: bool,
 }
 
 /// Coverage by set.
@@ -123,7 +121,7 @@ impl Profiler {
         }
         profile.facts =
             StructureFacts::new(molecule.composition(), molecule.molar_mass_kg_per_mol());
-        profile.associates = molecule.has_carboxyl();
+        profile.facts.associates = molecule.has_carboxyl();
         Ok(())
     }
 

@@ -200,7 +200,7 @@ fn range_k(components: &[MixtureComponent]) -> (f64, f64) {
 fn associates(components: &[MixtureComponent]) -> Vec<bool> {
     components
         .iter()
-        .map(|component| component.profile.associates)
+        .map(|component| component.profile.facts.associates)
         .collect()
 }
 

@@ -16,6 +16,8 @@ pub struct StructureFacts {
     pub atoms: u32,
     /// Atoms that are not hydrogen.
     pub heavy_atoms: u32,
+    /// Whether its vapor consists of pairs in part, as that of carboxylic acids does.
+    pub associates: bool,
 }
 
 impl StructureFacts {
@@ -26,7 +28,8 @@ impl StructureFacts {
         halogens > 0 && halogens >= of(Element::H)
     }
 
-    /// Facts of a molecule of this composition; atoms are counted from it.
+    /// Facts of a molecule of this composition; atoms are counted from it, and its vapor
+    /// is taken for one of single molecules.
     pub fn new(composition: Composition, molar_mass_kg_per_mol: f64) -> Self {
         let heavy_atoms = u32::from(composition.heavy_atoms());
         Self {
@@ -34,6 +37,7 @@ impl StructureFacts {
             composition,
             atoms: heavy_atoms + u32::from(composition.count(Element::H)),
             heavy_atoms,
+            associates: false,
         }
     }
 }

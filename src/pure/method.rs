@@ -56,6 +56,12 @@ const HANKINSON_THOMSON: &str =
     "Hankinson and Thomson, AIChE J. 25 (1979) 653-663, doi:10.1002/aic.690250412";
 
 const BOILING_POINT_AND_DENSITY: &[Property] = &[Property::BoilingPoint, Property::LiquidDensity];
+const CRITICAL_POINT_AND_DENSITY: &[Property] = &[
+    Property::BoilingPoint,
+    Property::CriticalTemperature,
+    Property::CriticalPressure,
+    Property::LiquidDensity,
+];
 const CRITICAL_POINT: &[Property] = &[
     Property::BoilingPoint,
     Property::CriticalTemperature,
@@ -263,13 +269,13 @@ pub const METHODS: &[Method] = &[
     fitted(
         Level::Structure,
         Property::EnthalpyOfVaporization,
-        BOILING_POINT_AND_DENSITY,
+        CRITICAL_POINT_AND_DENSITY,
         Role::Default,
     ),
     fitted(
         Level::Count,
         Property::EnthalpyOfVaporization,
-        BOILING_POINT_AND_DENSITY,
+        CRITICAL_POINT_AND_DENSITY,
         Role::Selectable,
     ),
     additive(Property::EnthalpyOfVaporization, &[], Role::Selectable),

@@ -24,6 +24,9 @@ mod method;
 
 pub use additive::{Growth, Input};
 pub use error::PureError;
-pub use estimates::{Estimates, Given, PureMethods, estimate_all};
+pub use estimates::{
+    Estimates, Given, PureMethods, enthalpy_of_vaporization_of_slope, estimate_all,
+    vapor_pressure_curve,
+};
 pub use facts::StructureFacts;
 pub use method::{METHODS, Method, Role, default_method, methods_of};

@@ -705,11 +705,10 @@ def points_of(figure, predictions, molecules):
     """Measured values of a figure with what the fits say, from structure and with T_b measured."""
     points = []
     if figure in ("vapor pressure", "density at T"):
-        method = "ambrose-walton" if figure == "vapor pressure" else None
         table = defaultdict(dict)
         for level in ("structure", "count"):
             for row in read(predictions / f"{level}-derived.csv"):
-                if row["figure"] == figure and method in (None, row["method"]):
+                if row["figure"] == figure and row["given"] == "true":
                     key = (row["constitution"], float(row["temperature_k"]), float(row["value"]))
                     table[key][level, row["from"]] = number(row["estimate"])
         for (constitution, t, value), found in table.items():

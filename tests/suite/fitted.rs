@@ -8,7 +8,9 @@ use groupsmith::evaluate::{EstimateLevel, Library, Profiler, properties};
 use groupsmith::mixture::Slips;
 use groupsmith::pure::Estimates;
 use groupsmith::pure::fitted::{Family, Fitted, FittedInput, Level, Quantity};
-use groupsmith::quantity::{Estimate, Flag, Property, STANDARD_ATMOSPHERE_PA};
+use groupsmith::quantity::{
+    Estimate, Flag, GAS_CONSTANT_J_PER_MOL_K, Property, STANDARD_ATMOSPHERE_PA,
+};
 
 use crate::workbench::say;
 
@@ -190,8 +192,43 @@ fn vapor_pressure_rises_and_is_one_atmosphere_at_the_boiling_point() {
     }
 }
 
-/// The value at 298.15 K is fitted, those beside it are carried: there is no jump
-/// between them.
+/// A vapor-pressure curve has the slope of the enthalpy of vaporization at the boiling point:
+/// with ΔZ between 0.9 and 1 for single molecules, and less for acids, whose vapor has pairs.
+/// Each carbon more raises the enthalpy, by steps without a jump.
+#[test]
+fn enthalpies_of_vaporization_go_with_the_vapor_pressures() {
+    for level in FITTED {
+        let mut estimator = Estimator::at(level);
+        for series in &SERIES {
+            let mut before: Option<f64> = None;
+            for (carbons, smiles) in members(series).filter(|member| member.0 >= SETTLED) {
+                let at_room = estimator.all(&smiles, ROOM_K);
+                let tb = of(&at_room, Property::BoilingPoint).value;
+                let enthalpy = of(&at_room, Property::EnthalpyOfVaporization).value;
+                let [low, high] = [0.999, 1.001].map(|part| {
+                    let all = estimator.all(&smiles, part * tb);
+                    of(&all, Property::VaporPressure).value.ln()
+                });
+                let by_curve = GAS_CONSTANT_J_PER_MOL_K * tb * (high - low) / 0.002;
+                let allowed = match series.0 {
+                    "n-alkanoic acids" => 0.7..1.0,
+                    _ => 0.9..1.0,
+                };
+                let place = format!("{level:?} {} {carbons}", series.0);
+                let delta_z = enthalpy / by_curve;
+                assert!(allowed.contains(&delta_z), "{place}: {delta_z}");
+                if let Some(before) = before {
+                    let step = enthalpy - before;
+                    assert!((0.0..4500.0).contains(&step), "{place}: {step}");
+                }
+                before = Some(enthalpy);
+            }
+        }
+    }
+}
+
+/// Between the temperature where a density is fitted and those to which it is carried there
+/// is no jump.
 #[test]
 fn density_falls_with_temperature() {
     let temperatures_k = [260.0, 280.0, 297.0, ROOM_K, 299.3, 310.0, 330.0, 350.0];

@@ -474,6 +474,43 @@ fn curves_keep_the_definition_of_the_acentric_factor() {
     assert!((acentric_factor_edmister(&constants) - 0.221).abs() < 1e-3);
 }
 
+/// Whatever slope a curve is given that it takes, it rises up to the critical point and
+/// keeps that, the boiling point and the slope.
+#[test]
+fn curves_of_a_known_slope_rise_through_the_boiling_point_to_the_critical_point() {
+    let mut taken = 0;
+    for method in VaporPressureMethod::ALL {
+        for (tc, pc) in [(480.0, 60e5), (525.0, 49e5), (562.0, 30e5), (590.0, 12e5)] {
+            let constants = Constants::new(353.24, tc, pc, "measured").unwrap();
+            let Ok(curve) = VaporPressureCurve::through_boiling_point(method, constants) else {
+                continue;
+            };
+            for slope in [4.0, 6.0, 9.0, 11.0, 13.0, 15.0, 18.0, 40.0] {
+                let Ok(tilted) = curve.with_slope(slope) else {
+                    continue;
+                };
+                taken += 1;
+                let place = format!("{method:?} {tc} {pc} {slope}");
+                let pressures: Vec<f64> = (0..200)
+                    .map(|step| tc * (0.5 + 0.5 * f64::from(step) / 199.0))
+                    .map(|t| tilted.pressure_pa(t).unwrap())
+                    .collect();
+                assert!(pressures.is_sorted_by(|low, high| low < high), "{place}");
+                let boiling = tilted.pressure_pa(353.24).unwrap();
+                assert!(
+                    (boiling / 101_325.0 - 1.0).abs() < 1e-9,
+                    "{place}: {boiling}"
+                );
+                let end = tilted.pressure_pa(tc).unwrap();
+                assert!((end / pc - 1.0).abs() < 1e-3, "{place}: {end}");
+                let found = tilted.slope_at_boiling_point();
+                assert!((found - slope).abs() < 1e-2, "{place}: {found}");
+            }
+        }
+    }
+    assert!((30..80).contains(&taken), "{taken}");
+}
+
 /// Above T_c there is no saturated liquid: absent with the range, not a number.
 #[test]
 fn nothing_saturated_above_the_critical_temperature() {

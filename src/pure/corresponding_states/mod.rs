@@ -12,7 +12,9 @@ mod surface_tension;
 mod vapor_pressure;
 
 pub use constants::{Constants, acentric_factor_edmister};
-pub use enthalpy::enthalpy_of_vaporization_watson;
+pub use enthalpy::{
+    enthalpy_of_vaporization_clapeyron, enthalpy_of_vaporization_watson, slope_of_enthalpy,
+};
 pub use flash_point::flash_point_catoire_naudet;
 pub(super) use flash_point::{
     CATOIRE_NAUDET, CATOIRE_NAUDET_BOILING_POINTS_K, CATOIRE_NAUDET_CARBONS,

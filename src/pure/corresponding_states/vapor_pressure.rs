@@ -38,6 +38,13 @@ const OMEGA_RANGE: (f64, f64) = (-0.4, 3.0);
 /// Below this fraction of T_c no curve is given.
 const LOWEST_REDUCED_TEMPERATURE: f64 = 0.2;
 
+/// Slopes d ln P/d ln T at the boiling point between which those of substances lie.
+const STEEPNESS: std::ops::RangeInclusive<f64> = 5.0..=30.0;
+
+/// How much steeper than the equation a curve may be: at the critical point, where the
+/// equation has a slope of six and more, a steeper one is flatter by so much.
+const LARGEST_TILT: f64 = 5.5;
+
 /// Riedel's constant K.
 const RIEDEL_K: f64 = 0.0838;
 
@@ -58,6 +65,10 @@ const RIEDEL_K: f64 = 0.0838;
 /// Riedel: ln p_r = −35 Q + 36 Q/T_r + (42 Q + α) ln T_r − Q T_r^6 with
 /// Q = K (3.758 − α), K = 0.0838 and α from the boiling point.
 ///
+/// A [known slope](Self::with_slope) ψ = d ln P/d ln T at the boiling point adds
+/// (ψ − ψ₀) (1 − T_b/T) to ln P, ψ₀ that of the equation; above the boiling point that is
+/// multiplied by (T_c − T)/(T_c − T_b), so that it ends at the critical point.
+///
 /// # Source
 ///
 /// D. Ambrose, J. Walton, Pure Appl. Chem. 61 (1989) 1395–1403,
@@ -76,6 +87,8 @@ pub struct VaporPressureCurve {
     constants: Constants,
     /// ω of the equation, or Riedel's α.
     shape: f64,
+    /// What a known slope at the boiling point has over that of the equation.
+    tilt: f64,
 }
 
 impl VaporPressureCurve {
@@ -124,6 +137,7 @@ impl VaporPressureCurve {
             method,
             constants,
             shape,
+            tilt: 0.0,
         };
         let omega = curve.acentric_factor();
         if !(omega >= OMEGA_RANGE.0 && omega <= OMEGA_RANGE.1) {
@@ -134,13 +148,38 @@ impl VaporPressureCurve {
         Ok(curve)
     }
 
+    /// The same curve with another slope d ln P/d ln T at the boiling point.
+    ///
+    /// # Errors
+    ///
+    /// [`Absent::OutsideDomain`] if the slope is that of no substance, or so much steeper
+    /// than the equation that the curve would fall below the critical point.
+    pub fn with_slope(self, slope: f64) -> Result<Self, Absent> {
+        let own = self.slope_at_boiling_point();
+        let fits = STEEPNESS.contains(&slope) && slope - own <= LARGEST_TILT;
+        fits.then_some(Self {
+            tilt: self.tilt + slope - own,
+            ..self
+        })
+        .ok_or(Absent::OutsideDomain {
+            method: self.method.id(),
+            what: "the enthalpy of vaporization does not go with the critical constants",
+        })
+    }
+
+    /// The slope d ln P/d ln T at the boiling point.
+    pub fn slope_at_boiling_point(&self) -> f64 {
+        const STEP: f64 = 1e-4;
+        let tr = self.constants.reduced_boiling_point();
+        let [low, high] = [1.0 - STEP, 1.0 + STEP].map(|part| self.ln_reduced_pressure(part * tr));
+        (high - low) / (2.0 * STEP)
+    }
+
     /// The acentric factor of the curve: the ω of the equation, or for Riedel −1 − log10 p_r(0.7).
     pub fn acentric_factor(&self) -> f64 {
         match self.method {
             VaporPressureMethod::AmbroseWalton | VaporPressureMethod::LeeKesler => self.shape,
-            VaporPressureMethod::Riedel => {
-                -1.0 - self.ln_reduced_pressure(0.7) / std::f64::consts::LN_10
-            }
+            VaporPressureMethod::Riedel => -1.0 - self.untilted(0.7) / std::f64::consts::LN_10,
         }
     }
 
@@ -174,6 +213,12 @@ impl VaporPressureCurve {
     }
 
     fn ln_reduced_pressure(&self, tr: f64) -> f64 {
+        let boiling = self.constants.reduced_boiling_point();
+        let above = ((1.0 - tr) / (1.0 - boiling)).min(1.0);
+        self.untilted(tr) + self.tilt * (1.0 - boiling / tr) * above
+    }
+
+    fn untilted(&self, tr: f64) -> f64 {
         match self.method {
             VaporPressureMethod::AmbroseWalton => {
                 let [f0, f1, f2] = ambrose_walton(tr);

@@ -35,7 +35,7 @@ pub struct Described {
 pub struct Known {
     /// Normal boiling point, K, measured or estimated.
     pub boiling_point_k: f64,
-    /// Molar volume of the liquid at 298.15 K, m³/mol.
+    /// Molar volume of the liquid at its [reference temperature](super::volume_temperature_k), m³/mol.
     pub molar_volume_m3_per_mol: f64,
     /// Molar mass, kg/mol.
     pub molar_mass_kg_per_mol: f64,

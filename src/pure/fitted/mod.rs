@@ -19,6 +19,7 @@ mod parameters;
 mod quantity;
 mod scale;
 mod table;
+mod volume;
 
 pub use count::{ClassCounts, CountModel, PieceSum};
 pub use described::{Described, Known};
@@ -34,3 +35,4 @@ pub use parameters::{
 pub use quantity::{Level, PerAtom, Quantity, Terms};
 pub use scale::{Ground, Scale, Signs, SizeClass, Standing};
 pub use table::{EnvironmentEntry, EnvironmentTable, classes_of};
+pub use volume::{volume_carried, volume_temperature_k};

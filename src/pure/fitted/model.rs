@@ -346,7 +346,7 @@ impl Quantity {
             Self::CriticalPressure => 0.26 * R * 1.5 * tb / (2.7 * volume),
             Self::CriticalVolume => 2.7 * volume,
             // the rule of Kistiakowsky, carried to 298.15 K in the manner of Watson
-            Self::EnthalpyOfVaporization => R * tb * (4.4 + tb.ln()),
+            Self::VaporPressureSlope => 4.4 + tb.ln(),
             Self::EnthalpyOfVaporizationAt298 => {
                 R * tb * (4.4 + tb.ln()) * (3.0 * room(1.5 * tb)).powf(0.38)
             }

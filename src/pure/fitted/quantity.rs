@@ -30,7 +30,7 @@ impl Level {
 pub enum Quantity {
     /// Normal boiling point, K.
     BoilingPoint,
-    /// Molar volume of the liquid at 298.15 K, m³/mol.
+    /// Molar volume of the liquid at its [reference temperature](super::volume_temperature_k), m³/mol.
     MolarVolume,
     /// Critical temperature, K.
     CriticalTemperature,
@@ -40,8 +40,8 @@ pub enum Quantity {
     CriticalVolume,
     /// Enthalpy of vaporization at 298.15 K, J/mol.
     EnthalpyOfVaporizationAt298,
-    /// Enthalpy of vaporization at the normal boiling point, J/mol.
-    EnthalpyOfVaporization,
+    /// Slope of the vapor-pressure curve at the normal boiling point, d ln P / d ln T.
+    VaporPressureSlope,
     /// Closed-cup flash point, K.
     FlashPoint,
     /// Melting point, K.
@@ -98,7 +98,7 @@ impl Quantity {
         Self::CriticalPressure,
         Self::CriticalVolume,
         Self::EnthalpyOfVaporizationAt298,
-        Self::EnthalpyOfVaporization,
+        Self::VaporPressureSlope,
         Self::FlashPoint,
         Self::MeltingPoint,
         Self::Viscosity,
@@ -119,7 +119,7 @@ impl Quantity {
             Self::CriticalPressure => "critical_pressure",
             Self::CriticalVolume => "critical_volume",
             Self::EnthalpyOfVaporizationAt298 => "enthalpy_of_vaporization_298",
-            Self::EnthalpyOfVaporization => "enthalpy_of_vaporization",
+            Self::VaporPressureSlope => "vapor_pressure_slope",
             Self::FlashPoint => "flash_point",
             Self::MeltingPoint => "melting_point",
             Self::Viscosity => "liquid_viscosity",

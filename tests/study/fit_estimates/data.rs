@@ -8,6 +8,8 @@ use groupsmith::chem::{Canonicalizer, Keys, Molecule, Reader};
 use groupsmith::groups::environment::{EnvironmentCounts, EnvironmentReader};
 use groupsmith::pure::fitted::Quantity;
 
+use super::curves;
+
 /// A constitution with everything the fit needs of it.
 pub(crate) struct Known {
     /// Canonical SMILES without stereochemistry: what values and folds go by.
@@ -15,6 +17,7 @@ pub(crate) struct Known {
     pub(crate) name: String,
     pub(crate) counts: EnvironmentCounts,
     pub(crate) molar_mass_kg_per_mol: f64,
+    pub(crate) acid: bool,
     /// Which of the five parts it is in.
     pub(crate) fold: usize,
 }
@@ -34,6 +37,7 @@ impl Known {
             name: name.to_owned(),
             counts,
             molar_mass_kg_per_mol: molecule.molar_mass_kg_per_mol(),
+            acid: molecule.has_carboxyl(),
         }
     }
 }
@@ -46,10 +50,24 @@ pub(crate) struct Reference {
     pub(crate) values: Vec<Values>,
     /// Vapor pressures: molecule, K, Pa.
     pub(crate) vapor_pressures: Vec<(usize, f64, f64)>,
+    /// Enthalpies of vaporization at the normal boiling point, J/mol.
+    pub(crate) enthalpies: Values,
+    /// Densities at 298.15 K, kg/m³.
+    pub(crate) densities_298: Values,
     /// Densities of the saturated liquid: molecule, K, kg/m³.
     pub(crate) densities: Vec<(usize, f64, f64)>,
     /// Values that were not used, with the reason.
     pub(crate) left_out: Vec<String>,
+}
+
+impl Reference {
+    /// Measured boiling points in K by the number of the molecule.
+    pub(crate) fn measured_boiling_points(&self) -> BTreeMap<usize, f64> {
+        self.values[Quantity::BoilingPoint as usize]
+            .iter()
+            .copied()
+            .collect()
+    }
 }
 
 pub(crate) const FOLDS: usize = 5;
@@ -101,7 +119,8 @@ const SOURCES: [Source; Quantity::COUNT] = [
         Some(("basis", "298.15")),
     ),
     source(
-        Quantity::EnthalpyOfVaporization,
+        // turned into slopes when all is read
+        Quantity::VaporPressureSlope,
         "enthalpy_vaporization.csv",
         "Hvap_J_mol",
         Some(("basis", "Tb")),
@@ -236,7 +255,7 @@ pub(crate) fn read(folder: &Path) -> Result<Reference, Box<dyn Error>> {
         }
     }
     let numbers: BTreeMap<String, usize> = known.keys().cloned().zip(0..).collect();
-    let values = rows
+    let mut values: Vec<Values> = rows
         .into_iter()
         .map(|rows| {
             // stereoisomers of one constitution count once, by their mean
@@ -252,12 +271,32 @@ pub(crate) fn read(folder: &Path) -> Result<Reference, Box<dyn Error>> {
         points
             .into_iter()
             .map(|(constitution, t, value)| (numbers[&constitution], t, value))
-            .collect()
+            .collect::<Vec<(usize, f64, f64)>>()
     });
+    let molecules: Vec<Known> = known.into_values().collect();
+    let enthalpies = std::mem::take(&mut values[Quantity::VaporPressureSlope as usize]);
+    let boiling: BTreeMap<usize, f64> = values[Quantity::BoilingPoint as usize]
+        .iter()
+        .copied()
+        .collect();
+    values[Quantity::VaporPressureSlope as usize] =
+        curves::slopes(&vapor_pressures, &enthalpies, &boiling, &molecules);
+    let densities_298 = values[Quantity::MolarVolume as usize]
+        .iter()
+        .map(|&(molecule, volume)| (molecule, molecules[molecule].molar_mass_kg_per_mol / volume))
+        .collect();
+    values[Quantity::MolarVolume as usize] = curves::volumes(
+        &values[Quantity::MolarVolume as usize],
+        &densities,
+        &boiling,
+        &molecules,
+    );
     Ok(Reference {
         vapor_pressures,
+        enthalpies,
+        densities_298,
         densities,
-        molecules: known.into_values().collect(),
+        molecules,
         values,
         left_out,
     })

@@ -1,15 +1,21 @@
-//! What follows from fitted constants by relations of corresponding states:
-//! vapor pressure, density away from 298.15 K, enthalpy of vaporization.
+//! What follows from fitted constants by relations of corresponding states: vapor pressure,
+//! density at 298.15 K and elsewhere, enthalpy of vaporization at the boiling point; with
+//! their intervals, as the program gives them.
 
 use std::collections::BTreeMap;
 use std::error::Error;
 use std::fmt::Write as _;
 
-use groupsmith::pure::corresponding_states::{
-    Constants, LiquidDensityCurve, VaporPressureCurve, VaporPressureMethod,
+use groupsmith::pure::corresponding_states::Constants;
+use groupsmith::pure::fitted::{
+    Family, Known, Level, Quantity, SizeClass, has_new_kind_of_atom, has_unknown_atoms,
+    volume_temperature_k,
 };
-use groupsmith::pure::fitted::{Known, Level, Quantity};
-use groupsmith::quantity::{GAS_CONSTANT_J_PER_MOL_K, REFERENCE_TEMPERATURE_K};
+use groupsmith::pure::{
+    Given, PureMethods, StructureFacts, enthalpy_of_vaporization_of_slope, estimate_all,
+};
+use groupsmith::quantity::{Absent, Estimate, Property, REFERENCE_TEMPERATURE_K, Status};
+use rayon::prelude::*;
 
 use super::Fit;
 
@@ -26,14 +32,8 @@ pub(crate) const fn is_base(quantity: Quantity) -> bool {
     matches!(quantity, Quantity::BoilingPoint | Quantity::MolarVolume)
 }
 
-/// Constants of a molecule from fits without its part; the boiling point may be measured.
-struct Derived {
-    constants: Constants,
-    density_298: f64,
-    molar_mass_kg_per_mol: f64,
-}
-
-/// One of [`constants`] for a molecule from the fit without its part; the boiling point may be measured.
+/// One of [`constants`] for a molecule from the fit without its part; the boiling point may
+/// be measured.
 pub(crate) fn constant(
     fit: &Fit,
     level: Level,
@@ -41,11 +41,7 @@ pub(crate) fn constant(
     molecule: usize,
     measured_boiling_point: Option<f64>,
 ) -> Option<f64> {
-    let known = fit.known(level, molecule)?;
-    let known = Known {
-        boiling_point_k: measured_boiling_point.unwrap_or(known.boiling_point_k),
-        ..known
-    };
+    let known = known(fit, level, molecule, measured_boiling_point)?;
     match quantity {
         Quantity::BoilingPoint => Some(known.boiling_point_k),
         Quantity::MolarVolume => Some(known.molar_volume_m3_per_mol),
@@ -59,191 +55,319 @@ pub(crate) fn constant(
     }
 }
 
-fn derive(
+fn known(
     fit: &Fit,
     level: Level,
     molecule: usize,
     measured_boiling_point: Option<f64>,
-) -> Option<Derived> {
-    let of = |quantity| constant(fit, level, quantity, molecule, measured_boiling_point);
-    let constants = Constants::new(
-        of(Quantity::BoilingPoint)?,
-        of(Quantity::CriticalTemperature)?,
-        of(Quantity::CriticalPressure)?,
-        "derived",
-    )
-    .ok()?;
-    let molar_mass_kg_per_mol = fit.reference.molecules[molecule].molar_mass_kg_per_mol;
-    Some(Derived {
-        constants,
-        density_298: molar_mass_kg_per_mol / of(Quantity::MolarVolume)?,
-        molar_mass_kg_per_mol,
+) -> Option<Known> {
+    let known = fit.known(level, molecule)?;
+    Some(Known {
+        boiling_point_k: measured_boiling_point.unwrap_or(known.boiling_point_k),
+        ..known
     })
 }
 
-/// Enthalpy of vaporization in J/mol by Clausius and Clapeyron with the compressibility
-/// factor difference of Haggenmacher.
-fn clapeyron(curve: &VaporPressureCurve, constants: &Constants, t: f64) -> Option<f64> {
-    let h = 1e-3 * t;
-    let [low, high] = [t - h, t + h].map(|t| curve.pressure_pa(t).ok().map(f64::ln));
-    let slope = (high? - low?) / (2.0 * h);
-    let pr = curve.pressure_pa(t).ok()? / constants.critical_pressure_pa();
-    let tr = constants.reduced(t);
-    let dz = (1.0 - pr / tr.powi(3)).max(0.0).sqrt();
-    Some(GAS_CONSTANT_J_PER_MOL_K * t * t * slope * dz)
+/// What the program would be given of a molecule, from fits without its part.
+pub(crate) struct Derived {
+    given: Vec<(Property, Estimate)>,
+    facts: StructureFacts,
+    /// Whether every interval that it rests on is known, so that those that follow are.
+    with_intervals: bool,
+    /// Whether the fits have all of its atoms.
+    inside: bool,
+    /// Whether the program would give values: no kind of atom is new to one of the fits.
+    answered: bool,
+}
+
+impl Derived {
+    pub(crate) fn of(
+        fit: &Fit,
+        level: Level,
+        molecule: usize,
+        measured_boiling_point: Option<f64>,
+    ) -> Option<Self> {
+        let reference = &fit.reference.molecules[molecule];
+        let described = &fit.molecules[molecule];
+        let known = known(fit, level, molecule, measured_boiling_point)?;
+        let atoms = described.heavy_atoms();
+        let (mut with_intervals, mut inside, mut answered) = (true, true, true);
+        let mut of = |quantity: Quantity| {
+            let occurrences = &fit.partial[&(level, quantity)][reference.fold].occurrences;
+            inside &= !has_unknown_atoms(&fit.table, described, occurrences);
+            answered &= !has_new_kind_of_atom(&fit.table, described, occurrences);
+            let value = constant(fit, level, quantity, molecule, measured_boiling_point)?;
+            let sum = quantity.opened(value, atoms, Some(known))?;
+            let end = |sum: f64| quantity.closed(sum, atoms, Some(known));
+            let half = fit.half_widths[&(level, quantity)].get(&molecule);
+            let interval = half
+                .map(|half| (end(sum - half).unwrap_or(0.0), end(sum + half)))
+                .and_then(|(low, high)| Some((low, high?)));
+            // critical constants enter intervals by the constants of shape alone
+            let matters = !matches!(
+                quantity,
+                Quantity::CriticalTemperature | Quantity::CriticalPressure
+            );
+            with_intervals &= interval.is_some() || !matters;
+            Some(Estimate {
+                interval,
+                ..Estimate::new(value, level.id())
+            })
+        };
+        let boiling_point = match measured_boiling_point {
+            Some(value) => Estimate {
+                status: Status::Measured,
+                ..Estimate::new(value, "measured")
+            },
+            None => of(Quantity::BoilingPoint)?,
+        };
+        let critical_temperature = of(Quantity::CriticalTemperature)?;
+        let critical_pressure = of(Quantity::CriticalPressure)?;
+        let constants = Constants::new(
+            boiling_point.value,
+            critical_temperature.value,
+            critical_pressure.value,
+            level.id(),
+        )
+        .ok()?;
+        let slope = of(Quantity::VaporPressureSlope);
+        let enthalpy = slope.map(|slope| {
+            enthalpy_of_vaporization_of_slope(slope, &boiling_point, &constants, reference.acid)
+        });
+        let mass = reference.molar_mass_kg_per_mol;
+        let volume_k = volume_temperature_k(boiling_point.value);
+        let density = of(Quantity::MolarVolume).map(|volume| {
+            Estimate {
+                value: mass / volume.value,
+                interval: volume.interval.map(|(low, high)| (mass / high, mass / low)),
+                ..volume
+            }
+            .at(volume_k)
+        });
+        let mut given = vec![
+            (Property::BoilingPoint, boiling_point),
+            (Property::CriticalTemperature, critical_temperature),
+            (Property::CriticalPressure, critical_pressure),
+        ];
+        given.extend(enthalpy.map(|enthalpy| (Property::EnthalpyOfVaporization, enthalpy)));
+        given.extend(density.map(|density| (Property::LiquidDensity, density)));
+        Some(Self {
+            given,
+            facts: StructureFacts {
+                molar_mass_kg_per_mol: mass,
+                associates: reference.acid,
+                ..StructureFacts::default()
+            },
+            with_intervals,
+            inside,
+            answered,
+        })
+    }
+
+    /// What the program makes of it at a temperature.
+    pub(crate) fn estimate(
+        &self,
+        methods: &PureMethods,
+        property: Property,
+        temperature_k: f64,
+    ) -> Option<Estimate> {
+        let none = Err(&Absent::NoMethod);
+        let all = estimate_all(
+            methods,
+            none,
+            &self.facts,
+            Given(&self.given),
+            temperature_k,
+        );
+        all[property as usize].as_ref().ok().cloned()
+    }
+}
+
+/// A figure that follows from fitted constants.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(crate) enum Figure {
+    VaporPressure,
+    Density,
+    DensityAt298,
+    EnthalpyOfVaporization,
+}
+
+impl Figure {
+    pub(crate) const fn id(self) -> &'static str {
+        match self {
+            Self::VaporPressure => "vapor pressure",
+            Self::Density => "density at T",
+            Self::DensityAt298 => "density at 298.15 K",
+            Self::EnthalpyOfVaporization => "enthalpy of vaporization at T_b",
+        }
+    }
+
+    const fn unit(self) -> &'static str {
+        match self {
+            Self::VaporPressure => "log10",
+            _ => "%",
+        }
+    }
+
+    const fn property(self) -> Property {
+        match self {
+            Self::VaporPressure => Property::VaporPressure,
+            Self::Density | Self::DensityAt298 => Property::LiquidDensity,
+            Self::EnthalpyOfVaporization => Property::EnthalpyOfVaporization,
+        }
+    }
 }
 
 /// A measured value with what is derived for it.
 pub(crate) struct Point {
-    /// Figure, method and what it was derived from.
-    pub(crate) what: [String; 3],
+    pub(crate) figure: Figure,
+    /// Whether it starts from the measured boiling point.
+    pub(crate) measured: bool,
     pub(crate) molecule: usize,
     pub(crate) temperature_k: f64,
     pub(crate) value: f64,
     pub(crate) estimate: Option<f64>,
+    /// The 90 % interval, where every one that it rests on is known.
+    pub(crate) interval: Option<(f64, f64)>,
+    /// Whether the fits have all of its atoms.
+    pub(crate) inside: bool,
+    /// Whether the program would give a value: no kind of atom is new.
+    pub(crate) answered: bool,
 }
 
 impl Point {
-    fn unit(&self) -> &'static str {
-        if self.what[0] == "vapor pressure" {
-            "log10"
+    pub(crate) const fn from(&self) -> &'static str {
+        if self.measured {
+            "measured T_b"
         } else {
-            "%"
+            "structure"
         }
     }
 
     fn error(&self) -> Option<f64> {
-        let ratio = self.estimate? / self.value;
-        let error = if self.unit() == "log10" {
-            ratio.log10()
-        } else {
-            100.0 * (ratio - 1.0)
-        };
-        Some(error).filter(|error| error.is_finite())
+        let ratio = self.estimate.filter(|_| self.answered)? / self.value;
+        Some(match self.figure {
+            Figure::VaporPressure => ratio.log10(),
+            _ => 100.0 * (ratio - 1.0),
+        })
     }
 }
 
 /// Every measured value of the figures that are derived, with its estimates.
 pub(crate) fn points(fit: &Fit, level: Level) -> Vec<Point> {
-    let boiling: BTreeMap<usize, f64> = fit.reference.values[Quantity::BoilingPoint as usize]
-        .iter()
-        .copied()
-        .collect();
-    let mut points = Vec::new();
-    let mut add = |what: [&str; 3], (molecule, temperature_k, value), estimate| {
-        points.push(Point {
-            what: what.map(str::to_owned),
-            molecule,
-            temperature_k,
-            value,
-            estimate,
-        });
+    let reference = &fit.reference;
+    let boiling = reference.measured_boiling_points();
+    let room = |values: &[(usize, f64)]| -> Vec<(usize, f64, f64)> {
+        let at_room =
+            |&(molecule, value): &(usize, f64)| (molecule, REFERENCE_TEMPERATURE_K, value);
+        values.iter().map(at_room).collect()
     };
-    let mut cache: BTreeMap<(usize, bool), Option<Derived>> = BTreeMap::new();
-    let methods = [
-        VaporPressureMethod::AmbroseWalton,
-        VaporPressureMethod::LeeKesler,
-        VaporPressureMethod::Riedel,
+    let figures = [
+        (Figure::VaporPressure, reference.vapor_pressures.clone()),
+        (Figure::Density, reference.densities.clone()),
+        (Figure::DensityAt298, room(&reference.densities_298)),
+        (Figure::EnthalpyOfVaporization, room(&reference.enthalpies)),
     ];
+    let methods = PureMethods::built_in();
+    let mut found = Vec::new();
     for measured in [false, true] {
-        let from = if measured {
-            "measured T_b"
-        } else {
-            "structure"
-        };
-        let mut get = |molecule: usize| {
-            let tb = boiling.get(&molecule).copied();
-            if measured && tb.is_none() {
-                return None;
-            }
-            let derived = cache
-                .entry((molecule, measured))
-                .or_insert_with(|| derive(fit, level, molecule, tb.filter(|_| measured)));
-            derived
-                .as_ref()
-                .map(|d| (d.constants, d.density_298, d.molar_mass_kg_per_mol))
-        };
-        for &(molecule, t, pressure) in &fit.reference.vapor_pressures {
-            if measured && !boiling.contains_key(&molecule) {
-                continue;
-            }
-            for method in methods {
-                let found = get(molecule).and_then(|(constants, ..)| {
-                    let curve =
-                        VaporPressureCurve::through_boiling_point(method, constants).ok()?;
-                    curve.pressure_pa(t).ok()
+        let mut asked: Vec<usize> = figures
+            .iter()
+            .flat_map(|(_, points)| points.iter().map(|point| point.0))
+            .filter(|molecule| !measured || boiling.contains_key(molecule))
+            .collect();
+        asked.sort_unstable();
+        asked.dedup();
+        let derived: BTreeMap<usize, Option<Derived>> = asked
+            .into_par_iter()
+            .map(|molecule| {
+                let tb = boiling.get(&molecule).copied().filter(|_| measured);
+                (molecule, Derived::of(fit, level, molecule, tb))
+            })
+            .collect();
+        for (figure, points) in &figures {
+            for &(molecule, temperature_k, value) in points {
+                let Some(derived) = derived.get(&molecule) else {
+                    continue;
+                };
+                let derived = derived.as_ref();
+                let estimate = derived
+                    .and_then(|one| one.estimate(&methods, figure.property(), temperature_k));
+                found.push(Point {
+                    figure: *figure,
+                    measured,
+                    molecule,
+                    temperature_k,
+                    value,
+                    estimate: estimate.as_ref().map(|estimate| estimate.value),
+                    interval: estimate
+                        .and_then(|estimate| estimate.interval)
+                        .filter(|_| derived.is_some_and(|one| one.with_intervals)),
+                    inside: derived.is_some_and(|one| one.inside),
+                    answered: derived.is_some_and(|one| one.answered),
                 });
-                let what = ["vapor pressure", method.id(), from];
-                add(what, (molecule, t, pressure), found);
-            }
-        }
-        for &(molecule, t, density) in &fit.reference.densities {
-            let found = get(molecule).and_then(|(constants, density_298, mass)| {
-                let curve =
-                    VaporPressureCurve::through_boiling_point(methods[0], constants).ok()?;
-                let density = LiquidDensityCurve::through_density(
-                    density_298,
-                    REFERENCE_TEMPERATURE_K,
-                    constants.critical_temperature_k(),
-                    curve.acentric_factor(),
-                    mass,
-                )
-                .ok()?;
-                density.density_kg_per_m3(t).ok()
-            });
-            let what = ["density at T", "carried from 298 K", from];
-            add(what, (molecule, t, density), found);
-        }
-        for (quantity, at) in [
-            (Quantity::EnthalpyOfVaporization, None),
-            (
-                Quantity::EnthalpyOfVaporizationAt298,
-                Some(REFERENCE_TEMPERATURE_K),
-            ),
-        ] {
-            for &(molecule, value) in &fit.reference.values[quantity as usize] {
-                for method in methods {
-                    let found = get(molecule).and_then(|(constants, ..)| {
-                        let curve =
-                            VaporPressureCurve::through_boiling_point(method, constants).ok()?;
-                        let t = at.unwrap_or(constants.boiling_point_k());
-                        clapeyron(&curve, &constants, t)
-                    });
-                    let method = format!("{} and Clapeyron", method.id());
-                    let what = [quantity.id(), &method, from];
-                    add(what, (molecule, at.unwrap_or(f64::NAN), value), found);
-                }
             }
         }
     }
-    points
+    found
+}
+
+/// Errors of one figure in one class of molecules.
+#[derive(Default)]
+struct Errors {
+    asked: usize,
+    errors: Vec<f64>,
+    with_interval: usize,
+    held: usize,
 }
 
 /// Errors as a table.
-pub(crate) fn errors(points: &[Point]) -> Result<String, Box<dyn Error>> {
-    let mut errors: BTreeMap<String, (Vec<f64>, usize)> = BTreeMap::new();
+pub(crate) fn errors(fit: &Fit, points: &[Point]) -> Result<String, Box<dyn Error>> {
+    let mut table: BTreeMap<String, Errors> = BTreeMap::new();
     for point in points {
-        let what = format!("{},{}", point.what.join(","), point.unit());
-        let entry = errors.entry(what).or_default();
-        entry.1 += 1;
-        entry.0.extend(point.error());
+        let described = &fit.molecules[point.molecule];
+        for class in [
+            "all".to_owned(),
+            format!("family: {}", Family::of(described).id()),
+            format!("size: {}", SizeClass::of(described.heavy_atoms()).id()),
+        ] {
+            let (figure, unit) = (point.figure.id(), point.figure.unit());
+            let key = format!("{figure},{},{unit},{class}", point.from());
+            let entry = table.entry(key).or_default();
+            entry.asked += 1;
+            if let Some(error) = point.error() {
+                entry.errors.push(error);
+                let held = point
+                    .interval
+                    .map(|(low, high)| (low..=high).contains(&point.value));
+                entry.with_interval += usize::from(held.is_some());
+                entry.held += usize::from(held == Some(true));
+            }
+        }
     }
     let mut text = String::from(
-        "figure,method,from,unit,points,with_value,mean_abs,median_abs,p90_abs,mean_abs_best_98_percent,bias\n",
+        "figure,from,unit,class,points,with_value,mean_abs,median_abs,p90_abs,mean_abs_best_98_percent,bias,with_interval,coverage\n",
     );
-    for (what, (mut values, asked)) in errors {
+    for (what, found) in table {
+        let mut values = found.errors;
         let n = values.len();
+        if n == 0 {
+            continue;
+        }
         let bias = values.iter().sum::<f64>() / n as f64;
         values.iter_mut().for_each(|value| *value = value.abs());
         values.sort_by(f64::total_cmp);
-        let mean = |count: usize| values[..count].iter().sum::<f64>() / count as f64;
+        let mean = |count: usize| values[..count].iter().sum::<f64>() / count.max(1) as f64;
         writeln!(
             text,
-            "{what},{asked},{n},{:.4},{:.4},{:.4},{:.4},{bias:.4}",
+            "{what},{},{n},{:.4},{:.4},{:.4},{:.4},{bias:.4},{},{:.3}",
+            found.asked,
             mean(n),
             values[n / 2],
             values[n * 9 / 10],
-            mean(n * 98 / 100)
+            mean(n * 98 / 100),
+            found.with_interval,
+            found.held as f64 / found.with_interval.max(1) as f64
         )?;
     }
     Ok(text)

@@ -120,16 +120,17 @@ impl Standard {
     }
 }
 
-/// The parts of the chosen rows: covariance plus noise, solved for the targets.
+/// The parts of the chosen rows: covariance plus the noise of each, solved for the targets
+/// (which are those of the chosen rows alone).
 pub(crate) fn solve(
     covariance: &[Vec<f64>],
     chosen: &[usize],
-    noise: f64,
+    noise: &[f64],
     targets: &[f64],
 ) -> Result<Vec<f64>, Box<dyn Error>> {
     let size = chosen.len();
     let matrix = Mat::from_fn(size, size, |i, j| {
-        covariance[chosen[i]][chosen[j]] + if i == j { noise } else { 0.0 }
+        covariance[chosen[i]][chosen[j]] + if i == j { noise[chosen[i]] } else { 0.0 }
     });
     let right = Mat::from_fn(size, 1, |i, _| targets[i]);
     let factor = matrix

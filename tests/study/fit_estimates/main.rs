@@ -16,6 +16,7 @@
 //! the intervals, and the points that look wrong. A fourth folder, where one is given, gets the
 //! predictions of the cross-validation, value by value (`predictions`).
 
+mod curves;
 mod data;
 mod derived;
 mod gaussian;
@@ -72,6 +73,7 @@ fn settings(quantity: Quantity, level: Level) -> Vec<Setting> {
             vec![setting(0.1, 0.006), setting(0.1, 0.02), setting(0.3, 0.02)]
         }
         (Quantity::MolarVolume, Level::Count) => vec![setting(0.0, 0.003), setting(0.0, 0.01)],
+        (Quantity::VaporPressureSlope, _) => vec![setting(0.3, 0.1), setting(1.0, 0.3)],
         (Quantity::MeltingPoint, _) => vec![setting(1.0, 0.1)],
         (Quantity::LogPOctanolWater, _) => vec![setting(1.0, 0.02), setting(0.3, 0.02)],
         (Quantity::IdealGasEnthalpyOfFormation, _) => {
@@ -107,6 +109,8 @@ struct Fit {
     known: BTreeMap<Level, (Vec<f64>, Vec<f64>)>,
     /// Models without one part each, for what is derived from them.
     partial: BTreeMap<(Level, Quantity), Vec<PartialModel>>,
+    /// Half widths of the intervals of molecules in a fit, in units of the sum.
+    half_widths: BTreeMap<(Level, Quantity), BTreeMap<usize, f64>>,
 }
 
 /// A model that was fitted without one part of the data.
@@ -114,6 +118,7 @@ struct PartialModel {
     constant: f64,
     weights: Vec<f64>,
     support: Vec<(usize, f64)>,
+    occurrences: Vec<u32>,
 }
 
 fn main() -> Result<(), Fault> {
@@ -168,6 +173,7 @@ fn main() -> Result<(), Fault> {
         support,
         known: BTreeMap::new(),
         partial: BTreeMap::new(),
+        half_widths: BTreeMap::new(),
     };
     let mut report = Report::default();
     for level in Level::ALL {
@@ -191,7 +197,10 @@ fn main() -> Result<(), Fault> {
         }
     }
     let derived = derived::points(&fit, Level::Structure);
-    std::fs::write(results.join("derived.csv"), derived::errors(&derived)?)?;
+    std::fs::write(
+        results.join("derived.csv"),
+        derived::errors(&fit, &derived)?,
+    )?;
     report.write(results, &fit.reference)?;
     if let Some(folder) = predictions {
         predictions::write(folder, &fit, &report)?;
@@ -353,24 +362,15 @@ impl Fit {
             .map(|&molecule| self.reference.molecules[molecule].fold)
             .collect();
         let mut best: Option<(f64, Setting, Vec<f64>)> = None;
+        let mut noise = Vec::new();
         for setting in settings(quantity, level) {
             let (covariance, _) = self.covariance(&rows, &squared, setting);
-            let mut sums = vec![0.0; members.len()];
-            for fold in 0..FOLDS {
-                let inside: Vec<usize> = (0..members.len()).filter(|&i| folds[i] != fold).collect();
-                let (mean, spread) = mean_and_spread(inside.iter().map(|&i| targets[i]));
-                let scaled: Vec<f64> = inside
-                    .iter()
-                    .map(|&i| (targets[i] - mean) / spread)
-                    .collect();
-                let parts = gaussian::solve(&covariance, &inside, setting.noise, &scaled)?;
-                for i in (0..members.len()).filter(|&i| folds[i] == fold) {
-                    let sum: f64 = inside
-                        .iter()
-                        .zip(&parts)
-                        .map(|(&j, part)| covariance[i][j] * part)
-                        .sum();
-                    sums[i] = mean + spread * sum;
+            let mut own_noise = vec![setting.noise; members.len()];
+            let mut sums = validated(&covariance, &folds, &own_noise, &targets)?;
+            if quantity == Quantity::VaporPressureSlope {
+                for _ in 0..2 {
+                    own_noise = doubted(setting.noise, &sums, &targets);
+                    sums = validated(&covariance, &folds, &own_noise, &targets)?;
                 }
             }
             let error = sums
@@ -380,6 +380,7 @@ impl Fit {
             let error = error.sum::<f64>() / targets.len() as f64;
             if best.as_ref().is_none_or(|best| error < best.0) {
                 best = Some((error, setting, sums));
+                noise = own_noise;
             }
         }
         let (_, setting, sums) = best.expect("there is a setting for every quantity");
@@ -448,6 +449,9 @@ impl Fit {
                 .collect()
         };
         let (scale, half_widths) = scale::fit(&standings, &residuals, &folds);
+        let by_molecule = members.iter().copied().zip(half_widths.iter().copied());
+        self.half_widths
+            .insert((level, quantity), by_molecule.collect());
 
         // The model itself rests on all.
         let (covariance, standard) = self.covariance(&rows, &squared, setting);
@@ -457,7 +461,7 @@ impl Fit {
             .map(|target| (target - mean) / spread)
             .collect();
         let all: Vec<usize> = (0..members.len()).collect();
-        let parts = gaussian::solve(&covariance, &all, setting.noise, &scaled)?;
+        let parts = gaussian::solve(&covariance, &all, &noise, &scaled)?;
         let parts: Vec<f64> = parts.iter().map(|part| part * spread).collect();
         let (weights, constant) = standard.weights(&rows, &parts);
         let model = Model {
@@ -482,7 +486,7 @@ impl Fit {
         };
         if derived::constants().any(|kept| kept == quantity) {
             let partial =
-                self.partial_models(quantity, level, &members, &targets, &folds, setting)?;
+                self.partial_models(quantity, level, &members, &targets, &folds, setting, &noise)?;
             if derived::is_base(quantity) {
                 let all = self.estimate_all(quantity, level, &partial);
                 let known = self.known.entry(level).or_default();
@@ -510,6 +514,10 @@ impl Fit {
     }
 
     /// One model for each part, fitted without it.
+    #[expect(
+        clippy::too_many_arguments,
+        reason = "everything a fit of one quantity rests on"
+    )]
     fn partial_models(
         &self,
         quantity: Quantity,
@@ -518,6 +526,7 @@ impl Fit {
         targets: &[f64],
         folds: &[usize],
         setting: Setting,
+        noise: &[f64],
     ) -> Result<Vec<PartialModel>, Fault> {
         (0..FOLDS)
             .map(|fold| {
@@ -535,11 +544,13 @@ impl Fit {
                     .map(|&i| (targets[i] - mean) / spread)
                     .collect();
                 let everyone: Vec<usize> = (0..inside.len()).collect();
-                let parts = gaussian::solve(&covariance, &everyone, setting.noise, &scaled)?;
+                let noise: Vec<f64> = inside.iter().map(|&i| noise[i]).collect();
+                let parts = gaussian::solve(&covariance, &everyone, &noise, &scaled)?;
                 let parts: Vec<f64> = parts.iter().map(|part| part * spread).collect();
                 let (weights, constant) = standard.weights(&rows, &parts);
                 let near = setting.near;
                 Ok(PartialModel {
+                    occurrences: self.occurrences(of_fold.iter().copied()),
                     constant: mean + constant,
                     weights,
                     support: if near > 0.0 {
@@ -648,6 +659,51 @@ impl Fit {
         }
         occurrences
     }
+}
+
+/// The sum of every molecule by a fit without its part.
+fn validated(
+    covariance: &[Vec<f64>],
+    folds: &[usize],
+    noise: &[f64],
+    targets: &[f64],
+) -> Result<Vec<f64>, Fault> {
+    let mut sums = vec![0.0; targets.len()];
+    for fold in 0..FOLDS {
+        let inside: Vec<usize> = (0..targets.len()).filter(|&i| folds[i] != fold).collect();
+        let (mean, spread) = mean_and_spread(inside.iter().map(|&i| targets[i]));
+        let scaled: Vec<f64> = inside
+            .iter()
+            .map(|&i| (targets[i] - mean) / spread)
+            .collect();
+        let parts = gaussian::solve(covariance, &inside, noise, &scaled)?;
+        for i in (0..targets.len()).filter(|&i| folds[i] == fold) {
+            let sum: f64 = inside
+                .iter()
+                .zip(&parts)
+                .map(|(&j, part)| covariance[i][j] * part)
+                .sum();
+            sums[i] = mean + spread * sum;
+        }
+    }
+    Ok(sums)
+}
+
+/// The noise of each point where some are wrong: what is more than 2.5 usual deviations off in
+/// cross-validation is taken for as noisy as it looks. Nothing is dropped.
+fn doubted(noise: f64, sums: &[f64], targets: &[f64]) -> Vec<f64> {
+    let off: Vec<f64> = sums
+        .iter()
+        .zip(targets)
+        .map(|(sum, target)| (sum - target).abs())
+        .collect();
+    let mut sorted = off.clone();
+    sorted.sort_by(f64::total_cmp);
+    // the median of a normal distribution is its deviation over 1.48
+    let usual = 2.5 * 1.48 * sorted[sorted.len() / 2];
+    off.iter()
+        .map(|off| noise * (off / usual).max(1.0).powi(2))
+        .collect()
 }
 
 fn mean_and_spread(values: impl Iterator<Item = f64> + Clone) -> (f64, f64) {
