@@ -410,7 +410,8 @@ impl Molecule<'_> {
                 omega.value,
                 self.facts.molar_mass_kg_per_mol,
             )?;
-            (curve, rests_on(tc).union(rests_on(omega)))
+            let flags = rests_on(known).union(rests_on(tc)).union(rests_on(omega));
+            (curve, flags)
         } else {
             let (curve, flags) = curve.as_ref().map_err(Absent::clone)?;
             let method = self.methods.liquid_density;
@@ -439,9 +440,15 @@ impl Molecule<'_> {
             let above = (high / known.value - 1.0).hypot(carried);
             Some((density * (1.0 - below).max(0.0), density * (1.0 + above)))
         });
+        // a fitted density stays that of its fit, with what is to be said of it
+        let fitted = anchor
+            .map(|(known, _)| known)
+            .filter(|known| known.status == Status::Estimated);
+        let method = fitted.map_or(density_curve.method(), |known| known.method);
         Ok(Estimate {
             interval,
-            ..Estimate::new(density, density_curve.method())
+            note: fitted.and_then(|known| known.note.clone()),
+            ..Estimate::new(density, method)
         }
         .at(self.temperature_k)
         .flagged(flags))
