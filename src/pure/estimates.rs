@@ -13,7 +13,7 @@ use super::method::{ATOMIC_WEIGHTS, WATSON};
 use crate::chem::Element;
 use crate::groups::GroupCounts;
 use crate::quantity::{
-    Absent, Estimate, Flag, Flags, Outcome, Property, REFERENCE_TEMPERATURE_K, Status,
+    Absent, Estimate, Flag, Flags, Outcome, Property, PropertySet, REFERENCE_TEMPERATURE_K, Status,
 };
 
 /// One outcome for each property; indexed by [`Property`] `as usize`.
@@ -138,6 +138,21 @@ pub fn estimate_all(
     given: Given<'_>,
     temperature_k: f64,
 ) -> Estimates {
+    let all = PropertySet::ALL;
+    estimate_some(methods, counts, facts, given, temperature_k, all)
+}
+
+/// As [`estimate_all`], as far as properties are in `asked`, which holds what they start
+/// from too (see [`with_inputs`](super::with_inputs)); the others say that there is no
+/// method, and flags that come of comparing with them are not set.
+pub fn estimate_some(
+    methods: &PureMethods,
+    counts: Result<&GroupCounts, &Absent>,
+    facts: &StructureFacts,
+    given: Given<'_>,
+    temperature_k: f64,
+    asked: PropertySet,
+) -> Estimates {
     let sums = match counts {
         Ok(counts) => methods.joback.sums(counts),
         Err(absent) => Err(absent.clone()),
@@ -150,19 +165,27 @@ pub fn estimate_all(
         given,
         temperature_k,
     };
+    let ask = |property: Property, estimate: &dyn Fn() -> Outcome| match asked.contains(property) {
+        true => estimate(),
+        false => Err(Absent::NoMethod),
+    };
+    let additive =
+        |property: Property, state: State| ask(property, &|| molecule.additive(property, state));
     let mut all: Estimates = [const { Err(Absent::NoMethod) }; Property::COUNT];
     let mut put = |property: Property, outcome: Outcome| all[property as usize] = outcome;
 
-    let boiling_point = molecule.additive(Property::BoilingPoint, State::at(temperature_k));
-    let critical_temperature = molecule.critical_temperature(&boiling_point);
+    let boiling_point = additive(Property::BoilingPoint, State::at(temperature_k));
+    let critical_temperature = ask(Property::CriticalTemperature, &|| {
+        molecule.critical_temperature(&boiling_point)
+    });
     let state = State {
         temperature_k,
         boiling_point_k: boiling_point.as_ref().ok().map(|tb| tb.value),
         critical_temperature_k: critical_temperature.as_ref().ok().map(|tc| tc.value),
     };
-    let critical_pressure = molecule.additive(Property::CriticalPressure, state);
-    let critical_volume = molecule.additive(Property::CriticalVolume, state);
-    let enthalpy_of_vaporization = molecule.additive(Property::EnthalpyOfVaporization, state);
+    let critical_pressure = additive(Property::CriticalPressure, state);
+    let critical_volume = additive(Property::CriticalVolume, state);
+    let enthalpy_of_vaporization = additive(Property::EnthalpyOfVaporization, state);
     for property in [
         Property::MeltingPoint,
         Property::EnthalpyOfFusion,
@@ -170,46 +193,73 @@ pub fn estimate_all(
         Property::IdealGasGibbsEnergyOfFormation,
         Property::IdealGasHeatCapacity,
     ] {
-        put(property, molecule.additive(property, state));
+        put(property, additive(property, state));
     }
-    put(Property::LiquidViscosity, molecule.liquid_viscosity(state));
-
-    let curve = molecule.curve(
-        &boiling_point,
-        &critical_temperature,
-        &critical_pressure,
-        &enthalpy_of_vaporization,
+    put(
+        Property::LiquidViscosity,
+        ask(Property::LiquidViscosity, &|| {
+            molecule.liquid_viscosity(state)
+        }),
     );
-    let acentric_factor = molecule.acentric_factor(&curve);
+
+    let curve = match asked.contains(Property::CriticalPressure) {
+        true => molecule.curve(
+            &boiling_point,
+            &critical_temperature,
+            &critical_pressure,
+            &enthalpy_of_vaporization,
+        ),
+        false => Err(Absent::NoMethod),
+    };
+    // densities start from the factor that goes with the curve
+    let acentric_factor = match asked.contains(Property::LiquidDensity) {
+        true => molecule.acentric_factor(&curve),
+        false => ask(Property::AcentricFactor, &|| {
+            molecule.acentric_factor(&curve)
+        }),
+    };
     put(
         Property::VaporPressure,
-        molecule.vapor_pressure(&curve, &boiling_point, &enthalpy_of_vaporization),
+        ask(Property::VaporPressure, &|| {
+            molecule.vapor_pressure(&curve, &boiling_point, &enthalpy_of_vaporization)
+        }),
     );
     put(
         Property::LiquidDensity,
-        molecule.liquid_density(
-            &curve,
-            &critical_temperature,
-            &critical_volume,
-            &acentric_factor,
-        ),
+        ask(Property::LiquidDensity, &|| {
+            molecule.liquid_density(
+                &curve,
+                &critical_temperature,
+                &critical_volume,
+                &acentric_factor,
+            )
+        }),
     );
-    put(Property::SurfaceTension, molecule.surface_tension(&curve));
+    put(
+        Property::SurfaceTension,
+        ask(Property::SurfaceTension, &|| {
+            molecule.surface_tension(&curve)
+        }),
+    );
     put(
         Property::FlashPoint,
-        molecule.flash_point(
-            &boiling_point,
-            &critical_temperature,
-            &enthalpy_of_vaporization,
-        ),
+        ask(Property::FlashPoint, &|| {
+            molecule.flash_point(
+                &boiling_point,
+                &critical_temperature,
+                &enthalpy_of_vaporization,
+            )
+        }),
     );
     put(
         Property::EnthalpyOfVaporizationAt298,
-        molecule.enthalpy_of_vaporization_at_298(
-            &boiling_point,
-            &critical_temperature,
-            &enthalpy_of_vaporization,
-        ),
+        ask(Property::EnthalpyOfVaporizationAt298, &|| {
+            molecule.enthalpy_of_vaporization_at_298(
+                &boiling_point,
+                &critical_temperature,
+                &enthalpy_of_vaporization,
+            )
+        }),
     );
     put(Property::EnthalpyOfVaporization, enthalpy_of_vaporization);
     put(

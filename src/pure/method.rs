@@ -5,7 +5,7 @@ use super::corresponding_states::{
 };
 use super::fitted::Level;
 use super::joback;
-use crate::quantity::Property;
+use crate::quantity::{Property, PropertySet};
 
 /// Whether a method is used unless another is asked for.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -31,6 +31,13 @@ pub struct Method {
     pub needs_groups: bool,
     /// Default or not.
     pub role: Role,
+}
+
+impl Method {
+    /// Whether it is fitted on measured values of this project.
+    pub fn is_fitted(&self) -> bool {
+        Level::ALL.iter().any(|level| level.id() == self.id)
+    }
 }
 
 /// Identifier of a molar mass, which the caller computes.
@@ -436,4 +443,30 @@ pub fn methods_of(property: Property) -> impl Iterator<Item = &'static Method> {
 /// The default method of a property, if any is built in.
 pub fn default_method(property: Property) -> Option<&'static Method> {
     methods_of(property).find(|method| method.role == Role::Default)
+}
+
+/// Properties with all that [`estimate_all`](super::estimate_all) starts from for them,
+/// whichever of its methods answers. What the fits start from is not among it: fitted
+/// values are given.
+pub fn with_inputs(wanted: PropertySet) -> PropertySet {
+    let inputs = |of: PropertySet| -> PropertySet {
+        METHODS
+            .iter()
+            .filter(|method| of.contains(method.property) && !method.is_fitted())
+            .flat_map(|method| method.needs.iter().copied())
+            .collect()
+    };
+    let mut all = wanted;
+    loop {
+        let mut more = all.union(inputs(all));
+        // every curve of vapor pressures starts from the critical pressure, and takes its
+        // slope at the boiling point from the enthalpy of vaporization where there is one
+        if more.contains(Property::CriticalPressure) {
+            more = more.union([Property::EnthalpyOfVaporization].into_iter().collect());
+        }
+        if more == all {
+            return all;
+        }
+        all = more;
+    }
 }

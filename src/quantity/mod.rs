@@ -10,7 +10,7 @@ mod property;
 pub mod unit;
 
 pub use estimate::{Absent, Estimate, Flag, Flags, Outcome, Status};
-pub use property::Property;
+pub use property::{Property, PropertySet};
 pub use unit::Dimension;
 
 /// Molar gas constant in J/(mol K), exact since the 2019 SI (CODATA 2018).

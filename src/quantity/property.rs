@@ -193,3 +193,49 @@ impl Property {
             )
     }
 }
+
+/// A set of properties.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct PropertySet(u32);
+
+impl PropertySet {
+    /// No property.
+    pub const NONE: Self = Self(0);
+    /// Every property.
+    pub const ALL: Self = Self((1 << Property::COUNT) - 1);
+
+    /// This set with one more property.
+    #[must_use]
+    pub const fn with(self, property: Property) -> Self {
+        Self(self.0 | 1 << property as u8)
+    }
+
+    /// Properties of either set.
+    #[must_use]
+    pub const fn union(self, other: Self) -> Self {
+        Self(self.0 | other.0)
+    }
+
+    /// Whether the property is in the set.
+    pub const fn contains(self, property: Property) -> bool {
+        self.0 & 1 << property as u8 != 0
+    }
+
+    /// Whether every property of the other set is in this one.
+    pub const fn contains_all(self, other: Self) -> bool {
+        other.0 & !self.0 == 0
+    }
+
+    /// The properties of the set, in their order.
+    pub fn iter(self) -> impl Iterator<Item = Property> {
+        Property::ALL
+            .into_iter()
+            .filter(move |&property| self.contains(property))
+    }
+}
+
+impl FromIterator<Property> for PropertySet {
+    fn from_iter<I: IntoIterator<Item = Property>>(properties: I) -> Self {
+        properties.into_iter().fold(Self::NONE, Self::with)
+    }
+}
