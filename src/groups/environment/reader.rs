@@ -75,6 +75,11 @@ impl EnvironmentCounts {
         self.entries.retain(|entry| entry.2 != 0.0);
     }
 
+    /// Takes all out.
+    pub fn clear(&mut self) {
+        self.entries.clear();
+    }
+
     fn settle(&mut self) {
         self.entries.sort_unstable_by_key(|entry| entry.0);
         self.entries.dedup_by(|next, first| {
@@ -109,12 +114,33 @@ impl EnvironmentReader {
     ///
     /// Quadratic in the number of atoms.
     pub fn counts_into(&mut self, molecule: &Molecule, counts: &mut EnvironmentCounts) {
+        self.counts_up_to_into(Order::Pair, molecule, counts);
+    }
+
+    /// The same up to an order; below [`Order::Shape`] only numbers of atoms and rings
+    /// are told of the shape, which takes no look at all pairs of atoms.
+    pub fn counts_up_to_into(
+        &mut self,
+        order: Order,
+        molecule: &Molecule,
+        counts: &mut EnvironmentCounts,
+    ) {
         counts.entries.clear();
-        self.each(molecule, |environment, count| {
-            counts
-                .entries
-                .push((environment.key(), environment.order(), count));
-        });
+        let mut add = |environment: &Environment, count| {
+            let key = environment.key();
+            counts.entries.push((key, environment.order(), count));
+        };
+        if order >= Order::Shape {
+            self.each(molecule, add);
+        } else if self.each_around(molecule, &mut add) {
+            let shape = [
+                (ShapeFact::Atoms, molecule.atoms().len() as f32),
+                (ShapeFact::Rings, molecule.ring_count() as f32),
+            ];
+            for (fact, count) in shape.into_iter().filter(|(_, count)| *count != 0.0) {
+                add(&Environment::Shape(fact), count);
+            }
+        }
         counts.settle();
     }
 
@@ -125,14 +151,32 @@ impl EnvironmentReader {
     }
 
     fn each(&mut self, molecule: &Molecule, mut add: impl FnMut(&Environment, f32)) {
+        if !self.each_around(molecule, &mut add) {
+            return;
+        }
+        self.measure_distances(molecule);
+        for bond in molecule.bonds() {
+            let [one, other] = bond.atoms.map(|atom| self.types[atom as usize]);
+            add(&Environment::Bond(one.min(other), one.max(other)), 1.0);
+        }
+        self.pairs(molecule, &mut add);
+        self.shape(molecule, &mut add);
+    }
+
+    /// Every atom by itself and with its neighbors; `false`, and nothing of it, where
+    /// the molecule is too large.
+    fn each_around(
+        &mut self,
+        molecule: &Molecule,
+        add: &mut impl FnMut(&Environment, f32),
+    ) -> bool {
         let atoms = molecule.atoms().len();
         if atoms > ENVIRONMENT_ATOM_LIMIT {
-            return;
+            return false;
         }
         self.types.clear();
         self.types
             .extend((0..atoms as u32).map(|atom| AtomType::of(molecule, atom)));
-        self.measure_distances(molecule);
         for (index, &atom) in self.types.iter().enumerate() {
             add(&Environment::Atom(atom), 1.0);
             let mut around: SmallVec<[_; 6]> = molecule
@@ -143,12 +187,7 @@ impl EnvironmentReader {
             around.sort_unstable();
             add(&Environment::Around(atom, around), 1.0);
         }
-        for bond in molecule.bonds() {
-            let [one, other] = bond.atoms.map(|atom| self.types[atom as usize]);
-            add(&Environment::Bond(one.min(other), one.max(other)), 1.0);
-        }
-        self.pairs(molecule, &mut add);
-        self.shape(molecule, &mut add);
+        true
     }
 
     /// Bonds between every two atoms.
