@@ -219,7 +219,7 @@ impl Fitting<'_> {
     fn estimate(&mut self, quantity: Quantity, known: Option<Known>) -> Result<Estimate, Absent> {
         let fitted = self.library.fitted();
         let model = fitted.model(quantity, self.level);
-        if model.has_new_kind_of_atom(fitted.table(), &self.input.molecule) {
+        if model.has_new_kind_of_atom(&self.input.molecule) {
             let words = self.unknown_words(quantity);
             return Err(Absent::Because(
                 format!("{}: {words}", self.level.id()).into(),

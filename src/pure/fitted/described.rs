@@ -20,6 +20,8 @@ pub(super) const INPUTS: usize = 7;
 pub struct Described {
     /// Position and count of the environments that the fit knows.
     pub(super) found: Vec<(u32, f32)>,
+    /// Their orders.
+    orders: Vec<Order>,
     /// Keys of first- and second-order environments that it does not know.
     pub unknown: Vec<(EnvironmentKey, Order)>,
     /// Heavy atoms.
@@ -61,6 +63,7 @@ impl Described {
     /// Looks the environments of a molecule up.
     pub fn fill(&mut self, table: &EnvironmentTable, counts: &EnvironmentCounts) {
         self.found.clear();
+        self.orders.clear();
         self.unknown.clear();
         self.heavy_atoms = 0.0;
         self.classes = [0.0; CLASSES.len()];
@@ -72,6 +75,11 @@ impl Described {
             match table.position(key) {
                 Some(position) => {
                     self.found.push((position, count));
+                    self.orders.push(order);
+                    // no environment farther out has a class
+                    if order > Order::First {
+                        continue;
+                    }
                     let classes = table.entries()[position as usize].classes;
                     self.present |= classes;
                     for (class, members) in self.classes.iter_mut().enumerate() {
@@ -120,6 +128,14 @@ impl Described {
         &self.found
     }
 
+    /// Positions of the known environments up to an order.
+    pub(super) fn found_up_to(&self, order: Order) -> impl Iterator<Item = u32> + '_ {
+        let found = self.found.iter().zip(&self.orders);
+        found
+            .filter(move |(_, of)| **of <= order)
+            .map(|(found, _)| found.0)
+    }
+
     /// The terms of a sum by number, with their values.
     ///
     /// Environments come first (number = position), then their shares of the
@@ -136,8 +152,8 @@ impl Described {
         let terms = quantity.terms(level);
         let environments = table.entries().len() as u32;
         let n = self.heavy_atoms.max(1.0);
-        for &(position, count) in &self.found {
-            if !quantity.takes(level, table.entries()[position as usize].order) {
+        for (&(position, count), &order) in self.found.iter().zip(&self.orders) {
+            if !quantity.takes(level, order) {
                 continue;
             }
             let count = f64::from(count);

@@ -18,6 +18,7 @@ mod model;
 mod parameters;
 mod quantity;
 mod scale;
+mod support;
 mod table;
 mod volume;
 
@@ -29,10 +30,9 @@ pub use model::{
     Interval, Model, Prediction, Relatives, Supporting, has_new_kind_of_atom, has_unknown_atoms,
     rarity, similarity, unknown_environments,
 };
-pub use parameters::{
-    Fitted, FittedInput, Support, write_environments, write_model, write_molecules,
-};
+pub use parameters::{Fitted, FittedInput, write_environments, write_model, write_molecules};
 pub use quantity::{Level, PerAtom, Quantity, Terms};
 pub use scale::{Ground, Scale, Signs, SizeClass, Standing};
+pub use support::Support;
 pub use table::{EnvironmentEntry, EnvironmentTable, classes_of};
 pub use volume::{volume_carried, volume_temperature_k};

@@ -158,30 +158,16 @@ impl Model {
         }
     }
 
-    /// The correction of a sum and the similarity to the most similar molecule of
-    /// this fit; `similarities` are those to all molecules, by number.
-    pub(super) fn correction(&self, similarities: &[f32]) -> (f64, f64) {
-        // four sums at a time, which the processor can work on side by side
-        let mut sums = [0.0_f32; 4];
-        let mut most = [0.0_f32; 4];
-        for four in self.support.chunks(4) {
-            for (lane, other) in four.iter().enumerate() {
-                let similarity = similarities[other.molecule as usize];
-                sums[lane] += other.part * similarity;
-                most[lane] = most[lane].max(similarity);
-            }
-        }
-        let sum = sums.iter().map(|&sum| f64::from(sum)).sum();
-        let most = most.iter().fold(0.0, |most: f32, &one| most.max(one));
-        (sum, f64::from(most))
-    }
-
     /// The relatives of a molecule in this fit; `near` are all that are near enough,
     /// with their squared distances.
-    pub(super) fn relatives(&self, near: &[(u32, f32)], most_similar: f64) -> Relatives {
+    pub(super) fn relatives(
+        &self,
+        near: impl Iterator<Item = (u32, f32)>,
+        most_similar: f64,
+    ) -> Relatives {
         let mut relatives = Relatives::default();
         relatives.see(most_similar);
-        for &(molecule, squared) in near {
+        for (molecule, squared) in near {
             match self.errors.get(molecule as usize) {
                 Some(error) if !error.is_nan() => {
                     relatives.add(f64::from(squared), f64::from(*error));
@@ -208,64 +194,47 @@ impl Model {
 
     /// How rare the environments of a molecule are in this fit: the sum over
     /// those of first and second order of one over their occurrences.
-    pub fn rarity(&self, table: &EnvironmentTable, described: &Described) -> f64 {
-        rarity(table, described, &self.occurrences, self.level)
+    pub fn rarity(&self, described: &Described) -> f64 {
+        rarity(described, &self.occurrences, self.level)
     }
 
     /// Whether the molecule has an atom of a kind that no molecule of this fit has,
     /// whatever it is bound to: then there is no value.
-    pub fn has_new_kind_of_atom(&self, table: &EnvironmentTable, described: &Described) -> bool {
-        has_new_kind_of_atom(table, described, &self.occurrences)
+    pub fn has_new_kind_of_atom(&self, described: &Described) -> bool {
+        has_new_kind_of_atom(described, &self.occurrences)
     }
 
     /// Whether some atom of the molecule is of a kind that no molecule of this
     /// fit has, be it by itself or, for hetero atoms, with its neighbors.
-    pub fn has_unknown_atoms(&self, table: &EnvironmentTable, described: &Described) -> bool {
-        has_unknown_atoms(table, described, &self.occurrences)
+    pub fn has_unknown_atoms(&self, described: &Described) -> bool {
+        has_unknown_atoms(described, &self.occurrences)
     }
 }
 
 /// Whether a first-order environment of the molecule occurs nowhere.
-pub fn has_unknown_atoms(
-    table: &EnvironmentTable,
-    described: &Described,
-    occurrences: &[u32],
-) -> bool {
+pub fn has_unknown_atoms(described: &Described, occurrences: &[u32]) -> bool {
     let new = described.unknown.iter();
     new.map(|entry| entry.1).any(|order| order <= Order::First)
-        || described.found.iter().any(|&(position, _)| {
-            table.entries()[position as usize].order <= Order::First
-                && occurrences[position as usize] == 0
-        })
+        || described
+            .found_up_to(Order::First)
+            .any(|position| occurrences[position as usize] == 0)
 }
 
 /// Whether the molecule has an atom of a kind that occurs nowhere, whatever it is bound to.
-pub fn has_new_kind_of_atom(
-    table: &EnvironmentTable,
-    described: &Described,
-    occurrences: &[u32],
-) -> bool {
+pub fn has_new_kind_of_atom(described: &Described, occurrences: &[u32]) -> bool {
     let mut new = described.unknown.iter();
     new.any(|entry| entry.1 == Order::Atom)
-        || described.found.iter().any(|&(position, _)| {
-            table.entries()[position as usize].order == Order::Atom
-                && occurrences[position as usize] == 0
-        })
+        || described
+            .found_up_to(Order::Atom)
+            .any(|position| occurrences[position as usize] == 0)
 }
 
 /// The sum over the environments that a level looks at, up to the second order, of
 /// one over their occurrences.
-pub fn rarity(
-    table: &EnvironmentTable,
-    described: &Described,
-    occurrences: &[u32],
-    level: Level,
-) -> f64 {
+pub fn rarity(described: &Described, occurrences: &[u32], level: Level) -> f64 {
     let known: f64 = described
-        .found
-        .iter()
-        .filter(|(position, _)| table.entries()[*position as usize].order <= farthest(level))
-        .map(|(position, _)| 1.0 / (f64::from(occurrences[*position as usize]) + 0.5))
+        .found_up_to(farthest(level))
+        .map(|position| 1.0 / (f64::from(occurrences[position as usize]) + 0.5))
         .sum();
     known + 2.0 * unknown_environments(described, level) as f64
 }

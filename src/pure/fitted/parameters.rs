@@ -8,11 +8,11 @@ use super::count::CountModel;
 use super::described::{Described, INPUTS, Known, PRODUCTS, SIZES};
 use super::error::ParameterError;
 use super::model::{
-    Model, NEAR, Prediction, Relatives, Supporting, has_new_kind_of_atom, similarity_f32,
-    unknown_environments,
+    Model, Prediction, Relatives, Supporting, has_new_kind_of_atom, unknown_environments,
 };
 use super::quantity::{Level, Quantity};
 use super::scale::{Ground, Scale, Standing};
+use super::support::{Likeness, Support};
 use super::table::{EnvironmentEntry, EnvironmentTable};
 use crate::groups::environment::{EnvironmentCounts, EnvironmentKey, Order};
 use crate::quantity::Absent;
@@ -72,94 +72,10 @@ const COUNT: [File; Quantity::COUNT] = [
     file!("count-ideal_gas_enthalpy_of_formation.csv"),
 ];
 
+/// Room for the environments of a molecule that count in distances: few have more.
+const USUAL_ENVIRONMENTS: usize = 40;
+
 const SOUND: &str = "built-in parameter files are sound (tested)";
-
-/// The share of the molecules from which on an environment is kept for every one
-/// of them, which is faster to go through than a list.
-const DENSE_SHARE: f64 = 0.15;
-
-/// The molecules of the fit, as far as distances to them go.
-#[derive(Clone, Debug, Default)]
-pub struct Support {
-    /// Squared length of each molecule's coordinates.
-    squares: Vec<f32>,
-    /// How the coordinates of an environment are kept, by position.
-    coordinates: Vec<Coordinates>,
-}
-
-/// The coordinates of one environment.
-#[derive(Clone, Debug)]
-enum Coordinates {
-    /// Of every molecule.
-    Dense(Vec<f32>),
-    /// Of the molecules that have it.
-    Sparse(Vec<(u32, f32)>),
-}
-
-impl Support {
-    /// Collects the coordinates of molecules; `molecules` are in the order of their numbers.
-    pub fn new(table: &EnvironmentTable, molecules: &[Described]) -> Self {
-        let mut lists: Vec<Vec<(u32, f32)>> = vec![Vec::new(); table.entries().len()];
-        let mut squares = Vec::with_capacity(molecules.len());
-        for (number, molecule) in molecules.iter().enumerate() {
-            let mut square = 0.0;
-            molecule.each_coordinate(table, |position, coordinate| {
-                square += coordinate * coordinate;
-                lists[position as usize].push((number as u32, coordinate));
-            });
-            squares.push(square);
-        }
-        let dense_from = (DENSE_SHARE * molecules.len() as f64) as usize;
-        let coordinates = lists
-            .into_iter()
-            .map(|list| {
-                if list.len() <= dense_from {
-                    return Coordinates::Sparse(list);
-                }
-                let mut dense = vec![0.0; molecules.len()];
-                for (molecule, coordinate) in list {
-                    dense[molecule as usize] = coordinate;
-                }
-                Coordinates::Dense(dense)
-            })
-            .collect();
-        Self {
-            squares,
-            coordinates,
-        }
-    }
-
-    /// Squared distance of a molecule to every one of the fit.
-    pub fn squared_distances_into(
-        &self,
-        table: &EnvironmentTable,
-        described: &Described,
-        squared: &mut Vec<f32>,
-    ) {
-        squared.clear();
-        squared.extend_from_slice(&self.squares);
-        let mut own = 0.0;
-        described.each_coordinate(table, |position, coordinate| {
-            own += coordinate * coordinate;
-            let twice = -2.0 * coordinate;
-            match &self.coordinates[position as usize] {
-                Coordinates::Dense(theirs) => {
-                    for (squared, theirs) in squared.iter_mut().zip(theirs) {
-                        *squared += twice * theirs;
-                    }
-                }
-                Coordinates::Sparse(theirs) => {
-                    for &(molecule, theirs) in theirs {
-                        squared[molecule as usize] += twice * theirs;
-                    }
-                }
-            }
-        });
-        for distance in squared.iter_mut() {
-            *distance = (*distance + own).max(0.0);
-        }
-    }
-}
 
 /// The fitted estimates with their parameters.
 ///
@@ -222,15 +138,18 @@ impl Fitted {
     }
 
     fn support(&self) -> &Support {
-        self.support
-            .get_or_init(|| read_molecules(MOLECULES.0, MOLECULES.1, &self.table).expect(SOUND))
+        self.support.get_or_init(|| {
+            let molecules = read_molecules(MOLECULES.0, MOLECULES.1, &self.table).expect(SOUND);
+            let models = Quantity::ALL.map(|quantity| self.model(quantity, Level::Structure));
+            Support::of_models(&self.table, &molecules, models)
+        })
     }
 
     /// Looks a molecule up; the distances to the molecules of the fit are left to be
     /// found when a model first asks for them.
     pub fn describe(&self, counts: &EnvironmentCounts, described: &mut FittedInput) {
         described.molecule.fill(&self.table, counts);
-        described.similarities.clear();
+        described.likeness.clear();
     }
 
     /// The value of a quantity with its interval.
@@ -264,7 +183,7 @@ impl Fitted {
             });
         }
         let model = self.model(quantity, level);
-        if has_new_kind_of_atom(&self.table, &input.molecule, &model.occurrences) {
+        if has_new_kind_of_atom(&input.molecule, &model.occurrences) {
             return Err(Absent::OutsideDomain {
                 method,
                 what: "the molecule has a kind of atom that no molecule of the fit has",
@@ -273,24 +192,17 @@ impl Fitted {
         let mut sum = model.linear(&self.table, &input.molecule, known);
         let mut relatives = Relatives::unknown();
         if level == Level::Structure {
-            if input.similarities.is_empty() {
-                let support = self.support();
-                support.squared_distances_into(
-                    &self.table,
-                    &input.molecule,
-                    &mut input.similarities,
-                );
-                similarities(&mut input.similarities, &mut input.relatives);
-            }
-            let (correction, most_similar) = model.correction(&input.similarities);
+            let support = self.support();
+            let (correction, most_similar) =
+                support.correction(&self.table, &input.molecule, quantity, &mut input.likeness);
             sum += correction;
-            relatives = model.relatives(&input.relatives, most_similar);
+            relatives = model.relatives(support.near(&input.likeness), most_similar);
         }
         let ground = Ground {
             sum,
-            rarity: model.rarity(&self.table, &input.molecule),
+            rarity: model.rarity(&input.molecule),
             unknown_environments: unknown_environments(&input.molecule, level),
-            unknown_atoms: model.has_unknown_atoms(&self.table, &input.molecule),
+            unknown_atoms: model.has_unknown_atoms(&input.molecule),
             relatives: &relatives,
         };
         let standing = Standing::of(&input.molecule, &ground);
@@ -318,23 +230,8 @@ impl Fitted {
 pub struct FittedInput {
     /// Its environments.
     pub molecule: Described,
-    /// Similarity to every molecule of the fit; empty until a model asks.
-    similarities: Vec<f32>,
-    /// Molecules near enough to count as relatives, with their squared distances.
-    relatives: Vec<(u32, f32)>,
-}
-
-/// Puts similarities in the place of squared distances and lists the near molecules.
-fn similarities(squared: &mut [f32], near: &mut Vec<(u32, f32)>) {
-    near.clear();
-    for (number, &squared) in (0..).zip(squared.iter()) {
-        if squared < NEAR {
-            near.push((number, squared));
-        }
-    }
-    for squared in squared.iter_mut() {
-        *squared = similarity_f32(*squared);
-    }
+    /// How like it is to the molecules of the fit, as far as models asked.
+    likeness: Likeness,
 }
 
 // ------------------------------------------------------------------- reading
@@ -359,6 +256,29 @@ fn number<T: FromStr>(file: &str, line: usize, cell: Option<&str>) -> Result<T, 
     let cell = cell.ok_or_else(|| fault(file, line, "has too few cells"))?;
     cell.parse()
         .map_err(|_| fault(file, line, format!("`{cell}` is not a number")))
+}
+
+/// The text up to a mark, which is taken off; much of the time that reading takes
+/// goes by here, and the texts are too short for a search made for long ones.
+fn next_cell<'a>(text: &mut &'a str, mark: u8) -> &'a str {
+    let whole = *text;
+    match whole.bytes().position(|byte| byte == mark) {
+        Some(at) => {
+            *text = &whole[at + 1..];
+            &whole[..at]
+        }
+        None => {
+            *text = "";
+            whole
+        }
+    }
+}
+
+/// A text of digits, few enough for a number that `f32` holds as it is.
+fn whole(text: &str) -> Option<u32> {
+    let is_whole = (1..=6).contains(&text.len()) && text.bytes().all(|byte| byte.is_ascii_digit());
+    let digits = text.bytes().map(|byte| u32::from(byte - b'0'));
+    is_whole.then(|| digits.fold(0, |number, digit| 10 * number + digit))
 }
 
 fn order_id(order: Order) -> &'static str {
@@ -405,13 +325,26 @@ fn read_molecules(
     file: &str,
     text: &str,
     table: &EnvironmentTable,
-) -> Result<Support, ParameterError> {
+) -> Result<Vec<Described>, ParameterError> {
     let mut molecules = Vec::new();
     for (line, row) in lines(text).skip(1) {
         let mut molecule = Described::default();
-        for pair in row.split(' ') {
-            let (position, count) = pair.split_once(':').unwrap_or((pair, "1"));
-            let position: u32 = number(file, line, Some(position))?;
+        molecule.found.reserve_exact(USUAL_ENVIRONMENTS);
+        let mut rest = row;
+        while !rest.is_empty() {
+            let pair = next_cell(&mut rest, b' ');
+            let (position, count) = match whole(pair) {
+                Some(position) => (position, 1.0),
+                None => {
+                    let mut pair = pair;
+                    let position = number(file, line, Some(next_cell(&mut pair, b':')))?;
+                    let count = match whole(pair) {
+                        Some(count) => count as f32,
+                        None => number(file, line, Some(pair))?,
+                    };
+                    (position, count)
+                }
+            };
             if position as usize >= table.entries().len() {
                 return Err(fault(
                     file,
@@ -419,13 +352,11 @@ fn read_molecules(
                     format!("there is no environment {position}"),
                 ));
             }
-            molecule
-                .found
-                .push((position, number(file, line, Some(count))?));
+            molecule.found.push((position, count));
         }
         molecules.push(molecule);
     }
-    Ok(Support::new(table, &molecules))
+    Ok(molecules)
 }
 
 /// Number of terms that [`Described::each_term`] may name.
@@ -464,7 +395,11 @@ fn read_model(
         errors: Vec::new(),
     };
     for (line, row) in lines(text) {
-        let mut cells = row.split(',');
+        let mut rest = row;
+        let mut cells = std::iter::from_fn(|| match rest.is_empty() {
+            true => None,
+            false => Some(next_cell(&mut rest, b',')),
+        });
         match cells.next().unwrap_or_default() {
             "intercept" => model.intercept = number(file, line, cells.next())?,
             "scale" => {

@@ -76,8 +76,6 @@ pub(crate) struct Derived {
     with_intervals: bool,
     /// Whether the fits have all of its atoms.
     inside: bool,
-    /// Whether the program would give values: no kind of atom is new to one of the fits.
-    answered: bool,
 }
 
 impl Derived {
@@ -91,11 +89,14 @@ impl Derived {
         let described = &fit.molecules[molecule];
         let known = known(fit, level, molecule, measured_boiling_point)?;
         let atoms = described.heavy_atoms();
-        let (mut with_intervals, mut inside, mut answered) = (true, true, true);
+        let (mut with_intervals, mut inside) = (true, true);
         let mut of = |quantity: Quantity| {
             let occurrences = &fit.partial[&(level, quantity)][reference.fold].occurrences;
-            inside &= !has_unknown_atoms(&fit.table, described, occurrences);
-            answered &= !has_new_kind_of_atom(&fit.table, described, occurrences);
+            inside &= !has_unknown_atoms(described, occurrences);
+            // the program gives no value then
+            if has_new_kind_of_atom(described, occurrences) {
+                return None;
+            }
             let value = constant(fit, level, quantity, molecule, measured_boiling_point)?;
             let sum = quantity.opened(value, atoms, Some(known))?;
             let end = |sum: f64| quantity.closed(sum, atoms, Some(known));
@@ -121,17 +122,15 @@ impl Derived {
             },
             None => of(Quantity::BoilingPoint)?,
         };
-        let critical_temperature = of(Quantity::CriticalTemperature)?;
-        let critical_pressure = of(Quantity::CriticalPressure)?;
-        let constants = Constants::new(
-            boiling_point.value,
-            critical_temperature.value,
-            critical_pressure.value,
-            level.id(),
-        )
-        .ok()?;
+        let critical_temperature = of(Quantity::CriticalTemperature);
+        let critical_pressure = of(Quantity::CriticalPressure);
+        let constants = critical_temperature.as_ref().zip(critical_pressure.as_ref());
+        let constants = constants.and_then(|(temperature, pressure)| {
+            let (tb, id) = (boiling_point.value, level.id());
+            Constants::new(tb, temperature.value, pressure.value, id).ok()
+        });
         let slope = of(Quantity::VaporPressureSlope);
-        let enthalpy = slope.map(|slope| {
+        let enthalpy = slope.zip(constants).map(|(slope, constants)| {
             enthalpy_of_vaporization_of_slope(slope, &boiling_point, &constants, reference.acid)
         });
         let mass = reference.molar_mass_kg_per_mol;
@@ -144,13 +143,17 @@ impl Derived {
             }
             .at(volume_k)
         });
-        let mut given = vec![
-            (Property::BoilingPoint, boiling_point),
+        let given = [
+            (Property::BoilingPoint, Some(boiling_point)),
             (Property::CriticalTemperature, critical_temperature),
             (Property::CriticalPressure, critical_pressure),
+            (Property::EnthalpyOfVaporization, enthalpy),
+            (Property::LiquidDensity, density),
         ];
-        given.extend(enthalpy.map(|enthalpy| (Property::EnthalpyOfVaporization, enthalpy)));
-        given.extend(density.map(|density| (Property::LiquidDensity, density)));
+        let given = given
+            .into_iter()
+            .filter_map(|(property, estimate)| Some((property, estimate?)))
+            .collect();
         Some(Self {
             given,
             facts: StructureFacts {
@@ -160,7 +163,6 @@ impl Derived {
             },
             with_intervals,
             inside,
-            answered,
         })
     }
 
@@ -231,8 +233,6 @@ pub(crate) struct Point {
     pub(crate) interval: Option<(f64, f64)>,
     /// Whether the fits have all of its atoms.
     pub(crate) inside: bool,
-    /// Whether the program would give a value: no kind of atom is new.
-    pub(crate) answered: bool,
 }
 
 impl Point {
@@ -245,7 +245,7 @@ impl Point {
     }
 
     fn error(&self) -> Option<f64> {
-        let ratio = self.estimate.filter(|_| self.answered)? / self.value;
+        let ratio = self.estimate? / self.value;
         Some(match self.figure {
             Figure::VaporPressure => ratio.log10(),
             _ => 100.0 * (ratio - 1.0),
@@ -304,7 +304,6 @@ pub(crate) fn points(fit: &Fit, level: Level) -> Vec<Point> {
                         .and_then(|estimate| estimate.interval)
                         .filter(|_| derived.is_some_and(|one| one.with_intervals)),
                     inside: derived.is_some_and(|one| one.inside),
-                    answered: derived.is_some_and(|one| one.answered),
                 });
             }
         }

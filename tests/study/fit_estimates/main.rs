@@ -412,7 +412,7 @@ impl Fit {
             .zip(&folds)
             .map(|(&molecule, &fold)| {
                 let described = &self.molecules[molecule];
-                !has_new_kind_of_atom(&self.table, described, &by_fold[fold])
+                !has_new_kind_of_atom(described, &by_fold[fold])
             })
             .collect();
         let inside: Vec<bool> = members
@@ -420,7 +420,7 @@ impl Fit {
             .zip(&folds)
             .map(|(&molecule, &fold)| {
                 let described = &self.molecules[molecule];
-                !has_unknown_atoms(&self.table, described, &by_fold[fold])
+                !has_unknown_atoms(described, &by_fold[fold])
             })
             .collect();
         let standings = |out: Option<usize>| -> Vec<Standing> {
@@ -439,7 +439,7 @@ impl Fit {
                     }
                     let ground = Ground {
                         sum: sums[i],
-                        rarity: rarity(&self.table, described, &by_fold[folds[i]], level),
+                        rarity: rarity(described, &by_fold[folds[i]], level),
                         unknown_environments: unknown_environments(described, level),
                         unknown_atoms: !inside[i],
                         relatives: &relatives,

@@ -108,7 +108,7 @@ fn rows_of(points: &[Point], figure: Figure) -> impl Iterator<Item = Row> {
     let of_figure = move |point: &&Point| point.figure == figure && !point.measured;
     points.iter().filter(of_figure).map(|point| {
         let (low, high) = point.interval.unzip();
-        let given = point.answered && point.estimate.is_some();
+        let given = point.estimate.is_some();
         (
             point.molecule,
             point.value,
@@ -220,7 +220,7 @@ fn derived(fit: &Fit, points: &[Point]) -> Result<String, Box<dyn Error>> {
             cell(low),
             cell(high),
             point.inside,
-            point.answered
+            point.estimate.is_some()
         )?;
     }
     Ok(text)
