@@ -5,8 +5,11 @@ use smallvec::SmallVec;
 use super::component::{VaporCurve, boiling_range_k};
 use super::dilution::{MeasuredDilutions, origin};
 use super::figure::FigureKind;
+use super::fitted::FittedValues;
 use super::plan::{Plan, PlannedFigure, PlannedModel};
-use super::profile::{Known, Profile, Profiler, fitted_values, properties_from};
+use super::profile::{
+    GivenValues, Known, Profile, Profiler, given_values, measured_values, properties_from,
+};
 use super::solution::with_liquid;
 use super::uncertainty::{Judged, Judgement, Spread, Term};
 use crate::chem::SmilesError;
@@ -14,7 +17,8 @@ use crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
 use crate::mixture::{Component, LnError, Unifac, Vapor, liquid_phases, relative_volatility};
 use crate::pure::Estimates;
 use crate::quantity::{
-    Absent, Dimension, Estimate, Flag, Flags, Outcome, Property, REFERENCE_TEMPERATURE_K, Status,
+    Absent, Dimension, Estimate, Flag, Flags, Outcome, Property, PropertySet,
+    REFERENCE_TEMPERATURE_K, Status,
 };
 
 /// Solvent-free mole fractions of the first key at which the relative
@@ -62,35 +66,36 @@ pub enum Verdict {
 }
 
 /// Memory for evaluating candidates, one per thread.
+#[derive(Default)]
 pub struct Scratch {
     profiler: Profiler,
     /// The last candidate.
     pub profile: Profile,
-    /// Its figures, in the order of [`Plan::figures`].
+    /// Its figures, in the order of [`Plan::figures`]. After [`Plan::judge`] those that
+    /// were not asked for are absent.
     pub figures: Vec<Outcome>,
-    /// Its properties at each temperature of the plan.
-    estimates: Vec<Estimates>,
+    /// Which figures were found out.
+    told: Vec<bool>,
+    properties: Vec<AtTemperature>,
+    fitted: FittedValues,
     measured: MeasuredDilutions,
-    dilute: Vec<Dilute>,
+    dilute: Vec<Option<Dilute>>,
 }
 
-impl Default for Scratch {
-    fn default() -> Self {
-        Self::new()
-    }
+/// Properties of a candidate at one temperature of the plan.
+#[derive(Debug)]
+struct AtTemperature {
+    /// Values that go before estimates.
+    given: GivenValues,
+    estimates: Estimates,
+    /// Which of them were asked for.
+    told: PropertySet,
 }
 
 impl Scratch {
     /// Empty memory.
     pub fn new() -> Self {
-        Self {
-            profiler: Profiler::new(),
-            profile: Profile::default(),
-            figures: Vec::new(),
-            estimates: Vec::new(),
-            measured: MeasuredDilutions::default(),
-            dilute: Vec::new(),
-        }
+        Self::default()
     }
 
     /// A reason for absence in the last candidate, with the words for an
@@ -109,16 +114,125 @@ struct AlphaRange {
 }
 
 /// A candidate with what its figures are computed from.
+#[derive(Clone, Copy)]
 struct Candidate<'a> {
     profile: &'a Profile,
     known: Option<Known<'a>>,
     /// Measured values of the user's own.
     own: &'a [(Property, Estimate)],
-    /// Its properties at each temperature of the plan.
-    estimates: &'a [Estimates],
     measured: &'a MeasuredDilutions,
+}
+
+/// A candidate whose figures are found out as they are asked for.
+struct Inquiry<'a> {
+    plan: &'a Plan,
+    candidate: Candidate<'a>,
+    fitted: &'a mut FittedValues,
+    properties: &'a mut Vec<AtTemperature>,
     /// By each model of the plan.
-    dilute: &'a [Dilute],
+    dilute: &'a mut [Option<Dilute>],
+    figures: &'a mut [Outcome],
+    told: &'a mut [bool],
+}
+
+impl Inquiry<'_> {
+    /// A figure of the plan.
+    fn figure(&mut self, at: usize) -> &Outcome {
+        if !self.told[at] {
+            self.told[at] = true;
+            self.figures[at] = self.found(at);
+        }
+        &self.figures[at]
+    }
+
+    fn found(&mut self, at: usize) -> Outcome {
+        let plan = self.plan;
+        let figure = &plan.figures[at];
+        self.ask(figure.temperature, figure.rests_on);
+        if let FigureKind::Property(property) = figure.kind {
+            return plan.tested(
+                figure,
+                self.properties[figure.temperature].estimates[property as usize].clone(),
+            );
+        }
+        let candidate = self.candidate;
+        let dilute = self.dilute[figure.model].get_or_insert_with(|| {
+            let mut of_model = plan.dilute(&plan.models[figure.model], candidate.profile);
+            of_model.prefer(candidate.measured, plan.keys);
+            of_model
+        });
+        let estimates = &self.properties[figure.temperature].estimates;
+        plan.tested(figure, plan.figure(figure, &candidate, estimates, dilute))
+    }
+
+    /// Finds out properties at a temperature of the plan.
+    fn ask(&mut self, temperature: usize, asked: PropertySet) {
+        let here = &self.properties[temperature];
+        if here.told.contains_all(asked) {
+            return;
+        }
+        let library = &self.plan.library;
+        let profile = self.candidate.profile;
+        let at_reference = &self.properties[0].given;
+        self.fitted.add(library, profile, at_reference, asked);
+        let some = self.from_methods(temperature, self.fitted, asked);
+        let here = &mut self.properties[temperature];
+        for (property, found) in Property::ALL.into_iter().zip(some) {
+            if asked.contains(property) {
+                here.estimates[property as usize] = found;
+            }
+        }
+        here.told = here.told.union(asked);
+    }
+
+    fn from_methods(
+        &self,
+        temperature: usize,
+        fitted: &FittedValues,
+        asked: PropertySet,
+    ) -> Estimates {
+        let given = self.properties[temperature].given.clone();
+        let temperature_k = self.plan.temperatures[temperature];
+        let library = &self.plan.library;
+        properties_from(
+            library,
+            self.candidate.profile,
+            given,
+            fitted,
+            temperature_k,
+            asked,
+        )
+    }
+
+    /// Whether a figure is known to have a value before it is found out: one whose
+    /// older method starts from nothing and answers, which stands in if the fit does not.
+    fn surely_has_value(&self, at: usize) -> bool {
+        if self.told[at] {
+            return self.figures[at].is_ok();
+        }
+        let figure = &self.plan.figures[at];
+        let FigureKind::Property(property) = figure.kind else {
+            return false;
+        };
+        let alone = PropertySet::NONE.with(property);
+        if figure.rests_on != alone {
+            return false;
+        }
+        let without_fit = FittedValues::default();
+        self.from_methods(figure.temperature, &without_fit, alone)[property as usize].is_ok()
+    }
+
+    /// Finds out all that has not been asked for.
+    fn complete(&mut self) {
+        for temperature in 0..self.properties.len() {
+            self.ask(temperature, PropertySet::ALL);
+        }
+        // flags come of comparing with what was not asked for before
+        self.told.fill(false);
+        for at in 0..self.figures.len() {
+            self.figure(at);
+        }
+    }
 }
 
 /// A candidate at infinite dilution with the keys, by one model.
@@ -164,13 +278,47 @@ impl Plan {
         smiles: &str,
         own: &[(Property, Estimate)],
     ) -> Result<Verdict, SmilesError> {
-        scratch
-            .profiler
-            .profile_into(&self.library, smiles, &mut scratch.profile)?;
+        self.read(scratch, smiles)?;
+        let mut inquiry = self.inquiry(scratch, own);
+        inquiry.complete();
+        Ok(self.verdict(&mut inquiry))
+    }
+
+    /// The verdict of [`evaluate_with`](Self::evaluate_with) without finding out more than it
+    /// takes: the musts in their order until one decides, and what else targets look
+    /// at only if all are met.
+    ///
+    /// # Errors
+    ///
+    /// As [`evaluate`](Self::evaluate).
+    pub fn judge(
+        &self,
+        scratch: &mut Scratch,
+        smiles: &str,
+        own: &[(Property, Estimate)],
+    ) -> Result<Verdict, SmilesError> {
+        self.read(scratch, smiles)?;
+        let mut inquiry = self.inquiry(scratch, own);
+        Ok(self.verdict(&mut inquiry))
+    }
+
+    fn read(&self, scratch: &mut Scratch, smiles: &str) -> Result<(), SmilesError> {
+        let profiler = &mut scratch.profiler;
+        profiler.profile_into(&self.library, smiles, &mut scratch.profile)
+    }
+
+    /// Begins with the candidate that was read last.
+    fn inquiry<'a>(
+        &'a self,
+        scratch: &'a mut Scratch,
+        own: &'a [(Property, Estimate)],
+    ) -> Inquiry<'a> {
         let Scratch {
             profile,
             figures,
-            estimates,
+            told,
+            properties,
+            fitted,
             measured,
             dilute,
             ..
@@ -180,48 +328,48 @@ impl Plan {
             .known(&profile.keys)
             .filter(|_| self.use_measured);
         let own = if self.use_measured { own } else { &[] };
-        estimates.clear();
-        let fitted = fitted_values(&self.library, profile, known, own);
-        estimates.extend(
-            self.temperatures
-                .iter()
-                .map(|&t| properties_from(&self.library, profile, known, own, &fitted, t)),
-        );
+        fitted.clear();
+        properties.clear();
+        properties.extend(self.temperatures.iter().map(|&t| AtTemperature {
+            given: given_values(measured_values(known, t), own, t),
+            estimates: [const { Err(Absent::NoMethod) }; Property::COUNT],
+            told: PropertySet::NONE,
+        }));
         self.measured_dilutions(profile, measured);
         dilute.clear();
-        dilute.extend(self.models.iter().map(|model| {
-            let mut of_model = self.dilute(model, profile);
-            of_model.prefer(measured, self.keys);
-            of_model
-        }));
-        let candidate = Candidate {
-            profile,
-            known,
-            own,
-            estimates,
-            measured,
-            dilute,
-        };
+        dilute.resize_with(self.models.len(), || None);
+        told.clear();
+        told.resize(self.figures.len(), false);
         figures.clear();
-        for figure in &self.figures {
-            let outcome = self.figure(figure, &candidate);
-            figures.push(outcome);
+        figures.resize(self.figures.len(), Err(Absent::NoMethod));
+        Inquiry {
+            plan: self,
+            candidate: Candidate {
+                profile,
+                known,
+                own,
+                measured,
+            },
+            fitted,
+            properties,
+            dilute,
+            figures,
+            told,
         }
-        #[cfg(test)]
-        self.put_intervals_for_tests(figures);
-        Ok(self.verdict(profile, figures))
     }
 
+    /// A figure as it was found, with the interval that a test puts in.
     #[cfg(test)]
-    fn put_intervals_for_tests(&self, figures: &mut [Outcome]) {
-        let Some(interval) = self.intervals_for_tests else {
-            return;
-        };
-        for (planned, figure) in self.figures.iter().zip(figures) {
-            if let Ok(found) = figure {
-                found.interval = interval(planned, found.value);
-            }
+    fn tested(&self, figure: &PlannedFigure, mut found: Outcome) -> Outcome {
+        if let (Some(interval), Ok(found)) = (self.intervals_for_tests, &mut found) {
+            found.interval = interval(figure, found.value);
         }
+        found
+    }
+
+    #[cfg(not(test))]
+    fn tested(&self, _: &PlannedFigure, found: Outcome) -> Outcome {
+        found
     }
 
     fn dilute(&self, model: &PlannedModel, profile: &Profile) -> Dilute {
@@ -264,19 +412,19 @@ impl Plan {
         }
     }
 
-    fn figure(&self, figure: &PlannedFigure, candidate: &Candidate<'_>) -> Outcome {
+    /// A figure of the mixture; `estimates` are the candidate's properties at 298.15 K
+    /// as far as the figure rests on them.
+    fn figure(
+        &self,
+        figure: &PlannedFigure,
+        candidate: &Candidate<'_>,
+        estimates: &Estimates,
+        of_candidate: &Dilute,
+    ) -> Outcome {
         let Candidate {
-            profile,
-            estimates,
-            measured,
-            dilute,
-            ..
+            profile, measured, ..
         } = *candidate;
-        if let FigureKind::Property(property) = figure.kind {
-            return estimates[figure.temperature][property as usize].clone();
-        }
         let model = &self.models[figure.model];
-        let of_candidate = &dilute[figure.model];
         let temperature_k = self.temperature_k.unwrap_or(REFERENCE_TEMPERATURE_K);
         let calculated = |value: f64| Estimate::new(value, model.model.id()).at(temperature_k);
         let [first, second] = &of_candidate.keys;
@@ -302,7 +450,7 @@ impl Plan {
             model.ln_gamma_inf_of(selected, candidate)
         };
         let value = match figure.kind {
-            FigureKind::Property(_) => unreachable!("answered above"),
+            FigureKind::Property(property) => return estimates[property as usize].clone(),
             FigureKind::GammaInfinityOfKey(key) => of_keys(key)?.exp(),
             FigureKind::GammaInfinityOfComponent => of_component(figure.component)?.exp(),
             FigureKind::GammaInfinityOfCandidate => {
@@ -343,7 +491,7 @@ impl Plan {
                     / profile.facts.molar_mass_kg_per_mol
             }
             FigureKind::RelativeVolatilityWithSolvent | FigureKind::SeparationFactorWithSolvent => {
-                let range = self.with_solvent(model, of_candidate, candidate);
+                let range = self.with_solvent(model, of_candidate, candidate, estimates);
                 return range.and_then(|range| {
                     let value = if figure.kind == FigureKind::SeparationFactorWithSolvent {
                         range.least.max(1.0 / range.most)
@@ -380,6 +528,7 @@ impl Plan {
         model: &PlannedModel,
         dilute: &Dilute,
         candidate: &Candidate<'_>,
+        estimates: &Estimates,
     ) -> Result<AlphaRange, Absent> {
         let because = |text: &str| Absent::Because(text.into());
         let profile = candidate.profile;
@@ -403,7 +552,7 @@ impl Plan {
             profile,
             candidate.known,
             candidate.own,
-            &candidate.estimates[0],
+            estimates,
         )?;
         let [first, second] = keys.map(|key| &self.components[key]);
         let pressures = |component: usize, temperature_k: f64| match component {
@@ -479,68 +628,86 @@ impl Plan {
         })
     }
 
-    fn verdict(&self, profile: &Profile, figures: &[Outcome]) -> Verdict {
+    fn verdict(&self, inquiry: &mut Inquiry<'_>) -> Verdict {
+        match self.fallen(inquiry) {
+            Some(fallen) => fallen,
+            None => self.qualified(inquiry),
+        }
+    }
+
+    /// The verdict on a candidate that misses a must or cannot be judged.
+    fn fallen(&self, inquiry: &mut Inquiry<'_>) -> Option<Verdict> {
         // The structure is known whatever the figures are, so it decides first.
         let mut unjudged = None;
         for (label, limit) in self.limits.iter().enumerate() {
-            match limit.check(&self.library, profile) {
+            match limit.check(&self.library, inquiry.candidate.profile) {
                 Ok(None) => {}
                 Ok(Some((value, dimension))) => {
-                    return Verdict::Missed {
+                    return Some(Verdict::Missed {
                         label,
                         value,
                         dimension,
                         probability: 0.0,
-                    };
+                    });
                 }
                 Err(reason) => {
                     unjudged.get_or_insert(Verdict::NotAssessable { label, reason });
                 }
             }
         }
+        if unjudged.is_some() {
+            return unjudged;
+        }
         let mut missed = None;
-        let mut is_uncertain = false;
-        let (mut sum, mut known, mut weights) = (0.0, 0.0, 0.0);
         for (position, planned) in self.targets.iter().enumerate() {
             let target = &planned.target;
-            let label = self.limits.len() + position;
-            if target.counts {
-                weights += target.weight;
+            // After a must that is missed only one that cannot be judged changes anything.
+            if !target.must || missed.is_some() && inquiry.surely_has_value(planned.figure) {
+                continue;
             }
-            match &figures[planned.figure] {
-                Err(reason) if target.must => {
-                    unjudged.get_or_insert_with(|| Verdict::NotAssessable {
-                        label,
-                        reason: reason.clone(),
-                    });
+            let label = self.limits.len() + position;
+            match inquiry.figure(planned.figure) {
+                Err(reason) => {
+                    let reason = reason.clone();
+                    return Some(Verdict::NotAssessable { label, reason });
                 }
-                Err(_) => {}
+                Ok(_) if missed.is_some() => {}
                 Ok(found) => {
-                    let spread = self.spread(found);
-                    if target.must {
-                        let probability = spread.probability(&target.want);
-                        let judgement = Judgement::of(probability, self.brief.ranking.confidence);
-                        if judgement == Judgement::Fails {
-                            missed.get_or_insert(Verdict::Missed {
-                                label,
-                                value: found.value,
-                                dimension: target.dimension,
-                                probability,
-                            });
-                        }
-                    }
-                    is_uncertain |= !spread.is_exact();
-                    if target.counts {
-                        known += target.weight;
-                        if spread.is_exact() {
-                            sum += target.weight * target.want.desirability(found.value).ln();
-                        }
+                    let probability = self.spread(found).probability(&target.want);
+                    let judgement = Judgement::of(probability, self.brief.ranking.confidence);
+                    if judgement == Judgement::Fails {
+                        missed = Some(Verdict::Missed {
+                            label,
+                            value: found.value,
+                            dimension: target.dimension,
+                            probability,
+                        });
                     }
                 }
             }
         }
-        if let Some(fallen) = unjudged.or(missed) {
-            return fallen;
+        missed
+    }
+
+    /// The verdict on a candidate that meets every must.
+    fn qualified(&self, inquiry: &mut Inquiry<'_>) -> Verdict {
+        let mut is_uncertain = false;
+        let (mut sum, mut known, mut weights) = (0.0, 0.0, 0.0);
+        for planned in &self.targets {
+            let target = &planned.target;
+            if target.counts {
+                weights += target.weight;
+            }
+            if let Ok(found) = inquiry.figure(planned.figure) {
+                let spread = self.spread(found);
+                is_uncertain |= !spread.is_exact();
+                if target.counts {
+                    known += target.weight;
+                    if spread.is_exact() {
+                        sum += target.weight * target.want.desirability(found.value).ln();
+                    }
+                }
+            }
         }
         let exact = if known > 0.0 {
             (sum / known).exp()
@@ -549,6 +716,7 @@ impl Plan {
         } else {
             1.0
         };
+        let figures = &*inquiry.figures;
         let judged = match is_uncertain {
             true => {
                 let spread = |at: usize| figures[at].as_ref().ok().map(|found| self.spread(found));

@@ -13,7 +13,8 @@ use crate::pure::Estimates;
 use crate::pure::corresponding_states::VaporPressureCurve;
 use crate::pure::vapor_pressure_curve;
 use crate::quantity::{
-    Absent, Estimate, Flag, Flags, Property, REFERENCE_TEMPERATURE_K, STANDARD_ATMOSPHERE_PA,
+    Absent, Estimate, Flag, Flags, Property, PropertySet, REFERENCE_TEMPERATURE_K,
+    STANDARD_ATMOSPHERE_PA,
 };
 
 /// Vapor pressure of a substance as a function of temperature.
@@ -28,6 +29,12 @@ pub enum VaporCurve {
 }
 
 impl VaporCurve {
+    /// Properties that an estimated curve is made of.
+    pub(super) const PROPERTIES: PropertySet = PropertySet::NONE
+        .with(Property::BoilingPoint)
+        .with(Property::CriticalTemperature)
+        .with(Property::CriticalPressure);
+
     /// The curve of a molecule: measured where known, else estimated.
     pub(super) fn of(library: &Library, profile: &Profile, known: Option<Known<'_>>) -> Self {
         if let Some(curve) = known.and_then(|known| known.substance.vapor_pressure()) {

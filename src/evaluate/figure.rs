@@ -1,8 +1,9 @@
 //! The register of figures: what a target can be set on.
 
+use super::component::VaporCurve;
 use crate::brief;
 use crate::mixture::{ActivityModel, RESERVED_MODELS};
-use crate::quantity::{Dimension, Property};
+use crate::quantity::{Dimension, Property, PropertySet};
 
 /// Something a candidate is judged by.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -31,6 +32,26 @@ pub enum FigureKind {
     /// The same whichever key goes overhead: the smallest α12, or the smallest
     /// 1/α12 where that is larger; below 1 an azeotrope is left.
     SeparationFactorWithSolvent,
+}
+
+impl FigureKind {
+    /// Properties of the candidate that it is made of.
+    pub(super) fn properties(self) -> PropertySet {
+        match self {
+            Self::Property(property) => PropertySet::NONE.with(property),
+            Self::RelativeVolatilityWithSolvent | Self::SeparationFactorWithSolvent => {
+                VaporCurve::PROPERTIES
+            }
+            Self::GammaInfinityOfKey(_)
+            | Self::GammaInfinityOfComponent
+            | Self::GammaInfinityOfCandidate
+            | Self::Selectivity
+            | Self::RelativeVolatility
+            | Self::SeparationFactor
+            | Self::CapacityByMole
+            | Self::CapacityByMass => PropertySet::NONE,
+        }
+    }
 }
 
 /// A figure with its name and what it says.

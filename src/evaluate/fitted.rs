@@ -12,7 +12,9 @@ use crate::pure::enthalpy_of_vaporization_of_slope;
 use crate::pure::fitted::{
     FittedInput, Known, Level, Prediction, Quantity, volume_carried, volume_temperature_k,
 };
-use crate::quantity::{Absent, Estimate, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
+use crate::quantity::{
+    Absent, Estimate, Flag, Flags, Property, PropertySet, REFERENCE_TEMPERATURE_K,
+};
 
 /// Which methods estimate what was not measured.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -29,6 +31,15 @@ pub enum EstimateLevel {
 impl EstimateLevel {
     /// Every choice.
     pub const ALL: [Self; 3] = [Self::Structure, Self::Count, Self::Joback];
+
+    /// Up to which order environments are counted: no further than estimates need them.
+    pub(super) const fn environments(self) -> Option<Order> {
+        match self {
+            Self::Structure => Some(Order::Pair),
+            Self::Count => Some(Order::Second),
+            Self::Joback => None,
+        }
+    }
 
     /// The word for it on the command line and in briefs.
     pub const fn id(self) -> &'static str {
@@ -53,13 +64,21 @@ impl EstimateLevel {
     }
 }
 
-/// Fitted estimates of a molecule, and why there are none of other properties.
+/// Fitted estimates of a molecule, and why there are none of other properties, as far
+/// as they were asked for; memory that is used again.
 #[derive(Clone, Debug, Default)]
 pub(super) struct FittedValues {
     /// What was estimated.
     pub(super) values: GivenValues,
     /// What was refused.
     pub(super) refused: SmallVec<[(Property, Absent); 4]>,
+    /// What was asked for.
+    told: PropertySet,
+    /// Boiling point and molar volume, once they were asked for; the volume in m³/mol.
+    boiling_point_k: Option<Option<f64>>,
+    volume: Option<Option<f64>>,
+    input: FittedInput,
+    is_described: bool,
 }
 
 /// What is fitted directly, and from which quantity, beside boiling point, density and
@@ -99,101 +118,262 @@ pub fn fitted_quantity(property: Property) -> Option<Quantity> {
     }
 }
 
-/// Fitted estimates of what is not among the values given, which are
-/// those for 298.15 K. The same estimates serve at every temperature.
-pub(super) fn fitted_beside(
+/// What estimates are made of.
+#[derive(Clone, Copy)]
+struct Subject<'a> {
+    library: &'a Library,
+    profile: &'a Profile,
+    level: Level,
+    given: &'a GivenValues,
+}
+
+impl FittedValues {
+    /// Forgets the molecule.
+    pub(super) fn clear(&mut self) {
+        self.values.clear();
+        self.refused.clear();
+        self.told = PropertySet::NONE;
+        self.boiling_point_k = None;
+        self.volume = None;
+        self.is_described = false;
+    }
+
+    /// Adds fitted estimates of the properties asked that are not among the values
+    /// given, which are those for 298.15 K and stay the same for a molecule. The
+    /// same estimates serve at every temperature.
+    pub(super) fn add(
+        &mut self,
+        library: &Library,
+        profile: &Profile,
+        given: &GivenValues,
+        asked: PropertySet,
+    ) {
+        let Some(level) = library.level().fitted() else {
+            return;
+        };
+        let asked = with_constants(asked);
+        if self.told.contains_all(asked) {
+            return;
+        }
+        if !self.is_described {
+            let fitted = library.fitted();
+            fitted.describe(&profile.environments, &mut self.input);
+            self.is_described = true;
+        }
+        let of = Subject {
+            library,
+            profile,
+            level,
+            given,
+        };
+        let new =
+            |told: PropertySet, property| asked.contains(property) && !told.contains(property);
+        if new(self.told, Property::BoilingPoint) {
+            self.boiling_point_k(of);
+        }
+        if new(self.told, Property::LiquidDensity) {
+            self.volume(of);
+        }
+        for (property, quantity) in DIRECT {
+            // whether there is a flash point at all cannot be told there
+            let no_flash = property == Property::FlashPoint && profile.facts.burns_doubtfully();
+            if !new(self.told, property) || no_flash || have(given, property).is_some() {
+                continue;
+            }
+            let known = match quantity.terms(level).rests_on_others {
+                true => self.known(of),
+                false => None,
+            };
+            match self.estimate(of, quantity, known) {
+                Ok(estimate) if property.depends_on_temperature() => {
+                    let estimate = estimate.at(REFERENCE_TEMPERATURE_K);
+                    self.values.push((property, estimate));
+                }
+                Ok(estimate) => self.values.push((property, estimate)),
+                Err(reason) => self.refused.push((property, reason)),
+            }
+        }
+        if new(self.told, Property::EnthalpyOfVaporization)
+            && have(given, Property::EnthalpyOfVaporization).is_none()
+        {
+            match self.enthalpy_of_vaporization(of) {
+                Ok(estimate) => self
+                    .values
+                    .push((Property::EnthalpyOfVaporization, estimate)),
+                Err(reason) => self
+                    .refused
+                    .push((Property::EnthalpyOfVaporization, reason)),
+            }
+        }
+        self.told = self.told.union(asked);
+    }
+
+    /// From the fitted slope of the vapor-pressure curve at the boiling point; the critical
+    /// constants have been asked for before.
+    fn enthalpy_of_vaporization(&mut self, of: Subject<'_>) -> Result<Estimate, Absent> {
+        let known = self.known(of);
+        let slope = self.estimate(of, Quantity::VaporPressureSlope, known)?;
+        let value = |property: Property| {
+            of.given
+                .iter()
+                .chain(&self.values)
+                .find(|(known, _)| *known == property)
+                .map(|(_, estimate)| estimate)
+                .ok_or(Absent::NoMethod)
+        };
+        let tb = value(Property::BoilingPoint)?;
+        let constants = Constants::new(
+            tb.value,
+            value(Property::CriticalTemperature)?.value,
+            value(Property::CriticalPressure)?.value,
+            of.level.id(),
+        )?;
+        let associates = of.profile.facts.associates;
+        Ok(enthalpy_of_vaporization_of_slope(
+            slope, tb, &constants, associates,
+        ))
+    }
+
+    /// What other quantities rest on.
+    fn known(&mut self, of: Subject<'_>) -> Option<Known> {
+        let boiling_point_k = self.boiling_point_k(of);
+        let volume = self.volume(of);
+        Some(Known {
+            boiling_point_k: boiling_point_k?,
+            molar_volume_m3_per_mol: volume?,
+            molar_mass_kg_per_mol: of.profile.facts.molar_mass_kg_per_mol,
+        })
+    }
+
+    fn boiling_point_k(&mut self, of: Subject<'_>) -> Option<f64> {
+        if let Some(known) = self.boiling_point_k {
+            return known;
+        }
+        let mut found = have(of.given, Property::BoilingPoint);
+        if found.is_none() {
+            match self.estimate(of, Quantity::BoilingPoint, None) {
+                Ok(estimate) => {
+                    found = Some(estimate.value);
+                    self.values.push((Property::BoilingPoint, estimate));
+                }
+                Err(reason) => self.refused.push((Property::BoilingPoint, reason)),
+            }
+        }
+        *self.boiling_point_k.insert(found)
+    }
+
+    fn volume(&mut self, of: Subject<'_>) -> Option<f64> {
+        if let Some(known) = self.volume {
+            return known;
+        }
+        let molar_mass = of.profile.facts.molar_mass_kg_per_mol;
+        let measured_density = of.given.iter().find(|(known, estimate)| {
+            *known == Property::LiquidDensity
+                && estimate
+                    .temperature_k
+                    .is_some_and(|t| (t - REFERENCE_TEMPERATURE_K).abs() < 0.01)
+        });
+        let boiling_point_k = self.boiling_point_k(of);
+        let volume_k = boiling_point_k.map_or(REFERENCE_TEMPERATURE_K, volume_temperature_k);
+        let mut found = measured_density.and_then(|(_, density)| {
+            // Guldberg's critical temperature will do for so short a way
+            let critical_k = 1.5 * boiling_point_k?;
+            let volume = molar_mass / density.value;
+            volume_carried(volume, REFERENCE_TEMPERATURE_K, volume_k, critical_k)
+        });
+        if found.is_none() {
+            match self.estimate(of, Quantity::MolarVolume, None) {
+                Ok(estimate) => {
+                    found = Some(estimate.value);
+                    if have(of.given, Property::LiquidDensity).is_none() {
+                        let density = density_of(estimate, molar_mass, volume_k);
+                        self.values.push((Property::LiquidDensity, density));
+                    }
+                }
+                Err(reason) => self.refused.push((Property::LiquidDensity, reason)),
+            }
+        }
+        *self.volume.insert(found)
+    }
+
+    fn estimate(
+        &mut self,
+        Subject {
+            library,
+            profile,
+            level,
+            ..
+        }: Subject<'_>,
+        quantity: Quantity,
+        known: Option<Known>,
+    ) -> Result<Estimate, Absent> {
+        let fitted = library.fitted();
+        let model = fitted.model(quantity, level);
+        if model.has_new_kind_of_atom(&self.input.molecule) {
+            let words = unknown_words(library, profile, level, quantity);
+            return Err(Absent::Because(format!("{}: {words}", level.id()).into()));
+        }
+        let prediction: Prediction = fitted.predict(quantity, level, &mut self.input, known)?;
+        let mut flags = Flags::NONE;
+        let mut note = None;
+        if prediction.unknown_atoms {
+            flags = flags.with(Flag::OutsideFamily);
+            note = Some(unknown_words(library, profile, level, quantity));
+        }
+        Ok(Estimate {
+            interval: Some(prediction.interval),
+            note,
+            ..Estimate::new(prediction.value, level.id())
+        }
+        .flagged(flags))
+    }
+}
+
+/// Properties with the fitted constants that those of them start from which are not
+/// fitted themselves.
+fn with_constants(asked: PropertySet) -> PropertySet {
+    let critical = [Property::CriticalTemperature, Property::CriticalPressure];
+    match asked.contains(Property::EnthalpyOfVaporization) {
+        true => asked.union(critical.into_iter().collect()),
+        false => asked,
+    }
+}
+
+/// The value given of a property.
+fn have(given: &GivenValues, property: Property) -> Option<f64> {
+    given
+        .iter()
+        .find(|(known, _)| *known == property)
+        .map(|(_, estimate)| estimate.value)
+}
+
+/// Which atoms of the molecule no molecule of the fit has.
+fn unknown_words(
     library: &Library,
     profile: &Profile,
-    mut given: GivenValues,
-) -> FittedValues {
-    let measured = given.len();
-    let mut refused = SmallVec::new();
-    let Some(level) = library.level().fitted() else {
-        return FittedValues::default();
-    };
-    let mut molecule = Fitting {
-        library,
-        profile,
-        level,
-        input: FittedInput::default(),
-    };
-    library
-        .fitted()
-        .describe(&profile.environments, &mut molecule.input);
-    let have = |given: &GivenValues, property: Property| {
-        given
-            .iter()
-            .find(|(known, _)| *known == property)
-            .map(|(_, estimate)| estimate.value)
-    };
-    let mut boiling_point_k = have(&given, Property::BoilingPoint);
-    if boiling_point_k.is_none() {
-        match molecule.estimate(Quantity::BoilingPoint, None) {
-            Ok(estimate) => {
-                boiling_point_k = Some(estimate.value);
-                given.push((Property::BoilingPoint, estimate));
-            }
-            Err(reason) => refused.push((Property::BoilingPoint, reason)),
+    level: Level,
+    quantity: Quantity,
+) -> Arc<str> {
+    let fitted = library.fitted();
+    let model = fitted.model(quantity, level);
+    let mut first: Option<String> = None;
+    EnvironmentReader::new().each_of(&profile.molecule, |environment, _| {
+        if environment.order() > Order::First {
+            return;
         }
-    }
-    let molar_mass = profile.facts.molar_mass_kg_per_mol;
-    let measured_density = given.iter().find(|(known, estimate)| {
-        *known == Property::LiquidDensity
-            && estimate
-                .temperature_k
-                .is_some_and(|t| (t - REFERENCE_TEMPERATURE_K).abs() < 0.01)
+        let position = fitted.table().position(environment.key());
+        let seen = position.map_or(0, |position| model.occurrences[position as usize]);
+        if seen == 0 {
+            // the first by its words, so that the numbering of atoms does not matter
+            let words = environment.to_string();
+            if first.as_ref().is_none_or(|first| words < *first) {
+                first = Some(words);
+            }
+        }
     });
-    let volume_k = boiling_point_k.map_or(REFERENCE_TEMPERATURE_K, volume_temperature_k);
-    let mut volume = measured_density.and_then(|(_, density)| {
-        // Guldberg's critical temperature will do for so short a way
-        let critical_k = 1.5 * boiling_point_k?;
-        let volume = molar_mass / density.value;
-        volume_carried(volume, REFERENCE_TEMPERATURE_K, volume_k, critical_k)
-    });
-    if volume.is_none() {
-        match molecule.estimate(Quantity::MolarVolume, None) {
-            Ok(estimate) => {
-                volume = Some(estimate.value);
-                if have(&given, Property::LiquidDensity).is_none() {
-                    let density = density_of(estimate, molar_mass, volume_k);
-                    given.push((Property::LiquidDensity, density));
-                }
-            }
-            Err(reason) => refused.push((Property::LiquidDensity, reason)),
-        }
-    }
-    let known = match (boiling_point_k, volume) {
-        (Some(boiling_point_k), Some(molar_volume_m3_per_mol)) => Some(Known {
-            boiling_point_k,
-            molar_volume_m3_per_mol,
-            molar_mass_kg_per_mol: molar_mass,
-        }),
-        _ => None,
-    };
-    for (property, quantity) in DIRECT {
-        // whether there is a flash point at all cannot be told there
-        let no_flash = property == Property::FlashPoint && profile.facts.burns_doubtfully();
-        if no_flash || have(&given, property).is_some() {
-            continue;
-        }
-        match molecule.estimate(quantity, known) {
-            Ok(estimate) if property.depends_on_temperature() => {
-                given.push((property, estimate.at(REFERENCE_TEMPERATURE_K)));
-            }
-            Ok(estimate) => given.push((property, estimate)),
-            Err(reason) => refused.push((property, reason)),
-        }
-    }
-    if have(&given, Property::EnthalpyOfVaporization).is_none() {
-        match molecule.enthalpy_of_vaporization(&given, known) {
-            Ok(estimate) => given.push((Property::EnthalpyOfVaporization, estimate)),
-            Err(reason) => refused.push((Property::EnthalpyOfVaporization, reason)),
-        }
-    }
-    given.drain(..measured);
-    FittedValues {
-        values: given,
-        refused,
+    match first {
+        Some(words) => format!("no molecule of the fit has {words}").into(),
+        None => "no molecule of the fit has some of its atoms".into(),
     }
 }
 
@@ -206,90 +386,4 @@ fn density_of(volume: Estimate, molar_mass_kg_per_mol: f64, volume_k: f64) -> Es
         ..volume
     }
     .at(volume_k)
-}
-
-struct Fitting<'a> {
-    library: &'a Library,
-    profile: &'a Profile,
-    level: Level,
-    input: FittedInput,
-}
-
-impl Fitting<'_> {
-    fn estimate(&mut self, quantity: Quantity, known: Option<Known>) -> Result<Estimate, Absent> {
-        let fitted = self.library.fitted();
-        let model = fitted.model(quantity, self.level);
-        if model.has_new_kind_of_atom(&self.input.molecule) {
-            let words = self.unknown_words(quantity);
-            return Err(Absent::Because(
-                format!("{}: {words}", self.level.id()).into(),
-            ));
-        }
-        let prediction: Prediction =
-            fitted.predict(quantity, self.level, &mut self.input, known)?;
-        let mut flags = Flags::NONE;
-        let mut note = None;
-        if prediction.unknown_atoms {
-            flags = flags.with(Flag::OutsideFamily);
-            note = Some(self.unknown_words(quantity));
-        }
-        Ok(Estimate {
-            interval: Some(prediction.interval),
-            note,
-            ..Estimate::new(prediction.value, self.level.id())
-        }
-        .flagged(flags))
-    }
-
-    /// From the fitted slope of the vapor-pressure curve at the boiling point.
-    fn enthalpy_of_vaporization(
-        &mut self,
-        given: &GivenValues,
-        known: Option<Known>,
-    ) -> Result<Estimate, Absent> {
-        let slope = self.estimate(Quantity::VaporPressureSlope, known)?;
-        let of = |property: Property| {
-            given
-                .iter()
-                .find(|(known, _)| *known == property)
-                .map(|(_, estimate)| estimate)
-                .ok_or(Absent::NoMethod)
-        };
-        let tb = of(Property::BoilingPoint)?;
-        let constants = Constants::new(
-            tb.value,
-            of(Property::CriticalTemperature)?.value,
-            of(Property::CriticalPressure)?.value,
-            self.level.id(),
-        )?;
-        let associates = self.profile.facts.associates;
-        Ok(enthalpy_of_vaporization_of_slope(
-            slope, tb, &constants, associates,
-        ))
-    }
-
-    /// Which atoms of the molecule no molecule of the fit has.
-    fn unknown_words(&self, quantity: Quantity) -> Arc<str> {
-        let fitted = self.library.fitted();
-        let model = fitted.model(quantity, self.level);
-        let mut first: Option<String> = None;
-        EnvironmentReader::new().each_of(&self.profile.molecule, |environment, _| {
-            if environment.order() > Order::First {
-                return;
-            }
-            let position = fitted.table().position(environment.key());
-            let seen = position.map_or(0, |position| model.occurrences[position as usize]);
-            if seen == 0 {
-                // the first by its words, so that the numbering of atoms does not matter
-                let words = environment.to_string();
-                if first.as_ref().is_none_or(|first| words < *first) {
-                    first = Some(words);
-                }
-            }
-        });
-        match first {
-            Some(words) => format!("no molecule of the fit has {words}").into(),
-            None => "no molecule of the fit has some of its atoms".into(),
-        }
-    }
 }

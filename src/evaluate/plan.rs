@@ -15,8 +15,8 @@ use crate::groups::SetId;
 use crate::mixture::{
     ActivityModel, Component, HostAtTemperature, KeysAtTemperature, ModelStatus, Unifac,
 };
-use crate::pure::default_method;
-use crate::quantity::{Absent, Dimension, Property, REFERENCE_TEMPERATURE_K};
+use crate::pure::{default_method, with_inputs};
+use crate::quantity::{Absent, Dimension, Property, PropertySet, REFERENCE_TEMPERATURE_K};
 
 /// The model that is used where a brief names none.
 pub const DEFAULT_MODEL: ActivityModel = ActivityModel::UnifacDortmund;
@@ -36,6 +36,8 @@ pub struct PlannedFigure {
     pub(super) temperature: usize,
     /// Position in [`Plan::models`] for a figure of the mixture.
     pub(super) model: usize,
+    /// Properties of the candidate at that temperature that it is made of.
+    pub(super) rests_on: PropertySet,
 }
 
 /// A target with the column it looks at.
@@ -355,6 +357,7 @@ impl Plan {
                 component,
                 temperature,
                 model,
+                rests_on: with_inputs(kind.properties()),
             });
             self.figures.len() - 1
         })

@@ -3,13 +3,15 @@
 use smallvec::SmallVec;
 
 use super::Library;
-use super::fitted::{EstimateLevel, FittedValues, fitted_beside};
+use super::fitted::{EstimateLevel, FittedValues};
 use crate::chem::{Canonicalizer, Keys, Molecule, Reader, SmilesError};
 use crate::data::Substance;
 use crate::groups::environment::{EnvironmentCounts, EnvironmentReader};
 use crate::groups::{Breakdown, Breaker, Coverage, GroupCounts, SetId};
-use crate::pure::{Estimates, Given, StructureFacts, estimate_all};
-use crate::quantity::{Absent, Estimate, Flag, Flags, Property, REFERENCE_TEMPERATURE_K};
+use crate::pure::{Estimates, Given, StructureFacts, estimate_some};
+use crate::quantity::{
+    Absent, Estimate, Flag, Flags, Property, PropertySet, REFERENCE_TEMPERATURE_K,
+};
 
 /// A molecule with its canonical keys, its groups in every set, and its facts.
 #[derive(Clone, Debug, Default)]
@@ -22,7 +24,8 @@ pub struct Profile {
     pub counts: [GroupCounts; SetId::ALL.len()],
     /// How far each set covers the molecule.
     pub coverage: Coverages,
-    /// Atom environments, which the fitted estimates rest on.
+    /// Atom environments, which the fitted estimates rest on, as far as those of the
+    /// library's level do.
     pub environments: EnvironmentCounts,
     /// Facts that travel with the counts.
     pub facts: StructureFacts,
@@ -111,8 +114,13 @@ impl Profiler {
         self.reader.read_into(smiles, &mut profile.molecule)?;
         let molecule = &profile.molecule;
         self.canonicalizer.keys_into(molecule, &mut profile.keys);
-        self.environments
-            .counts_into(molecule, &mut profile.environments);
+        match library.level().environments() {
+            Some(order) => {
+                self.environments
+                    .counts_up_to_into(order, molecule, &mut profile.environments)
+            }
+            None => profile.environments.clear(),
+        }
         self.breaker.load(molecule);
         for set in SetId::ALL {
             let counts = &mut profile.counts[set as usize];
@@ -204,30 +212,30 @@ pub fn properties_with(
     own: &[(Property, Estimate)],
     temperature_k: f64,
 ) -> Estimates {
-    let fitted = fitted_values(library, profile, known, own);
-    properties_from(library, profile, known, own, &fitted, temperature_k)
+    let given = |t: f64| given_values(measured_values(known, t), own, t);
+    let mut fitted = FittedValues::default();
+    let at_reference = given(REFERENCE_TEMPERATURE_K);
+    fitted.add(library, profile, &at_reference, PropertySet::ALL);
+    let given = given(temperature_k);
+    properties_from(
+        library,
+        profile,
+        given,
+        &fitted,
+        temperature_k,
+        PropertySet::ALL,
+    )
 }
 
-/// Fitted estimates of a molecule beside what is measured of it; they hold for every temperature.
-pub(super) fn fitted_values(
-    library: &Library,
-    profile: &Profile,
-    known: Option<Known<'_>>,
-    own: &[(Property, Estimate)],
-) -> FittedValues {
-    let t = REFERENCE_TEMPERATURE_K;
-    let given = given_values(measured_values(known, t), own, t);
-    fitted_beside(library, profile, given)
-}
-
-/// Every property of a molecule at a temperature, its fitted estimates given.
+/// The properties asked for of a molecule at a temperature, from values given for it and
+/// the fitted estimates; `asked` holds what they start from (see [`with_inputs`](crate::pure::with_inputs)).
 pub(super) fn properties_from(
     library: &Library,
     profile: &Profile,
-    known: Option<Known<'_>>,
-    own: &[(Property, Estimate)],
+    mut given: GivenValues,
     fitted: &FittedValues,
     temperature_k: f64,
+    asked: PropertySet,
 ) -> Estimates {
     let mut counts = profile.complete_counts(library, SetId::Joback);
     // what the fits leave out for its size is not for an older method either
@@ -237,27 +245,27 @@ pub(super) fn properties_from(
             what: "the molecule is larger than anything the method was fitted on",
         });
     }
-    let mut given = given_values(measured_values(known, temperature_k), own, temperature_k);
     given.extend(fitted.values.iter().cloned());
-    let mut all = estimate_all(
+    let mut some = estimate_some(
         library.methods(),
         counts.as_ref().map(|counts| *counts),
         &profile.facts,
         Given(&given),
         temperature_k,
+        asked,
     );
     // where nothing else answers, the reason of the fit is the one that tells most
     for (property, reason) in &fitted.refused {
-        let outcome = &mut all[*property as usize];
+        let outcome = &mut some[*property as usize];
         if outcome.is_err() {
             *outcome = Err(reason.clone());
         }
     }
-    all
+    some
 }
 
 /// Own values and those of the tables in the order in which they count.
-fn given_values(
+pub(super) fn given_values(
     mut of_tables: GivenValues,
     own: &[(Property, Estimate)],
     temperature_k: f64,

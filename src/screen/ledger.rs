@@ -36,10 +36,8 @@ pub(super) enum Finding {
         probability: f64,
         /// Canonical SMILES: decides between equal scores.
         key: String,
-        figures: Vec<Option<f64>>,
-        /// Those there are, by the position of their figure.
-        intervals: Vec<(u32, (f64, f64))>,
-        notes: String,
+        /// Empty where it waits until the ranking is known.
+        shown: Shown,
     },
     /// It fell, or could not be judged or read.
     Fell {
@@ -50,6 +48,15 @@ pub(super) enum Finding {
         wanted: String,
         reason: String,
     },
+}
+
+/// What a row of the ranking shows of a candidate.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub(super) struct Shown {
+    pub(super) figures: Vec<Option<f64>>,
+    /// Those there are, by the position of their figure.
+    pub(super) intervals: Vec<(u32, (f64, f64))>,
+    pub(super) notes: String,
 }
 
 impl Default for Finding {
@@ -79,26 +86,24 @@ impl Entry {
                 variance,
                 probability,
                 key,
-                figures,
-                intervals,
-                notes,
+                shown,
             } => {
                 out.push(u8::MAX);
                 for number in [score, known, variance, probability] {
                     out.extend_from_slice(&number.to_le_bytes());
                 }
                 put_text(out, key);
-                put_length(out, figures.len());
-                for figure in figures {
+                put_length(out, shown.figures.len());
+                for figure in &shown.figures {
                     put_number(out, *figure);
                 }
-                put_length(out, intervals.len());
-                for (figure, (low, high)) in intervals {
+                put_length(out, shown.intervals.len());
+                for (figure, (low, high)) in &shown.intervals {
                     out.extend_from_slice(&figure.to_le_bytes());
                     out.extend_from_slice(&low.to_le_bytes());
                     out.extend_from_slice(&high.to_le_bytes());
                 }
-                put_text(out, notes);
+                put_text(out, &shown.notes);
             }
             Finding::Fell {
                 outcome,
@@ -138,14 +143,16 @@ impl Entry {
                 variance: cursor.float(),
                 probability: cursor.float(),
                 key: cursor.text(),
-                figures: (0..cursor.length()).map(|_| cursor.number()).collect(),
-                intervals: (0..cursor.length())
-                    .map(|_| {
-                        let figure = u32::from_le_bytes(cursor.array());
-                        (figure, (cursor.float(), cursor.float()))
-                    })
-                    .collect(),
-                notes: cursor.text(),
+                shown: Shown {
+                    figures: (0..cursor.length()).map(|_| cursor.number()).collect(),
+                    intervals: (0..cursor.length())
+                        .map(|_| {
+                            let figure = u32::from_le_bytes(cursor.array());
+                            (figure, (cursor.float(), cursor.float()))
+                        })
+                        .collect(),
+                    notes: cursor.text(),
+                },
             }
         } else {
             let label = cursor.text();
@@ -289,9 +296,11 @@ mod tests {
                     variance: 0.01,
                     probability: 0.75,
                     key: "CCO".into(),
-                    figures: vec![Some(351.4), None],
-                    intervals: vec![(0, (340.0, 360.0))],
-                    notes: "n".into(),
+                    shown: Shown {
+                        figures: vec![Some(351.4), None],
+                        intervals: vec![(0, (340.0, 360.0))],
+                        notes: "n".into(),
+                    },
                 },
                 carried: vec!["x".into(), String::new()],
             },

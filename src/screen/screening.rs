@@ -5,11 +5,12 @@ use std::io;
 use std::path::Path;
 use std::time::Instant;
 
+use rayon::ThreadPool;
 use rayon::prelude::*;
 use thiserror::Error;
 
 use super::identity::{Identities, Kinship, Relation, RelationLog, Relations, WrittenRelations};
-use super::ledger::{Entry, Finding, Ledger, WrittenLedger};
+use super::ledger::{Entry, Finding, Ledger, Shown, WrittenLedger};
 use super::pool::{Batch, Pool, PoolError, PoolLine};
 use super::resolved::Resolved;
 use crate::evaluate::{Plan, Scratch, Verdict, interval_that_counts};
@@ -160,7 +161,7 @@ impl Screening<'_> {
             counts,
             table,
             files,
-        } = self.write(&mut ledger, kept, table)?;
+        } = self.write(&mut ledger, kept, table, &threads)?;
         // Until here the results of an earlier run stay as they are.
         self.all_or_none(self.put_in_place(files))?;
 
@@ -254,7 +255,13 @@ impl Screening<'_> {
             }
             Ok(Resolved { smiles, name }) => {
                 let own: Vec<_> = line.measured().collect();
-                let finding = match self.plan.evaluate_with(scratch, smiles, &own) {
+                // Figures that only a row of the ranking shows wait until it is one; own
+                // values are not at hand any more then.
+                let verdict = match own.is_empty() {
+                    true => self.plan.judge(scratch, smiles, &own),
+                    false => self.plan.evaluate_with(scratch, smiles, &own),
+                };
+                let finding = match verdict {
                     Err(error) => fell(Outcome::Refused, error.reason(), error.to_string()),
                     Ok(verdict) => {
                         let keys = &scratch.profile.keys;
@@ -263,7 +270,7 @@ impl Screening<'_> {
                             hash(&keys.constitution),
                             hash(&keys.full),
                         ));
-                        let finding = self.finding(scratch, verdict);
+                        let finding = self.finding(scratch, verdict, !own.is_empty());
                         done.qualified += u64::from(matches!(finding, Finding::Qualified { .. }));
                         finding
                     }
@@ -280,7 +287,8 @@ impl Screening<'_> {
         }
     }
 
-    fn finding(&self, scratch: &mut Scratch, verdict: Verdict) -> Finding {
+    /// What came of a candidate; `is_complete` says whether all its figures were found out.
+    fn finding(&self, scratch: &mut Scratch, verdict: Verdict, is_complete: bool) -> Finding {
         let label = |position: usize| {
             self.plan
                 .labels()
@@ -293,28 +301,20 @@ impl Screening<'_> {
                 known,
                 variance,
                 probability,
-            } => Finding::Qualified {
-                score,
-                known,
-                variance,
-                probability,
-                notes: joined(
-                    &self.plan.remarks(scratch),
-                    self.as_component(scratch).as_deref(),
-                ),
-                key: scratch.profile.keys.full.clone(),
-                figures: scratch
-                    .figures
-                    .iter()
-                    .map(|figure| figure.as_ref().ok().map(|found| found.value))
-                    .collect(),
-                intervals: (0..)
-                    .zip(&scratch.figures)
-                    .filter_map(|(at, figure)| {
-                        Some((at, interval_that_counts(figure.as_ref().ok()?)?))
-                    })
-                    .collect(),
-            },
+            } => {
+                let shown = match is_complete {
+                    true => self.shown(scratch),
+                    false => Shown::default(),
+                };
+                Finding::Qualified {
+                    score,
+                    known,
+                    variance,
+                    probability,
+                    key: scratch.profile.keys.full.clone(),
+                    shown,
+                }
+            }
             Verdict::Missed {
                 label: position,
                 value,
@@ -345,6 +345,37 @@ impl Screening<'_> {
                 }
             }
         }
+    }
+
+    /// What a row of the ranking shows of the last candidate.
+    fn shown(&self, scratch: &mut Scratch) -> Shown {
+        let figures = &scratch.figures;
+        Shown {
+            figures: figures
+                .iter()
+                .map(|figure| figure.as_ref().ok().map(|found| found.value))
+                .collect(),
+            intervals: (0..)
+                .zip(figures)
+                .filter_map(|(at, figure)| Some((at, interval_that_counts(figure.as_ref().ok()?)?)))
+                .collect(),
+            notes: joined(
+                &self.plan.remarks(scratch),
+                self.as_component(scratch).as_deref(),
+            ),
+        }
+    }
+
+    /// Finds out what rows of the ranking show where it is not known yet.
+    fn complete(&self, rows: &mut [Ranked]) {
+        rows.par_iter_mut()
+            .filter(|row| row.figures.is_empty())
+            .for_each_init(Scratch::new, |scratch, row| {
+                self.plan
+                    .evaluate(scratch, &row.smiles)
+                    .expect("the line was judged before");
+                show(row, self.shown(scratch));
+            });
     }
 
     /// That a candidate is in the mixture already: it ranks like any other, but
@@ -401,6 +432,7 @@ impl Screening<'_> {
         ledger: &mut WrittenLedger,
         kept: Kept,
         table: RankedTable,
+        threads: &ThreadPool,
     ) -> Result<Written, FileError> {
         let [ranked_name, not_ranked_name, _] = FILES;
         let mut not_ranked = NewFile::begin(&self.folder.join(not_ranked_name))?;
@@ -447,6 +479,7 @@ impl Screening<'_> {
             .into_iter()
             .map(|row| row.expect("every kept line is in the ledger"))
             .unzip();
+        threads.install(|| self.complete(&mut rows));
         if self.plan.brief.ranking.uses_intervals() {
             number_bands(&mut rows);
         }
@@ -543,37 +576,43 @@ impl Screening<'_> {
                 known,
                 variance,
                 probability,
-                figures,
-                intervals: found,
-                notes,
+                shown,
                 ..
             } => {
                 counts.add(Outcome::Ranked, "");
                 counts.ranked_incomplete += u64::from(known < 1.0);
-                let notes = joined(&notes, stereoisomer.as_deref());
-                let (name, smiles) = (entry.name, entry.smiles);
-                let mut intervals = vec![None; figures.len()];
-                for (at, interval) in found {
-                    intervals[at as usize] = Some(interval);
-                }
-                let row = Ranked {
+                let mut row = Ranked {
                     line: entry.line,
-                    name,
-                    smiles,
+                    name: entry.name,
+                    smiles: entry.smiles,
                     score,
                     known,
                     variance,
                     probability,
                     uses_intervals: self.plan.brief.ranking.uses_intervals(),
                     band: None,
-                    figures,
-                    intervals,
-                    notes,
+                    figures: Vec::new(),
+                    intervals: Vec::new(),
+                    notes: stereoisomer.unwrap_or_default(),
                 };
+                if !shown.figures.is_empty() {
+                    show(&mut row, shown);
+                }
                 rank.map(|rank| (rank, (row, entry.carried)))
             }
         }
     }
+}
+
+/// Takes over what is shown of a ranked candidate; notes that it has come last.
+fn show(ranked: &mut Ranked, shown: Shown) {
+    ranked.intervals = vec![None; shown.figures.len()];
+    for (at, interval) in shown.intervals {
+        ranked.intervals[at as usize] = Some(interval);
+    }
+    ranked.figures = shown.figures;
+    let own = (!ranked.notes.is_empty()).then_some(ranked.notes.as_str());
+    ranked.notes = joined(&shown.notes, own);
 }
 
 /// The tables of a run, whole but not in place yet.

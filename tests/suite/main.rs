@@ -14,6 +14,7 @@ mod groups;
 mod handbook;
 mod independent;
 mod intervals;
+mod judge;
 mod lanes;
 mod mixture;
 mod own_data;
