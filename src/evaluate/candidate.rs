@@ -175,7 +175,7 @@ impl Inquiry<'_> {
         let profile = self.candidate.profile;
         let at_reference = &self.properties[0].given;
         self.fitted.add(library, profile, at_reference, asked);
-        let some = self.from_methods(temperature, self.fitted, asked);
+        let some = self.by_methods(temperature, self.fitted, asked);
         let here = &mut self.properties[temperature];
         for (property, found) in Property::ALL.into_iter().zip(some) {
             if asked.contains(property) {
@@ -185,7 +185,7 @@ impl Inquiry<'_> {
         here.told = here.told.union(asked);
     }
 
-    fn from_methods(
+    fn by_methods(
         &self,
         temperature: usize,
         fitted: &FittedValues,
@@ -219,7 +219,7 @@ impl Inquiry<'_> {
             return false;
         }
         let without_fit = FittedValues::default();
-        self.from_methods(figure.temperature, &without_fit, alone)[property as usize].is_ok()
+        self.by_methods(figure.temperature, &without_fit, alone)[property as usize].is_ok()
     }
 
     /// Finds out all that has not been asked for.
