@@ -362,18 +362,14 @@ fn put_similarities(squared: &[f32; BLOCK], similarities: &mut [f32; BLOCK]) {
 fn least(of: &[f32; BLOCK]) -> f32 {
     let mut least = [f32::INFINITY; 8];
     for chunk in of.as_chunks::<8>().0 {
-        for lane in 0..8 {
-            least[lane] = if chunk[lane] < least[lane] {
-                chunk[lane]
-            } else {
-                least[lane]
-            };
+        for (least, &one) in least.iter_mut().zip(chunk) {
+            *least = if one < *least { one } else { *least };
         }
     }
     least.into_iter().fold(f32::INFINITY, f32::min)
 }
 
-/// Adds a block to the lanes of a correction and of the greatest similarity.
+/// The lanes of a correction, and those of the greatest similarity.
 #[inline(never)]
 fn add_parts(parts: &[PartBlock], similarities: &[[f32; BLOCK]]) -> ([f32; LANES], [f32; LANES]) {
     let mut sums = [0.0_f32; LANES];
@@ -382,14 +378,11 @@ fn add_parts(parts: &[PartBlock], similarities: &[[f32; BLOCK]]) -> ([f32; LANES
         let (parts, _) = parts.as_chunks::<LANES>();
         let (similarities, _) = similarities[*block as usize].as_chunks::<LANES>();
         for (parts, similarities) in parts.iter().zip(similarities) {
-            for lane in 0..LANES {
-                sums[lane] += parts[lane] * similarities[lane];
-                let here = if parts[lane] != 0.0 {
-                    similarities[lane]
-                } else {
-                    0.0
-                };
-                most[lane] = if here > most[lane] { here } else { most[lane] };
+            let pairs = parts.iter().zip(similarities);
+            for ((sum, most), (&part, &similarity)) in sums.iter_mut().zip(&mut most).zip(pairs) {
+                *sum += part * similarity;
+                let here = if part != 0.0 { similarity } else { 0.0 };
+                *most = if here > *most { here } else { *most };
             }
         }
     }
