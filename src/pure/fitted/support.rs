@@ -228,9 +228,9 @@ impl Support {
     /// The correction of a quantity's sum, and the similarity to the most similar
     /// molecule of its fit.
     ///
-    /// The molecules are summed up in [`LANES`] sums, by the rest of their place: the
-    /// result does not depend on what else was asked before. In single precision that
-    /// leaves 4e-5 of a boiling point's sum (0.02 K) open on average, against double.
+    /// The molecules are summed up in [`LANES`] sums by the rest of their place, blocks in
+    /// double precision since large parts cancel: the result does not depend on what else
+    /// was asked before.
     pub(super) fn correction(
         &self,
         table: &EnvironmentTable,
@@ -253,7 +253,7 @@ impl Support {
             likeness.near.sort_unstable_by_key(|one| one.0);
         }
         let (sums, most) = add_parts(parts, &likeness.similarities);
-        let sum = sums.iter().map(|&sum| f64::from(sum)).sum();
+        let sum = sums.iter().sum();
         let most = most.iter().fold(0.0, |most: f32, &one| most.max(one));
         (sum, f64::from(most))
     }
@@ -371,19 +371,24 @@ fn least(of: &[f32; BLOCK]) -> f32 {
 
 /// The lanes of a correction, and those of the greatest similarity.
 #[inline(never)]
-fn add_parts(parts: &[PartBlock], similarities: &[[f32; BLOCK]]) -> ([f32; LANES], [f32; LANES]) {
-    let mut sums = [0.0_f32; LANES];
+fn add_parts(parts: &[PartBlock], similarities: &[[f32; BLOCK]]) -> ([f64; LANES], [f32; LANES]) {
+    let mut sums = [0.0_f64; LANES];
     let mut most = [0.0_f32; LANES];
     for PartBlock { block, parts } in parts {
         let (parts, _) = parts.as_chunks::<LANES>();
         let (similarities, _) = similarities[*block as usize].as_chunks::<LANES>();
+        let mut of_block = [0.0_f32; LANES];
         for (parts, similarities) in parts.iter().zip(similarities) {
             let pairs = parts.iter().zip(similarities);
-            for ((sum, most), (&part, &similarity)) in sums.iter_mut().zip(&mut most).zip(pairs) {
+            for ((sum, most), (&part, &similarity)) in of_block.iter_mut().zip(&mut most).zip(pairs)
+            {
                 *sum += part * similarity;
                 let here = if part != 0.0 { similarity } else { 0.0 };
                 *most = if here > *most { here } else { *most };
             }
+        }
+        for (sum, of_block) in sums.iter_mut().zip(of_block) {
+            *sum += f64::from(of_block);
         }
     }
     (sums, most)
