@@ -124,7 +124,9 @@ impl Derived {
         };
         let critical_temperature = of(Quantity::CriticalTemperature);
         let critical_pressure = of(Quantity::CriticalPressure);
-        let constants = critical_temperature.as_ref().zip(critical_pressure.as_ref());
+        let constants = critical_temperature
+            .as_ref()
+            .zip(critical_pressure.as_ref());
         let constants = constants.and_then(|(temperature, pressure)| {
             let (tb, id) = (boiling_point.value, level.id());
             Constants::new(tb, temperature.value, pressure.value, id).ok()
