@@ -172,6 +172,8 @@ fn quick_figure(
     match kind {
         FigureKind::Property(Property::MolarMass) => QuickFigure::MolarMass,
         FigureKind::Property(Property::LiquidDensity) if at_reference => QuickFigure::Density,
+        // the slope that it follows from is fitted, not the enthalpy itself
+        FigureKind::Property(Property::EnthalpyOfVaporization) => QuickFigure::Dear,
         FigureKind::Property(property) if at_reference || !property.depends_on_temperature() => {
             fitted_quantity(property).map_or(QuickFigure::Dear, QuickFigure::Fitted)
         }

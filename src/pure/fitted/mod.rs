@@ -35,4 +35,4 @@ pub use quantity::{Level, PerAtom, Quantity, Terms};
 pub use scale::{Ground, Scale, Signs, SizeClass, Standing};
 pub use support::Support;
 pub use table::{EnvironmentEntry, EnvironmentTable, classes_of};
-pub use volume::{volume_carried, volume_temperature_k};
+pub use volume::{expansion_to_298, volume_carried, volume_temperature_k};
