@@ -8,10 +8,10 @@ use super::Library;
 use super::profile::{GivenValues, Profile};
 use crate::groups::environment::{EnvironmentReader, Order};
 use crate::pure::corresponding_states::Constants;
-use crate::pure::enthalpy_of_vaporization_of_slope;
 use crate::pure::fitted::{
     FittedInput, Known, Level, Prediction, Quantity, volume_carried, volume_temperature_k,
 };
+use crate::pure::{density_of_fitted_volume, enthalpy_of_vaporization_of_slope};
 use crate::quantity::{
     Absent, Estimate, Flag, Flags, Property, PropertySet, REFERENCE_TEMPERATURE_K,
 };
@@ -286,7 +286,11 @@ impl FittedValues {
                 Ok(estimate) => {
                     found = Some(estimate.value);
                     if have(of.given, Property::LiquidDensity).is_none() {
-                        let density = density_of(estimate, molar_mass, volume_k);
+                        // what boils nowhere is taken for a high boiler
+                        let tb = boiling_point_k.unwrap_or(f64::INFINITY);
+                        let has_constants = self.has_critical_constants(of);
+                        let density =
+                            density_of_fitted_volume(estimate, molar_mass, tb, has_constants);
                         self.values.push((Property::LiquidDensity, density));
                     }
                 }
@@ -294,6 +298,15 @@ impl FittedValues {
             }
         }
         *self.volume.insert(found)
+    }
+
+    /// Whether the fits give critical constants: no kind of atom is new to them.
+    fn has_critical_constants(&self, of: Subject<'_>) -> bool {
+        let mut both = [Quantity::CriticalTemperature, Quantity::CriticalPressure].into_iter();
+        both.all(|quantity| {
+            let model = of.library.fitted().model(quantity, of.level);
+            !model.has_new_kind_of_atom(&self.input.molecule)
+        })
     }
 
     fn estimate(
@@ -375,15 +388,4 @@ fn unknown_words(
         Some(words) => format!("no molecule of the fit has {words}").into(),
         None => "no molecule of the fit has some of its atoms".into(),
     }
-}
-
-/// The density that goes with a molar volume at a temperature in K.
-fn density_of(volume: Estimate, molar_mass_kg_per_mol: f64, volume_k: f64) -> Estimate {
-    let ends = |(low, high)| (molar_mass_kg_per_mol / high, molar_mass_kg_per_mol / low);
-    Estimate {
-        value: molar_mass_kg_per_mol / volume.value,
-        interval: volume.interval.map(ends),
-        ..volume
-    }
-    .at(volume_k)
 }

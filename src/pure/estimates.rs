@@ -8,6 +8,7 @@ use super::corresponding_states::{
     enthalpy_of_vaporization_watson, flash_point_catoire_naudet, slope_of_enthalpy,
     surface_tension_sastri_rao,
 };
+use super::fitted::{expansion_to_298, volume_temperature_k};
 use super::joback::{self, Contributions, LinearSums, State};
 use super::method::{ATOMIC_WEIGHTS, WATSON};
 use crate::chem::Element;
@@ -613,6 +614,34 @@ pub fn enthalpy_of_vaporization_of_slope(
         interval,
         ..slope
     }
+}
+
+/// The liquid density that goes with a fitted molar volume: at the temperature of the fit,
+/// from where [`estimate_all`] carries it. Where there are no critical constants to carry it
+/// by, at 298.15 K by [`expansion_to_298`].
+pub fn density_of_fitted_volume(
+    volume: Estimate,
+    molar_mass_kg_per_mol: f64,
+    boiling_point_k: f64,
+    has_critical_constants: bool,
+) -> Estimate {
+    let by_itself = match has_critical_constants {
+        true => None,
+        false => expansion_to_298(boiling_point_k),
+    };
+    let (expansion, temperature_k) = match by_itself {
+        Some(expansion) => (expansion, REFERENCE_TEMPERATURE_K),
+        None => (1.0, volume_temperature_k(boiling_point_k)),
+    };
+    let density = |volume: f64| molar_mass_kg_per_mol / (expansion * volume);
+    Estimate {
+        value: density(volume.value),
+        interval: volume
+            .interval
+            .map(|(low, high)| (density(high), density(low))),
+        ..volume
+    }
+    .at(temperature_k)
 }
 
 /// The vapor-pressure curve that goes with a boiling point, a critical temperature and a

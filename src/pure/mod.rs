@@ -25,8 +25,8 @@ mod method;
 pub use additive::{Growth, Input};
 pub use error::PureError;
 pub use estimates::{
-    Estimates, Given, PureMethods, enthalpy_of_vaporization_of_slope, estimate_all, estimate_some,
-    vapor_pressure_curve,
+    Estimates, Given, PureMethods, density_of_fitted_volume, enthalpy_of_vaporization_of_slope,
+    estimate_all, estimate_some, vapor_pressure_curve,
 };
 pub use facts::StructureFacts;
 pub use method::{METHODS, Method, Role, default_method, methods_of, with_inputs};

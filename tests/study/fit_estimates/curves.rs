@@ -33,35 +33,28 @@ fn by_molecule(points: &[(usize, f64, f64)]) -> BTreeMap<usize, Points> {
     curves
 }
 
-/// d ln P/d ln T at the boiling point: by the vapor pressures, by the enthalpy of
-/// vaporization, or the geometric mean of the two.
+/// d ln P/d ln T at the boiling point: by the vapor pressures, and by the enthalpy of
+/// vaporization. A molecule that has both comes twice, one after the other, so that either
+/// can be doubted alone.
 pub(crate) fn slopes(
     vapor_pressures: &[(usize, f64, f64)],
     enthalpies: &Values,
     boiling: &BTreeMap<usize, f64>,
     molecules: &[Known],
 ) -> Values {
-    let mut found: BTreeMap<usize, Vec<f64>> = BTreeMap::new();
-    for (molecule, points) in by_molecule(vapor_pressures) {
-        let slope = slope_of_points(&points).filter(|slope| SLOPES.contains(slope));
-        if let Some(slope) = slope {
-            found.entry(molecule).or_default().push(slope);
-        }
-    }
-    for &(molecule, enthalpy) in enthalpies {
-        let constants = boiling.get(&molecule).and_then(|&tb| usual(tb));
-        if let Some(constants) = constants {
-            let slope = slope_of_enthalpy(&constants, enthalpy, molecules[molecule].acid);
-            found.entry(molecule).or_default().push(slope);
-        }
-    }
-    found
+    let mut found: Values = by_molecule(vapor_pressures)
         .into_iter()
-        .map(|(molecule, slopes)| {
-            let mean = slopes.iter().map(|slope| slope.ln()).sum::<f64>() / slopes.len() as f64;
-            (molecule, mean.exp())
-        })
-        .collect()
+        .filter_map(|(molecule, points)| Some((molecule, slope_of_points(&points)?)))
+        .filter(|(_, slope)| SLOPES.contains(slope))
+        .collect();
+    for &(molecule, enthalpy) in enthalpies {
+        if let Some(constants) = boiling.get(&molecule).and_then(|&tb| usual(tb)) {
+            let slope = slope_of_enthalpy(&constants, enthalpy, molecules[molecule].acid);
+            found.push((molecule, slope));
+        }
+    }
+    found.sort_by_key(|one| one.0);
+    found
 }
 
 /// The slope at the point where the curve itself passes through one atmosphere: least squares

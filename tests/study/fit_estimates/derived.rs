@@ -9,10 +9,10 @@ use std::fmt::Write as _;
 use groupsmith::pure::corresponding_states::Constants;
 use groupsmith::pure::fitted::{
     Family, Known, Level, Quantity, SizeClass, has_new_kind_of_atom, has_unknown_atoms,
-    volume_temperature_k,
 };
 use groupsmith::pure::{
-    Given, PureMethods, StructureFacts, enthalpy_of_vaporization_of_slope, estimate_all,
+    Given, PureMethods, StructureFacts, density_of_fitted_volume,
+    enthalpy_of_vaporization_of_slope, estimate_all,
 };
 use groupsmith::quantity::{Absent, Estimate, Property, REFERENCE_TEMPERATURE_K, Status};
 use rayon::prelude::*;
@@ -136,15 +136,9 @@ impl Derived {
             enthalpy_of_vaporization_of_slope(slope, &boiling_point, &constants, reference.acid)
         });
         let mass = reference.molar_mass_kg_per_mol;
-        let volume_k = volume_temperature_k(boiling_point.value);
-        let density = of(Quantity::MolarVolume).map(|volume| {
-            Estimate {
-                value: mass / volume.value,
-                interval: volume.interval.map(|(low, high)| (mass / high, mass / low)),
-                ..volume
-            }
-            .at(volume_k)
-        });
+        let carried = critical_temperature.is_some() && critical_pressure.is_some();
+        let density = of(Quantity::MolarVolume)
+            .map(|volume| density_of_fitted_volume(volume, mass, boiling_point.value, carried));
         let given = [
             (Property::BoilingPoint, Some(boiling_point)),
             (Property::CriticalTemperature, critical_temperature),

@@ -24,7 +24,7 @@ mod predictions;
 mod report;
 mod scale;
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 use std::error::Error;
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
@@ -391,7 +391,15 @@ impl Fit {
             let kept = || (0..residuals.len()).filter(|&i| Some(folds[i]) != out);
             let sum: f64 = kept().map(|i| residuals[i].abs()).sum();
             let usual = sum / kept().count() as f64;
-            residuals.iter().map(|r| r.abs() / usual).collect()
+            let each: Vec<f64> = residuals.iter().map(|r| r.abs() / usual).collect();
+            // values of one molecule have one error, their mean
+            same_molecule(&members)
+                .flat_map(|values| {
+                    let own = &each[values];
+                    let mean = own.iter().sum::<f64>() / own.len() as f64;
+                    std::iter::repeat_n(mean, own.len())
+                })
+                .collect()
         };
         let errors = errors_without(None);
 
@@ -423,6 +431,7 @@ impl Fit {
                 !has_unknown_atoms(described, &by_fold[fold])
             })
             .collect();
+        let firsts: Vec<usize> = same_molecule(&members).map(|values| values.start).collect();
         let standings = |out: Option<usize>| -> Vec<Standing> {
             let errors = errors_without(out);
             (0..members.len())
@@ -433,7 +442,7 @@ impl Fit {
                     if level == Level::Structure {
                         relatives = Relatives::default();
                         let strange = |&j: &usize| folds[j] != folds[i] && Some(folds[j]) != out;
-                        for j in (0..members.len()).filter(strange) {
+                        for j in firsts.iter().copied().filter(strange) {
                             relatives.add(f64::from(squared[i][j]), errors[j]);
                         }
                     }
@@ -470,13 +479,7 @@ impl Fit {
             intercept: mean + constant,
             weights,
             support: if setting.near > 0.0 {
-                (0..members.len())
-                    .map(|i| Supporting {
-                        molecule: members[i] as u32,
-                        part: (parts[i] * setting.near) as f32,
-                        error: errors[i] as f32,
-                    })
-                    .collect()
+                supporting(&members, &parts, &errors, setting.near)
             } else {
                 Vec::new()
             },
@@ -650,6 +653,7 @@ impl Fit {
 
     fn occurrences(&self, members: impl Iterator<Item = usize>) -> Vec<u32> {
         let mut occurrences = vec![0; self.table.entries().len()];
+        let members: BTreeSet<usize> = members.collect();
         for molecule in members {
             for &(position, _) in self.molecules[molecule].found() {
                 if self.table.entries()[position as usize].order <= Order::Second {
@@ -659,6 +663,29 @@ impl Fit {
         }
         occurrences
     }
+}
+
+/// Places of the values of each molecule, those of one molecule together.
+fn same_molecule(members: &[usize]) -> impl Iterator<Item = std::ops::Range<usize>> + '_ {
+    let mut end = 0;
+    members
+        .chunk_by(|one, next| one == next)
+        .map(move |values| {
+            let start = end;
+            end += values.len();
+            start..end
+        })
+}
+
+/// The molecules of a fit, ascending; the parts of one that has several values add up.
+fn supporting(members: &[usize], parts: &[f64], errors: &[f64], near: f64) -> Vec<Supporting> {
+    same_molecule(members)
+        .map(|values| Supporting {
+            molecule: members[values.start] as u32,
+            error: errors[values.start] as f32,
+            part: (parts[values].iter().sum::<f64>() * near) as f32,
+        })
+        .collect()
 }
 
 /// The sum of every molecule by a fit without its part.
