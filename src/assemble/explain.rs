@@ -219,7 +219,7 @@ pub fn what_keeps_out(
     if !reasons.is_empty() {
         return reasons;
     }
-    match job.judge(&members, [0; 4]) {
+    match job.judge_alone(&members, [0; 4]) {
         Judged::NotAssessable => {
             reasons.push(
                 "not assessable: a group or an interaction that the targets need is not published"

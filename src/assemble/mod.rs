@@ -8,6 +8,7 @@
 mod account;
 mod alike;
 mod best;
+mod completions;
 mod error;
 mod explain;
 mod fragment;

@@ -8,11 +8,12 @@ use super::account::Account;
 use super::limits::Limits;
 use super::piece::{Pieces, Role};
 use super::search::{Judged, rarity_bucket, rarity_of};
-use super::space::{CLASSES, Counters, Space};
+use super::space::{CLASSES, COUNTERS, Counters, Space};
 use crate::chem::Composition;
 use crate::evaluate::{Quick, QuickFigure};
 use crate::groups::{GroupCounts, SetId};
-use crate::mixture::{Component, KeysAtTemperature, Unifac};
+use crate::mixture::{CandidateLanes, Component, KeysAtTemperature, SharedGroups, Unifac};
+use crate::numeric::lanes::Instructions;
 use crate::numeric::{NORMAL_90, normal_cdf};
 use crate::pure::fitted::{ClassCounts, CountModel, Fitted, Known, Quantity};
 use crate::table::{Table, TableError};
@@ -45,25 +46,40 @@ pub(super) struct Form<'f> {
     reach: f64,
 }
 
+/// Where the value of a form, a whole number, has to lie.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) struct Window {
+    /// Below this the target is missed, its error considered.
+    pub(super) low: i64,
+    /// Above this it is.
+    pub(super) high: i64,
+    /// From here on the target may surely be met, whatever the sum does to its error …
+    pub(super) sure_low: i64,
+    /// … up to here.
+    pub(super) sure_high: i64,
+}
+
 impl Form<'_> {
-    /// Lowest and highest value of the form, rounded outward.
-    pub(super) fn limits(&self, n: f64, classes: &ClassCounts, rarity: f64) -> (i64, i64) {
+    /// The window of the form in molecules of one size, rounded outward, and its
+    /// sure part rounded inward.
+    pub(super) fn window(&self, n: f64, classes: &ClassCounts, rarity: f64) -> Window {
         // the mass is a sum over pieces, not a mean over atoms
         let scale = if self.model.is_some() { n } else { 1.0 };
-        let (mut low, mut high) = (self.low * scale, self.high * scale);
+        let (mut fixed, mut narrow, mut wide) = (0.0, 0.0, 0.0);
         if let Some(model) = &self.model {
             let (by_count, by_share) = model.products(classes);
-            let fixed = n * (model.size(n) + by_count) + by_share;
-            let wide = n * self.reach * model.half_width(n, rarity, classes, None);
-            low -= fixed + wide;
-            high -= fixed - wide;
+            fixed = n * (model.size(n) + by_count) + by_share;
+            let (least, most) = model.half_widths(n, rarity, classes);
+            (narrow, wide) = (n * self.reach * least, n * self.reach * most);
         }
-        let slack = ROUNDING;
-        let whole = |value: f64| value.clamp(-9.0e18, 9.0e18) as i64;
-        (
-            whole((low * UNITS - slack).floor()),
-            whole((high * UNITS + slack).ceil()),
-        )
+        let (low, high) = (self.low * scale - fixed, self.high * scale - fixed);
+        let whole = |value: f64| (value * UNITS).clamp(-9.0e18, 9.0e18);
+        Window {
+            low: (whole(low - wide) - ROUNDING).floor() as i64,
+            high: (whole(high + wide) + ROUNDING).ceil() as i64,
+            sure_low: (whole(low - narrow) + ROUNDING).ceil() as i64,
+            sure_high: (whole(high + narrow) - ROUNDING).floor() as i64,
+        }
     }
 }
 
@@ -86,6 +102,11 @@ pub(super) struct Measures {
     molar_mass_kg_per_mol: f64,
     /// Its groups in the set of the activity model.
     groups: Option<GroupCounts>,
+    /// Relative volume, and surface in each main group, by place in [`Job::mains`].
+    r: f64,
+    areas: SmallVec<[(u8, f64); 3]>,
+    /// Its main groups as bits.
+    pub(super) mains: u64,
 }
 
 /// A rule on counts: two classes that may not be in one molecule.
@@ -114,17 +135,26 @@ pub struct Job<'j> {
     pub(super) space: Space,
     pub(super) quick: Quick<'j>,
     pub(super) forms: Vec<Form<'j>>,
+    /// For each target, whether a form bounds it.
+    bounded: Vec<bool>,
     pub(super) measures: Vec<Measures>,
     /// Functional chain pieces, places in the space.
     pub(super) functional: Vec<usize>,
     /// CH3, CH2, CH, C: places in the space.
     pub(super) tail: [Option<usize>; 4],
+    /// Counters that a limit may stop at, and whether kinds of groups are among them.
+    pub(super) limited: [bool; COUNTERS],
+    pub(super) kinds_matter: bool,
     pub(super) tail_rarity: f64,
+    /// Main groups of plain carbons, as bits.
+    pub(super) tail_mains: u64,
     pub(super) most_mass: i64,
     pub(super) largest: u8,
     rules: Vec<CountRule>,
     models: Vec<CountModel<'j>>,
     activity: Option<(&'j Unifac, SetId, &'j KeysAtTemperature)>,
+    /// Published numbers of the main groups that members have.
+    mains: Vec<u16>,
     /// Half widths that limits are widened by.
     reach: f64,
 }
@@ -206,7 +236,10 @@ impl<'j> Job<'j> {
                     .iter()
                     .position(|member| member.piece == piece)
             }),
+            limited: [false; COUNTERS],
+            kinds_matter: false,
             tail_rarity: 0.0,
+            tail_mains: 0,
             most_mass: (limits.molar_mass_kg_per_mol * MASS_UNITS).floor() as i64,
             largest: u8::try_from(limits.heavy_atoms.1).unwrap_or(u8::MAX),
             rules: read_rules(pieces)?,
@@ -214,18 +247,72 @@ impl<'j> Job<'j> {
             space,
             quick,
             forms: Vec::new(),
+            bounded: Vec::new(),
             models,
             activity,
+            mains: Vec::new(),
             reach,
         };
+        let members: Vec<usize> = (0..job.space.members.len()).collect();
+        for counter in job.space.watched(&members) {
+            job.limited[counter] = true;
+        }
+        job.kinds_matter = job.space.kinds_matter(&members);
+        job.mains = job.main_groups();
         let members = job.space.members.iter();
         job.measures = members
             .map(|member| job.measure(usize::from(member.piece), fitted, &forms, must_activity))
             .collect();
+        let targets = 0..job.quick.targets.len();
+        job.bounded = targets
+            .map(|at| forms.iter().any(|form| form.target == at))
+            .collect();
         job.forms = forms;
         let tail = job.tail.iter().flatten();
-        job.tail_rarity = tail.map(|&at| job.measures[at].rarity).sum();
+        job.tail_rarity = tail.clone().map(|&at| job.measures[at].rarity).sum();
+        job.tail_mains = tail.fold(0, |mains, &at| mains | job.measures[at].mains);
         Ok(job)
+    }
+
+    /// Main groups of the members in the set of the activity model.
+    fn main_groups(&self) -> Vec<u16> {
+        let Some((unifac, set, _)) = self.activity else {
+            return Vec::new();
+        };
+        let members = self.space.members.iter();
+        let counts = members.filter_map(|member| {
+            self.pieces.all[usize::from(member.piece)].groups[set as usize].as_ref()
+        });
+        let groups = counts.flat_map(|counts| counts.iter().map(|(number, _)| number));
+        let mut mains: Vec<u16> = groups
+            .filter_map(|number| Some(unifac.tables().subgroup(number)?.main_group))
+            .collect();
+        mains.sort_unstable();
+        mains.dedup();
+        // more than there are bits for: those with later ones count as not published
+        mains.truncate(64);
+        mains
+    }
+
+    /// Relative volume and surfaces of groups; `None` where one is not in the tables.
+    fn surfaces(&self, groups: &GroupCounts) -> Option<(f64, SmallVec<[(u8, f64); 3]>)> {
+        let (unifac, _, _) = self.activity?;
+        let mut r = 0.0;
+        let mut areas: SmallVec<[(u8, f64); 3]> = SmallVec::new();
+        for (number, count) in groups.iter() {
+            let group = unifac.tables().subgroup(number)?;
+            let place = self
+                .mains
+                .iter()
+                .position(|&main| main == group.main_group)? as u8;
+            r += f64::from(count) * group.r;
+            let area = f64::from(count) * group.q;
+            match areas.iter_mut().find(|one| one.0 == place) {
+                Some(known) => known.1 += area,
+                None => areas.push((place, area)),
+            }
+        }
+        Some((r, areas))
     }
 
     fn measure(
@@ -241,6 +328,9 @@ impl<'j> Job<'j> {
         let of = |model: &CountModel<'_>| model.piece(&piece.environments);
         let set = self.activity.map(|(_, set, _)| set);
         let groups = set.and_then(|set| piece.groups[set as usize].clone());
+        let surfaces = groups.as_ref().and_then(|groups| self.surfaces(groups));
+        let unknown = must_activity && surfaces.is_none();
+        let (r, areas) = surfaces.unwrap_or_default();
         let needs = |quantity: Quantity| {
             let asked = self.quick.targets.iter().any(|target| {
                 target.must
@@ -305,7 +395,7 @@ impl<'j> Job<'j> {
                 .iter()
                 .map(|model| of(model).rarity)
                 .fold(0.0, f64::max),
-            gap: new_kind || must_activity && groups.is_none(),
+            gap: new_kind || unknown,
             sums: self
                 .models
                 .iter()
@@ -318,6 +408,9 @@ impl<'j> Job<'j> {
             composition: piece.composition,
             molar_mass_kg_per_mol: mass,
             groups,
+            mains: areas.iter().map(|one| 1_u64 << one.0).sum(),
+            r,
+            areas,
         }
     }
 
@@ -403,16 +496,108 @@ impl<'j> Job<'j> {
             .map(|(member, count)| (&self.measures[member], count))
     }
 
-    /// Whether an interaction that the activity needs is not published.
-    pub(super) fn has_gap(&self, members: &[(u16, u8)], tail: &[u8; 4]) -> bool {
-        let Some((_, _, keys)) = self.activity else {
-            return false;
-        };
-        match self.component(members, tail) {
-            Some(component) => keys.ln_gamma_inf(&component, &mut [0.0; 2]).is_err(),
-            // nothing yet: what is added decides
-            None => false,
+    /// The activity of main groups given as bits; `None` where an interaction that it
+    /// needs is not published, or none is needed.
+    pub(super) fn shared_groups(&self, mains: u64) -> Option<SharedGroups> {
+        let (_, _, keys) = self.activity?;
+        let used = self.mains.iter().enumerate();
+        let used: Vec<u16> = used
+            .filter(|(at, _)| mains >> at & 1 == 1)
+            .map(|(_, &main)| main)
+            .collect();
+        if used.is_empty() {
+            return None;
         }
+        SharedGroups::new(keys, &used).ok()
+    }
+
+    /// Whether targets ask for activity.
+    pub(super) fn asks_activity(&self) -> bool {
+        self.activity.is_some()
+    }
+
+    /// ln γ∞ of the keys in a prefix with each of some tails, which have the main groups
+    /// of `shared`, given as bits, in common.
+    pub(super) fn ln_gamma_inf(
+        &self,
+        shared: &SharedGroups,
+        mains: u64,
+        members: &[(u16, u8)],
+        tails: &[[u8; 4]],
+        scratch: &mut ActivityScratch,
+    ) {
+        let places: SmallVec<[u8; 8]> = (0..self.mains.len() as u8)
+            .filter(|at| mains >> at & 1 == 1)
+            .collect();
+        let n = tails.len();
+        let ActivityScratch {
+            r,
+            q,
+            areas,
+            ln_gamma,
+        } = scratch;
+        areas.resize(areas.len().max(places.len()), Vec::new());
+        let mut base_r = 0.0;
+        let mut base: SmallVec<[f64; 8]> = SmallVec::from_elem(0.0, places.len());
+        let place_of = |main: u8| {
+            places
+                .iter()
+                .position(|&place| place == main)
+                .expect("shared")
+        };
+        for &(member, count) in members {
+            let own = &self.measures[usize::from(member)];
+            base_r += own.r * f64::from(count);
+            for &(main, area) in &own.areas {
+                base[place_of(main)] += area * f64::from(count);
+            }
+        }
+        r.clear();
+        r.resize(n, base_r);
+        for (column, &area) in areas.iter_mut().zip(&base) {
+            column.clear();
+            column.resize(n, area);
+        }
+        for (which, member) in self.tail.iter().enumerate() {
+            let Some(member) = *member else { continue };
+            let own = &self.measures[member];
+            for (r, tail) in r.iter_mut().zip(tails) {
+                *r += own.r * f64::from(tail[which]);
+            }
+            for &(main, area) in &own.areas {
+                // without plain carbons their group may be absent
+                let Some(place) = places.iter().position(|&place| place == main) else {
+                    continue;
+                };
+                for (sum, tail) in areas[place].iter_mut().zip(tails) {
+                    *sum += area * f64::from(tail[which]);
+                }
+            }
+        }
+        q.clear();
+        q.resize(n, 0.0);
+        for column in &areas[..places.len()] {
+            for (q, area) in q.iter_mut().zip(column) {
+                *q += area;
+            }
+        }
+        for of_key in ln_gamma.iter_mut() {
+            of_key.clear();
+            of_key.resize(n, 0.0);
+        }
+        let columns: SmallVec<[&[f64]; 8]> =
+            areas[..places.len()].iter().map(Vec::as_slice).collect();
+        let [first, second] = ln_gamma;
+        let candidates = CandidateLanes {
+            r,
+            q,
+            areas: &columns,
+        };
+        shared.ln_gamma_inf(
+            Instructions::Best,
+            &candidates,
+            &mut [first.as_mut_slice(), second.as_mut_slice()],
+        );
     }
 
     fn component(&self, members: &[(u16, u8)], tail: &[u8; 4]) -> Option<Component> {
@@ -426,22 +611,62 @@ impl<'j> Job<'j> {
         unifac.component(&counts).ok()
     }
 
-    /// Figures and score of an assembly.
-    pub(super) fn judge(&self, members: &[(u16, u8)], tail: [u8; 4]) -> Judged {
-        let mut whole = Whole::new(self, members, &tail);
-        let mut activity = None;
+    /// Figures and score of an assembly by itself.
+    pub(super) fn judge_alone(&self, members: &[(u16, u8)], tail: [u8; 4]) -> Judged {
+        let all = self.each(members, &tail);
+        let mains = all.map(|(own, _)| own.mains).fold(0, |all, own| all | own);
+        let mut scratch = ActivityScratch::default();
+        let mut ln_gamma = None;
+        if self.asks_activity() {
+            let Some(shared) = self.shared_groups(mains) else {
+                return Judged::NotAssessable;
+            };
+            self.ln_gamma_inf(&shared, mains, members, &[tail], &mut scratch);
+            ln_gamma = Some(scratch.of(0));
+        }
+        self.judge(members, tail, ln_gamma, false)
+    }
+
+    /// Figures and score of an assembly, its activity given; `sure`: every linear sum
+    /// lies where its must may surely be met.
+    pub(super) fn judge(
+        &self,
+        members: &[(u16, u8)],
+        tail: [u8; 4],
+        ln_gamma: Option<[f64; 2]>,
+        sure: bool,
+    ) -> Judged {
+        let mut whole: Option<Whole<'_, '_>> = None;
+        let ln_gamma = ln_gamma.filter(|both| {
+            let plausible = crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
+            both.iter().all(|value| plausible.contains(value))
+        });
         let (mut sum, mut weights) = (0.0, 0.0);
         for (at, target) in self.quick.targets.iter().enumerate() {
+            if target.figure == QuickFigure::Dear {
+                continue;
+            }
+            let bounded = self.bounded[at];
+            if sure && bounded && target.weight == 0.0 {
+                continue;
+            }
+            let make = || Whole::new(self, members, &tail);
+            let of_activity = matches!(
+                target.figure,
+                QuickFigure::OfKey { .. } | QuickFigure::OfKeys { .. }
+            );
             let value = match target.figure {
                 QuickFigure::Dear => continue,
-                QuickFigure::MolarMass => Some((whole.mass, None)),
-                QuickFigure::Density => whole.density(),
-                QuickFigure::Fitted(quantity) => whole.fitted(quantity),
-                QuickFigure::OfKey { .. } | QuickFigure::OfKeys { .. } => {
-                    let known = activity.get_or_insert_with(|| self.activity_of(members, &tail));
-                    known.as_ref().and_then(|(_, ln_gamma)| {
-                        of_activity(target.figure, *ln_gamma, whole.mass).map(|value| (value, None))
-                    })
+                QuickFigure::MolarMass => Some((whole.get_or_insert_with(make).mass, None)),
+                QuickFigure::Density => whole.get_or_insert_with(make).density(),
+                QuickFigure::Fitted(quantity) => whole.get_or_insert_with(make).fitted(quantity),
+                figure @ (QuickFigure::OfKey { .. } | QuickFigure::OfKeys { .. }) => {
+                    let by_mass = matches!(figure, QuickFigure::OfKey { by_mass: true, .. });
+                    let mass = match by_mass {
+                        true => whole.get_or_insert_with(make).mass,
+                        false => 1.0,
+                    };
+                    ln_gamma.and_then(|both| Some((value_of_activity(figure, both, mass)?, None)))
                 }
             };
             let Some((value, ends)) = value else {
@@ -452,18 +677,17 @@ impl<'j> Job<'j> {
             };
             if target.must && !target.want.is_met(value) {
                 let (low, high) = target.want.met_range();
-                let may = match (&activity, ends) {
-                    (_, Some((least, most))) => most >= low && least <= high,
-                    (Some(Some((component, ln_gamma))), None) => {
-                        self.quick.may_meet(at, component, *ln_gamma, value)
-                    }
+                let may = match (ends, ln_gamma) {
+                    (Some((least, most)), _) => most >= low && least <= high,
+                    (None, Some(both)) if of_activity => self
+                        .component(members, &tail)
+                        .is_some_and(|one| self.quick.may_meet(at, &one, both, value)),
                     _ => false,
                 };
                 if !may {
-                    let by_bound = self.forms.iter().any(|form| form.target == at);
                     return Judged::Missed {
                         target: at,
-                        by_bound,
+                        by_bound: bounded,
                     };
                 }
             }
@@ -478,21 +702,25 @@ impl<'j> Job<'j> {
             1.0
         })
     }
+}
 
-    fn activity_of(&self, members: &[(u16, u8)], tail: &[u8; 4]) -> Option<(Component, [f64; 2])> {
-        let (_, _, keys) = self.activity?;
-        let component = self.component(members, tail)?;
-        let mut ln_gamma = [0.0; 2];
-        keys.ln_gamma_inf(&component, &mut ln_gamma).ok()?;
-        let plausible = crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
-        ln_gamma
-            .iter()
-            .all(|value| plausible.contains(value))
-            .then_some((component, ln_gamma))
+/// Columns of candidates for the activity, and what comes of them.
+#[derive(Clone, Debug, Default)]
+pub(super) struct ActivityScratch {
+    r: Vec<f64>,
+    q: Vec<f64>,
+    areas: Vec<Vec<f64>>,
+    ln_gamma: [Vec<f64>; 2],
+}
+
+impl ActivityScratch {
+    /// ln γ∞ of the keys in the candidate at a place.
+    pub(super) fn of(&self, at: usize) -> [f64; 2] {
+        [self.ln_gamma[0][at], self.ln_gamma[1][at]]
     }
 }
 
-fn of_activity(figure: QuickFigure, ln_gamma: [f64; 2], mass: f64) -> Option<f64> {
+fn value_of_activity(figure: QuickFigure, ln_gamma: [f64; 2], mass: f64) -> Option<f64> {
     let value = match figure {
         QuickFigure::OfKey {
             key,
@@ -584,7 +812,7 @@ impl<'a, 'j> Whole<'a, 'j> {
             + model.size(self.n)
             + model.inputs(self.n, known);
         let rarity = rarity_of(rarity_bucket(self.rarity));
-        let half = self.job.reach * model.half_width(self.n, rarity, &self.classes, Some(sum));
+        let half = self.job.reach * model.half_width(self.n, rarity, &self.classes, sum);
         let quantity = model.quantity();
         let closed = |sum: f64| quantity.closed(sum, self.n, known);
         let value = closed(sum)?;
@@ -631,7 +859,7 @@ impl<'a, 'j> Whole<'a, 'j> {
         found.map(|(value, ends)| (value, Some(ends)))
     }
 
-    fn density(&mut self) -> Option<(f64, Option<(f64, f64)>)> {
+    fn density(&self) -> Option<(f64, Option<(f64, f64)>)> {
         let (volume, (low, high)) = self.known[MOLAR_VOLUME]?;
         let of = |volume: f64| self.mass / volume;
         Some((

@@ -1,34 +1,31 @@
 //! Whether an assembly has a structure at all.
 //!
-//! Looks at kinds of ends only: pieces with the same ends are one *shape*. What
-//! was found for a part of an assembly is remembered, and serves all others that
-//! contain it.
+//! Looks at kinds of ends only: pieces with the same ends are one *shape*. A tree
+//! is grown from one piece by filling, again and again, the open end that the
+//! fewest of the remaining pieces fit; dead ends are remembered.
 
-use std::rc::Rc;
-
-use rustc_hash::FxHashMap;
+use rustc_hash::{FxHashMap, FxHashSet};
 use smallvec::SmallVec;
 
 use super::piece::{Kind, Kinds, Piece, Pieces, Role};
 
-/// Pieces that cannot be told apart by their ends.
-#[derive(Clone, Debug, PartialEq, Eq, Hash)]
-struct Shape {
-    /// Kinds of the ends, and which atom each is at.
-    ends: SmallVec<[(Kind, u8); 4]>,
+/// Open ends at one atom: they are of one kind.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
+struct Site {
+    kind: Kind,
+    open: u8,
+    /// Kinds that may not come here any more, for what is joined to the atom.
+    not: Kinds,
 }
+
+/// Pieces that cannot be told apart by their ends.
+type Shape = SmallVec<[Site; 4]>;
 
 /// How often each shape occurs, ascending, no zero counts.
-type Multiset = SmallVec<[(u8, u8); 10]>;
+type Multiset = SmallVec<[(u8, u8); 12]>;
 
-/// A tree with one end left open, as whoever joins it sees it.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
-struct Open {
-    /// The kind of the open end.
-    kind: Kind,
-    /// What may be joined to it.
-    takes: Kinds,
-}
+/// A partial tree: its open sites in order, and what is left.
+type Growth = (SmallVec<[Site; 8]>, Multiset);
 
 /// Finds out whether assemblies have structures; remembers, so one per thread.
 #[derive(Debug)]
@@ -37,11 +34,11 @@ pub struct Realizer<'p> {
     shapes: Vec<Shape>,
     /// Shape of each piece, `None` for whole molecules.
     shape_of: Vec<Option<u8>>,
-    branches: FxHashMap<Multiset, Rc<[Open]>>,
     answers: FxHashMap<(Multiset, Multiset), bool>,
+    dead: FxHashSet<Growth>,
 }
 
-/// How many parts are remembered before all are forgotten, so that memory has a bound.
+/// How many answers are remembered before all are forgotten, so that memory has a bound.
 const MOST_REMEMBERED: usize = 200_000;
 
 impl<'p> Realizer<'p> {
@@ -52,7 +49,7 @@ impl<'p> Realizer<'p> {
             if piece.role == Role::Whole {
                 return None;
             }
-            let shape = Shape { ends: ends(piece) };
+            let shape = shape(piece);
             let known = shapes.iter().position(|known| *known == shape);
             let at = known.unwrap_or_else(|| {
                 shapes.push(shape);
@@ -65,8 +62,8 @@ impl<'p> Realizer<'p> {
             pieces,
             shapes,
             shape_of,
-            branches: FxHashMap::default(),
             answers: FxHashMap::default(),
+            dead: FxHashSet::default(),
         }
     }
 
@@ -74,23 +71,18 @@ impl<'p> Realizer<'p> {
     pub fn is_realizable(&mut self, assembly: &[(u16, u8)]) -> bool {
         let mut chain = Multiset::new();
         let mut ring = Multiset::new();
+        let mut has_ring = false;
         for &(piece, count) in assembly {
             let own = &self.pieces.all[usize::from(piece)];
             let Some(shape) = self.shape_of[usize::from(piece)] else {
                 return true;
             };
             let of_ring = own.role != Role::Chain;
-            if of_ring && own.ends.is_empty() {
-                continue;
+            has_ring |= of_ring;
+            if !own.ends.is_empty() {
+                add(if of_ring { &mut ring } else { &mut chain }, shape, count);
             }
-            add(if of_ring { &mut ring } else { &mut chain }, shape, count);
         }
-        let has_ring = assembly.iter().any(|&(piece, _)| {
-            matches!(
-                self.pieces.all[usize::from(piece)].role,
-                Role::Aromatic | Role::Ring
-            )
-        });
         if chain.is_empty() {
             return has_ring && ring.is_empty();
         }
@@ -99,24 +91,27 @@ impl<'p> Realizer<'p> {
             return known;
         }
         let (chain, ring) = &key;
-        let answer = if has_ring {
-            let mut ends: SmallVec<[(Kind, u16); 8]> = SmallVec::new();
-            let mut members = 0;
+        let mut rest = chain.clone();
+        let mut sites: SmallVec<[Site; 8]> = SmallVec::new();
+        if has_ring {
             for &(shape, count) in ring {
                 for _ in 0..count {
-                    // atoms of different members are different
-                    let own = &self.shapes[usize::from(shape)].ends;
-                    ends.extend(
-                        own.iter()
-                            .map(|&(kind, atom)| (kind, members << 8 | u16::from(atom))),
-                    );
-                    members += 1;
+                    sites.extend_from_slice(&self.shapes[usize::from(shape)]);
                 }
             }
-            self.fills(&ends, chain, &mut SmallVec::new(), &mut |_| true)
         } else {
-            self.is_tree(chain)
-        };
+            // any piece can be the first; one with many ends parts the rest best
+            let ends = |shape: u8| -> u32 {
+                let sites = self.shapes[usize::from(shape)].iter();
+                sites.map(|site| u32::from(site.open)).sum()
+            };
+            let first = chain.iter().map(|one| one.0).max_by_key(|&one| ends(one));
+            let first = first.expect("there is a piece");
+            remove(&mut rest, first);
+            sites.extend_from_slice(&self.shapes[usize::from(first)]);
+        }
+        self.dead.clear();
+        let answer = self.grows(sites, rest);
         if self.answers.len() > MOST_REMEMBERED {
             self.answers.clear();
         }
@@ -124,187 +119,110 @@ impl<'p> Realizer<'p> {
         answer
     }
 
-    fn is_tree(&mut self, chain: &Multiset) -> bool {
-        // any piece can be the root; one with many ends parts the rest best
-        let root = chain
-            .iter()
-            .max_by_key(|(shape, _)| self.shapes[usize::from(*shape)].ends.len());
-        let Some(&(root, _)) = root else {
+    /// Whether all that is left can be joined to the open sites, none staying open.
+    fn grows(&mut self, mut sites: SmallVec<[Site; 8]>, rest: Multiset) -> bool {
+        if rest.is_empty() || sites.is_empty() {
+            return rest.is_empty() && sites.is_empty();
+        }
+        sites.sort_unstable();
+        let growth = (sites, rest);
+        if self.dead.contains(&growth) {
             return false;
-        };
-        let mut rest = chain.clone();
-        remove(&mut rest, root);
-        let ends = self.ends_of(root, None);
-        if ends.is_empty() {
-            return rest.is_empty();
         }
-        self.fills(&ends, &rest, &mut SmallVec::new(), &mut |_| true)
-    }
-
-    fn ends_of(&self, shape: u8, but: Option<usize>) -> SmallVec<[(Kind, u16); 8]> {
-        let ends = self.shapes[usize::from(shape)].ends.iter().enumerate();
-        ends.filter(|(at, _)| Some(*at) != but)
-            .map(|(_, &(kind, atom))| (kind, u16::from(atom)))
-            .collect()
-    }
-
-    /// Gives every end a part of `rest`, all of it in the end; hands each way, as
-    /// the kinds joined to the ends, to `found` until that says it is enough.
-    fn fills(
-        &mut self,
-        ends: &[(Kind, u16)],
-        rest: &Multiset,
-        joined: &mut SmallVec<[Kind; 8]>,
-        found: &mut dyn FnMut(&[Kind]) -> bool,
-    ) -> bool {
-        let at = joined.len();
-        if at == ends.len() {
-            return rest.is_empty() && found(joined);
-        }
-        let last = at + 1 == ends.len();
-        let mut parts: SmallVec<[Multiset; 16]> = SmallVec::new();
-        if last {
-            parts.push(rest.clone());
-        } else {
-            self.parts(rest, &mut parts);
-        }
-        for part in parts {
-            if self.valence(&part) != -1 {
+        let (sites, rest) = &growth;
+        // the site that the fewest pieces fit
+        let mut fewest: Option<(usize, u32)> = None;
+        for (at, site) in sites.iter().enumerate() {
+            if at > 0 && sites[at - 1] == *site {
                 continue;
             }
-            let branches = self.branches(&part);
-            let mut left = rest.clone();
-            for &(shape, count) in &part {
-                for _ in 0..count {
-                    remove(&mut left, shape);
-                }
+            let fitting: u32 = rest
+                .iter()
+                .filter(|one| self.fits(site, one.0))
+                .map(|one| u32::from(one.1))
+                .sum();
+            if fitting < u32::from(site.open) {
+                self.dead.insert(growth);
+                return false;
             }
-            let (kind, atom) = ends[at];
-            // branches that look alike from here are one
-            let mut tried: Kinds = 0;
-            for open in branches.iter() {
-                let fits = open.takes & kind.bit() != 0
-                    && tried & open.kind.bit() == 0
-                    && ends[..at].iter().zip(&*joined).all(|(other, other_kind)| {
-                        other.1 != atom || self.pieces.may_meet(kind, *other_kind, open.kind)
-                    });
-                if !fits {
+            if fewest.is_none_or(|(_, known)| fitting < known) {
+                fewest = Some((at, fitting));
+            }
+        }
+        let (at, _) = fewest.expect("there is an open site");
+        let site = sites[at];
+        for &(shape, _) in rest {
+            let entries = self.shapes[usize::from(shape)].clone();
+            for (which, entry) in entries.iter().enumerate() {
+                if !self.may_join(&site, entry) {
                     continue;
                 }
-                tried |= open.kind.bit();
-                joined.push(open.kind);
-                let enough = self.fills(ends, &left, joined, found);
-                joined.pop();
-                if enough {
+                let mut next = sites.clone();
+                match self.with(site, entry.kind) {
+                    Some(left) => next[at] = left,
+                    None => {
+                        next.swap_remove(at);
+                    }
+                }
+                for (other, own) in entries.iter().enumerate() {
+                    if other != which {
+                        next.push(*own);
+                    } else if let Some(left) = self.with(*own, site.kind) {
+                        next.push(left);
+                    }
+                }
+                let mut left = rest.clone();
+                remove(&mut left, shape);
+                if self.grows(next, left) {
                     return true;
                 }
             }
         }
+        self.dead.insert(growth);
         false
     }
 
-    /// Ends over two, summed: −1 for a tree with one open end.
-    fn valence(&self, part: &Multiset) -> i32 {
-        part.iter()
-            .map(|&(shape, count)| {
-                let ends = self.shapes[usize::from(shape)].ends.len() as i32;
-                (ends - 2) * i32::from(count)
-            })
-            .sum()
+    /// Whether some end of a shape fits a site.
+    fn fits(&self, site: &Site, shape: u8) -> bool {
+        let entries = self.shapes[usize::from(shape)].iter();
+        entries.into_iter().any(|entry| self.may_join(site, entry))
     }
 
-    /// Every part of a multiset that may be a tree with one open end.
-    fn parts(&self, whole: &Multiset, parts: &mut SmallVec<[Multiset; 16]>) {
-        let mut chosen: SmallVec<[u8; 10]> = SmallVec::from_elem(0, whole.len());
-        loop {
-            let part: Multiset = whole
-                .iter()
-                .zip(&chosen)
-                .filter(|(_, n)| **n > 0)
-                .map(|(one, &n)| (one.0, n))
-                .collect();
-            if !part.is_empty() && self.valence(&part) == -1 {
-                parts.push(part);
-            }
-            let mut at = 0;
-            loop {
-                if at == whole.len() {
-                    return;
-                }
-                if chosen[at] < whole[at].1 {
-                    chosen[at] += 1;
-                    break;
-                }
-                chosen[at] = 0;
-                at += 1;
-            }
-        }
+    fn may_join(&self, site: &Site, entry: &Site) -> bool {
+        self.pieces.joins(site.kind, entry.kind) && site.not & entry.kind.bit() == 0
     }
 
-    /// The trees with one open end that can be made of all of a part.
-    fn branches(&mut self, part: &Multiset) -> Rc<[Open]> {
-        if let Some(known) = self.branches.get(part) {
-            return Rc::clone(known);
-        }
-        let mut all: SmallVec<[Open; 16]> = SmallVec::new();
-        for &(shape, _) in part {
-            let mut rest = part.clone();
-            remove(&mut rest, shape);
-            let count = self.shapes[usize::from(shape)].ends.len();
-            let mut tried: SmallVec<[(Kind, u8); 4]> = SmallVec::new();
-            for entry in 0..count {
-                let (kind, atom) = self.shapes[usize::from(shape)].ends[entry];
-                if tried.contains(&(kind, atom)) {
-                    continue;
-                }
-                tried.push((kind, atom));
-                let ends = self.ends_of(shape, Some(entry));
-                let joins = self.pieces.kinds[usize::from(kind.0)].joins;
-                let mut add = |joined: &[Kind], pieces: &Pieces| {
-                    let not = ends
-                        .iter()
-                        .zip(joined)
-                        .filter(|(end, _)| end.1 == u16::from(atom))
-                        .fold(0, |not, (_, joined)| {
-                            not | pieces.kinds[usize::from(kind.0)].not_beside
-                                [usize::from(joined.0)]
-                        });
-                    let open = Open {
-                        kind,
-                        takes: joins & !not,
-                    };
-                    if open.takes != 0 && !all.contains(&open) {
-                        all.push(open);
-                    }
-                };
-                if ends.is_empty() {
-                    if rest.is_empty() {
-                        add(&[], self.pieces);
-                    }
-                    continue;
-                }
-                let pieces = self.pieces;
-                self.fills(&ends, &rest, &mut SmallVec::new(), &mut |joined| {
-                    add(joined, pieces);
-                    false
-                });
-            }
-        }
-        all.sort_unstable();
-        let all: Rc<[Open]> = all.as_slice().into();
-        if self.branches.len() > MOST_REMEMBERED {
-            self.branches.clear();
-        }
-        self.branches.insert(part.clone(), Rc::clone(&all));
-        all
+    /// A site after something was joined to it; `None` if it is full.
+    fn with(&self, site: Site, joined: Kind) -> Option<Site> {
+        let known = &self.pieces.kinds[usize::from(site.kind.0)];
+        (site.open > 1).then(|| Site {
+            open: site.open - 1,
+            not: site.not | known.not_beside[usize::from(joined.0)],
+            ..site
+        })
     }
 }
 
-fn ends(piece: &Piece) -> SmallVec<[(Kind, u8); 4]> {
+fn shape(piece: &Piece) -> Shape {
     let fragment = piece.fragment();
-    let ends = piece.ends.iter().enumerate();
-    ends.map(|(at, &kind)| (kind, fragment.atom_of_end(at) as u8))
-        .collect()
+    let mut sites: SmallVec<[(usize, Site); 4]> = SmallVec::new();
+    for (end, &kind) in piece.ends.iter().enumerate() {
+        let atom = fragment.atom_of_end(end);
+        match sites.iter_mut().find(|known| known.0 == atom) {
+            Some(known) => known.1.open += 1,
+            None => sites.push((
+                atom,
+                Site {
+                    kind,
+                    open: 1,
+                    not: 0,
+                },
+            )),
+        }
+    }
+    let mut shape: Shape = sites.into_iter().map(|one| one.1).collect();
+    shape.sort_unstable();
+    shape
 }
 
 fn add(multiset: &mut Multiset, shape: u8, count: u8) {

@@ -13,12 +13,13 @@ use smallvec::SmallVec;
 
 use super::account::Account;
 use super::best::{Best, Scored, score_key};
-use super::model::{Form, Job};
+use super::completions::Completions;
+use super::completions::TailRange;
+use super::model::{ActivityScratch, Form, Job, Window};
 use super::piece::Role;
 use super::realize::Realizer;
-use super::space::{
-    AROMATIC, BRANCHES, COUNTERS, Counters, HEAVY, PIECES, QUATERNARY, SATURATED, Skeleton,
-};
+use super::space::{AROMATIC, COUNTERS, Counters, HEAVY, PIECES, SATURATED, Skeleton};
+use crate::mixture::SharedGroups;
 use crate::pure::fitted::ClassCounts;
 use crate::run::StopFlag;
 
@@ -46,17 +47,32 @@ pub struct Found {
 pub(super) struct Searcher<'j> {
     job: &'j Job<'j>,
     realizer: Realizer<'j>,
-    limits: FxHashMap<(ClassCounts, u8), Rc<Vec<SizeLimits>>>,
+    limits: FxHashMap<(ClassCounts, u8), Rc<Vec<Windows>>>,
+    /// Activity by main groups; `None` where an interaction is not published.
+    shared: FxHashMap<u64, Option<Rc<SharedGroups>>>,
+    activity: ActivityScratch,
+    completions: Completions,
+    /// Tails of the prefix at work that no bound has cut, and whether their sums are sure.
+    waiting: Vec<([u8; 4], bool)>,
+    tails: Vec<[u8; 4]>,
     /// Nodes visited, for the rate.
     pub(super) nodes: u64,
     stop: StopFlag,
 }
 
-/// Lowest and highest n·sum of a form, by heavy atoms.
-#[derive(Clone, Debug, Default)]
-struct SizeLimits {
-    low: Vec<i64>,
-    high: Vec<i64>,
+/// The window of a form, by heavy atoms.
+type Windows = Vec<Window>;
+
+/// How the sums of an assembly lie in their windows.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Lies {
+    /// A target, by its place, is missed.
+    Outside(usize),
+    /// None is missed for sure.
+    Inside {
+        /// Whether all may surely be met.
+        sure: bool,
+    },
 }
 
 /// Limits that are remembered before all are forgotten.
@@ -67,15 +83,16 @@ const FIRST_PIECES: usize = 2;
 
 /// Where a walk stands: a prefix.
 #[derive(Clone, Debug)]
-struct Prefix {
-    counters: Counters,
-    balance: i32,
+pub(super) struct Prefix {
+    pub(super) counters: Counters,
+    pub(super) balance: i32,
     mass: i64,
     forms: SmallVec<[[i64; 2]; 6]>,
     rarity: f64,
     classes: ClassCounts,
     /// Places in the space with their counts, in the order they were added.
-    members: SmallVec<[(u16, u8); 10]>,
+    pub(super) members: SmallVec<[(u16, u8); 10]>,
+    mains: u64,
     gap: bool,
 }
 
@@ -197,6 +214,11 @@ impl<'j> Searcher<'j> {
             stop: stop.clone(),
             realizer: Realizer::new(job.pieces),
             limits: FxHashMap::default(),
+            shared: FxHashMap::default(),
+            activity: ActivityScratch::default(),
+            completions: Completions::default(),
+            waiting: Vec::new(),
+            tails: Vec::new(),
             nodes: 0,
         }
     }
@@ -225,10 +247,14 @@ impl<'j> Searcher<'j> {
             rarity: 0.0,
             classes: ClassCounts::default(),
             members: SmallVec::new(),
+            mains: 0,
             gap: false,
         };
+        if matches!(unit.skeleton, Skeleton::Aromatic | Skeleton::Saturated) {
+            prefix.classes = prefix.classes.with_ring();
+        }
         for &member in &unit.first {
-            self.push(&mut prefix, usize::from(member), 1);
+            prefix = self.with(&prefix, usize::from(member));
         }
         if unit.skeleton == Skeleton::Whole {
             if job.space.takes_whole(usize::from(unit.first[0])) {
@@ -253,7 +279,7 @@ impl<'j> Searcher<'j> {
                 }
                 _ => 0,
             };
-            self.walk(&mut prefix, from, &mut found);
+            self.walk(&prefix, from, &mut found);
         } else {
             self.tails(&prefix, &mut found);
         }
@@ -261,65 +287,67 @@ impl<'j> Searcher<'j> {
     }
 
     /// The prefix and all that follow when functional pieces are added to it.
-    fn walk(&mut self, prefix: &mut Prefix, from: usize, found: &mut Found) {
-        if self.stop.is_raised() {
+    fn walk(&mut self, prefix: &Prefix, from: usize, found: &mut Found) {
+        let job = self.job;
+        // a piece takes at most one open end away: with more of them than pieces left,
+        // neither this prefix nor any that follows can be closed
+        let left = i32::from(job.space.most[PIECES]) - i32::from(prefix.counters[PIECES]);
+        if prefix.balance > left || self.stop.is_raised() {
+            return;
+        }
+        // a broken rule and a missing interaction stay so, whatever is added
+        let rule = job.rule_that_cuts(&prefix.counters);
+        if (rule.is_some() || prefix.gap || self.has_gap(prefix.mains))
+            && let Some(all) = self.completions.of(job, prefix, from)
+        {
+            match rule {
+                Some(rule) => found.account.cut_by_rule[rule] += all,
+                None => found.account.not_assessable += all,
+            }
             return;
         }
         self.tails(prefix, found);
-        for at in from..self.job.functional.len() {
-            let member = self.job.functional[at];
-            let own = &self.job.space.members[member];
-            let count = prefix
-                .members
-                .iter()
-                .find(|one| usize::from(one.0) == member);
-            if count.is_some_and(|one| one.1 >= own.most) {
+        for (at, &member) in job.functional.iter().enumerate().skip(from) {
+            let own = &job.space.members[member];
+            let count = match prefix.members.last() {
+                Some(last) if usize::from(last.0) == member => last.1,
+                _ => 0,
+            };
+            if count >= own.most {
                 continue;
             }
             let mut counters = prefix.counters;
             add(&mut counters, &own.adds);
-            if !self.job.space.fits(&counters) {
-                continue;
+            if job.space.fits(&counters) {
+                let next = self.with(prefix, member);
+                self.walk(&next, at, found);
             }
-            self.push(prefix, member, 1);
-            self.walk(prefix, at, found);
-            self.push(prefix, member, -1);
         }
     }
 
-    fn push(&self, prefix: &mut Prefix, member: usize, sign: i8) {
-        let job = self.job;
-        let own = &job.space.members[member];
-        let measures = &job.measures[member];
-        for (counter, add) in prefix.counters.iter_mut().zip(&own.adds) {
-            *counter = counter.wrapping_add_signed(*add as i8 * sign);
+    /// The prefix with one member more, which is not before its last.
+    fn with(&self, prefix: &Prefix, member: usize) -> Prefix {
+        let own = &self.job.space.members[member];
+        let measures = &self.job.measures[member];
+        let mut next = prefix.clone();
+        add(&mut next.counters, &own.adds);
+        next.balance += i32::from(own.balance);
+        next.mass += measures.mass;
+        for (sum, add) in next.forms.iter_mut().zip(&measures.forms) {
+            sum[0] += add[0];
+            sum[1] += add[1];
         }
-        let times = i64::from(sign);
-        prefix.balance += i32::from(own.balance) * i32::from(sign);
-        prefix.mass += measures.mass * times;
-        for (sum, add) in prefix.forms.iter_mut().zip(&measures.forms) {
-            sum[0] += add[0] * times;
-            sum[1] += add[1] * times;
-        }
-        match prefix
-            .members
-            .iter()
-            .position(|one| usize::from(one.0) == member)
-        {
-            Some(at) => {
-                prefix.members[at].1 = prefix.members[at].1.wrapping_add_signed(sign);
-                if prefix.members[at].1 == 0 {
-                    prefix.members.remove(at);
-                }
+        next.classes.add(&measures.classes, 1);
+        match next.members.last_mut() {
+            Some(last) if usize::from(last.0) == member => last.1 += 1,
+            _ => {
+                next.members.push((member as u16, 1));
+                next.rarity += measures.rarity;
+                next.mains |= measures.mains;
+                next.gap |= measures.gap;
             }
-            None => prefix.members.push((member as u16, 1)),
         }
-        let all = prefix
-            .members
-            .iter()
-            .map(|one| &job.measures[usize::from(one.0)]);
-        prefix.rarity = all.clone().map(|one| one.rarity).sum();
-        prefix.gap = all.clone().any(|one| one.gap);
+        next
     }
 
     /// A molecule that is one piece.
@@ -331,71 +359,72 @@ impl<'j> Searcher<'j> {
             found.account.cut_by_rule[0] += 1;
         } else if let Some(rule) = self.job.rule_that_cuts(&prefix.counters) {
             found.account.cut_by_rule[rule] += 1;
-        } else if prefix.gap || self.job.has_gap(&prefix.members, &[0; 4]) {
+        } else if prefix.gap || self.has_gap(prefix.mains) {
             found.account.not_assessable += 1;
-        } else if let Some(target) = self.cut(&limits, n, |at| prefix.forms[at]) {
-            found.account.cut_by_bound[target] += 1;
         } else {
-            self.score(prefix, [0; 4], found);
+            match self.lies(&limits, n, |at| prefix.forms[at]) {
+                Lies::Outside(target) => found.account.cut_by_bound[target] += 1,
+                Lies::Inside { sure } => {
+                    self.waiting.push(([0; 4], sure));
+                    self.score_waiting(prefix, found);
+                }
+            }
         }
     }
 
-    /// The first target, in the order of the brief, whose bound cuts.
-    fn cut(
-        &self,
-        limits: &[SizeLimits],
-        n: usize,
-        sums: impl Fn(usize) -> [i64; 2],
-    ) -> Option<usize> {
-        let forms = self.job.forms.iter().zip(limits).enumerate();
-        forms
-            .filter(|(at, (_, limits))| {
-                let [by_count, by_share] = sums(*at);
-                let sum = by_count * n as i64 + by_share;
-                sum < limits.low[n] || sum > limits.high[n]
-            })
-            .map(|(_, (form, _))| form.target)
-            .min()
+    /// How the sums of an assembly lie; of several missed targets the first in the
+    /// order of the brief counts.
+    #[inline]
+    fn lies(&self, limits: &[Windows], n: usize, sums: impl Fn(usize) -> [i64; 2]) -> Lies {
+        let mut missed = usize::MAX;
+        let mut sure = true;
+        for (at, (form, windows)) in self.job.forms.iter().zip(limits).enumerate() {
+            let [by_count, by_share] = sums(at);
+            let sum = by_count * n as i64 + by_share;
+            let window = &windows[n];
+            if sum < window.low || sum > window.high {
+                missed = missed.min(form.target);
+            }
+            sure &= sum >= window.sure_low && sum <= window.sure_high;
+        }
+        match missed {
+            usize::MAX => Lies::Inside { sure },
+            target => Lies::Outside(target),
+        }
+    }
+
+    /// The activity of main groups, looked up once.
+    fn shared(&mut self, mains: u64) -> Option<Rc<SharedGroups>> {
+        let job = self.job;
+        let known = self.shared.entry(mains);
+        known
+            .or_insert_with(|| job.shared_groups(mains).map(Rc::new))
+            .clone()
+    }
+
+    /// Whether an interaction that the activity needs is not published.
+    fn has_gap(&mut self, mains: u64) -> bool {
+        self.job.asks_activity() && mains != 0 && self.shared(mains).is_none()
     }
 
     /// Every tail of a prefix.
     fn tails(&mut self, prefix: &Prefix, found: &mut Found) {
         let job = self.job;
-        let space = &job.space;
-        let [ch3, ch2, ch, c] = job.tail;
-        let most = |member: Option<usize>| member.map_or(0, |at| i32::from(space.members[at].most));
-        let left = i32::from(space.most[PIECES]) - i32::from(prefix.counters[PIECES]);
-        let left_heavy = i32::from(space.most[HEAVY]) - i32::from(prefix.counters[HEAVY]);
-        let room = left.min(left_heavy);
-        let least = (i32::from(space.least_pieces) - i32::from(prefix.counters[PIECES]))
-            .max(i32::from(space.least_heavy) - i32::from(prefix.counters[HEAVY]));
-        let left_branches = i32::from(space.most[BRANCHES]) - i32::from(prefix.counters[BRANCHES]);
-        let left_quaternary =
-            i32::from(space.most[QUATERNARY]) - i32::from(prefix.counters[QUATERNARY]);
+        let ranges = job.tail_ranges(&prefix.counters, prefix.balance);
         let rule = job.rule_that_cuts(&prefix.counters);
         let gaps = [
-            prefix.gap || job.has_gap(&prefix.members, &[0; 4]),
-            prefix.gap || job.has_gap(&prefix.members, &[1, 1, 1, 1]),
+            prefix.gap || self.has_gap(prefix.mains),
+            prefix.gap || self.has_gap(prefix.mains | job.tail_mains),
         ];
         let mut limits = None;
-        for quaternary in 0..=most(c).min(left_quaternary).min(left_branches / 2) {
-            for branched in 0..=most(ch).min(left_branches - 2 * quaternary) {
-                let ends = prefix.balance + branched + 2 * quaternary;
-                if ends < 0 || ends > most(ch3) {
-                    continue;
-                }
-                let fixed = ends + branched + quaternary;
-                let low = (least - fixed).max(0);
-                let high = most(ch2).min(room - fixed);
-                if high < low {
-                    continue;
-                }
+        for TailRange { plain, low, high } in ranges {
+            {
+                let fixed = i32::from(plain[0]) + i32::from(plain[2]) + i32::from(plain[3]);
                 let count = (high - low + 1) as u128;
                 if let Some(rule) = rule {
                     found.account.cut_by_rule[rule] += count;
                     continue;
                 }
-                let plain = [ends as u8, 0, branched as u8, quaternary as u8];
                 let mut high = high;
                 // with any plain carbon the groups of alkanes are in it
                 if gaps[1] {
@@ -410,13 +439,14 @@ impl<'j> Searcher<'j> {
                 self.run(prefix, &limits, plain, low..=high, found);
             }
         }
+        self.score_waiting(prefix, found);
     }
 
     /// CH2 runs.
     fn run(
         &mut self,
         prefix: &Prefix,
-        limits: &[SizeLimits],
+        limits: &[Windows],
         plain: [u8; 4],
         run: std::ops::RangeInclusive<i32>,
         found: &mut Found,
@@ -457,16 +487,19 @@ impl<'j> Searcher<'j> {
                 found.account.cut_by_rule[0] += (to - ch2 + 1) as u128;
                 return;
             }
-            let cut = self.cut(limits, n, |at| {
+            let lies = self.lies(limits, n, |at| {
                 [
                     base[at][0] + step[at][0] * times,
                     base[at][1] + step[at][1] * times,
                 ]
             });
-            if let Some(target) = cut {
-                found.account.cut_by_bound[target] += 1;
-                continue;
-            }
+            let sure = match lies {
+                Lies::Outside(target) => {
+                    found.account.cut_by_bound[target] += 1;
+                    continue;
+                }
+                Lies::Inside { sure } => sure,
+            };
             let counts = [plain[0], ch2 as u8, plain[2], plain[3]];
             // a CH2 can always be put between a CH3 and what it is joined to
             realizable = realizable && plain[0] > 0
@@ -474,36 +507,69 @@ impl<'j> Searcher<'j> {
                     .realizer
                     .is_realizable(&job.assembly(&prefix.members, counts));
             if realizable {
-                self.score(prefix, counts, found);
+                self.waiting.push((counts, sure));
             } else {
                 found.account.without_structure += 1;
             }
         }
     }
 
-    /// Figures and score of an assembly.
-    fn score(&mut self, prefix: &Prefix, tail: [u8; 4], found: &mut Found) {
-        match self.job.judge(&prefix.members, tail) {
-            Judged::Scored(score) => {
-                found.account.scored += 1;
-                let key = score_key(score);
-                if found.best.takes(key) {
-                    found.best.offer(Scored {
-                        key,
-                        pieces: self.job.assembly(&prefix.members, tail),
-                    });
+    /// Figures and scores of the assemblies that wait, all of one prefix.
+    fn score_waiting(&mut self, prefix: &Prefix, found: &mut Found) {
+        let job = self.job;
+        let mut waiting = std::mem::take(&mut self.waiting);
+        // those without plain carbons may have other main groups
+        for bare in [true, false] {
+            let of_kind = |one: &([u8; 4], bool)| (one.0 == [0; 4]) == bare;
+            self.tails.clear();
+            self.tails
+                .extend(waiting.iter().filter(|one| of_kind(one)).map(|one| one.0));
+            if self.tails.is_empty() {
+                continue;
+            }
+            let mains = prefix.mains | if bare { 0 } else { job.tail_mains };
+            let shared = if job.asks_activity() {
+                self.shared(mains)
+            } else {
+                None
+            };
+            if let Some(shared) = &shared {
+                job.ln_gamma_inf(
+                    shared,
+                    mains,
+                    &prefix.members,
+                    &self.tails,
+                    &mut self.activity,
+                );
+            }
+            let sure = waiting.iter().filter(|one| of_kind(one)).map(|one| one.1);
+            for (at, (&tail, sure)) in self.tails.iter().zip(sure).enumerate() {
+                let ln_gamma = shared.as_ref().map(|_| self.activity.of(at));
+                match job.judge(&prefix.members, tail, ln_gamma, sure) {
+                    Judged::Scored(score) => {
+                        found.account.scored += 1;
+                        let key = score_key(score);
+                        if found.best.takes(key) {
+                            found.best.offer(Scored {
+                                key,
+                                pieces: job.assembly(&prefix.members, tail),
+                            });
+                        }
+                    }
+                    Judged::Missed { target, by_bound } => match by_bound {
+                        true => found.account.cut_by_bound[target] += 1,
+                        false => found.account.missed[target] += 1,
+                    },
+                    Judged::NotAssessable => found.account.not_assessable += 1,
                 }
             }
-            Judged::Missed { target, by_bound } => match by_bound {
-                true => found.account.cut_by_bound[target] += 1,
-                false => found.account.missed[target] += 1,
-            },
-            Judged::NotAssessable => found.account.not_assessable += 1,
         }
+        waiting.clear();
+        self.waiting = waiting;
     }
 
     /// Limits of the forms for the classes of a prefix, by size.
-    fn limits_of(&mut self, prefix: &Prefix) -> Rc<Vec<SizeLimits>> {
+    fn limits_of(&mut self, prefix: &Prefix) -> Rc<Vec<Windows>> {
         let bucket = rarity_bucket(prefix.rarity + self.job.tail_rarity);
         let key = (prefix.classes, bucket);
         if let Some(known) = self.limits.get(&key) {
@@ -512,17 +578,12 @@ impl<'j> Searcher<'j> {
         if self.limits.len() > MOST_LIMITS {
             self.limits.clear();
         }
-        let sizes = usize::from(self.job.largest) + 1;
-        let of = |form: &Form<'_>| {
-            let mut limits = SizeLimits {
-                low: vec![i64::MIN; sizes],
-                high: vec![i64::MAX; sizes],
-            };
-            for n in 1..sizes {
-                (limits.low[n], limits.high[n]) =
-                    form.limits(n as f64, &prefix.classes, rarity_of(bucket));
-            }
-            limits
+        let sizes = u32::from(self.job.largest);
+        // no molecule has no atoms: its window is never looked at
+        let of = |form: &Form<'_>| -> Windows {
+            (0..=sizes)
+                .map(|n| form.window(f64::from(n.max(1)), &prefix.classes, rarity_of(bucket)))
+                .collect()
         };
         let limits = Rc::new(self.job.forms.iter().map(of).collect::<Vec<_>>());
         self.limits.insert(key, Rc::clone(&limits));

@@ -4,6 +4,8 @@
 //! chain pieces and at most one ring can be drawn, kinds of ends aside) and every
 //! limit of `[assembly]` but the molar mass holds.
 
+use std::sync::OnceLock;
+
 use rustc_hash::FxHashMap;
 use smallvec::SmallVec;
 
@@ -81,6 +83,20 @@ pub struct Space {
     pub(super) least_heavy: u8,
     pub(super) kinds: u32,
     pub(super) rings: bool,
+    size: OnceLock<u128>,
+}
+
+/// What of a part of an assembly decides how it may go on.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
+struct State {
+    counters: [u8; State::COUNTERS],
+    balance: i8,
+    /// Classes that occur, as bits.
+    kinds: u32,
+}
+
+impl State {
+    const COUNTERS: usize = 20;
 }
 
 impl Space {
@@ -155,6 +171,7 @@ impl Space {
             least_heavy: byte(limits.heavy_atoms.0),
             kinds: limits.functional_kinds,
             rings: limits.rings > 0,
+            size: OnceLock::new(),
         }
     }
 
@@ -186,13 +203,15 @@ impl Space {
     ///
     /// # Complexity
     ///
-    /// States are distinct counters that a limit looks at.
+    /// States are distinct counters that a limit looks at. Found out once.
     pub fn size(&self) -> u128 {
-        let whole = self.of_role(Role::Whole).filter(|&at| self.takes_whole(at));
-        let whole = whole.count() as u128;
-        let skeletons = Skeleton::JOINED.into_iter();
-        let rings = skeletons.filter(|&skeleton| skeleton == Skeleton::Chain || self.rings);
-        whole + rings.map(|skeleton| self.size_of(skeleton)).sum::<u128>()
+        *self.size.get_or_init(|| {
+            let whole = self.of_role(Role::Whole).filter(|&at| self.takes_whole(at));
+            let whole = whole.count() as u128;
+            let skeletons = Skeleton::JOINED.into_iter();
+            let rings = skeletons.filter(|&one| one == Skeleton::Chain || self.rings);
+            whole + rings.map(|one| self.size_of(one)).sum::<u128>()
+        })
     }
 
     fn size_of(&self, skeleton: Skeleton) -> u128 {
@@ -202,13 +221,66 @@ impl Space {
             Skeleton::Saturated => Some(Role::Ring),
         };
         let of_ring = ring.into_iter().flat_map(|role| self.of_role(role));
-        let members: Vec<usize> = of_ring.chain(self.of_role(Role::Chain)).collect();
+        let mut members: Vec<usize> = of_ring.chain(self.of_role(Role::Chain)).collect();
+        // what closes molecules comes last: until then a state has to leave room for it
+        members.sort_by_key(|&at| {
+            (
+                self.is_plain(at),
+                std::cmp::Reverse(self.members[at].balance),
+            )
+        });
         let watched = self.watched(&members);
-        // a state: balance, kinds of classes, and the watched counters
-        type State = (i16, u32, SmallVec<[u8; 12]>);
-        let start: State = (0, 0, SmallVec::from_elem(0, watched.len()));
+        assert!(
+            watched.len() <= State::COUNTERS,
+            "limits are fewer than counters"
+        );
+        let wanted = if skeleton == Skeleton::Chain { -2 } else { 0 };
+        let mask_counts = self.kinds_matter(&members);
         let mut states: FxHashMap<State, u128> = FxHashMap::default();
-        states.insert(start, 1);
+        states.insert(State::default(), 1);
+        let most_pieces = i32::from(self.most[PIECES]);
+        for &at in &members {
+            let member = &self.members[at];
+            let of_member = (0..CLASS_LIMIT).filter(|class| member.adds[CLASSES + class] > 0);
+            let mask: u32 = of_member.map(|class| 1 << class).sum();
+            let before: Vec<(State, u128)> = states.iter().map(|(&s, &n)| (s, n)).collect();
+            for (mut state, ways) in before {
+                for _ in 0..member.most {
+                    state.balance += member.balance;
+                    state.kinds |= if mask_counts { mask } else { 0 };
+                    let mut fits = state.kinds.count_ones() <= self.kinds;
+                    for (value, &counter) in state.counters.iter_mut().zip(&watched) {
+                        *value += member.adds[counter];
+                        fits &= *value <= self.most[counter];
+                    }
+                    // each piece that comes takes at most one valence away
+                    let left = most_pieces - i32::from(state.counters[0]);
+                    if !fits || i32::from(state.balance) - wanted > left {
+                        break;
+                    }
+                    *states.entry(state).or_insert(0) += ways;
+                }
+            }
+        }
+        let place = |counter: usize| watched.iter().position(|&known| known == counter);
+        debug_assert_eq!(place(PIECES), Some(0));
+        let heavy = place(HEAVY).expect("always watched");
+        let [aromatic, saturated] = [AROMATIC, SATURATED].map(place);
+        states
+            .iter()
+            .filter(|(state, _)| {
+                let of = |place: Option<usize>| place.map_or(0, |at| state.counters[at]);
+                i32::from(state.balance) == wanted
+                    && state.counters[0] >= self.least_pieces
+                    && state.counters[heavy] >= self.least_heavy
+                    && skeleton.is_complete(of(aromatic), of(saturated))
+            })
+            .map(|(_, ways)| ways)
+            .sum()
+    }
+
+    /// Whether the limit on kinds of functional groups may stop at these members.
+    pub(super) fn kinds_matter(&self, members: &[usize]) -> bool {
         let of_class = |class: usize| {
             let mut adds = members
                 .iter()
@@ -217,50 +289,17 @@ impl Space {
         };
         let classes = (0..CLASS_LIMIT).filter(|&class| of_class(class)).count() as u32;
         // one more than functional groups: ethers are a kind, and not among them
-        let mask_counts = self.kinds < classes.min(u32::from(self.most[FUNCTIONAL]) + 1);
-        for &at in &members {
-            let member = &self.members[at];
-            let classes = (0..CLASS_LIMIT).filter(|class| member.adds[CLASSES + class] > 0);
-            let mask: u32 = classes.map(|class| 1 << class).sum();
-            let mut next = states.clone();
-            for (state, ways) in &states {
-                let mut state = state.clone();
-                for _ in 0..member.most {
-                    state.0 += i16::from(member.balance);
-                    state.1 |= if mask_counts { mask } else { 0 };
-                    let mut fits = state.1.count_ones() <= self.kinds;
-                    for (value, &counter) in state.2.iter_mut().zip(&watched) {
-                        *value += member.adds[counter];
-                        fits &= *value <= self.most[counter];
-                    }
-                    if !fits {
-                        break;
-                    }
-                    *next.entry(state.clone()).or_insert(0) += ways;
-                }
-            }
-            states = next;
-        }
-        let place = |counter: usize| watched.iter().position(|&known| known == counter);
-        let [pieces, heavy] =
-            [PIECES, HEAVY].map(|counter| place(counter).expect("always watched"));
-        let [aromatic, saturated] = [AROMATIC, SATURATED].map(place);
-        let wanted_balance = if skeleton == Skeleton::Chain { -2 } else { 0 };
-        states
-            .iter()
-            .filter(|((balance, _, counters), _)| {
-                let of = |place: Option<usize>| place.map_or(0, |at| counters[at]);
-                *balance == wanted_balance
-                    && counters[pieces] >= self.least_pieces
-                    && counters[heavy] >= self.least_heavy
-                    && skeleton.is_complete(of(aromatic), of(saturated))
-            })
-            .map(|(_, ways)| ways)
-            .sum()
+        self.kinds < classes.min(u32::from(self.most[FUNCTIONAL]) + 1)
+    }
+
+    /// Whether a member is a plain carbon of a chain.
+    fn is_plain(&self, at: usize) -> bool {
+        let member = &self.members[at];
+        self.roles[at] == Role::Chain && member.adds[HEAVY] == 1 && kinds_of(&member.adds) == 0
     }
 
     /// Counters that some limit may stop at, for these members.
-    fn watched(&self, members: &[usize]) -> SmallVec<[usize; 16]> {
+    pub(super) fn watched(&self, members: &[usize]) -> SmallVec<[usize; 16]> {
         let pieces = u32::from(self.most[PIECES]);
         let binds = |counter: usize| {
             let most = members.iter().map(|&at| self.members[at].adds[counter]);

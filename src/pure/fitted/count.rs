@@ -176,20 +176,27 @@ impl<'f> CountModel<'f> {
             .sum()
     }
 
-    /// Half width of the 90 % interval of a sum; without the sum, the most it can be.
-    pub fn half_width(&self, n: f64, rarity: f64, classes: &ClassCounts, sum: Option<f64>) -> f64 {
-        let molecule = Described::of_classes(n, classes.members.map(f64::from), classes.present);
-        let ground = Ground {
-            sum: sum.unwrap_or(0.0),
-            rarity,
-            unknown_environments: 0,
-            unknown_atoms: false,
-            relatives: &Relatives::unknown(),
-        };
-        let standing = Standing::of(&molecule, &ground);
-        match sum {
-            Some(_) => self.model.scale.half_width(&standing),
-            None => self.model.scale.widest(&standing),
-        }
+    /// Half width of the 90 % interval of a sum.
+    pub fn half_width(&self, n: f64, rarity: f64, classes: &ClassCounts, sum: f64) -> f64 {
+        let standing = standing(n, rarity, classes, sum);
+        self.model.scale.half_width(&standing)
     }
+
+    /// The least and the most that the half width can be, whatever the sum.
+    pub fn half_widths(&self, n: f64, rarity: f64, classes: &ClassCounts) -> (f64, f64) {
+        let standing = standing(n, rarity, classes, 0.0);
+        self.model.scale.range(&standing)
+    }
+}
+
+fn standing(n: f64, rarity: f64, classes: &ClassCounts, sum: f64) -> Standing {
+    let molecule = Described::of_classes(n, classes.members.map(f64::from), classes.present);
+    let ground = Ground {
+        sum,
+        rarity,
+        unknown_environments: 0,
+        unknown_atoms: false,
+        relatives: &Relatives::unknown(),
+    };
+    Standing::of(&molecule, &ground)
 }

@@ -171,19 +171,16 @@ impl Scale {
             .sum()
     }
 
-    /// The most that the half width can be for whatever sum a molecule of this standing has.
-    pub(super) fn widest(&self, standing: &Standing) -> f64 {
-        let mut wide = *standing;
+    /// The least and the most that the half width can be for whatever sum a molecule of
+    /// this standing has.
+    pub(super) fn range(&self, standing: &Standing) -> (f64, f64) {
+        let (mut narrow, mut wide) = (*standing, *standing);
         for sign in SUMS {
-            let by = |value: f64| self.weights[sign] * value;
-            let grows = by(self.most[sign]) > by(self.least[sign]);
-            wide.signs[sign] = if grows {
-                self.most[sign]
-            } else {
-                self.least[sign]
-            };
+            let ends = [self.least[sign], self.most[sign]];
+            let falls = self.weights[sign] < 0.0;
+            [narrow.signs[sign], wide.signs[sign]] = if falls { [ends[1], ends[0]] } else { ends };
         }
-        self.half_width(&wide)
+        (self.half_width(&narrow), self.half_width(&wide))
     }
 
     /// Half width of the 90 % interval of the sum.
