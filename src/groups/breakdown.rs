@@ -76,10 +76,7 @@ impl Breaker {
     /// Looks at a molecule; the next [`counts`](Self::counts) and
     /// [`breakdown`](Self::breakdown) have to be of the same molecule.
     pub fn load(&mut self, molecule: &Molecule) {
-        let atoms = molecule.atoms().len() as u32;
-        self.words.clear();
-        self.words
-            .extend((0..atoms).map(|atom| features::word(molecule, atom)));
+        features::words_into(molecule, &mut self.words);
         self.keys.clear();
         self.keys.extend(molecule.atoms().iter().map(features::key));
         self.walk_along_bonds(molecule);

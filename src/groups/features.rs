@@ -100,3 +100,9 @@ pub(super) fn word(molecule: &Molecule, index: u32) -> FeatureWord {
         | CHARGE.bit((1 + atom.charge.signum()) as usize)
         | (sizes << RING_SIZE.shift)
 }
+
+/// The feature words of all atoms, into memory that is used again.
+pub(super) fn words_into(molecule: &Molecule, words: &mut Vec<FeatureWord>) {
+    words.clear();
+    words.extend((0..molecule.atoms().len() as u32).map(|atom| word(molecule, atom)));
+}

@@ -4,8 +4,7 @@ use std::sync::Arc;
 
 use super::GroupCounts;
 use super::error::GroupsError;
-use super::features::KEYS;
-use super::pattern::{Environments, Program};
+use super::pattern::{Environments, Filing, Program};
 use crate::chem::{Composition, Element};
 use crate::table::{Row, Table};
 
@@ -43,10 +42,7 @@ pub struct GroupSet {
     groups: Vec<Group>,
     pub(super) patterns: Vec<GroupPattern>,
     pub(super) environments: Environments,
-    /// Patterns whose first step may be at an atom with this key:
-    /// `filed[starts[key]..starts[key + 1]]`.
-    filed: Vec<u16>,
-    starts: [u32; KEYS + 1],
+    filing: Filing,
 }
 
 impl GroupSet {
@@ -79,23 +75,17 @@ impl GroupSet {
             let table = Table::read(file, text)?;
             read_patterns(&table, &groups, &mut environments, &mut patterns)?;
         }
-        let mut filed = Vec::new();
-        let mut starts = [0; KEYS + 1];
-        for key in 0..KEYS {
-            for (index, pattern) in patterns.iter().enumerate() {
-                if pattern.program.may_start_at(key) {
-                    filed.push(index as u16);
-                }
-            }
-            starts[key + 1] = filed.len() as u32;
-        }
+        let filing = Filing::of(
+            patterns
+                .iter()
+                .map(|pattern: &GroupPattern| &pattern.program),
+        );
         Ok(Self {
             id,
             groups,
             patterns,
             environments,
-            filed,
-            starts,
+            filing,
         })
     }
 
@@ -162,8 +152,7 @@ impl GroupSet {
     }
 
     pub(super) fn filed_under(&self, key: u8) -> &[u16] {
-        let key = usize::from(key);
-        &self.filed[self.starts[key] as usize..self.starts[key + 1] as usize]
+        self.filing.under(key)
     }
 }
 

@@ -81,11 +81,7 @@ impl<'a> Search<'a> {
         let at = environment * self.words.len() + atom as usize;
         if self.seen[at] == 0 {
             let environments = self.environments;
-            let mut there = false;
-            environments.programs[environment].find_at(self, atom, &mut |_| {
-                there = true;
-                false
-            });
+            let there = environments.programs[environment].is_at(self, atom);
             self.seen[at] = 1 + u8::from(there);
         }
         self.seen[at] == 2
@@ -125,27 +121,10 @@ impl Pattern {
     /// In how many places (different sets of covered atoms) the pattern is
     /// found; counting stops at `limit`.
     pub fn count_places(&self, molecule: &Molecule, limit: usize) -> usize {
-        let atoms = molecule.atoms().len() as u32;
-        let words: Vec<_> = (0..atoms)
-            .map(|atom| features::word(molecule, atom))
-            .collect();
-        let mut seen = Vec::new();
+        let (mut words, mut seen) = (Vec::new(), Vec::new());
+        features::words_into(molecule, &mut words);
         let mut search = Search::new(molecule, &words, &self.environments, &mut seen);
-        let mut places: Vec<Vec<u32>> = Vec::new();
-        for atom in 0..atoms {
-            self.program.find_at(&mut search, atom, &mut |place| {
-                let mut place = place.to_vec();
-                place.sort_unstable();
-                if !places.contains(&place) {
-                    places.push(place);
-                }
-                places.len() < limit
-            });
-            if places.len() >= limit {
-                break;
-            }
-        }
-        places.len()
+        self.program.count_places(&mut search, limit)
     }
 }
 
@@ -180,6 +159,36 @@ impl Program {
         let mut place = [0; ATOM_LIMIT];
         place[0] = atom;
         self.extend(1, search, &mut place, found);
+    }
+
+    /// Whether the first step of some place is at `atom`.
+    pub(in crate::groups) fn is_at(&self, search: &mut Search<'_>, atom: u32) -> bool {
+        let mut there = false;
+        self.find_at(search, atom, &mut |_| {
+            there = true;
+            false
+        });
+        there
+    }
+
+    /// In how many places (different sets of covered atoms) the pattern is in
+    /// the molecule; counting stops at `limit`.
+    pub(in crate::groups) fn count_places(&self, search: &mut Search<'_>, limit: usize) -> usize {
+        let mut places: Vec<Vec<u32>> = Vec::new();
+        for atom in 0..search.words.len() as u32 {
+            self.find_at(search, atom, &mut |place| {
+                let mut place = place.to_vec();
+                place.sort_unstable();
+                if !places.contains(&place) {
+                    places.push(place);
+                }
+                places.len() < limit
+            });
+            if places.len() >= limit {
+                break;
+            }
+        }
+        places.len()
     }
 
     /// Looks for the covered steps from `step` on; false when the caller is to stop.
