@@ -20,4 +20,5 @@ pub mod ranking;
 pub mod report;
 pub mod run;
 pub mod screen;
+pub mod stability;
 pub mod table;

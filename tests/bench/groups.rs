@@ -1,10 +1,11 @@
-//! Breakdown into group sets: molecules a second, and the slowest molecule.
+//! Breakdown into group sets and rules on structures: molecules a second, and the slowest molecule.
 
 use std::hint::black_box;
 
 use criterion::{Criterion, Throughput, criterion_group, criterion_main};
 use groupsmith::chem::{Molecule, Reader};
 use groupsmith::groups::{Breaker, GroupCounts, GroupSet, SetId};
+use groupsmith::stability::{Rules, Scratch};
 
 /// The pool of the examples: real solvents of about nine heavy atoms.
 const POOL: &str = include_str!("../../examples/entrainer-acetone-methanol/solvents.csv");
@@ -63,5 +64,25 @@ fn breakdown(criterion: &mut Criterion) {
     group.finish();
 }
 
-criterion_group!(benches, breakdown);
+fn rules(criterion: &mut Criterion) {
+    let mut reader = Reader::new();
+    let molecules: Vec<Molecule> = lines()
+        .iter()
+        .map(|line| reader.read(line).expect("readable, see above"))
+        .collect();
+    let rules = Rules::built_in().expect("built-in rules are sound");
+    let mut group = criterion.benchmark_group("stability");
+    group.throughput(Throughput::Elements(molecules.len() as u64));
+    group.bench_function("broken rules", |bencher| {
+        let mut scratch = Scratch::new();
+        bencher.iter(|| {
+            for molecule in &molecules {
+                black_box(rules.broken(&mut scratch, molecule));
+            }
+        });
+    });
+    group.finish();
+}
+
+criterion_group!(benches, breakdown, rules);
 criterion_main!(benches);

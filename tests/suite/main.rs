@@ -25,6 +25,7 @@ mod quantity;
 mod report;
 mod run;
 mod screen;
+mod stability;
 mod tables;
 mod workbench;
 mod worked_examples;
