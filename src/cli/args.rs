@@ -277,6 +277,8 @@ pub(super) enum TablesWhat {
     Patterns,
     /// Suspected slips of circulated tables and what is used instead
     Slips,
+    /// Rules on the stability and hazards of structures, and reactions between components
+    Rules,
 }
 
 #[derive(Debug, Args)]

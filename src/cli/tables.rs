@@ -44,6 +44,7 @@ pub(super) fn run(command: &args::Tables, library: &Library) -> Result<Exit, Cli
         Some(TablesWhat::Pieces) => super::assemble::pieces_text(library),
         Some(TablesWhat::Patterns) => include_str!("../groups/pattern/reference.md").to_owned(),
         Some(TablesWhat::Slips) => slips(library),
+        Some(TablesWhat::Rules) => rules(library),
     };
     let mut out = output::stdout();
     out.write_all(text.as_bytes())?;
@@ -155,8 +156,51 @@ fn overview(library: &Library) -> String {
     ));
     text.push_str(
         "\nMore: groupsmith tables groups SET [NUMBER], pair MODEL FIRST SECOND, coverage MODEL,\n\
-         methods, figures, substances [NAME], pairs [FIRST [SECOND]], patterns, slips\n",
+         methods, figures, substances [NAME], pairs [FIRST [SECOND]], patterns, slips, rules\n",
     );
+    text
+}
+
+/// Rules on structures, then reactions between components.
+fn rules(library: &Library) -> String {
+    let mut table = TextTable::new([
+        TextColumn::text("rule"),
+        TextColumn::text("verdict"),
+        TextColumn::text("reason"),
+        TextColumn::text("for example"),
+        TextColumn::text("source"),
+    ]);
+    for rule in library.rules().iter() {
+        let example = rule.conditions[0].example.clone();
+        table.add([
+            rule.name.clone(),
+            rule.verdict.id().into(),
+            rule.reason.clone(),
+            example.unwrap_or_default(),
+            rule.source.clone(),
+        ]);
+    }
+    let mut text = table.render(output::width());
+    text.push_str("\nSources of rules and reactions\n");
+    for source in library.rules().sources() {
+        text.push_str(&format!("  {source}\n"));
+    }
+    text.push_str("\nReactions between a candidate and a component\n");
+    let mut table = TextTable::new([
+        TextColumn::text("reaction"),
+        TextColumn::text("what happens"),
+        TextColumn::text("for example"),
+        TextColumn::text("source"),
+    ]);
+    for reaction in library.reactions().iter() {
+        table.add([
+            reaction.name.clone(),
+            reaction.reaction.clone(),
+            reaction.examples.join(" + "),
+            reaction.source.clone(),
+        ]);
+    }
+    text.push_str(&table.render(output::width()));
     text
 }
 

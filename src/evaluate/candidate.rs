@@ -20,6 +20,7 @@ use crate::quantity::{
     Absent, Dimension, Estimate, Flag, Flags, Outcome, Property, PropertySet,
     REFERENCE_TEMPERATURE_K, Status,
 };
+use crate::stability;
 
 /// Solvent-free mole fractions of the first key at which the relative
 /// volatility beside the solvent is looked at.
@@ -80,6 +81,7 @@ pub struct Scratch {
     fitted: FittedValues,
     measured: MeasuredDilutions,
     dilute: Vec<Option<Dilute>>,
+    stability: stability::Scratch,
 }
 
 /// Properties of a candidate at one temperature of the plan.
@@ -835,7 +837,8 @@ impl Plan {
     }
 
     /// What a reader of the ranking has to know of a candidate: gaps, what was
-    /// measured, flags of the figures of targets, which key goes overhead.
+    /// measured, flags of the figures of targets, which key goes overhead, what speaks
+    /// against its structure.
     pub fn remarks(&self, scratch: &mut Scratch) -> String {
         let mut remarks = String::new();
         let mut add = |text: &str| {
@@ -890,6 +893,10 @@ impl Plan {
         }
         if let Some(direction) = self.direction(&scratch.figures) {
             add(&direction);
+        }
+        let molecule = &scratch.profile.molecule;
+        for remark in self.stability_remarks(&mut scratch.stability, molecule) {
+            add(&remark);
         }
         remarks
     }

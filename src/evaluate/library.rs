@@ -17,6 +17,7 @@ use crate::mixture::{
 use crate::pure::PureMethods;
 use crate::pure::fitted::Fitted;
 use crate::quantity::Absent;
+use crate::stability::{Reactions, Rules};
 use crate::table::TableError;
 
 /// A built-in or user table that cannot be used.
@@ -84,6 +85,8 @@ pub struct Library {
     slips: Slips,
     level: EstimateLevel,
     fitted: OnceLock<Fitted>,
+    rules: OnceLock<Rules>,
+    reactions: OnceLock<Reactions>,
     /// That a set leaves atoms out, without saying which: finding the words takes
     /// longer than the breakdown, so it waits until somebody reads them.
     not_covered: [Absent; SetId::ALL.len()],
@@ -113,6 +116,8 @@ impl Library {
             slips,
             level: EstimateLevel::default(),
             fitted: OnceLock::new(),
+            rules: OnceLock::new(),
+            reactions: OnceLock::new(),
             not_covered: SetId::ALL.map(|set| Absent::NotCovered {
                 set: set.id(),
                 what: "some atoms are in no group".into(),
@@ -273,6 +278,17 @@ impl Library {
         self.fitted.get_or_init(Fitted::built_in)
     }
 
+    /// Rules on the stability and hazards of structures.
+    pub fn rules(&self) -> &Rules {
+        self.rules.get_or_init(|| Rules::built_in().expect(SOUND))
+    }
+
+    /// Reactions between the molecules of a mixture.
+    pub fn reactions(&self) -> &Reactions {
+        self.reactions
+            .get_or_init(|| Reactions::built_in().expect(SOUND))
+    }
+
     /// How suspected slips are treated.
     pub fn slips(&self) -> Slips {
         self.slips
@@ -309,6 +325,7 @@ impl Library {
         for text in Fitted::texts() {
             all.push(text);
         }
+        all.extend([Rules::BUILT_IN, Reactions::BUILT_IN]);
         // By place: where the user keeps the folder does not matter.
         all.extend(
             self.user

@@ -20,6 +20,7 @@ mod profile;
 mod quick;
 mod solution;
 mod source;
+mod stability;
 mod structure;
 mod uncertainty;
 

@@ -8,6 +8,7 @@ use super::figure::{FigureKind, figure};
 use super::interval::PlannedErrors;
 use super::profile::Profiler;
 use super::source::Source;
+use super::stability::classes_of;
 use super::structure::{StructureLimit, bind};
 use super::{Library, solution};
 use crate::brief::{self, Basis, Brief, SolventToFeed, Target};
@@ -17,6 +18,7 @@ use crate::mixture::{
 };
 use crate::pure::{default_method, with_inputs};
 use crate::quantity::{Absent, Dimension, Property, PropertySet, REFERENCE_TEMPERATURE_K};
+use crate::stability::Classes;
 
 /// The model that is used where a brief names none.
 pub const DEFAULT_MODEL: ActivityModel = ActivityModel::UnifacDortmund;
@@ -101,6 +103,8 @@ pub struct Plan {
     pub(super) temperatures: Vec<f64>,
     pub(super) models: Vec<PlannedModel>,
     pub(super) limits: Vec<StructureLimit>,
+    /// What each component can be in reactions.
+    pub(super) component_classes: Vec<Classes>,
     /// Keys, positions in `components`.
     pub(super) keys: Option<[usize; 2]>,
     /// P1/P2 of the keys at the temperature, or why it is not known.
@@ -179,6 +183,7 @@ impl Plan {
         };
 
         let mut plan = Self {
+            component_classes: classes_of(&library, &components),
             library,
             components,
             temperature_k: state.temperature_k,

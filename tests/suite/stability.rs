@@ -10,6 +10,7 @@ use groupsmith::table::Table;
 use proptest::prelude::*;
 
 use crate::groups::{renumbered, rows};
+use crate::workbench::{Bench, say};
 
 const SOLVENTS: &str = include_str!("../../examples/entrainer-acetone-methanol/solvents.csv");
 const DIVERSE: &str = include_str!("../data/groups/diverse_molecules.csv");
@@ -269,6 +270,60 @@ fn reactions_are_those_expected() {
     ] {
         assert_eq!(between(&reactions, one, other), wanted, "{one} {other}");
     }
+}
+
+/// Flags do not exclude: the candidates rank, and their notes tell.
+#[test]
+fn candidates_of_a_ranking_carry_what_speaks_against_them() {
+    let brief = "[mixture]\ncomponents = [\"acetone\", \"methanol\"]\ntemperature = \"330 K\"\n\
+        [pool]\nfile = \"pool.csv\"\n[[target]]\nfigure = \"molar_mass\"\nprefer = \"low\"\n\
+        worst = \"200 g/mol\"\nbest = \"40 g/mol\"\n";
+    let pool = "smiles,name\nCCOC(C)=O,ester\nC1CCOC1,ether\nCC(O)OC,hemiacetal\nCCCCCC,alkane\n";
+    let bench = Bench::with(brief, pool);
+    assert_eq!(bench.screen(&[]).code, 0);
+    let notes = bench.ranked("notes");
+    let of = |wanted: &str| {
+        let found = notes.iter().find(|(name, _)| name == wanted);
+        found
+            .unwrap_or_else(|| panic!("{wanted} is not ranked"))
+            .1
+            .as_str()
+    };
+    assert_eq!(
+        of("ester"),
+        "may react with methanol (component 2): transesterification, with acid or base"
+    );
+    assert_eq!(
+        of("ether"),
+        "caution peroxide-former: forms peroxides in air: test and inhibit"
+    );
+    assert!(
+        of("hemiacetal")
+            .contains("blocked rule hemiacetal: falls apart into carbonyl compound and alcohol"),
+        "{}",
+        of("hemiacetal")
+    );
+    assert_eq!(of("alkane"), "");
+}
+
+#[test]
+fn the_table_of_rules_is_printed() {
+    let said = say(&["tables", "rules"]);
+    assert_eq!(said.code, 0, "{}", said.err);
+    let lines: Vec<&str> = said.out.lines().collect();
+    for rule in rules().iter() {
+        let beginning = format!("{} ", rule.name);
+        assert!(
+            lines
+                .iter()
+                .any(|line| line.trim_start().starts_with(&beginning)
+                    && line.contains(rule.verdict.id())),
+            "{}",
+            rule.name
+        );
+    }
+    assert!(said.out.contains("Bretherick's Handbook"), "{}", said.out);
+    assert!(said.out.contains("transesterification"), "{}", said.out);
 }
 
 proptest! {
