@@ -28,7 +28,7 @@ pub use error::{AssemblyFault, PieceError};
 pub use explain::{assembly_of, what_keeps_out};
 pub use fragment::{Fragment, FragmentError};
 pub use limits::Limits;
-pub use model::{CountRule, Job, JobError};
+pub use model::{CountRule, Job, JobError, count_rules};
 pub use piece::{Drawing, EndKind, Kind, Kinds, Piece, Pieces, Role};
 pub use realize::Realizer;
 pub use run::{

@@ -109,6 +109,15 @@ pub(super) struct Measures {
     pub(super) mains: u64,
 }
 
+/// Names of the rules on counts that are built in.
+///
+/// # Errors
+///
+/// The table of rules is broken.
+pub fn count_rules(pieces: &Pieces) -> Result<Vec<CountRule>, JobError> {
+    Ok(read_rules(pieces)?)
+}
+
 /// A rule on counts: two classes that may not be in one molecule.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct CountRule {
@@ -198,6 +207,7 @@ impl<'j> Job<'j> {
         limits: &Limits,
         quick: Quick<'j>,
         fitted: &'j Fitted,
+        allowed: &[&str],
     ) -> Result<Self, JobError> {
         let space = Space::new(pieces, limits);
         let mut quantities = vec![Quantity::BoilingPoint, Quantity::MolarVolume];
@@ -242,7 +252,11 @@ impl<'j> Job<'j> {
             tail_mains: 0,
             most_mass: (limits.molar_mass_kg_per_mol * MASS_UNITS).floor() as i64,
             largest: u8::try_from(limits.heavy_atoms.1).unwrap_or(u8::MAX),
-            rules: read_rules(pieces)?,
+            rules: {
+                let mut rules = read_rules(pieces)?;
+                rules.retain(|rule| !allowed.contains(&rule.name.as_str()));
+                rules
+            },
             measures: Vec::new(),
             space,
             quick,

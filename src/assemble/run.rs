@@ -1,5 +1,6 @@
 //! A search from its units to its files.
 
+use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicUsize, Ordering};
 use std::sync::mpsc;
@@ -27,6 +28,7 @@ use crate::run::{
     AssemblyRecord, Counts, Event, FileError, Fingerprint, Listener, NewFile, Outcome, RunRecord,
     StopFlag, remove_stale,
 };
+use crate::stability::{self, Rules, Verdict as Ruling};
 
 /// Time between two states on disk: what a crash can cost.
 const STATE_INTERVAL: Duration = Duration::from_secs(20);
@@ -83,6 +85,8 @@ pub struct Assembling<'a> {
     pub structures: usize,
     /// What the search is: brief, tables, folders and version.
     pub search: Fingerprint,
+    /// Rules on structures: what one of them blocks is left out.
+    pub rules: &'a Rules,
     /// Where the brief stands.
     pub brief: &'a Path,
     /// Folder of the results; has to exist.
@@ -108,6 +112,8 @@ pub struct StructureAccount {
     pub double: u64,
     /// Broken down otherwise than their assembly, and left out.
     pub other_groups: u64,
+    /// Blocked by a rule on structures, by its name, and left out.
+    pub blocked: BTreeMap<String, u64>,
 }
 
 /// How a search came out.
@@ -129,6 +135,14 @@ pub struct Assembled {
     pub next: Option<NextMeasurement>,
     /// Nodes a second.
     pub nodes_per_s: f64,
+}
+
+/// Why a structure is left out.
+enum LeftOut {
+    /// Its breakdown is not that of its assembly.
+    OtherGroups,
+    /// A rule blocks it.
+    Blocked(String),
 }
 
 /// A structure that was evaluated.
@@ -376,6 +390,7 @@ impl Assembling<'_> {
             structures_drawn: structures.drawn,
             structures_double: structures.double,
             structures_of_other_groups: structures.other_groups,
+            structures_blocked: structures.blocked.clone(),
         }
     }
 
@@ -399,20 +414,28 @@ impl Assembling<'_> {
             drawn.extend(structures.drawn.into_iter().map(|smiles| (at, smiles)));
         }
         account.drawn = drawn.len() as u64;
-        let evaluated: Vec<Option<Evaluated>> = threads.install(|| {
+        let evaluated: Vec<Result<Evaluated, LeftOut>> = threads.install(|| {
+            let memory = || (Scratch::new(), stability::Scratch::new());
             drawn
                 .par_iter()
-                .map_init(Scratch::new, |scratch, (at, smiles)| {
-                    self.evaluate(scratch, &kept[*at], *at, smiles)
+                .map_init(memory, |(scratch, of_rules), (at, smiles)| {
+                    self.evaluate(scratch, of_rules, &kept[*at], *at, smiles)
                 })
                 .collect()
         });
         let mut seen = FxHashSet::default();
         let mut all = Vec::with_capacity(evaluated.len());
         for one in evaluated {
-            let Some(one) = one else {
-                account.other_groups += 1;
-                continue;
+            let one = match one {
+                Ok(one) => one,
+                Err(LeftOut::OtherGroups) => {
+                    account.other_groups += 1;
+                    continue;
+                }
+                Err(LeftOut::Blocked(rule)) => {
+                    *account.blocked.entry(rule).or_insert(0) += 1;
+                    continue;
+                }
             };
             if seen.insert(one.key.clone()) {
                 all.push(one);
@@ -438,18 +461,23 @@ impl Assembling<'_> {
     fn evaluate(
         &self,
         scratch: &mut Scratch,
+        of_rules: &mut stability::Scratch,
         scored: &Scored,
         assembly: usize,
         smiles: &str,
-    ) -> Option<Evaluated> {
+    ) -> Result<Evaluated, LeftOut> {
         let verdict = self.plan.evaluate(scratch, smiles).unwrap_or_else(|error| {
             panic!("`{smiles}` was drawn from pieces and cannot be read: {error}")
         });
         for set in SetId::ALL {
             let settled = self.groups_of(scored, set);
             if settled.is_some_and(|counts| counts != scratch.profile.counts[set as usize]) {
-                return None;
+                return Err(LeftOut::OtherGroups);
             }
+        }
+        let broken = self.rules.broken(of_rules, &scratch.profile.molecule);
+        if let Some(rule) = broken.iter().find(|rule| rule.verdict == Ruling::Blocked) {
+            return Err(LeftOut::Blocked(rule.name.clone()));
         }
         let key = scratch.profile.keys.full.clone();
         let label = |position: usize| {
@@ -516,7 +544,7 @@ impl Assembling<'_> {
                 }
             }
         };
-        Some(Evaluated {
+        Ok(Evaluated {
             smiles: smiles.to_owned(),
             key,
             assembly,

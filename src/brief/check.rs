@@ -502,6 +502,7 @@ impl Check<'_> {
                 heavy_atoms,
                 most_molar_mass_kg_per_mol,
                 structures: raw.structures.given(),
+                allow: raw.allow.given().map(|list| list.value).unwrap_or_default(),
                 limits: raw.limits,
             },
             raw.place,

@@ -124,6 +124,7 @@ pub(super) struct RawAssembly {
     pub(super) heavy_atoms: Option<RawRange<u32>>,
     pub(super) molar_mass: Field<RawQuantity>,
     pub(super) structures: Field<u32>,
+    pub(super) allow: Field<Vec<Located<String>>>,
     pub(super) limits: Vec<(Located<String>, u32)>,
 }
 
@@ -430,6 +431,7 @@ impl<'a> Reader<'a> {
                 "heavy_atoms",
                 "molar_mass",
                 "structures",
+                "allow",
                 "limits",
             ],
         );
@@ -441,6 +443,7 @@ impl<'a> Reader<'a> {
             heavy_atoms: None,
             molar_mass: Field::Absent,
             structures: self.count(section, "structures", "structures = 20"),
+            allow: self.texts(section, "allow", "allow = [\"anhydride\"]", false),
             limits: Vec::new(),
         };
         if let Some(mut range) = self.section(section, "heavy_atoms") {

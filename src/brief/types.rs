@@ -121,6 +121,8 @@ pub struct Assembly {
     pub most_molar_mass_kg_per_mol: Option<Located<f64>>,
     /// How many structures of one assembly are drawn at most.
     pub structures: Option<Located<u32>>,
+    /// Rules on counts or structures that are switched off, by name.
+    pub allow: Vec<Located<String>>,
     /// Highest count by piece or class, in the order of the brief.
     pub limits: Vec<(Located<String>, u32)>,
 }

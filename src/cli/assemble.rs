@@ -14,19 +14,22 @@ use super::screen::{default_folder, how_sure, musts, ranking_text, record};
 use super::user_tables::Sources;
 use crate::assemble::{
     Account, Assembled, Assembling, DEFAULT_STRUCTURES, FILES, Job, Limits, Part, Pieces,
-    STATE_FILES, SearchError, State, StateError, assembly_of, in_words, read_parts, what_keeps_out,
+    STATE_FILES, SearchError, State, StateError, assembly_of, count_rules, in_words, read_parts,
+    what_keeps_out,
 };
 use crate::brief::{Brief, Job as Purpose};
 use crate::evaluate::{CATALOG, Library, Plan, Profile, Profiler, Quick};
 use crate::groups::SetId;
 use crate::report::{TargetLabel, TextColumn, TextTable, outcome_text};
 use crate::run::{Fingerprint, StopFlag, make_folder};
+use crate::stability::Rules;
 
 /// A brief bound for a search.
 pub(super) struct Bound {
     pub(super) plan: Plan,
     pub(super) pieces: Pieces,
     pub(super) limits: Limits,
+    rules: Rules,
 }
 
 impl Bound {
@@ -40,6 +43,22 @@ impl Bound {
             file: file.clone(),
             faults,
         })?;
+        let mut rules = library.rules().clone();
+        let of_counts = count_rules(&pieces).expect("built-in tables of rules are sound (tested)");
+        let allowed = asked
+            .map(|assembly| assembly.allow.as_slice())
+            .unwrap_or_default();
+        for name in allowed {
+            if of_counts.iter().any(|rule| rule.name == name.value) {
+                continue;
+            }
+            rules.switch_off(&name.value).map_err(|error| {
+                CliError::Usage(format!(
+                    "{file}:{}: assembly.allow: {error}",
+                    name.place.line
+                ))
+            })?;
+        }
         let plan = Plan::new(Arc::new(library), brief, true).map_err(|faults| CliError::Plan {
             file,
             faults,
@@ -49,6 +68,7 @@ impl Bound {
             plan,
             pieces,
             limits,
+            rules,
         })
     }
 
@@ -59,6 +79,7 @@ impl Bound {
             &self.limits,
             Quick::new(&self.plan),
             self.plan.library.fitted(),
+            &allowed(&self.plan.brief),
         )
         .expect("built-in tables of rules are sound (tested)")
     }
@@ -85,6 +106,15 @@ impl Bound {
         }
         all
     }
+}
+
+/// Rules that a brief switches off.
+pub(super) fn allowed(brief: &Brief) -> Vec<&str> {
+    let assembly = brief.assembly.as_ref();
+    let allowed = assembly
+        .into_iter()
+        .flat_map(|assembly| &assembly.value.allow);
+    allowed.map(|name| name.value.as_str()).collect()
 }
 
 pub(super) fn run(
@@ -148,6 +178,7 @@ pub(super) fn run(
         job: &job,
         structures: bound.structures(),
         search: bound.search(),
+        rules: &bound.rules,
         brief: &place,
         folder: &folder,
         threads: command.threads.unwrap_or(0),
@@ -209,6 +240,7 @@ pub(super) fn gather(
         job: &job,
         structures: bound.structures(),
         search: bound.search(),
+        rules: &bound.rules,
         brief: &file,
         folder: &command.out,
         threads: 0,
@@ -417,7 +449,7 @@ fn account_text(job: &Job<'_>, account: &Account, assembled: &Assembled) -> Stri
     let mut text = table.render(output::width());
     let structures = &assembled.structures;
     text.push_str(&format!(
-        "structures of the kept: {} found{}, {} drawn, {} of them double, {} left out (other groups than their assembly)\n",
+        "structures of the kept: {} found{}, {} drawn, {} of them double, {} left out (other groups than their assembly){}\n",
         structures.found,
         match structures.incomplete {
             0 => String::new(),
@@ -425,9 +457,22 @@ fn account_text(job: &Job<'_>, account: &Account, assembled: &Assembled) -> Stri
         },
         structures.drawn,
         structures.double,
-        structures.other_groups
+        structures.other_groups,
+        blocked_in_words(&structures.blocked)
     ));
     text
+}
+
+/// What rules block, for the end of a line.
+fn blocked_in_words(blocked: &std::collections::BTreeMap<String, u64>) -> String {
+    if blocked.is_empty() {
+        return String::new();
+    }
+    let all: Vec<String> = blocked
+        .iter()
+        .map(|(rule, count)| format!("{rule} {count}"))
+        .collect();
+    format!(", blocked by rules: {}", all.join(", "))
 }
 
 /// A number with its digits in threes.

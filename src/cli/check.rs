@@ -4,7 +4,7 @@ use std::io::Write;
 use std::time::Duration;
 
 use super::args;
-use super::assemble::{Bound, in_threes};
+use super::assemble::{Bound, allowed, in_threes};
 use super::error::CliError;
 use super::exit::Exit;
 use super::output;
@@ -161,8 +161,14 @@ fn search_text(
             target.name, plan.brief.keep_best
         )?;
     }
-    let job = crate::assemble::Job::new(pieces, limits, quick, plan.library.fitted())
-        .expect("built-in tables of rules are sound (tested)");
+    let job = crate::assemble::Job::new(
+        pieces,
+        limits,
+        quick,
+        plan.library.fitted(),
+        &allowed(&plan.brief),
+    )
+    .expect("built-in tables of rules are sound (tested)");
     let space = job.space().size();
     writeln!(out, "  space: {} assemblies", in_threes(space))?;
     if space == 0 {

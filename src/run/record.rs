@@ -292,6 +292,8 @@ pub struct AssemblyRecord {
     pub structures_double: u64,
     /// Of these, broken down otherwise than their assembly, and left out.
     pub structures_of_other_groups: u64,
+    /// Of these, blocked by a rule on structures, and left out, by rule.
+    pub structures_blocked: BTreeMap<String, u64>,
 }
 
 /// What depends on the machine and the hour; left out when runs are compared.

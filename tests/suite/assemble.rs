@@ -194,7 +194,7 @@ fn pieces_hold_enough_subgroups() {
 fn structures_of(text: &str) -> usize {
     let plan = plan(&LIBRARY, text);
     let limits = limits(&plan);
-    let job = Job::new(&PIECES, &limits, Quick::new(&plan), LIBRARY.fitted()).unwrap();
+    let job = Job::new(&PIECES, &limits, Quick::new(&plan), LIBRARY.fitted(), &[]).unwrap();
     let (_, Found { account, best }) = job.search_all(100_000);
     assert_eq!(account.total().unwrap(), job.space().size());
     let mut drawer = Drawer::new(&PIECES);
@@ -548,7 +548,7 @@ fn the_search_is_brute_force() {
     for (at, text) in SMALL.iter().enumerate() {
         let plan = plan(&COUNTED, &format!("{text}{TARGETS}"));
         let limits = limits(&plan);
-        let job = Job::new(&PIECES, &limits, Quick::new(&plan), COUNTED.fitted()).unwrap();
+        let job = Job::new(&PIECES, &limits, Quick::new(&plan), COUNTED.fitted(), &[]).unwrap();
         let (_, found) = job.search_all(1_000_000);
         let all = by_hand(&limits);
         assert!(all.len() > 400, "space {at} holds {}", all.len());
@@ -662,7 +662,7 @@ proptest! {
         );
         let plan = plan(&COUNTED, &text);
         let limits = limits(&plan);
-        let job = Job::new(&PIECES, &limits, Quick::new(&plan), COUNTED.fitted()).unwrap();
+        let job = Job::new(&PIECES, &limits, Quick::new(&plan), COUNTED.fitted(), &[]).unwrap();
         let (_, found) = job.search_all(1_000_000);
         let all = by_hand(&limits);
         prop_assert_eq!(job.space().size(), all.len() as u128);
