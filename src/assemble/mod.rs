@@ -32,8 +32,8 @@ pub use model::{CountRule, Job, JobError, count_rules};
 pub use piece::{Drawing, EndKind, Kind, Kinds, Piece, Pieces, Role};
 pub use realize::Realizer;
 pub use run::{
-    Assembled, Assembling, DEFAULT_STRUCTURES, FILES, SearchError, StructureAccount, Trial,
-    in_words, read_parts,
+    Assembled, Assembling, DEFAULT_STRUCTURES, FILES, STATE_INTERVAL, SearchError,
+    StructureAccount, Trial, in_words, read_parts,
 };
 pub use search::{Found, Unit};
 pub use space::{CLASS_LIMIT, Skeleton, Space};

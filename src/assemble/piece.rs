@@ -140,6 +140,9 @@ pub struct Pieces {
     pub kinds: Vec<EndKind>,
     /// Names of the classes of functional groups.
     pub classes: Vec<String>,
+    /// Assemblies that are a whole molecule with groups of its own, and so are none:
+    /// place in the table and count, ascending.
+    pub replaced: Vec<Vec<(u16, u8)>>,
 }
 
 macro_rules! table {
@@ -195,6 +198,11 @@ impl Pieces {
     /// The class of this name.
     pub fn class(&self, name: &str) -> Option<usize> {
         self.classes.iter().position(|class| class == name)
+    }
+
+    /// Whether an assembly is a whole molecule with groups of its own.
+    pub fn is_replaced(&self, assembly: &[(u16, u8)]) -> bool {
+        self.replaced.iter().any(|known| known == assembly)
     }
 
     /// Whether two ends may be joined.
@@ -392,6 +400,25 @@ fn read_pieces<'s>(
         });
     }
     Ok(all)
+}
+
+fn read_replaced(table: &Table, all: &[Piece]) -> Result<Vec<Vec<(u16, u8)>>, PieceError> {
+    let column = table.column("instead_of")?;
+    let mut replaced = Vec::new();
+    for row in table.rows().filter(|row| !row.text(column).is_empty()) {
+        let mut assembly: Vec<(u16, u8)> = Vec::new();
+        for word in row.text(column).split_whitespace() {
+            let piece = all.iter().position(|piece| piece.name == word);
+            let piece = piece.ok_or_else(|| row.fault(column, "names no piece"))? as u16;
+            match assembly.iter_mut().find(|one| one.0 == piece) {
+                Some(known) => known.1 += 1,
+                None => assembly.push((piece, 1)),
+            }
+        }
+        assembly.sort_unstable();
+        replaced.push(assembly);
+    }
+    Ok(replaced)
 }
 
 /// Counts what the atoms of a piece are by drawing it into a molecule and taking

@@ -83,6 +83,9 @@ impl<'p> Realizer<'p> {
                 add(if of_ring { &mut ring } else { &mut chain }, shape, count);
             }
         }
+        if self.pieces.is_replaced(assembly) {
+            return false;
+        }
         if chain.is_empty() {
             return has_ring && ring.is_empty();
         }

@@ -30,8 +30,8 @@ use crate::run::{
 };
 use crate::stability::{self, Rules, Verdict as Ruling};
 
-/// Time between two states on disk: what a crash can cost.
-const STATE_INTERVAL: Duration = Duration::from_secs(20);
+/// Time between two states on disk unless it is asked for otherwise: what a crash can cost.
+pub const STATE_INTERVAL: Duration = Duration::from_secs(20);
 
 /// Time between two reports of progress.
 const PROGRESS_INTERVAL: Duration = Duration::from_millis(200);
@@ -93,6 +93,8 @@ pub struct Assembling<'a> {
     pub folder: &'a Path,
     /// Worker threads; 0 for one each core.
     pub threads: usize,
+    /// Time between two states on disk.
+    pub state_interval: Duration,
     /// Raised by whoever wants the run to end early.
     pub stop: &'a StopFlag,
     /// Hears how it goes.
@@ -248,7 +250,7 @@ impl Assembling<'_> {
                 state.best.merge(found.best);
                 state.done[unit] = true;
                 nodes += visited;
-                if written.elapsed() > STATE_INTERVAL {
+                if written.elapsed() >= self.state_interval {
                     written = Instant::now();
                     match state.write(self.folder) {
                         Ok(()) => disk_trouble = false,

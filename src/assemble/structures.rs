@@ -67,7 +67,7 @@ pub struct Drawer<'p> {
 }
 
 /// Branches that are kept from one assembly to the next.
-const MOST_BRANCHES: usize = 2_000_000;
+const MOST_BRANCHES: usize = 400_000;
 
 /// Steps spent on the structures of one assembly.
 const STEPS: u64 = 20_000_000;
@@ -93,9 +93,7 @@ impl<'p> Drawer<'p> {
     /// of them drawn and all counted.
     pub fn structures(&mut self, assembly: &[(u16, u8)], most: usize) -> Structures {
         if self.branches.len() > MOST_BRANCHES {
-            self.branches.clear();
-            self.by_part.clear();
-            self.numbers.clear();
+            self.forget();
         }
         self.steps = STEPS;
         let mut out = Structures::default();
@@ -104,6 +102,10 @@ impl<'p> Drawer<'p> {
         {
             out.drawn.push(smiles.clone());
             out.found = 1;
+            out.complete = true;
+            return out;
+        }
+        if self.pieces.is_replaced(assembly) {
             out.complete = true;
             return out;
         }
@@ -119,6 +121,13 @@ impl<'p> Drawer<'p> {
         }
         out.complete = self.steps > 0;
         out
+    }
+
+    /// Forgets the branches that were made for earlier assemblies.
+    pub fn forget(&mut self) {
+        self.branches.clear();
+        self.by_part.clear();
+        self.numbers.clear();
     }
 
     // ------------------------------------------------------------ open chains

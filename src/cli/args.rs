@@ -191,6 +191,9 @@ pub(super) struct Assemble {
     /// Go on from the state that an earlier run left in the folder
     #[arg(long)]
     pub(super) resume: bool,
+    /// Seconds between two states on disk, which a crash can cost at most
+    #[arg(long, value_name = "SECONDS")]
+    pub(super) state_every: Option<u64>,
     /// Tell what kept one molecule out, by its name or SMILES
     #[arg(long, value_name = "NAME")]
     pub(super) explain: Option<String>,

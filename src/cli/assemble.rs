@@ -3,7 +3,7 @@
 use std::io::Write;
 use std::path::Path;
 use std::sync::Arc;
-use std::time::Instant;
+use std::time::{Duration, Instant};
 
 use super::args;
 use super::error::CliError;
@@ -14,8 +14,8 @@ use super::screen::{default_folder, how_sure, musts, ranking_text, record};
 use super::user_tables::Sources;
 use crate::assemble::{
     Account, Assembled, Assembling, DEFAULT_STRUCTURES, FILES, Job, Limits, Part, Pieces,
-    STATE_FILES, SearchError, State, StateError, assembly_of, count_rules, in_words, read_parts,
-    what_keeps_out,
+    STATE_FILES, STATE_INTERVAL, SearchError, State, StateError, assembly_of, count_rules,
+    in_words, read_parts, what_keeps_out,
 };
 use crate::brief::{Brief, Job as Purpose};
 use crate::evaluate::{CATALOG, Library, Plan, Profile, Profiler, Quick};
@@ -182,6 +182,9 @@ pub(super) fn run(
         brief: &place,
         folder: &folder,
         threads: command.threads.unwrap_or(0),
+        state_interval: command
+            .state_every
+            .map_or(STATE_INTERVAL, Duration::from_secs),
         stop: &stop,
         listener: &progress,
     };
@@ -244,6 +247,7 @@ pub(super) fn gather(
         brief: &file,
         folder: &command.out,
         threads: 0,
+        state_interval: STATE_INTERVAL,
         stop: &stop,
         listener: &progress,
     };

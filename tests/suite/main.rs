@@ -2,6 +2,7 @@
 
 mod activity_errors;
 mod assemble;
+mod assemble_runs;
 mod brief;
 mod chem;
 mod cli;
