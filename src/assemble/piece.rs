@@ -177,16 +177,14 @@ impl Pieces {
         let mut kinds = read_kinds(&Table::read(ends.0, ends.1)?)?;
         read_beside(&Table::read(beside.0, beside.1)?, &mut kinds)?;
         let mut classes = Vec::new();
-        let all = read_pieces(
-            &Table::read(pieces.0, pieces.1)?,
-            &kinds,
-            &mut classes,
-            sets,
-        )?;
+        let table = Table::read(pieces.0, pieces.1)?;
+        let all = read_pieces(&table, &kinds, &mut classes, sets)?;
+        let replaced = read_replaced(&table, &all)?;
         Ok(Self {
             all,
             kinds,
             classes,
+            replaced,
         })
     }
 

@@ -22,6 +22,7 @@ use crate::evaluate::{Plan, Scratch, Verdict, interval_that_counts};
 use crate::groups::{GroupCounts, SetId};
 use crate::ranking::{
     NextMeasurement, Ranked, Standing, merits, next_measurement, number_bands, ranking_record,
+    ranks,
 };
 use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedTable, missed_in_words};
 use crate::run::{
@@ -85,6 +86,8 @@ pub struct Assembling<'a> {
     pub structures: usize,
     /// What the search is: brief, tables, folders and version.
     pub search: Fingerprint,
+    /// Names of the user's own list by canonical SMILES, beside the known substances.
+    pub names: &'a FxHashMap<String, String>,
     /// Rules on structures: what one of them blocks is left out.
     pub rules: &'a Rules,
     /// Where the brief stands.
@@ -515,6 +518,7 @@ impl Assembling<'_> {
                         .map(|figure| interval_that_counts(figure.as_ref().ok()?))
                         .collect(),
                     notes: self.plan.remarks(scratch),
+                    shares_rank: false,
                 },
             },
             Verdict::Missed {
@@ -556,9 +560,13 @@ impl Assembling<'_> {
 
     /// The name of a substance that is known, built in or of the user; empty for a new one.
     fn known_as(&self, scratch: &Scratch) -> String {
-        let known = self.plan.library.known(&scratch.profile.keys);
+        let keys = &scratch.profile.keys;
+        let known = self.plan.library.known(keys);
         let known = known.filter(|known| known.same_identity);
-        known.map_or_else(String::new, |known| known.substance.name().to_string())
+        match known {
+            Some(known) => known.substance.name().to_string(),
+            None => self.names.get(&keys.full).cloned().unwrap_or_default(),
+        }
     }
 
     #[expect(clippy::type_complexity, reason = "what is written, once")]
@@ -634,9 +642,14 @@ impl Assembling<'_> {
 
         let mut rows = Vec::with_capacity(standings.len());
         let mut of_assembly = Vec::with_capacity(standings.len());
-        for (_, row, assembly) in standings {
+        let mut before: Option<(f64, [f64; 2], usize)> = None;
+        for (standing, mut row, assembly) in standings {
             counts.add(Outcome::Ranked, "");
             counts.ranked_incomplete += u64::from(row.known < 1.0);
+            // isomers that no target tells apart
+            let own = (standing.known, standing.merits, assembly);
+            row.shares_rank = before == Some(own);
+            before = Some(own);
             rows.push(row);
             of_assembly.push(assembly);
         }
@@ -653,7 +666,8 @@ impl Assembling<'_> {
         table.write_head(&mut out);
         let mut drawer = Drawer::new(self.job.pieces);
         let mut found_of: FxHashMap<usize, String> = FxHashMap::default();
-        for (rank, (row, &assembly)) in rows.iter().zip(&of_assembly).enumerate() {
+        for (rank, (row, &assembly)) in ranks(&rows).into_iter().zip(rows.iter().zip(&of_assembly))
+        {
             let found = found_of.entry(assembly).or_insert_with(|| {
                 let structures = drawer.structures(&kept[assembly].pieces, 0);
                 match structures.complete {

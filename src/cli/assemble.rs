@@ -10,8 +10,10 @@ use super::error::CliError;
 use super::exit::Exit;
 use super::output::{self, Notes};
 use super::progress::Progress;
-use super::screen::{default_folder, how_sure, musts, ranking_text, record};
+use super::screen::{default_folder, how_sure, musts, open_pool, ranking_text, record};
 use super::user_tables::Sources;
+use rustc_hash::FxHashMap;
+
 use crate::assemble::{
     Account, Assembled, Assembling, DEFAULT_STRUCTURES, FILES, Job, Limits, Part, Pieces,
     STATE_FILES, STATE_INTERVAL, SearchError, State, StateError, assembly_of, count_rules,
@@ -22,6 +24,7 @@ use crate::evaluate::{CATALOG, Library, Plan, Profile, Profiler, Quick};
 use crate::groups::SetId;
 use crate::report::{TargetLabel, TextColumn, TextTable, outcome_text};
 use crate::run::{Fingerprint, StopFlag, make_folder};
+use crate::screen::Batch;
 use crate::stability::Rules;
 
 /// A brief bound for a search.
@@ -171,6 +174,7 @@ pub(super) fn run(
         None => default_folder(&command.brief),
     };
     make_folder(&folder)?;
+    let names = pool_names(&bound.plan)?;
     let place = std::fs::canonicalize(&command.brief).unwrap_or_else(|_| command.brief.clone());
     let progress = Progress::new(notes);
     let assembling = Assembling {
@@ -179,6 +183,7 @@ pub(super) fn run(
         structures: bound.structures(),
         search: bound.search(),
         rules: &bound.rules,
+        names: &names,
         brief: &place,
         folder: &folder,
         threads: command.threads.unwrap_or(0),
@@ -237,6 +242,7 @@ pub(super) fn gather(
     }
     let stop = StopFlag::new();
     make_folder(&command.out)?;
+    let names = pool_names(&bound.plan)?;
     let progress = Progress::new(notes);
     let assembling = Assembling {
         plan: &bound.plan,
@@ -244,6 +250,7 @@ pub(super) fn gather(
         structures: bound.structures(),
         search: bound.search(),
         rules: &bound.rules,
+        names: &names,
         brief: &file,
         folder: &command.out,
         threads: 0,
@@ -357,6 +364,35 @@ fn show(
          (flammability, toxicity, peroxides) and follow local codes and licensed practice."
     )?;
     Ok(())
+}
+
+/// Names of the brief's own pool by canonical SMILES: what is on it can be bought.
+fn pool_names(plan: &Plan) -> Result<FxHashMap<String, String>, CliError> {
+    let mut names = FxHashMap::default();
+    if plan.brief.pool_path().is_none() {
+        return Ok(names);
+    }
+    let mut pool = open_pool(&plan.brief, None)?;
+    let mut batch = Batch::default();
+    let mut profiler = Profiler::new();
+    loop {
+        pool.read_batch(&mut batch, 4096)?;
+        if batch.is_empty() {
+            return Ok(names);
+        }
+        for line in (0..batch.len()).map(|at| batch.line(at)) {
+            let Ok(found) = line.resolved(&plan.library) else {
+                continue;
+            };
+            if let Ok(profile) = profiler.profile(&plan.library, found.smiles) {
+                let name = match found.name {
+                    "" => format!("line {} of the pool", line.line),
+                    name => name.to_owned(),
+                };
+                names.entry(profile.keys.full).or_insert(name);
+            }
+        }
+    }
 }
 
 /// A molecule by its name or SMILES.

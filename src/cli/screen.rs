@@ -19,7 +19,7 @@ use crate::groups::SetId;
 use crate::mixture::Slips;
 use crate::quantity::unit::{reading_text, reading_unit};
 use crate::quantity::{Estimate, Property, Status};
-use crate::ranking::{BAND_CHANCE, NextMeasurement, Ranked};
+use crate::ranking::{BAND_CHANCE, NextMeasurement, Ranked, ranks};
 use crate::report::{
     FigureColumn, RankedRow, RankedTable, TargetLabel, TextColumn, TextTable, missed_in_words,
     outcome_text, probability_in_words, ranks_in_words,
@@ -362,7 +362,8 @@ pub(super) fn ranking_text(plan: &Plan, rows: &[Ranked]) -> String {
         .iter()
         .map(|row| shown.iter().map(|&at| row.figures[at]).collect())
         .collect();
-    let rows = rows.iter().zip(&figures).enumerate();
+    let places = ranks(rows);
+    let rows = places.into_iter().zip(rows.iter().zip(&figures));
     table.text(
         rows.map(|(rank, (row, figures))| RankedRow {
             figures,

@@ -11,4 +11,4 @@ mod ranked;
 
 pub use bands::{BAND_CHANCE, number_bands};
 pub use next_measurement::{NextMeasurement, next_measurement};
-pub use ranked::{Ranked, Standing, merits, ranking_record};
+pub use ranked::{Ranked, Standing, merits, ranking_record, ranks};

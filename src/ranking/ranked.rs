@@ -34,6 +34,21 @@ pub struct Ranked {
     pub intervals: Vec<Option<(f64, f64)>>,
     /// Remarks.
     pub notes: String,
+    /// Whether no target tells it apart from the one before: both share a rank.
+    pub shares_rank: bool,
+}
+
+/// The rank of each row, from 0: rows that share one have that of the first of them.
+pub fn ranks(rows: &[Ranked]) -> Vec<usize> {
+    let mut last = 0;
+    let rows = rows.iter().enumerate();
+    rows.map(|(at, row)| {
+        if !row.shares_rank {
+            last = at;
+        }
+        last
+    })
+    .collect()
 }
 
 /// Place in the ranking, the best first; the order is total.

@@ -594,6 +594,7 @@ impl Screening<'_> {
                     figures: Vec::new(),
                     intervals: Vec::new(),
                     notes: stereoisomer.unwrap_or_default(),
+                    shares_rank: false,
                 };
                 if !shown.figures.is_empty() {
                     show(&mut row, shown);
