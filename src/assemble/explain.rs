@@ -170,7 +170,7 @@ pub fn what_keeps_out(
         class => pieces.classes[class - CLASSES].clone(),
     };
     for (counter, (&has, &most)) in counters.iter().zip(&job.space.most).enumerate() {
-        if has > most && (!whole || counter == HEAVY) {
+        if has > most && (!whole || counter == HEAVY || counter >= CLASSES) {
             reasons.push(format!(
                 "limit {}: {has}, at most {most} are allowed",
                 name(counter)

@@ -193,9 +193,9 @@ impl Space {
     /// Whether a whole molecule of the list belongs to the space.
     pub(super) fn takes_whole(&self, member: usize) -> bool {
         let adds = &self.members[member].adds;
-        let size = adds[HEAVY] <= self.most[HEAVY];
-        // what it is made of is its own affair: it was asked for by name or is on by default
-        size && self.members[member].most > 0
+        let classes = adds[CLASSES..].iter().zip(&self.most[CLASSES..]);
+        // how small it may be, and of how many kinds, is its own affair
+        adds[HEAVY] <= self.most[HEAVY] && classes.into_iter().all(|(has, most)| has <= most)
     }
 
     /// How many multisets the space holds: an account of its own, by adding one

@@ -65,12 +65,13 @@ fn in_words(assembly: &[(u16, u8)]) -> String {
     parts.collect::<Vec<_>>().join(", ")
 }
 
-/// Draws all structures and compares their ordinary breakdown with the pieces'; how many there are.
+/// Draws all structures and compares their ordinary breakdown with the pieces'; the
+/// molecules by canonical SMILES.
 fn broken_down_again(
     drawer: &mut Drawer<'_>,
     profiler: &mut Profiler,
     assembly: &[(u16, u8)],
-) -> usize {
+) -> BTreeSet<String> {
     let structures = drawer.structures(assembly, usize::MAX);
     let mut seen = BTreeSet::new();
     for smiles in &structures.drawn {
@@ -93,7 +94,7 @@ fn broken_down_again(
         // an ether may be cut on either side of its oxygen: one molecule, two trees of pieces
         seen.insert(profile.keys.full.clone());
     }
-    seen.len()
+    seen
 }
 
 /// A plain end with what closes it: CH3, ethyl, isopropyl, tert-butyl.
@@ -148,7 +149,7 @@ fn every_piece_and_every_two_pieces_break_down_as_they_say() {
                 for _ in 0..open {
                     parts.extend(cap);
                 }
-                let drawn = broken_down_again(&mut drawer, &mut profiler, &assembly(&parts));
+                let drawn = broken_down_again(&mut drawer, &mut profiler, &assembly(&parts)).len();
                 structures += drawn;
                 if drawn > 0 {
                     together.extend([one, other]);
@@ -190,8 +191,8 @@ fn pieces_hold_enough_subgroups() {
     }
 }
 
-/// Number of structures of all assemblies that `brief` allows.
-fn structures_of(text: &str) -> usize {
+/// Molecules of all assemblies that a brief allows, by canonical SMILES.
+fn molecules_of(text: &str) -> BTreeSet<String> {
     let plan = plan(&LIBRARY, text);
     let limits = limits(&plan);
     let job = Job::new(&PIECES, &limits, Quick::new(&plan), LIBRARY.fitted(), &[]).unwrap();
@@ -202,13 +203,17 @@ fn structures_of(text: &str) -> usize {
     let all = best.sorted();
     assert_eq!(all.len() as u128, account.scored);
     all.iter()
-        .map(|scored| broken_down_again(&mut drawer, &mut profiler, &scored.pieces))
-        .sum()
+        .flat_map(|scored| broken_down_again(&mut drawer, &mut profiler, &scored.pieces))
+        .collect()
 }
 
 fn isomers(pieces: &[&str], heavy_atoms: u32, limits: &str) -> usize {
+    molecules(pieces, heavy_atoms, limits).len()
+}
+
+fn molecules(pieces: &[&str], heavy_atoms: u32, limits: &str) -> BTreeSet<String> {
     let pieces: Vec<String> = pieces.iter().map(|name| format!("{name:?}")).collect();
-    structures_of(&format!(
+    molecules_of(&format!(
         "[assembly]\npieces = [{}]\ncount = {{ least = 1, most = 14 }}\n\
          heavy_atoms = {{ at_least = {heavy_atoms}, at_most = {heavy_atoms} }}\n\
          molar_mass = {{ at_most = \"400 g/mol\" }}\n\
@@ -450,9 +455,11 @@ fn by_hand(limits: &Limits) -> Vec<Vec<(u16, u8)>> {
     let mut all = Vec::new();
     add(limits, 0, &mut Vec::new(), &mut all);
     for (at, piece) in PIECES.all.iter().enumerate() {
+        let mut classes = limits.classes.iter().enumerate();
         if limits.pieces[at]
             && piece.role == Role::Whole
             && piece.heavy_atoms() <= limits.heavy_atoms.1
+            && classes.all(|(class, &most)| piece.of_class(class) <= most)
         {
             all.push(vec![(at as u16, 1)]);
         }
@@ -705,5 +712,43 @@ fn whole_molecules_are_drawn_as_they_are() {
             assert_eq!(drawn.drawn, [smiles.clone()], "{}", piece.name);
             assert!(drawn.complete && drawn.found == 1);
         }
+    }
+}
+
+/// Structures as RDKit read them: the same are drawn, no more and no fewer.
+#[test]
+fn structures_are_those_that_rdkit_took() {
+    let text = include_str!("../data/assemble/structures.csv");
+    let body: String = text
+        .lines()
+        .filter(|line| !line.starts_with('#'))
+        .map(|line| format!("{line}\n"))
+        .collect();
+    let mut frozen: BTreeMap<(String, String, u32), BTreeSet<String>> = BTreeMap::new();
+    let mut profiler = Profiler::new();
+    for row in csv::Reader::from_reader(body.as_bytes()).records() {
+        let row = row.unwrap();
+        // RDKit's SMILES, read by ours
+        let key = profiler.profile(&LIBRARY, &row[4]).unwrap().keys.full;
+        let series = (
+            row[0].to_owned(),
+            row[1].to_owned(),
+            row[2].parse().unwrap(),
+        );
+        assert!(
+            frozen.entry(series).or_default().insert(key),
+            "{} twice",
+            &row[4]
+        );
+    }
+    assert!(frozen.len() >= 9);
+    for ((series, pieces, heavy_atoms), wanted) in frozen {
+        let names: Vec<&str> = pieces.split(' ').collect();
+        let drawn = molecules(
+            &names,
+            heavy_atoms,
+            "functional_groups = 1, ether = 1, OH = 1",
+        );
+        assert_eq!(drawn, wanted, "{series}");
     }
 }
