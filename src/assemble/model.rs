@@ -15,7 +15,9 @@ use crate::groups::{GroupCounts, SetId};
 use crate::mixture::{CandidateLanes, Component, KeysAtTemperature, SharedGroups, Unifac};
 use crate::numeric::lanes::Instructions;
 use crate::numeric::{NORMAL_90, normal_cdf};
-use crate::pure::fitted::{ClassCounts, CountModel, Fitted, Known, Quantity};
+use crate::pure::fitted::{
+    ClassCounts, CountModel, Fitted, Known, Level, Quantity, expansion_to_298,
+};
 use crate::table::{Table, TableError};
 
 /// Whole numbers of a sum in one: 2³².
@@ -44,6 +46,8 @@ pub(super) struct Form<'f> {
     high: f64,
     /// How many half widths of the 90 % interval the limits are widened by.
     reach: f64,
+    /// Whether more than the sum decides, so that the window only tells what is missed.
+    needs_more: bool,
 }
 
 /// Where the value of a form, a whole number, has to lie.
@@ -74,6 +78,14 @@ impl Form<'_> {
         }
         let (low, high) = (self.low * scale - fixed, self.high * scale - fixed);
         let whole = |value: f64| (value * UNITS).clamp(-9.0e18, 9.0e18);
+        if self.needs_more {
+            return Window {
+                low: (whole(low - wide) - ROUNDING).floor() as i64,
+                high: (whole(high + wide) + ROUNDING).ceil() as i64,
+                sure_low: i64::MAX,
+                sure_high: i64::MIN,
+            };
+        }
         Window {
             low: (whole(low - wide) - ROUNDING).floor() as i64,
             high: (whole(high + wide) + ROUNDING).ceil() as i64,
@@ -82,6 +94,9 @@ impl Form<'_> {
         }
     }
 }
+
+/// Surface in main groups, by place in [`Job::mains`].
+type Areas = SmallVec<[(u8, f64); 3]>;
 
 /// What a member of the space adds.
 #[derive(Clone, Debug, Default)]
@@ -104,7 +119,7 @@ pub(super) struct Measures {
     groups: Option<GroupCounts>,
     /// Relative volume, and surface in each main group, by place in [`Job::mains`].
     r: f64,
-    areas: SmallVec<[(u8, f64); 3]>,
+    areas: Areas,
     /// Its main groups as bits.
     pub(super) mains: u64,
 }
@@ -309,10 +324,10 @@ impl<'j> Job<'j> {
     }
 
     /// Relative volume and surfaces of groups; `None` where one is not in the tables.
-    fn surfaces(&self, groups: &GroupCounts) -> Option<(f64, SmallVec<[(u8, f64); 3]>)> {
+    fn surfaces(&self, groups: &GroupCounts) -> Option<(f64, Areas)> {
         let (unifac, _, _) = self.activity?;
         let mut r = 0.0;
-        let mut areas: SmallVec<[(u8, f64); 3]> = SmallVec::new();
+        let mut areas = Areas::new();
         for (number, count) in groups.iter() {
             let group = unifac.tables().subgroup(number)?;
             let place = self
@@ -345,29 +360,17 @@ impl<'j> Job<'j> {
         let surfaces = groups.as_ref().and_then(|groups| self.surfaces(groups));
         let unknown = must_activity && surfaces.is_none();
         let (r, areas) = surfaces.unwrap_or_default();
+        // boiling point and volume are needed by all that rests on them
         let needs = |quantity: Quantity| {
-            let asked = self.quick.targets.iter().any(|target| {
-                target.must
-                    && match target.figure {
-                        QuickFigure::Fitted(own) => {
-                            own == quantity
-                                || matches!(
-                                    quantity,
-                                    Quantity::BoilingPoint | Quantity::MolarVolume
-                                ) && !matches!(
-                                    own,
-                                    Quantity::BoilingPoint
-                                        | Quantity::MolarVolume
-                                        | Quantity::MeltingPoint
-                                        | Quantity::LogPOctanolWater
-                                        | Quantity::IdealGasEnthalpyOfFormation
-                                )
-                        }
-                        QuickFigure::Density => quantity == Quantity::MolarVolume,
-                        _ => false,
-                    }
-            });
-            asked
+            let base = matches!(quantity, Quantity::BoilingPoint | Quantity::MolarVolume);
+            let musts = self.quick.targets.iter().filter(|target| target.must);
+            musts.into_iter().any(|target| match target.figure {
+                QuickFigure::Fitted(own) => {
+                    own == quantity || base && own.terms(Level::Count).rests_on_others
+                }
+                QuickFigure::Density => base,
+                _ => false,
+            })
         };
         let new_kind = self
             .models
@@ -861,10 +864,7 @@ impl<'a, 'j> Whole<'a, 'j> {
                     }),
                     _ => None,
                 };
-                if quantity
-                    .terms(crate::pure::fitted::Level::Count)
-                    .rests_on_others
-                {
+                if quantity.terms(Level::Count).rests_on_others {
                     known?;
                 }
                 self.closed(at, known)
@@ -873,13 +873,14 @@ impl<'a, 'j> Whole<'a, 'j> {
         found.map(|(value, ends)| (value, Some(ends)))
     }
 
+    /// Density at 298.15 K: the fitted volume may be one at a lower temperature.
     fn density(&self) -> Option<(f64, Option<(f64, f64)>)> {
+        let (boiling_point_k, _) = self.known[BOILING_POINT]?;
         let (volume, (low, high)) = self.known[MOLAR_VOLUME]?;
-        let of = |volume: f64| self.mass / volume;
-        Some((
-            of(volume),
-            Some((of(high), if low > 0.0 { of(low) } else { f64::MAX })),
-        ))
+        let expansion = expansion_to_298(boiling_point_k)?;
+        let of = |volume: f64| self.mass / (volume * expansion);
+        let most = if low > 0.0 { of(low) } else { f64::MAX };
+        Some((of(volume), Some((of(high), most))))
     }
 }
 
@@ -922,6 +923,7 @@ fn forms<'j>(
                     f64::INFINITY
                 },
                 reach: 0.0,
+                needs_more: false,
             }),
             QuickFigure::Fitted(
                 quantity @ (Quantity::BoilingPoint
@@ -941,25 +943,20 @@ fn forms<'j>(
                     low: sum(quantity, low, f64::NEG_INFINITY),
                     high: sum(quantity, high, f64::INFINITY),
                     reach,
+                    needs_more: false,
                 });
             }
-            QuickFigure::Density => {
-                let mut one = |density: f64, low: f64, high: f64| {
-                    if density.is_finite() && density > 0.0 {
-                        forms.push(Form {
-                            target: at,
-                            model: model(Quantity::MolarVolume),
-                            density: Some(density),
-                            low,
-                            high,
-                            reach,
-                        });
-                    }
-                };
-                // n·sum of the volume less mass over density: below 0 where denser
-                one(low, f64::NEG_INFINITY, 0.0);
-                one(high, 0.0, f64::INFINITY);
-            }
+            // the volume is that at 298.15 K or lower, where the liquid is denser: too thin
+            // there is too thin here, but nothing bounds a density from above
+            QuickFigure::Density if low.is_finite() && low > 0.0 => forms.push(Form {
+                target: at,
+                model: model(Quantity::MolarVolume),
+                density: Some(low),
+                low: f64::NEG_INFINITY,
+                high: 0.0,
+                reach,
+                needs_more: true,
+            }),
             _ => {}
         }
     }

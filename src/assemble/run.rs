@@ -318,7 +318,7 @@ impl Assembling<'_> {
         }
         let kept = state.best.sorted();
         let (evaluated, structures) = self.structures(&kept)?;
-        let (rows, counts, table, files) = self.write(&kept, evaluated, &structures)?;
+        let (rows, counts, files) = self.write(&kept, evaluated)?;
         self.all_or_none(self.put_in_place(files))?;
         record.counts = counts.clone();
         let next = next_measurement(self.plan, &rows);
@@ -333,7 +333,6 @@ impl Assembling<'_> {
             ending: record.ended,
             counts: &counts,
         });
-        let _ = table;
         Ok(Assembled {
             state,
             ranking: rows,
@@ -569,13 +568,11 @@ impl Assembling<'_> {
         }
     }
 
-    #[expect(clippy::type_complexity, reason = "what is written, once")]
     fn write(
         &self,
         kept: &[Scored],
         evaluated: Vec<Evaluated>,
-        _account: &StructureAccount,
-    ) -> Result<(Vec<Ranked>, Counts, RankedTable, [NewFile; 2]), SearchError> {
+    ) -> Result<(Vec<Ranked>, Counts, [NewFile; 2]), SearchError> {
         let [ranked_name, not_ranked_name, _] = FILES;
         let mut not_ranked = NewFile::begin(&self.folder.join(not_ranked_name))?;
         let mut ranked = NewFile::begin(&self.folder.join(ranked_name))?;
@@ -681,7 +678,7 @@ impl Assembling<'_> {
             table.write_row(&row.as_row(rank, &carried), &mut out);
         }
         ranked.add(&out)?;
-        Ok((rows, counts, table, [not_ranked, ranked]))
+        Ok((rows, counts, [not_ranked, ranked]))
     }
 
     fn put_in_place(&self, files: [NewFile; 2]) -> Result<(), FileError> {

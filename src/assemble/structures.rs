@@ -166,7 +166,7 @@ impl<'p> Drawer<'p> {
                 },
             );
         }
-        if pieces % 2 == 0 {
+        if pieces.is_multiple_of(2) {
             self.halves(all, pieces / 2, most, out);
         }
     }
