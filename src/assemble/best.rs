@@ -10,6 +10,9 @@ use smallvec::SmallVec;
 pub struct Scored {
     /// The score as a whole number, see [`score_key`].
     pub key: u64,
+    /// How far its preferences have come, see [`advance_key`]: tells equal scores apart,
+    /// such as those that can be no better.
+    pub advance: i64,
     /// Pieces (place in the table) with their counts, ascending.
     pub pieces: SmallVec<[(u16, u8); 12]>,
 }
@@ -20,12 +23,20 @@ pub fn score_key(score: f64) -> u64 {
     (score.clamp(0.0, 1.0) * 1e12).round() as u64
 }
 
+/// How far preferences have come as a whole number: steps of 10⁻⁶.
+pub fn advance_key(advance: f64) -> i64 {
+    // a cast of what is too large, or no number, is the nearest there is
+    (advance * 1e6).round() as i64
+}
+
 impl Ord for Scored {
-    /// Better ones are less: a higher score, then the fewer and earlier pieces.
+    /// Better ones are less: a higher score, then preferences that have come further,
+    /// then the fewer and earlier pieces.
     fn cmp(&self, other: &Self) -> std::cmp::Ordering {
         other
             .key
             .cmp(&self.key)
+            .then_with(|| other.advance.cmp(&self.advance))
             .then_with(|| self.pieces.cmp(&other.pieces))
     }
 }
@@ -107,6 +118,7 @@ mod tests {
     fn scored(key: u64, piece: u16) -> Scored {
         Scored {
             key,
+            advance: 0,
             pieces: SmallVec::from_slice(&[(piece, 1)]),
         }
     }

@@ -232,7 +232,7 @@ pub fn what_keeps_out(
                 job.quick().targets[target].name
             ));
         }
-        Judged::Scored(score) => {
+        Judged::Scored { score, .. } => {
             let kept = state.best.sorted();
             let own = kept.iter().find(|one| one.pieces == *assembly);
             if own.is_none() {

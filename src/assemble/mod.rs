@@ -23,7 +23,7 @@ mod state;
 mod structures;
 
 pub use account::{Account, TooManyToCount};
-pub use best::{Best, Scored, score_key};
+pub use best::{Best, Scored, advance_key, score_key};
 pub use error::{AssemblyFault, PieceError};
 pub use explain::{assembly_of, what_keeps_out};
 pub use fragment::{Fragment, FragmentError};

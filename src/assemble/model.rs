@@ -658,7 +658,7 @@ impl<'j> Job<'j> {
             let plausible = crate::data::pairs::PLAUSIBLE_LN_GAMMA_INFINITY;
             both.iter().all(|value| plausible.contains(value))
         });
-        let (mut sum, mut weights) = (0.0, 0.0);
+        let (mut sum, mut weights, mut advance) = (0.0, 0.0, 0.0);
         for (at, target) in self.quick.targets.iter().enumerate() {
             if target.figure == QuickFigure::Dear {
                 continue;
@@ -711,13 +711,14 @@ impl<'j> Job<'j> {
             if target.weight > 0.0 {
                 weights += target.weight;
                 sum += target.weight * target.want.desirability(value).ln();
+                advance += target.weight * target.want.advance(value);
             }
         }
-        Judged::Scored(if weights > 0.0 {
-            (sum / weights).exp()
-        } else {
-            1.0
-        })
+        let (score, advance) = match weights > 0.0 {
+            true => ((sum / weights).exp(), advance / weights),
+            false => (1.0, 0.0),
+        };
+        Judged::Scored { score, advance }
     }
 }
 

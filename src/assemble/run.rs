@@ -21,10 +21,10 @@ use super::structures::Drawer;
 use crate::evaluate::{Plan, Scratch, Verdict, interval_that_counts};
 use crate::groups::{GroupCounts, SetId};
 use crate::ranking::{
-    NextMeasurement, Ranked, Standing, merits, next_measurement, number_bands, ranking_record,
-    ranks,
+    Fallen, NextMeasurement, Ranked, Standing, merits, next_measurement, number_bands,
+    ranking_record, ranks,
 };
-use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedTable, missed_in_words};
+use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedTable};
 use crate::run::{
     AssemblyRecord, Counts, Event, FileError, Fingerprint, Listener, NewFile, Outcome, RunRecord,
     StopFlag, remove_stale,
@@ -159,17 +159,8 @@ struct Evaluated {
 }
 
 enum Finding {
-    Qualified {
-        row: Ranked,
-        merits: [f64; 2],
-    },
-    Fell {
-        outcome: Outcome,
-        label: String,
-        value: Option<(f64, crate::quantity::Dimension)>,
-        wanted: String,
-        reason: String,
-    },
+    Qualified { row: Ranked, merits: [f64; 2] },
+    Fell(Fallen),
 }
 
 impl Assembling<'_> {
@@ -484,17 +475,17 @@ impl Assembling<'_> {
             return Err(LeftOut::Blocked(rule.name.clone()));
         }
         let key = scratch.profile.keys.full.clone();
-        let label = |position: usize| {
-            let label = self.plan.labels().nth(position);
-            label.expect("verdicts name labels of the plan")
-        };
-        let finding = match verdict {
-            Verdict::Qualified {
-                score,
-                known,
-                variance,
-                probability,
-            } => Finding::Qualified {
+        let fallen = Fallen::of(self.plan, scratch, &verdict);
+        let finding = match (verdict, fallen) {
+            (
+                Verdict::Qualified {
+                    score,
+                    known,
+                    variance,
+                    probability,
+                },
+                _,
+            ) => Finding::Qualified {
                 merits: merits(self.plan.brief.ranking.by, score, variance, probability),
                 row: Ranked {
                     line: 0,
@@ -520,34 +511,7 @@ impl Assembling<'_> {
                     shares_rank: false,
                 },
             },
-            Verdict::Missed {
-                label: position,
-                value,
-                dimension,
-                probability,
-            } => {
-                let (name, wanted) = label(position);
-                Finding::Fell {
-                    outcome: Outcome::NotQualified,
-                    label: name.to_owned(),
-                    value: Some((value, dimension)),
-                    wanted: wanted.to_owned(),
-                    reason: missed_in_words(name, value, dimension, wanted, probability),
-                }
-            }
-            Verdict::NotAssessable {
-                label: position,
-                reason,
-            } => {
-                let (name, wanted) = label(position);
-                Finding::Fell {
-                    outcome: Outcome::NotAssessable,
-                    label: name.to_owned(),
-                    value: None,
-                    wanted: wanted.to_owned(),
-                    reason: scratch.explained(self.plan, &reason).to_string(),
-                }
-            }
+            (_, fallen) => Finding::Fell(fallen.expect("what did not qualify fell at something")),
         };
         Ok(Evaluated {
             smiles: smiles.to_owned(),
@@ -597,13 +561,13 @@ impl Assembling<'_> {
                     };
                     standings.push((standing, row, one.assembly));
                 }
-                Finding::Fell {
+                Finding::Fell(Fallen {
                     outcome,
                     label,
                     value,
                     wanted,
                     reason,
-                } => {
+                }) => {
                     counts.add(outcome, &label);
                     NotRankedRow {
                         line: number,

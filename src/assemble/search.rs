@@ -12,7 +12,7 @@ use rustc_hash::FxHashMap;
 use smallvec::SmallVec;
 
 use super::account::Account;
-use super::best::{Best, Scored, score_key};
+use super::best::{Best, Scored, advance_key, score_key};
 use super::completions::Completions;
 use super::completions::TailRange;
 use super::model::{ActivityScratch, Form, Job, Window};
@@ -417,27 +417,29 @@ impl<'j> Searcher<'j> {
             prefix.gap || self.has_gap(prefix.mains | job.tail_mains),
         ];
         let mut limits = None;
-        for TailRange { plain, low, high } in ranges {
-            {
-                let fixed = i32::from(plain[0]) + i32::from(plain[2]) + i32::from(plain[3]);
-                let count = (high - low + 1) as u128;
-                if let Some(rule) = rule {
-                    found.account.cut_by_rule[rule] += count;
+        for TailRange {
+            plain,
+            low,
+            mut high,
+        } in ranges
+        {
+            let fixed = i32::from(plain[0]) + i32::from(plain[2]) + i32::from(plain[3]);
+            let count = (high - low + 1) as u128;
+            if let Some(rule) = rule {
+                found.account.cut_by_rule[rule] += count;
+                continue;
+            }
+            // with any plain carbon the groups of alkanes are in it
+            if gaps[1] {
+                if fixed > 0 || low > 0 || gaps[0] {
+                    found.account.not_assessable += count;
                     continue;
                 }
-                let mut high = high;
-                // with any plain carbon the groups of alkanes are in it
-                if gaps[1] {
-                    if fixed > 0 || low > 0 || gaps[0] {
-                        found.account.not_assessable += count;
-                        continue;
-                    }
-                    found.account.not_assessable += count - 1;
-                    high = 0;
-                }
-                let limits = limits.get_or_insert_with(|| self.limits_of(prefix)).clone();
-                self.run(prefix, &limits, plain, low..=high, found);
+                found.account.not_assessable += count - 1;
+                high = 0;
             }
+            let limits = limits.get_or_insert_with(|| self.limits_of(prefix)).clone();
+            self.run(prefix, &limits, plain, low..=high, found);
         }
         self.score_waiting(prefix, found);
     }
@@ -546,12 +548,13 @@ impl<'j> Searcher<'j> {
             for (at, (&tail, sure)) in self.tails.iter().zip(sure).enumerate() {
                 let ln_gamma = shared.as_ref().map(|_| self.activity.of(at));
                 match job.judge(&prefix.members, tail, ln_gamma, sure) {
-                    Judged::Scored(score) => {
+                    Judged::Scored { score, advance } => {
                         found.account.scored += 1;
                         let key = score_key(score);
                         if found.best.takes(key) {
                             found.best.offer(Scored {
                                 key,
+                                advance: advance_key(advance),
                                 pieces: job.assembly(&prefix.members, tail),
                             });
                         }
@@ -606,8 +609,13 @@ pub(super) fn rarity_of(bucket: u8) -> f64 {
 /// What is made of an assembly that no bound has cut.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) enum Judged {
-    /// Its score.
-    Scored(f64),
+    /// Its score, and how far its preferences have come.
+    Scored {
+        /// From 0 to 1.
+        score: f64,
+        /// The weighted mean of [`Want::advance`](crate::brief::Want::advance).
+        advance: f64,
+    },
     /// A must is missed, its error considered.
     Missed {
         /// Which target.

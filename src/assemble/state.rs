@@ -368,6 +368,7 @@ mod tests {
         state.account.scored = u128::from(u64::MAX) * 3 + u128::from(part.number);
         state.best.offer(Scored {
             key: u64::from(part.number),
+            advance: 0,
             pieces: smallvec::SmallVec::from_slice(&[(1, 2)]),
         });
         state

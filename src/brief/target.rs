@@ -114,6 +114,15 @@ impl Want {
         }
     }
 
+    /// How far a preference has come from `worst` to `best`, not cut at either end; 0
+    /// for other wishes. It tells values apart whose desirability is the same.
+    pub fn advance(&self, value_si: f64) -> f64 {
+        match *self {
+            Self::Prefer { worst, best, .. } => (value_si - worst) / (best - worst),
+            _ => 0.0,
+        }
+    }
+
     /// Whether a value passes where the target is a must.
     ///
     /// A limit is met exactly up to the limit, its tolerance aside; a value to

@@ -10,7 +10,9 @@ use super::error::CliError;
 use super::exit::Exit;
 use super::output::{self, Notes};
 use super::progress::Progress;
-use super::screen::{default_folder, how_sure, musts, open_pool, ranking_text, record};
+use super::screen::{
+    default_folder, how_sure, musts, open_pool, ranking_text, record, stopped_by_signals,
+};
 use super::user_tables::Sources;
 use rustc_hash::FxHashMap;
 
@@ -156,19 +158,7 @@ pub(super) fn run(
         None => None,
         Some(name) => Some(named_molecule(&bound.plan, name.trim())?),
     };
-    let stop = StopFlag::new();
-    let raised = stop.clone();
-    // Without a handler the run just cannot be stopped gently; its state is on disk.
-    let handled = ctrlc::set_handler(move || {
-        if !raised.raise() {
-            std::process::exit(Exit::Stopped as i32);
-        }
-    });
-    if let Err(error) = handled {
-        notes.say(&format!(
-            "warning: Ctrl-C will end the run at once: {error}"
-        ));
-    }
+    let stop = stopped_by_signals(notes);
     let folder = match &command.out {
         Some(folder) => folder.clone(),
         None => default_folder(&command.brief),

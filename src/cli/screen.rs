@@ -49,20 +49,7 @@ pub(super) fn run(
     for note in &plan.notes {
         notes.say(&format!("note: {note}"));
     }
-    let stop = StopFlag::new();
-    let raised = stop.clone();
-    // Without a handler the run just cannot be stopped gently.
-    let handled = ctrlc::set_handler(move || {
-        if !raised.raise() {
-            // Asked twice: end at once, leaving nothing in place.
-            std::process::exit(Exit::Stopped as i32);
-        }
-    });
-    if let Err(error) = handled {
-        notes.say(&format!(
-            "warning: Ctrl-C will end the run at once: {error}"
-        ));
-    }
+    let stop = stopped_by_signals(notes);
     let pool = match open_pool(&plan.brief, Some(&stop)) {
         Err(CliError::Pool(PoolError::Read { .. })) if stop.is_raised() => {
             notes.say("stopped before a line was read; no file is written");
@@ -112,6 +99,25 @@ pub(super) fn run(
     } else {
         Exit::Done
     })
+}
+
+/// A flag that Ctrl-C and SIGTERM raise.
+pub(super) fn stopped_by_signals(notes: Notes) -> StopFlag {
+    let stop = StopFlag::new();
+    let raised = stop.clone();
+    // Without a handler the run just cannot be stopped gently.
+    let handled = ctrlc::set_handler(move || {
+        if !raised.raise() {
+            // Asked twice: end at once, leaving nothing in place.
+            std::process::exit(Exit::Stopped as i32);
+        }
+    });
+    if let Err(error) = handled {
+        notes.say(&format!(
+            "warning: Ctrl-C will end the run at once: {error}"
+        ));
+    }
+    stop
 }
 
 /// Refuses to write over what is read.

@@ -6,9 +6,11 @@
 //! [`next_measurement`].
 
 mod bands;
+mod fallen;
 mod next_measurement;
 mod ranked;
 
 pub use bands::{BAND_CHANCE, number_bands};
+pub use fallen::Fallen;
 pub use next_measurement::{NextMeasurement, next_measurement};
 pub use ranked::{Ranked, Standing, merits, ranking_record, ranks};

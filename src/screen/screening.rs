@@ -14,11 +14,11 @@ use super::ledger::{Entry, Finding, Ledger, Shown, WrittenLedger};
 use super::pool::{Batch, Pool, PoolError, PoolLine};
 use super::resolved::Resolved;
 use crate::evaluate::{Plan, Scratch, Verdict, interval_that_counts};
-use crate::quantity::Absent;
 use crate::ranking::{
-    NextMeasurement, Ranked, Standing, merits, next_measurement, number_bands, ranking_record,
+    Fallen, NextMeasurement, Ranked, Standing, merits, next_measurement, number_bands,
+    ranking_record,
 };
-use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedTable, missed_in_words};
+use crate::report::{CsvRow, FigureColumn, NotRankedRow, RankedTable};
 use crate::run::{
     Counts, Event, FileError, Fingerprint, InputRecord, Listener, NewFile, Outcome, RunRecord,
     StopFlag, remove_stale,
@@ -289,61 +289,35 @@ impl Screening<'_> {
 
     /// What came of a candidate; `is_complete` says whether all its figures were found out.
     fn finding(&self, scratch: &mut Scratch, verdict: Verdict, is_complete: bool) -> Finding {
-        let label = |position: usize| {
-            self.plan
-                .labels()
-                .nth(position)
-                .expect("verdicts name labels of the plan")
+        if let Some(fallen) = Fallen::of(self.plan, scratch, &verdict) {
+            return Finding::Fell {
+                outcome: fallen.outcome,
+                label: fallen.label,
+                value: fallen.value,
+                wanted: fallen.wanted,
+                reason: fallen.reason,
+            };
+        }
+        let Verdict::Qualified {
+            score,
+            known,
+            variance,
+            probability,
+        } = verdict
+        else {
+            unreachable!("what did not qualify fell at something");
         };
-        match verdict {
-            Verdict::Qualified {
-                score,
-                known,
-                variance,
-                probability,
-            } => {
-                let shown = match is_complete {
-                    true => self.shown(scratch),
-                    false => Shown::default(),
-                };
-                Finding::Qualified {
-                    score,
-                    known,
-                    variance,
-                    probability,
-                    key: scratch.profile.keys.full.clone(),
-                    shown,
-                }
-            }
-            Verdict::Missed {
-                label: position,
-                value,
-                dimension,
-                probability,
-            } => {
-                let (name, wanted) = label(position);
-                Finding::Fell {
-                    outcome: Outcome::NotQualified,
-                    label: name.to_owned(),
-                    value: Some((value, dimension)),
-                    wanted: wanted.to_owned(),
-                    reason: missed_in_words(name, value, dimension, wanted, probability),
-                }
-            }
-            Verdict::NotAssessable {
-                label: position,
-                reason,
-            } => {
-                let (name, wanted) = label(position);
-                let reason: Absent = scratch.explained(self.plan, &reason);
-                Finding::Fell {
-                    outcome: Outcome::NotAssessable,
-                    label: name.to_owned(),
-                    value: None,
-                    wanted: wanted.to_owned(),
-                    reason: reason.to_string(),
-                }
-            }
+        let shown = match is_complete {
+            true => self.shown(scratch),
+            false => Shown::default(),
+        };
+        Finding::Qualified {
+            score,
+            known,
+            variance,
+            probability,
+            key: scratch.profile.keys.full.clone(),
+            shown,
         }
     }
 
