@@ -17,10 +17,17 @@ pub struct Scored {
     pub pieces: SmallVec<[(u16, u8); 12]>,
 }
 
-/// A score from 0 to 1 as a whole number, so that equal scores are equal and no
-/// last digit decides: steps of 10⁻¹².
+/// Steps of a score from 0 to 1: what estimates do not tell apart is one.
+const SCORE_STEPS: f64 = 1e3;
+
+/// A score from 0 to 1 as a whole number of thousandths, so that no last digit decides.
 pub fn score_key(score: f64) -> u64 {
-    (score.clamp(0.0, 1.0) * 1e12).round() as u64
+    (score.clamp(0.0, 1.0) * SCORE_STEPS).round() as u64
+}
+
+/// The score that a key stands for.
+pub(super) fn score_of_key(key: u64) -> f64 {
+    key as f64 / SCORE_STEPS
 }
 
 /// How far preferences have come as a whole number: steps of 10⁻⁶.

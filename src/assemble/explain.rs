@@ -2,7 +2,7 @@
 
 use smallvec::SmallVec;
 
-use super::best::score_key;
+use super::best::{score_key, score_of_key};
 use super::limits::Limits;
 use super::model::Job;
 use super::piece::{Drawing, Pieces, Role};
@@ -240,9 +240,9 @@ pub fn what_keeps_out(
                 reasons.push(match score_key(score) > worst {
                     true => "its part of the search is not done".into(),
                     false => format!(
-                        "by counts it scores {score:.4}; the last of the {} kept assemblies scores {:.4}",
+                        "by counts it scores {score:.3}; the last of the {} kept assemblies scores {:.3}",
                         kept.len(),
-                        worst as f64 * 1e-12
+                        score_of_key(worst)
                     ),
                 });
             }

@@ -10,7 +10,7 @@ use super::piece::{Pieces, Role};
 use super::search::{Judged, rarity_bucket, rarity_of};
 use super::space::{CLASSES, COUNTERS, Counters, Space};
 use crate::chem::Composition;
-use crate::evaluate::{Quick, QuickFigure};
+use crate::evaluate::{Quick, QuickFigure, Spread};
 use crate::groups::{GroupCounts, SetId};
 use crate::mixture::{CandidateLanes, Component, KeysAtTemperature, SharedGroups, Unifac};
 use crate::numeric::lanes::Instructions;
@@ -628,6 +628,12 @@ impl<'j> Job<'j> {
         unifac.component(&counts).ok()
     }
 
+    /// The 90 % interval that ends widened by the reach go with.
+    fn ninety(&self, value: f64, (low, high): (f64, f64)) -> (f64, f64) {
+        let scaled = |end: f64| value + (end - value) / self.reach;
+        (scaled(low), scaled(high))
+    }
+
     /// Figures and score of an assembly by itself.
     pub(super) fn judge_alone(&self, members: &[(u16, u8)], tail: [u8; 4]) -> Judged {
         let all = self.each(members, &tail);
@@ -659,12 +665,13 @@ impl<'j> Job<'j> {
             both.iter().all(|value| plausible.contains(value))
         });
         let (mut sum, mut weights, mut advance) = (0.0, 0.0, 0.0);
+        let mut probability = 1.0;
         for (at, target) in self.quick.targets.iter().enumerate() {
             if target.figure == QuickFigure::Dear {
                 continue;
             }
             let bounded = self.bounded[at];
-            if sure && bounded && target.weight == 0.0 {
+            if sure && bounded && target.weight == 0.0 && self.reach == 0.0 {
                 continue;
             }
             let make = || Whole::new(self, members, &tail);
@@ -708,6 +715,10 @@ impl<'j> Job<'j> {
                     };
                 }
             }
+            if let (true, Some(ends)) = (target.must && self.reach > 0.0, ends) {
+                let spread = Spread::new(value, self.ninety(value, ends));
+                probability *= spread.probability(&target.want);
+            }
             if target.weight > 0.0 {
                 weights += target.weight;
                 sum += target.weight * target.want.desirability(value).ln();
@@ -718,7 +729,10 @@ impl<'j> Job<'j> {
             true => ((sum / weights).exp(), advance / weights),
             false => (1.0, 0.0),
         };
-        Judged::Scored { score, advance }
+        Judged::Scored {
+            score: score * probability,
+            advance,
+        }
     }
 }
 

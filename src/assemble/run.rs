@@ -12,7 +12,7 @@ use rustc_hash::{FxHashMap, FxHashSet};
 use thiserror::Error;
 
 use super::account::{Account, TooManyToCount};
-use super::best::Scored;
+use super::best::{Scored, score_of_key};
 use super::model::Job;
 use super::piece::Pieces;
 use super::search::Searcher;
@@ -264,7 +264,7 @@ impl Assembling<'_> {
                         done: nodes,
                         input_bytes: share(&state.account, space / u128::from(state.part.of)),
                         qualified: u64::try_from(state.account.scored).unwrap_or(u64::MAX),
-                        best: state.best.best().map(|key| key as f64 * 1e-12),
+                        best: state.best.best().map(score_of_key),
                     });
                 }
             }

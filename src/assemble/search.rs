@@ -611,7 +611,7 @@ pub(super) fn rarity_of(bucket: u8) -> f64 {
 pub(super) enum Judged {
     /// Its score, and how far its preferences have come.
     Scored {
-        /// From 0 to 1.
+        /// From 0 to 1: desirability, times the probability of each must by its interval.
         score: f64,
         /// The weighted mean of [`Want::advance`](crate::brief::Want::advance).
         advance: f64,

@@ -333,7 +333,7 @@ fn show(
     } else if assembled.state.part == Part::WHOLE {
         writeln!(
             out,
-            "No realizable assembly in this space scores better than the kept ones by these estimates."
+            "No realizable assembly in this space scores better by these estimates than the kept ones, to a thousandth."
         )?;
     } else {
         writeln!(

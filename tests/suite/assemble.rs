@@ -622,7 +622,7 @@ fn compare_with(plan: &Plan, limits: &Limits, all: &[Vec<(u16, u8)>], found: &Fo
                 let key = scored.get(parts);
                 assert!(key.is_some(), "{} qualifies: {score}", in_words(parts));
                 assert!(
-                    key.unwrap().abs_diff(score_key(score)) <= 1_000,
+                    key.unwrap().abs_diff(score_key(score)) <= 1,
                     "{}: {key:?} against {score}",
                     in_words(parts)
                 );
