@@ -145,6 +145,10 @@ fn decimal(value: f64, digits: i32) -> (u64, i32) {
     let most = EXACT_POWERS[digits as usize];
     // The logarithm of a number just below a power of ten may round up to it.
     let mut exponent = value.log10().floor() as i32;
+    // beyond the powers that a double holds exactly, the slow way that always rounds right
+    if (digits - exponent).abs() >= EXACT_POWERS.len() as i32 - 1 {
+        return decimal_of_any_size(value, digits);
+    }
     let mut significand = scaled(value, digits - 1 - exponent);
     if significand < most / 10.0 {
         exponent -= 1;
@@ -158,22 +162,26 @@ fn decimal(value: f64, digits: i32) -> (u64, i32) {
     (significand as u64, exponent)
 }
 
-/// value · 10^shift, with one rounding wherever the power is exact. Larger
-/// powers, which a double may not hold at all, are applied in steps.
+/// [`decimal`] by way of the standard library's text.
+fn decimal_of_any_size(value: f64, digits: i32) -> (u64, i32) {
+    let text = format!("{value:.*e}", digits as usize - 1);
+    let (significand, exponent) = text.split_once('e').expect("written with an exponent");
+    let significand = significand.replace('.', "");
+    let whole = "digits and an exponent were just written";
+    (
+        significand.parse().expect(whole),
+        exponent.parse().expect(whole),
+    )
+}
+
+/// value · 10^shift, with one rounding: the power is exact.
 fn scaled(value: f64, shift: i32) -> f64 {
-    let largest = EXACT_POWERS.len() as i32 - 1;
-    let mut scaled = value;
-    let mut left = shift;
-    while left != 0 {
-        let step = left.clamp(-largest, largest);
-        if step > 0 {
-            scaled *= EXACT_POWERS[step as usize];
-        } else {
-            scaled /= EXACT_POWERS[-step as usize];
-        }
-        left -= step;
+    let power = EXACT_POWERS[shift.unsigned_abs() as usize];
+    if shift >= 0 {
+        value * power
+    } else {
+        value / power
     }
-    scaled
 }
 
 #[cfg(test)]
@@ -227,6 +235,13 @@ mod tests {
         ] {
             assert_eq!(for_reading(value), expected);
         }
+    }
+
+    /// The power of ten that brings its digits before the point is no double's.
+    #[test]
+    fn very_small_and_large_numbers_are_rounded_right() {
+        assert_eq!(text(7.872636453547992e-288, 15), "7.87263645354799e-288");
+        assert_eq!(text(1.2345678901234567e300, 15), "1.23456789012346e300");
     }
 
     proptest! {
