@@ -59,10 +59,8 @@ impl PartialOrd for Scored {
 pub struct Best {
     most: usize,
     /// The worst of the kept on top.
-    kept: BinaryHeapOfScored,
+    kept: SortedHeap,
 }
-
-type BinaryHeapOfScored = SortedHeap;
 
 /// A heap that compares by what it holds.
 #[derive(Clone, Debug, Default)]

@@ -52,14 +52,6 @@ pub enum AssemblyFault {
     /// Nothing to build from.
     #[error("assembly.pieces leaves no piece to build from")]
     NoPieces,
-    /// No assembly fits the limits.
-    #[error(
-        "no assembly of these pieces fits the limits: {hint}\n  `groupsmith check` shows every limit"
-    )]
-    Empty {
-        /// What probably keeps them out.
-        hint: String,
-    },
 }
 
 impl AssemblyFault {

@@ -196,9 +196,11 @@ pub fn what_keeps_out(
             }
         }
     }
-    if let Some(rule) = job.rule_that_cuts(&counters) {
-        let name = job.rule_names().nth(rule).unwrap_or_default().to_owned();
-        reasons.push(format!("rule {name}"));
+    if let Some(rule) = job
+        .rule_that_cuts(&counters)
+        .and_then(|at| job.count_rule(at))
+    {
+        reasons.push(format!("rule {}: {}", rule.name, rule.why));
     }
     let mass: f64 = assembly
         .iter()

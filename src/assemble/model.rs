@@ -441,6 +441,12 @@ impl<'j> Job<'j> {
         std::iter::once("molar_mass").chain(self.rules.iter().map(|rule| rule.name.as_str()))
     }
 
+    /// The rule on counts at a place of [`rule_names`](Self::rule_names); the first place is
+    /// the molar mass, which is none.
+    pub(super) fn count_rule(&self, at: usize) -> Option<&CountRule> {
+        self.rules.get(at.checked_sub(1)?)
+    }
+
     /// The space.
     pub fn space(&self) -> &Space {
         &self.space

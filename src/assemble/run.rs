@@ -277,18 +277,6 @@ impl Assembling<'_> {
         Ok((!state.is_complete(), nodes as f64 / seconds))
     }
 
-    /// Searches, draws the structures of the best, evaluates and ranks them, and
-    /// writes the files of the run.
-    ///
-    /// # Errors
-    ///
-    /// As [`search`](Self::search); a file cannot be written, then none is put into place.
-    pub fn run(&self, mut state: State, record: RunRecord) -> Result<Assembled, SearchError> {
-        let begun = Instant::now();
-        let (stopped, nodes_per_s) = self.search(&mut state)?;
-        self.finish(state, record, stopped, nodes_per_s, begun)
-    }
-
     /// The structures, ranking and files of a searched state.
     ///
     /// # Errors

@@ -187,6 +187,7 @@ fn explain_tells_what_kept_a_molecule_out() {
         "glycerol",
         "diethylamine",
         "hexane",
+        "NCCC(=O)O",
     ] {
         let said = assemble(
             &bench,
